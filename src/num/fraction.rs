@@ -1,0 +1,208 @@
+//! Exact fractions of 128-bit integers, always in lowest terms with a denominator above zero.
+
+use serde::{Deserialize, Serialize};
+use std::cmp::Ordering;
+use std::fmt;
+use std::ops::{Add, Div, Mul, Neg, Sub};
+
+/// An exact fraction. Its arithmetic panics where a result does not fit into 128 bits: sizes are bounded when a
+/// pack is checked, so that would be a fault of this program.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Serialize, Deserialize)]
+pub struct Fraction {
+    numerator: i128,
+    denominator: i128,
+}
+
+/// The greatest common divisor; 0 only for two zeros.
+pub(crate) fn gcd(a: i128, b: i128) -> i128 {
+    let (mut a, mut b) = (a.unsigned_abs(), b.unsigned_abs());
+    while b != 0 {
+        (a, b) = (b, a % b);
+    }
+    i128::try_from(a).expect("a common divisor fits")
+}
+
+impl Fraction {
+    /// Nothing.
+    pub const ZERO: Fraction = Fraction {
+        numerator: 0,
+        denominator: 1,
+    };
+    /// One.
+    pub const ONE: Fraction = Fraction {
+        numerator: 1,
+        denominator: 1,
+    };
+
+    /// `numerator / denominator` in lowest terms.
+    ///
+    /// # Panics
+    /// Where the denominator is zero.
+    pub fn new(numerator: i128, denominator: i128) -> Fraction {
+        assert!(denominator != 0, "a fraction needs a denominator");
+        let common = gcd(numerator, denominator);
+        let sign = if denominator < 0 { -1 } else { 1 };
+        Fraction {
+            numerator: sign * numerator / common,
+            denominator: sign * denominator / common,
+        }
+    }
+
+    /// A whole number.
+    pub const fn whole(value: i128) -> Fraction {
+        Fraction {
+            numerator: value,
+            denominator: 1,
+        }
+    }
+
+    /// The numerator in lowest terms.
+    pub fn numerator(self) -> i128 {
+        self.numerator
+    }
+
+    /// The denominator in lowest terms, above zero.
+    pub fn denominator(self) -> i128 {
+        self.denominator
+    }
+
+    /// The largest whole number not above it.
+    pub fn floor(self) -> i128 {
+        self.numerator.div_euclid(self.denominator)
+    }
+
+    /// The smallest whole number not below it.
+    pub fn ceil(self) -> i128 {
+        -(-self.numerator).div_euclid(self.denominator)
+    }
+
+    /// Whether it is zero.
+    pub fn is_zero(self) -> bool {
+        self.numerator == 0
+    }
+
+    /// Whether it is below zero.
+    pub fn is_negative(self) -> bool {
+        self.numerator < 0
+    }
+
+    /// The point half way to the other.
+    pub fn midpoint(self, other: Fraction) -> Fraction {
+        (self + other) / Fraction::whole(2)
+    }
+
+    /// As text with this many decimals, rounded half up away from zero, without a `-0`.
+    pub fn decimal(self, places: u32) -> String {
+        let scale = 10i128.pow(places);
+        let scaled = super::divide_rounded(
+            self.numerator.abs() * scale,
+            self.denominator,
+            super::Direction::HalfUp,
+        );
+        let sign = if self.numerator < 0 && scaled != 0 {
+            "-"
+        } else {
+            ""
+        };
+        if places == 0 {
+            return format!("{sign}{scaled}");
+        }
+        format!(
+            "{sign}{}.{:0width$}",
+            scaled / scale,
+            scaled % scale,
+            width = places as usize
+        )
+    }
+}
+
+impl Add for Fraction {
+    type Output = Fraction;
+    fn add(self, other: Fraction) -> Fraction {
+        let common = gcd(self.denominator, other.denominator);
+        let (left, right) = (other.denominator / common, self.denominator / common);
+        Fraction::new(
+            self.numerator * left + other.numerator * right,
+            self.denominator * left,
+        )
+    }
+}
+impl Neg for Fraction {
+    type Output = Fraction;
+    fn neg(self) -> Fraction {
+        Fraction {
+            numerator: -self.numerator,
+            denominator: self.denominator,
+        }
+    }
+}
+impl Sub for Fraction {
+    type Output = Fraction;
+    fn sub(self, other: Fraction) -> Fraction {
+        self + -other
+    }
+}
+impl Mul for Fraction {
+    type Output = Fraction;
+    fn mul(self, other: Fraction) -> Fraction {
+        let (first, second) = (
+            gcd(self.numerator, other.denominator).max(1),
+            gcd(other.numerator, self.denominator).max(1),
+        );
+        Fraction::new(
+            (self.numerator / first) * (other.numerator / second),
+            (self.denominator / second) * (other.denominator / first),
+        )
+    }
+}
+impl Div for Fraction {
+    type Output = Fraction;
+    /// # Panics
+    /// Where the other is zero.
+    fn div(self, other: Fraction) -> Fraction {
+        assert!(!other.is_zero(), "a division needs a divisor");
+        self * Fraction::new(other.denominator, other.numerator)
+    }
+}
+impl PartialOrd for Fraction {
+    fn partial_cmp(&self, other: &Self) -> Option<Ordering> {
+        Some(self.cmp(other))
+    }
+}
+impl Ord for Fraction {
+    fn cmp(&self, other: &Self) -> Ordering {
+        let common = gcd(self.denominator, other.denominator);
+        (self.numerator * (other.denominator / common))
+            .cmp(&(other.numerator * (self.denominator / common)))
+    }
+}
+impl fmt::Debug for Fraction {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        write!(f, "{}/{}", self.numerator, self.denominator)
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn decimals_round_half_away_from_zero() {
+        let t = |n, d, places, text: &str| assert_eq!(Fraction::new(n, d).decimal(places), text);
+        t(1, 8, 2, "0.13");
+        t(-1, 8, 2, "-0.13");
+        t(-1, 1000, 2, "0.00");
+        t(2, 3, 1, "0.7");
+        t(7, 2, 0, "4");
+    }
+
+    #[test]
+    fn floors_and_ceilings_below_zero() {
+        assert_eq!(
+            (Fraction::new(-7, 2).floor(), Fraction::new(-7, 2).ceil()),
+            (-4, -3)
+        );
+        assert!(Fraction::new(1, 3) + Fraction::new(1, 6) == Fraction::new(1, 2));
+        assert!(Fraction::new(-1, 3) < Fraction::new(-1, 4));
+    }
+}
