@@ -77,46 +77,66 @@ pub(super) enum State<'a> {
     Ended(&'a Ledger),
 }
 
+/// Names with values, written as an object in their own order.
+struct Pairs<'a>(&'a [(String, String)]);
+
+impl Serialize for Pairs<'_> {
+    fn serialize<S: serde::Serializer>(&self, to: S) -> Result<S::Ok, S::Error> {
+        to.collect_map(self.0.iter().map(|(name, value)| (name, value)))
+    }
+}
+
+/// `run.json`, in the order in which somebody reads it.
+#[derive(Serialize)]
+struct Written<'a> {
+    program: &'static str,
+    version: &'static str,
+    run: &'a str,
+    issued: &'a str,
+    state: &'static str,
+    balance: Option<Balance>,
+    counts: Option<&'a Ledger>,
+    options: Pairs<'a>,
+    list: Pairs<'a>,
+    rules_title: &'a str,
+    rules: Pairs<'a>,
+    templates: Pairs<'a>,
+    office: Pairs<'a>,
+}
+
+#[derive(Serialize)]
+struct Balance {
+    says: &'static str,
+    holds: bool,
+}
+
 impl Record<'_> {
     /// The text of `run.json`.
     pub(super) fn json(&self, state: State<'_>) -> String {
-        let files = |files: &[(String, String)]| -> serde_json::Value {
-            files
-                .iter()
-                .map(|(name, hash)| (name.clone(), serde_json::Value::from(hash.as_str())))
-                .collect::<serde_json::Map<_, _>>()
-                .into()
+        let (state, counts) = match state {
+            State::Running => ("running", None),
+            State::Ended(ledger) if ledger.balances() => ("done", Some(ledger)),
+            State::Ended(ledger) => ("does not balance", Some(ledger)),
         };
-        let (state, counts, balances) = match state {
-            State::Running => ("running", serde_json::Value::Null, false),
-            State::Ended(ledger) => (
-                if ledger.balances() {
-                    "done"
-                } else {
-                    "does not balance"
-                },
-                serde_json::to_value(ledger).unwrap_or_default(),
-                ledger.balances(),
-            ),
+        let written = Written {
+            program: "hourworth",
+            version: env!("CARGO_PKG_VERSION"),
+            run: self.run_id,
+            issued: self.issued,
+            state,
+            balance: counts.map(|ledger| Balance {
+                says: "households = printed + held + rejected",
+                holds: ledger.balances(),
+            }),
+            counts,
+            options: Pairs(&self.inputs.options),
+            list: Pairs(&self.inputs.list),
+            rules_title: &self.inputs.pack_title,
+            rules: Pairs(&self.inputs.pack),
+            templates: Pairs(&self.inputs.templates),
+            office: Pairs(&self.inputs.office),
         };
-        let text = serde_json::json!({
-            "program": "hourworth",
-            "version": env!("CARGO_PKG_VERSION"),
-            "run": self.run_id,
-            "issued": self.issued,
-            "state": state,
-            "options": files(&self.inputs.options),
-            "list": files(&self.inputs.list),
-            "rules": { "title": self.inputs.pack_title, "files": files(&self.inputs.pack) },
-            "templates": files(&self.inputs.templates),
-            "office": files(&self.inputs.office),
-            "counts": counts,
-            "balance": {
-                "says": "households = printed + held + rejected",
-                "holds": balances,
-            },
-        });
-        let mut text = serde_json::to_string_pretty(&text).unwrap_or_default();
+        let mut text = serde_json::to_string_pretty(&written).unwrap_or_default();
         text.push('\n');
         text
     }

@@ -10,6 +10,7 @@ use super::{
     Done, Entry, Error, FaultRow, Ledger, Outcome, PoolFigures, PoolPlan, Product, Record,
     StopFlag, drive, results_header, statement_number, turning_points_header,
 };
+use crate::load::hex;
 use sha2::{Digest, Sha256};
 use std::time::Instant;
 
@@ -278,9 +279,4 @@ impl<'a> Writer<'a> {
         }
         Ok(self.ledger)
     }
-}
-
-/// Bytes as hexadecimal digits.
-fn hex(bytes: &[u8]) -> String {
-    bytes.iter().map(|byte| format!("{byte:02x}")).collect()
 }

@@ -1,7 +1,7 @@
 //! What can go wrong with a file that should be read.
 
 use std::io;
-use std::path::PathBuf;
+use std::path::{Path, PathBuf};
 
 /// Why a file or folder could not be used.
 #[derive(Debug, thiserror::Error)]
@@ -46,4 +46,22 @@ pub enum Error {
         /// What the reader said.
         cause: csv::Error,
     },
+}
+
+impl Error {
+    /// What the system said about a path.
+    pub(super) fn read(path: &Path, cause: io::Error) -> Error {
+        Error::Read {
+            path: path.to_owned(),
+            cause,
+        }
+    }
+
+    /// What is wrong with what a path holds.
+    pub(super) fn unfit(path: &Path, what: impl Into<String>) -> Error {
+        Error::Unfit {
+            path: path.to_owned(),
+            what: what.into(),
+        }
+    }
 }

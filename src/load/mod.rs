@@ -4,5 +4,13 @@
 //! lacks what it must hold. Imports `rules`, `case`, `diag`, `source`.
 
 mod error;
+mod files;
+mod office;
+mod pack;
+mod templates;
 
 pub use error::Error;
+pub use files::{Files, TextFile, hash_file, hex, read_folder, read_text};
+pub use office::{HoldRules, Office, OfficeFile, parse_office, read_office};
+pub use pack::{PACK_FILE, PackFiles, built_in_packs, read_pack, read_pack_folder};
+pub use templates::read_templates;
