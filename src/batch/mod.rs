@@ -8,6 +8,8 @@ mod archive;
 mod aside;
 mod child;
 mod error;
+#[cfg(test)]
+pub(crate) mod fixture;
 mod folder;
 mod frame;
 mod ledger;
@@ -30,5 +32,6 @@ pub use outcome::{
 pub use pool::{Done, PoolFigures, PoolPlan, StopFlag, drive};
 pub use record::{Inputs, Record};
 pub use run::{Progress, RunPlan, Summary, run};
+pub(crate) use tables::wage;
 pub use tables::{GridRows, Table, results, results_header, turning_points, turning_points_header};
 pub use worker::serve;
