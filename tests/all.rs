@@ -1,1 +1,3 @@
-
+mod suite {
+    pub mod batch;
+}
