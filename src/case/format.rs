@@ -143,14 +143,13 @@ pub(super) fn read_decimal(
     let sign = decimals.sign();
     let other = if sign == '.' { ',' } else { '.' };
     let all_digits = |part: &str| !part.is_empty() && part.bytes().all(|b| b.is_ascii_digit());
-    if body.chars().any(|c| {
-        c == ' ' || c == '\u{a0}' || c == '\u{202f}' || c == '\u{2009}' || c == '\'' || c == '’'
-    }) {
-        let rest: String = body.chars().filter(|c| c.is_ascii_digit()).collect();
-        return Err(if rest.is_empty() {
-            not()
-        } else {
+    let groups = |c: char| matches!(c, ' ' | '\u{a0}' | '\u{202f}' | '\u{2009}' | '\'' | '’');
+    if body.contains(groups) {
+        let digits = |c: char| c.is_ascii_digit() || groups(c) || c == '.' || c == ',';
+        return Err(if body.chars().all(digits) {
             Problem::Grouped(expected())
+        } else {
+            not()
         });
     }
     if body.contains(other) {

@@ -198,7 +198,7 @@ impl Problem {
             Problem::KnownWithoutValue(fact) => {
                 return format!("found {shown}, but `{fact}` itself is empty");
             }
-            Problem::TargetNotAbove => "a target that everybody has",
+            Problem::TargetNotAbove => "a target that is not above nothing",
             Problem::AddressTwice => return "found an address in one cell and in several".into(),
             Problem::LongAddress(lines) => return format!("found an address of {lines} lines"),
             Problem::OtherRole { role, .. } => {
@@ -297,7 +297,7 @@ impl Problem {
             | Problem::CurrencySign(expected)
             | Problem::Grouped(expected)
             | Problem::OtherDecimals(_, expected) => expected.clone(),
-            Problem::TooManyDecimals(0, expected) => format!("{expected}, whole"),
+            Problem::TooManyDecimals(0, expected) => expected.clone(),
             Problem::TooManyDecimals(most, expected) => {
                 format!("{expected}, with at most {most} decimals")
             }

@@ -4,6 +4,7 @@
 use super::fault::Place;
 use super::layout::Layout;
 use super::problem::Problem;
+use std::sync::Arc;
 
 /// Who wrote a value, and so how it is read.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -12,6 +13,8 @@ pub(super) enum Written {
     AsDeclared,
     /// As a number, day or truth value of TOML.
     AsToml,
+    /// In a shape that cannot be read; that has been said.
+    Unreadable,
 }
 
 /// The place of a value in a TOML text.
@@ -25,8 +28,8 @@ pub(super) struct Spot {
 /// Where a record stands.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub(super) enum Standing {
-    /// A row of a table.
-    Row(u64),
+    /// A row of a table, and the columns that its header should have but has not; that has been said.
+    Row { row: u64, absent: Arc<Vec<usize>> },
     /// A table of a TOML text: its own place, and the place of each value that it has.
     Toml { own: Spot, cells: Vec<Option<Spot>> },
 }
@@ -50,7 +53,7 @@ impl Record {
     pub(super) fn place(&self, layout: &Layout, column: usize) -> Place {
         let name = layout.columns[column].name.clone();
         match &self.standing {
-            Standing::Row(row) => Place::Cell {
+            Standing::Row { row, .. } => Place::Cell {
                 row: *row,
                 column: name,
             },
@@ -68,7 +71,7 @@ impl Record {
     /// The place of the whole record.
     pub(super) fn whole(&self) -> Place {
         match &self.standing {
-            Standing::Row(row) => Place::Row(*row),
+            Standing::Row { row, .. } => Place::Row(*row),
             Standing::Toml { own, .. } => Place::Text {
                 line: own.line,
                 column: own.column,
@@ -80,7 +83,7 @@ impl Record {
     /// The row or line, in words.
     pub(super) fn row_words(&self) -> String {
         match &self.standing {
-            Standing::Row(row) => format!("row {row}"),
+            Standing::Row { row, .. } => format!("row {row}"),
             Standing::Toml { own, .. } => format!("line {}", own.line),
         }
     }
@@ -88,7 +91,7 @@ impl Record {
     /// The row; 0 in a TOML text.
     pub(super) fn row(&self) -> u64 {
         match &self.standing {
-            Standing::Row(row) => *row,
+            Standing::Row { row, .. } => *row,
             Standing::Toml { .. } => 0,
         }
     }
@@ -96,7 +99,8 @@ impl Record {
     /// How the value of a column is written.
     pub(super) fn written(&self, column: usize) -> Written {
         match &self.standing {
-            Standing::Row(_) => Written::AsDeclared,
+            Standing::Row { absent, .. } if absent.contains(&column) => Written::Unreadable,
+            Standing::Row { .. } => Written::AsDeclared,
             Standing::Toml { cells, .. } => {
                 cells[column].map_or(Written::AsDeclared, |spot| spot.written)
             }

@@ -373,7 +373,7 @@ fn read_grid(toml: &mut TomlText<'_>, entry: &Entry<'_>, format: Format) -> Grid
 /// How a value of this writing is read.
 pub(super) fn form_of(written: Written, declared: Format) -> Format {
     match written {
-        Written::AsDeclared => declared,
+        Written::AsDeclared | Written::Unreadable => declared,
         Written::AsToml => Format::default(),
     }
 }

@@ -179,10 +179,10 @@ fn fill_one(
         true => (text_of(field.value), "text, or an array of texts"),
         false => (scalar(field.value.get_ref()), "one value"),
     };
-    let Some((text, written)) = found else {
+    let (text, written) = found.unwrap_or_else(|| {
         toml.wrong_shape(&field.key, field.value, expected);
-        return;
-    };
+        (String::new(), Written::Unreadable)
+    });
     let spot = toml.spot(&field.value.span(), written);
     record.cells[column] = text;
     if let Standing::Toml { cells, .. } = &mut record.standing {

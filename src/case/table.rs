@@ -11,6 +11,7 @@ use super::schema::{Need, Schema};
 use super::settings::Delimiter;
 use csv::ByteRecord;
 use std::io::{self, Read};
+use std::sync::Arc;
 
 /// How the rows of a table are numbered.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -63,6 +64,8 @@ pub(super) struct TableReader<'a> {
     /// For each cell of a row, the column of the layout.
     columns: Vec<Option<usize>>,
     names: Vec<String>,
+    /// Columns that the header should have but has not.
+    absent: Arc<Vec<usize>>,
 }
 
 /// Why a table cannot be read on.
@@ -127,8 +130,10 @@ impl<'a> TableReader<'a> {
             }
             names.push(written);
         }
+        let mut absent = vec![];
         for (column, needed) in layout.columns.iter().enumerate() {
             if needs(layout, schema, column) && !columns.contains(&Some(column)) {
+                absent.push(column);
                 let problem = Problem::MissingColumn(needed.name.clone());
                 faults.push(fault(Place::File, "", problem));
             }
@@ -147,7 +152,15 @@ impl<'a> TableReader<'a> {
             household,
             columns,
             names,
+            absent: Arc::new(absent),
         }))
+    }
+
+    fn standing(&self, row: u64) -> Standing {
+        Standing::Row {
+            row,
+            absent: Arc::clone(&self.absent),
+        }
     }
 
     /// The next row; none at the end.
@@ -157,7 +170,7 @@ impl<'a> TableReader<'a> {
             return Ok(None);
         }
         let mut record = Record {
-            standing: Standing::Row(self.csv.get_ref().row()),
+            standing: self.standing(self.csv.get_ref().row()),
             cells: vec![String::new(); layout.columns.len()],
             faults: vec![],
         };
@@ -169,7 +182,7 @@ impl<'a> TableReader<'a> {
                     .ok()
                     .and_then(|text| text.parse().ok())
                 {
-                    Some(row) => record.standing = Standing::Row(row),
+                    Some(row) => record.standing = self.standing(row),
                     None => {
                         let value = String::from_utf8_lossy(cell).into_owned();
                         record

@@ -3,6 +3,7 @@
 use super::Work;
 use crate::case::format::{Format, describe, read_fact, read_word};
 use crate::case::household::{Instance, Known};
+use crate::case::layout::FactColumns;
 use crate::case::problem::Problem;
 use crate::case::record::{Record, Written};
 use crate::case::schema::{KindSpec, Need};
@@ -61,7 +62,7 @@ impl Work<'_> {
             .zip(&layout.facts[slot])
         {
             let text = record.cell(columns.value);
-            let known = self.known(table, record, columns.known, text, &fact.name);
+            let known = self.known(table, record, *columns, &fact.name);
             let (value, known, written) = if text.is_empty() {
                 match fact.need {
                     Need::Default(value) => (value, Known::Assumed, false),
@@ -92,19 +93,16 @@ impl Work<'_> {
         facts
     }
 
-    fn known(
-        &mut self,
-        table: usize,
-        record: &Record,
-        column: usize,
-        value: &str,
-        fact: &str,
-    ) -> Known {
+    fn known(&mut self, table: usize, record: &Record, columns: FactColumns, fact: &str) -> Known {
+        let FactColumns {
+            value,
+            known: column,
+        } = columns;
         let text = record.cell(column);
         if text.is_empty() {
             return Known::Told;
         }
-        if value.is_empty() {
+        if record.cell(value).is_empty() && record.written(value) != Written::Unreadable {
             self.fault(
                 table,
                 record,

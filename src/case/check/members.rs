@@ -3,7 +3,7 @@
 use super::{Need, Work};
 use crate::case::format::{day_of, days_since_1970, read_word};
 use crate::case::household::Instance;
-use crate::case::layout::{Holds, MEMBERS, ROLES};
+use crate::case::layout::{HOUSEHOLDS, Holds, MEMBERS, ROLES};
 use crate::case::problem::Problem;
 use crate::case::record::{Draft, Record};
 use crate::case::schema::{ADULT, CHILD, OTHER};
@@ -103,7 +103,7 @@ impl Work<'_> {
         }
         if members.instances[0].is_empty() && !members.some_role_unknown {
             let place = draft.household.whole();
-            self.fault_at(MEMBERS, place, "", Problem::NoAdult);
+            self.fault_at(HOUSEHOLDS, place, "", Problem::NoAdult);
         }
         self.births(&births);
         members

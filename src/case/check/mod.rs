@@ -12,7 +12,7 @@ use super::household::Household;
 use super::layout::{HOUSEHOLDS, Holds, Layout};
 use super::list::{ReadOptions, Reading};
 use super::problem::Problem;
-use super::record::{Draft, Record};
+use super::record::{Draft, Record, Written};
 use super::schema::{HOUSEHOLD, Schema};
 use super::settings::ListSettings;
 
@@ -104,8 +104,11 @@ impl<'c> Work<'c> {
         }
     }
 
-    /// Notes a fault with the value of its cell.
+    /// Notes a fault with the value of its cell, unless it has been said that the cell cannot be read.
     fn fault(&mut self, table: usize, record: &Record, column: usize, problem: Problem) {
+        if record.written(column) == Written::Unreadable {
+            return;
+        }
         let place = record.place(&self.checks.layouts[table], column);
         self.fault_at(table, place, record.cell(column), problem);
     }
