@@ -1,5 +1,5 @@
 //! How a list writes days and numbers, and the reading of one value. In: text and a type. Out: a whole number of the type's unit.
-//! Refuses whatever is not written as declared: no guess. Imports nothing outside `case`.
+//! Refuses whatever is not written as declared: no guess. Imports `diag`.
 
 use super::problem::Problem;
 use super::schema::{FactSpec, FactType};

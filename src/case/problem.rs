@@ -1,5 +1,5 @@
 //! What can be wrong with a list: one variant a family of messages, and all their wording. In: what was met. Out: what was
-//! found, what was expected, what to do. Refuses to know where it happened. Imports nothing.
+//! found, what was expected, what to do. Refuses to know where it happened. Imports nothing outside `case`.
 
 use super::format::{DateForm, Decimals};
 
