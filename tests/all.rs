@@ -2,5 +2,6 @@
 
 mod suite {
     mod batch;
+    mod case;
     mod uk;
 }
