@@ -1,3 +1,6 @@
+//! All integration tests, in one binary.
+
 mod suite {
-    pub mod batch;
+    mod batch;
+    mod uk;
 }

@@ -34,8 +34,8 @@ impl Special<'_> {
             let get = |reg: &crate::program::Reg| v[reg.position()];
             v[*at] = match &step.op {
                 Op::Constant(value) => *value,
-                Op::Fact(_) | Op::Lookup { .. } | Op::Years { .. } | Op::Divide { .. } => {
-                    unreachable!("facts, tables, days and quotients do not vary with hours")
+                Op::Fact(_) | Op::Lookup { .. } | Op::Years { .. } => {
+                    unreachable!("facts, tables and days do not vary with hours")
                 }
                 Op::Hours => hours,
                 Op::Add(a, b) => get(a) + get(b),
@@ -47,6 +47,10 @@ impl Special<'_> {
                 Op::Choose { when, then, otherwise } => if get(when).is_zero() { get(otherwise) } else { get(then) },
                 Op::Round { of, unit, direction, .. } => {
                     let x = get(of) / *unit;
+                    Fraction::whole(divide_rounded(x.numerator(), x.denominator(), *direction)) * *unit
+                }
+                Op::Divide { of, by, unit, direction } => {
+                    let x = get(of) / get(by) / *unit;
                     Fraction::whole(divide_rounded(x.numerator(), x.denominator(), *direction)) * *unit
                 }
                 Op::AtLeast(a, b) => truth(get(a) >= get(b)),

@@ -192,8 +192,8 @@ impl Walker<'_, '_> {
     fn step(&mut self, at: usize, code: &Code, here: Fraction, side: Side) -> Poly {
         let truth = |yes: bool| [i128::from(yes), 0, 0];
         match code {
-            Code::Constant(_) | Code::Fact(_) | Code::Lookup { .. } | Code::Years { .. } | Code::Divide { .. } => {
-                unreachable!("constants, facts, tables, days and quotients do not vary with hours")
+            Code::Constant(_) | Code::Fact(_) | Code::Lookup { .. } | Code::Years { .. } => {
+                unreachable!("constants, facts, tables and days do not vary with hours")
             }
             Code::Hours => [0, 100, 0],
             Code::Add { a, by_a, b, by_b } => sum(&self.scaled(*a, *by_a), &self.scaled(*b, *by_b)),
@@ -214,6 +214,10 @@ impl Walker<'_, '_> {
             Code::Round { a, manner: Manner::Minor | Manner::Slope, .. } => self.polys[*a],
             Code::Round { a, numerator, denominator, unit, direction, manner: Manner::Steps } => {
                 self.stairs(at, *a, *numerator, *denominator, *unit, *direction, here, side)
+            }
+            Code::Divide { a, b, numerator, denominator, unit, direction } => {
+                let by = (self.special.values[*b] * denominator).max(1);
+                self.stairs(at, *a, *numerator, by, *unit, *direction, here, side)
             }
             Code::AtLeast { a, by_a, b, by_b } => {
                 let d = difference(&self.scaled(*a, *by_a), &self.scaled(*b, *by_b));
@@ -304,7 +308,7 @@ fn product(x: &Poly, y: &Poly) -> Poly {
 /// Whether a step can turn.
 fn is_branch(code: &Code) -> bool {
     match code {
-        Code::Smaller { .. } | Code::Larger { .. } | Code::AtLeast { .. } | Code::Above { .. } | Code::Same { .. } => true,
+        Code::Smaller { .. } | Code::Larger { .. } | Code::AtLeast { .. } | Code::Above { .. } | Code::Same { .. } | Code::Divide { .. } => true,
         Code::Round { manner, .. } => *manner == Manner::Steps,
         Code::Constant(_)
         | Code::Fact(_)
@@ -314,7 +318,6 @@ fn is_branch(code: &Code) -> bool {
         | Code::Multiply { .. }
         | Code::Times { .. }
         | Code::Choose { .. }
-        | Code::Divide { .. }
         | Code::Both { .. }
         | Code::Either { .. }
         | Code::Not { .. }

@@ -3,12 +3,14 @@
 //! In: paths. Out: texts in memory and readers over tables. Refuses what is not there, is not UTF-8 or
 //! lacks what it must hold. Imports `rules`, `case`, `diag`, `source`.
 
+mod checked;
 mod error;
 mod files;
 mod office;
 mod pack;
 mod templates;
 
+pub use checked::{check_pack, schema_of};
 pub use error::Error;
 pub use files::{Files, TextFile, hash_file, hex, read_folder, read_text};
 pub use office::{HoldRules, Office, OfficeFile, parse_office, read_office};

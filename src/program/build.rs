@@ -364,12 +364,13 @@ impl Builder {
         self.push(Op::Round { of, unit, direction, manner }, scale, limit, degree, varies)
     }
 
-    /// A quotient rounded at once. The divisor is above zero; neither side varies with hours.
+    /// A quotient rounded at once. The divisor is above zero and does not vary with hours.
     pub fn divide(&mut self, of: Reg, by: Reg, unit: Fraction, direction: Direction) -> Reg {
         let scale = Some(Scales { exact: unit.denominator(), smooth: unit.denominator() });
         // A divisor above zero is at least one of its smallest units.
         let limit = self.step(of).limit.checked_mul(self.step(by).scale.exact.unsigned_abs()).and_then(|l| l.checked_add(size(unit)));
-        self.push(Op::Divide { of, by, unit, direction }, scale, limit, 0, false)
+        let varies = self.varies(of);
+        self.push(Op::Divide { of, by, unit, direction }, scale, limit, 0, varies)
     }
 
     /// Whether the left is at least the right.

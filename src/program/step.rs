@@ -71,7 +71,8 @@ pub enum Op {
         /// What the walk makes of it.
         manner: Manner,
     },
-    /// A quotient that is rounded at once; neither side varies with hours.
+    /// A quotient that is rounded at once. The divisor does not vary with hours; where the dividend does, the quotient is a real
+    /// staircase.
     Divide {
         /// What is divided.
         of: Reg,

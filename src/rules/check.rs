@@ -7,6 +7,7 @@ use super::tree::{Node, Over, Target, What};
 use super::types::{Period, Ty};
 use crate::diag::{Diagnostic, nearest};
 use crate::num::{Direction, Fraction};
+use crate::program::Manner;
 use crate::source::Span;
 use std::collections::HashMap;
 
@@ -180,7 +181,7 @@ impl<'a> Context<'a> {
                 if let ExprKind::Binary { op: BinaryOp::Divide, left, right } = &of.kind {
                     let (left, right) = (self.node(left, None, faults)?, self.node(right, None, faults)?);
                     if !right.is_fixed() {
-                        return self.divide_rounded(left, right, *direction, *unit, span, faults);
+                        return self.divide_rounded(left, right, (*direction, *unit, *manner), span, faults);
                     }
                 }
                 let of = self.node(of, hint, faults)?;
@@ -333,7 +334,7 @@ impl<'a> Context<'a> {
             let dated = self.picked(span, faults)?;
             return Some(Node { ty: self.pack.amounts[*at].ty, span, what: What::Amount { amount: *at, dated } });
         }
-        if let Some(at) = self.pack.manifest.dates.iter().position(|(date, _)| *date == name.text) {
+        if let Some(at) = self.pack.manifest.dates.iter().position(|(date, _)| *date == name.text).or((name.text == "date").then_some(0)) {
             return Some(Node { ty: Ty::Date, span, what: What::Dated(at) });
         }
         self.unknown(name, hint, faults);
@@ -549,7 +550,14 @@ impl<'a> Context<'a> {
         Some(Node { ty, span, what: What::Binary { op, left: Box::new(left), right: Box::new(right) } })
     }
 
-    fn divide_rounded(&mut self, of: Node, by: Node, direction: Direction, unit: Fraction, span: Span, faults: &mut Faults) -> Option<Node> {
+    fn divide_rounded(
+        &mut self,
+        of: Node,
+        by: Node,
+        (direction, unit, manner): (Direction, Fraction, Option<Manner>),
+        span: Span,
+        faults: &mut Faults,
+    ) -> Option<Node> {
         let above_zero = match &by.what {
             What::Name { target: Target::Fact { kind, fact }, .. } => self.pack.kinds[*kind].facts[*fact].range.0 > Fraction::ZERO,
             What::Binary { op: BinaryOp::RaisedTo, right, .. } => matches!(right.what, What::Fixed(value) if value > Fraction::ZERO),
@@ -570,7 +578,7 @@ impl<'a> Context<'a> {
                 return None;
             }
         };
-        Some(Node { ty, span, what: What::DivideRounded { of: Box::new(of), by: Box::new(by), direction, unit } })
+        Some(Node { ty, span, what: What::DivideRounded { of: Box::new(of), by: Box::new(by), direction, unit, manner } })
     }
 }
 

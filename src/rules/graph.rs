@@ -160,10 +160,17 @@ impl Graph<'_> {
                 let steps = *manner == Some(Manner::Steps);
                 Course { degree: if steps { 0 } else { course.degree }, varies: course.varies }
             }
-            What::DivideRounded { of, by, .. } => {
-                self.fixed(of, "it is divided by a fact");
+            What::DivideRounded { of, by, manner, .. } => {
                 self.fixed(by, "it divides");
-                Course::default()
+                let course = self.course(of);
+                if course.varies && *manner != Some(Manner::Steps) {
+                    self.faults.push(
+                        Diagnostic::fault(of.span, "this varies with hours and is divided by a fact")
+                            .expected("something that does not vary, or a quotient rounded `as steps`")
+                            .hint("multiply out"),
+                    );
+                }
+                Course { degree: 0, varies: course.varies }
             }
             What::Charge { of, bands } => {
                 let course = self.course(of);

@@ -135,7 +135,7 @@ impl Lowering<'_> {
                 let manner = manner.unwrap_or(if minor { Manner::Minor } else { Manner::Slope });
                 self.builder.round(of, *unit, *direction, manner)
             }
-            What::DivideRounded { of, by, direction, unit } => {
+            What::DivideRounded { of, by, direction, unit, .. } => {
                 let (of, by) = (self.node(of, scopes), self.node(by, scopes));
                 self.builder.divide(of, by, *unit, *direction)
             }

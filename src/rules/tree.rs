@@ -58,7 +58,7 @@ pub(super) enum What {
     /// A product with a fixed factor of a conversion.
     Convert { of: Box<Node>, conversion: usize },
     Round { of: Box<Node>, direction: Direction, unit: Fraction, manner: Option<Manner> },
-    DivideRounded { of: Box<Node>, by: Box<Node>, direction: Direction, unit: Fraction },
+    DivideRounded { of: Box<Node>, by: Box<Node>, direction: Direction, unit: Fraction, manner: Option<Manner> },
     Charge { of: Box<Node>, bands: usize },
     PlaceOn { of: Box<Node>, scale: usize },
     Compare { op: CompareOp, left: Box<Node>, right: Box<Node> },
