@@ -85,7 +85,7 @@ pub(super) fn draw(
     };
     let line = size * 1.25;
     let beside = size < 15.0;
-    let left = if beside { size * 9.0 } else { 0.0 };
+    let left = if beside { size * 8.2 + 0.8 * size } else { 0.0 };
     let longest = bars
         .iter()
         .map(|bar| {
@@ -220,8 +220,8 @@ fn under(
             least = x + wide + space;
             out.labels
                 .push(label(x, y, (*text).to_owned(), Weight::Regular));
-            if level == 0 {
-                let from = target.clamp(x, x + wide);
+            let from = target.clamp(x, x + wide);
+            if level == 0 && (from - target).abs() < size * 1.5 {
                 out.leaders
                     .push([*target, top, from, top + size * 0.35].map(hundredths));
             }

@@ -37,6 +37,8 @@ pub struct Chart {
     pub dots: Vec<Dot>,
     /// Thin lines from labels to what they name.
     pub leaders: Vec<[i64; 4]>,
+    /// Blank ground under the words that stand inside the plot: left, top, width, height.
+    pub grounds: Vec<[i64; 4]>,
     /// Words.
     pub labels: Vec<Label>,
 }
@@ -245,13 +247,13 @@ pub(super) fn draw(plot: &Plot<'_>) -> Chart {
         .iter()
         .map(|(_, text)| width(text, Weight::Regular, size))
         .fold(0.0, f64::max);
-    let height = 128.0 + size * 6.0;
+    let height = 130.0 + size * 6.0;
     let scale = Scale {
         hours: (0.0, last),
         sums: (bottom_sum, top_sum),
         plot: Rect {
             left: margin + 0.6 * size,
-            top: line + 0.5 * size,
+            top: line + 0.9 * size,
             right: plot.width - size,
             bottom: height - 2.0 * line - 0.2 * size,
         },
@@ -410,10 +412,13 @@ fn write(
         return;
     };
     if let Some((from, to)) = leader {
+        placer.avoid_stroke(from, to);
         chart
             .leaders
             .push([from.0, from.1, to.0, to.1].map(hundredths));
     }
+    let ground = [at.left - 1.5, at.top, widest + 3.0, at.bottom - at.top];
+    chart.grounds.push(ground.map(hundredths));
     for (position, text) in lines.iter().enumerate() {
         chart.labels.push(Label {
             x: hundredths(at.left),

@@ -118,7 +118,10 @@ impl Placer {
                     .iter()
                     .filter(|point| rect.holds(**point))
                     .count();
-                let cost = crossed as f64 * 8.0 + away * 6.0 + shifted * 0.5;
+                let cost = crossed as f64 * 8.0
+                    + away * 6.0
+                    + shifted * 0.5
+                    + self.leader_cost(&rect, target);
                 if best.as_ref().is_none_or(|(least, _, _)| cost < *least) {
                     best = Some((cost, rect, away));
                 }
@@ -132,6 +135,27 @@ impl Placer {
         );
         let far = (nearest.0 - target.0).hypot(nearest.1 - target.1) > self.gap * 2.0;
         Some((rect, far.then_some((nearest, target))))
+    }
+
+    /// What a leader from this place would hide: other labels weigh much, strokes little.
+    fn leader_cost(&self, rect: &Rect, target: (f64, f64)) -> f64 {
+        let start = (
+            target.0.clamp(rect.left, rect.right),
+            target.1.clamp(rect.top, rect.bottom),
+        );
+        let samples = 12;
+        let mut cost = 0.0;
+        for step in 1..samples - 1 {
+            let share = f64::from(step) / f64::from(samples);
+            let point = (
+                start.0 + (target.0 - start.0) * share,
+                start.1 + (target.1 - start.1) * share,
+            );
+            if self.taken.iter().any(|other| other.holds(point)) {
+                cost += 12.0;
+            }
+        }
+        cost
     }
 
     /// A rectangle around a centre, moved into the area.

@@ -22,8 +22,8 @@ static BUILT_IN: Dir<'_> = include_dir!("$CARGO_MANIFEST_DIR/templates");
 
 /// Steps that one template may take; a letter takes about a tenth of it.
 const FUEL: u64 = 200_000;
-/// How deep templates may include each other.
-const DEPTH: usize = 20;
+/// How deep templates may nest; an include counts as ten.
+const DEPTH: usize = 64;
 
 /// Template texts by name, such as `client/letter.typ`.
 #[derive(Clone, Debug, PartialEq, Eq)]

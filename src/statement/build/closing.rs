@@ -47,7 +47,9 @@ pub(super) fn parts(words: &Words<'_>) -> Result<Vec<Part>, StatementError> {
         unconfirmed(words)?,
     )?;
     let mut report = grouped(words, "report.");
-    report.push(words.plain("report.general")?);
+    if report.is_empty() {
+        report.push(words.plain("report.general")?);
+    }
     add(
         words,
         &mut parts,
@@ -181,9 +183,6 @@ fn facts(words: &Words<'_>) -> Result<Vec<String>, StatementError> {
         .filter(|fact| !matches!(fact.known, 's' | 't' | 'a'))
         .collect();
     push_facts(words, &mut lines, "facts.missing", &missing)?;
-    if !lines.is_empty() {
-        lines.push(words.plain("facts.wrong")?);
-    }
     Ok(lines)
 }
 

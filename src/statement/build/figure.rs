@@ -14,7 +14,9 @@ use crate::statement::money::{hours, kept_of_ten, money};
 /// Jumps named in the chart at most.
 const NAMED_JUMPS: usize = 3;
 /// Bars at most.
-const BARS: usize = 4;
+const BARS: usize = 3;
+/// Stretches shorter than this, in hours, get no bar unless they start at today's hours.
+const LEAST_BAR: Fraction = Fraction::ONE;
 
 /// Width of the text in points: the page less its margins of 24 and 18 mm.
 pub(in crate::statement) fn text_width(paper: &str) -> f64 {
@@ -332,6 +334,11 @@ pub(super) fn bars(
             Some(_) | None => found.push((from, segment.to, parts)),
         }
     }
+    let mut position = 0;
+    found.retain(|(from, to, _)| {
+        position += 1;
+        position == 1 || *to - *from >= LEAST_BAR
+    });
     found.truncate(BARS);
     if found.is_empty() {
         return Ok(Bars::default());

@@ -71,14 +71,7 @@ pub fn letter_view(
         whose: words.say("for", &[("who", &whose)])?,
         particulars: rows,
         estimate: vec![
-            words.say(
-                "estimate.first",
-                &[
-                    ("assessed", &assessed),
-                    ("area", &context.area),
-                    ("until", &until),
-                ],
-            )?,
+            words.say("estimate.first", &[("assessed", &assessed)])?,
             words.say("estimate.change", &[])?,
         ],
         caution: words.say("caution.text", &[])?,

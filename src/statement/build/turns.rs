@@ -186,10 +186,11 @@ fn turn_text(
                 said.push(regained(words, line, trap)?);
             }
         }
-        Way::Passport => {
+        Way::Passport if said.is_empty() => {
             let effects = effects(words, turn)?;
             said.push(words.say("turns.passport", &[("effects", &listed(&effects))])?);
         }
+        Way::Passport => {}
         Way::Slope => said.push(slope(words, slopes)?),
     }
     let pay = words.currency.short(turn.pay);
@@ -410,6 +411,9 @@ fn on_offers(
             jump(turn, measure).0 <= -LEAST_JUMP
                 && turn.hours >= range.0
                 && turn.hours <= step.to.hours
+                && !main.turns.iter().any(|known| {
+                    known.hours == turn.hours && jump(known, measure).0 <= -LEAST_JUMP
+                })
         });
         for turn in falls {
             let sum = words.currency.short(-jump(turn, measure));

@@ -189,6 +189,9 @@ pub fn budget_line(items: &[Line], terms: JobTerms, earner: usize, step_to: Hour
             causes.push(Cause { part: item.part.to_owned(), line: item.name.to_owned() });
             effects.push(Effect { item: position, jump, slope: w(0) });
         }
+        if causes.len() > 1 {
+            causes.retain(|cause| cause.line != "support");
+        }
         let size = money(net.at(at) - net.before(at));
         let kind = if size.0 != 0 {
             TurnKind::Cliff
@@ -476,11 +479,11 @@ pub fn context() -> LetterContext {
         ("turn.income_tax", "Income Tax starts"),
         ("turn.contribution", "National Insurance starts"),
         ("turn.pension_payment", "Payments into your pension start"),
-        ("turn.support", "Household Support starts to fall, or ends"),
+        ("turn.support", "Household Support ends"),
         ("turn.local_tax_help", "Local Tax Help ends"),
         ("turn.school_meals", "Free school meals end"),
         ("fact.rent", "rent"),
-        ("fact.tenure", "home rented from: "),
+        ("fact.tenure", "home rented"),
         ("fact.birth", "born"),
         ("fact.pension_rate", "pension payment"),
         ("fact.savings", "savings"),
