@@ -3,5 +3,6 @@
 mod suite {
     mod batch;
     mod case;
+    mod statement;
     mod uk;
 }

@@ -129,6 +129,7 @@ fn turn(assessment: &Assessment, turn: &Turn) -> Value {
         "kind": match turn.kind {
             TurnKind::Kink => "kink",
             TurnKind::Cliff => "cliff",
+            TurnKind::CostStep => "cost_step",
             TurnKind::Passport => "passport",
         },
         "hours": turn.hours.plain(),
