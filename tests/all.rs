@@ -2,5 +2,7 @@
 
 mod suite {
     mod batch;
+    mod case;
+    mod statement;
     mod uk;
 }

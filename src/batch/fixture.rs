@@ -111,6 +111,7 @@ pub(crate) fn assessment() -> Assessment {
             to: Fraction::new(1, 3),
         }],
         up_to: Hours::whole(3),
+        has_costs: false,
     };
     let offer = BudgetLine {
         terms: JobTerms {

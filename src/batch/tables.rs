@@ -272,6 +272,7 @@ fn turn_word(turn: &Turn) -> &'static str {
         TurnKind::Kink => "kink",
         TurnKind::Cliff if turn.size < Money::ZERO => "cliff_down",
         TurnKind::Cliff => "cliff_up",
+        TurnKind::CostStep => "cost_step",
         TurnKind::Passport => "passport",
     }
 }

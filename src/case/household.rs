@@ -1,5 +1,6 @@
 //! One household as read from a list.
 
+use crate::num::Money;
 use serde::{Deserialize, Serialize};
 
 /// How a fact is known.
@@ -65,6 +66,8 @@ pub struct Household {
     pub reference: String,
     /// How the statement reaches its reader.
     pub delivery: Delivery,
+    /// The net income in the statement period that the household must have, if it names one.
+    pub target: Option<Money>,
     /// Instances by kind (the positions of [`Schema::kinds`](super::Schema)). Jobs here are today's and further ones, ordered by
     /// adult, today's first: each adult has exactly one job with the role `Today`.
     pub instances: Vec<Vec<Instance>>,

@@ -3,8 +3,12 @@
 //! In: command-line arguments. Out: an exit status, data on standard output, messages on standard error.
 //! Messages carry references, never names. May import every other folder.
 
+mod args;
 mod chart;
+mod json;
+mod progress;
 mod show;
+mod working;
 
 pub use show::{Terms, show};
 use std::ffi::OsString;

@@ -264,6 +264,10 @@ fn turn_words(assessment: &Assessment, turn: &Turn) -> String {
             turn.net_before.plain(),
             turn.net_after.plain()
         ),
+        TurnKind::CostStep => format!(
+            "costs of working step by {}",
+            Money((turn.after_costs_after - turn.after_costs_before).0.abs()).plain()
+        ),
         TurnKind::Passport => {
             let changes: Vec<String> = turn
                 .effects

@@ -1,6 +1,6 @@
 //! Polynomials in hours of degree two at most, as scaled whole numbers.
 
-use crate::num::Fraction;
+use crate::num::{Fraction, gcd};
 use num_bigint::BigInt;
 use std::cmp::Ordering;
 
@@ -14,14 +14,45 @@ pub struct Curve {
 }
 
 impl Curve {
-    /// The value at these hours.
+    /// The value at these hours. Where it does not fit into 128 bits it is given to a thousand million millionth.
     pub fn at(&self, h: Fraction) -> Fraction {
-        let part = |n: i128| Fraction::new(n, self.scale);
-        if self.c[2] == 0 {
-            part(self.c[0]) + part(self.c[1]) * h
-        } else {
-            part(self.c[0]) + (part(self.c[1]) + part(self.c[2]) * h) * h
+        if self.c[1] == 0 && self.c[2] == 0 {
+            return Fraction::new(self.c[0], self.scale);
         }
+        let (p, q) = (BigInt::from(h.numerator()), BigInt::from(h.denominator()));
+        let [c0, c1, c2] = self.c.map(BigInt::from);
+        let numerator = c0 * &q * &q + c1 * &p * &q + c2 * &p * &p;
+        let denominator = BigInt::from(self.scale) * &q * &q;
+        small_fraction(&numerator, &denominator).unwrap_or_else(|| {
+            let fine = BigInt::from(1_000_000_000_000_000i64);
+            let scaled = numerator * fine / denominator;
+            Fraction::new(i128::try_from(scaled).expect("a bounded value fits"), 1_000_000_000_000_000)
+        })
+    }
+
+    /// The weighted sum of curves.
+    ///
+    /// # Panics
+    /// Where the common scale does not fit; scales are bounded when a program is made.
+    pub fn total<'c>(curves: impl Iterator<Item = (i128, &'c Curve)> + Clone) -> Curve {
+        let scale = curves.clone().fold(1i128, |s, (_, c)| s / gcd(s, c.scale) * c.scale);
+        let mut c = [0i128; 3];
+        for (weight, curve) in curves {
+            let by = weight * (scale / curve.scale);
+            for (sum, part) in c.iter_mut().zip(curve.c) {
+                *sum += part * by;
+            }
+        }
+        Curve { c, scale }
+    }
+
+    /// The first place after `from`, up to `to`, where the curve crosses a level; the level is taken to a millionth.
+    pub fn crosses(&self, level: Fraction, from: Fraction, to: Fraction) -> Option<Fraction> {
+        let fine = 1_000_000i128;
+        let level = (level * Fraction::whole(fine)).floor();
+        let poly = [self.c[0] * fine - level * self.scale, self.c[1] * fine, self.c[2] * fine];
+        let common = gcd(gcd(poly[0], poly[1]), poly[2]).max(1);
+        next_change(&poly.map(|v| v / common), from, to)
     }
 
     /// The slope at these hours.

@@ -8,6 +8,7 @@ mod curve;
 mod exact;
 mod machine;
 mod setting;
+mod used;
 mod walk;
 mod working;
 
@@ -15,5 +16,6 @@ pub use crate::program::ItemKind;
 pub use curve::Curve;
 pub use machine::{Machine, Special};
 pub use setting::{JobChoice, Setting, fact_text, shape_of};
+pub use used::Used;
 pub use walk::{Bend, Piece, Walk};
 pub use working::{Worked, working};

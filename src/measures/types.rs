@@ -68,6 +68,8 @@ pub enum TurnKind {
     Kink,
     /// Net income jumps up (or down where `size` is below zero).
     Cliff,
+    /// A cost of working steps up or down; no rule of the pack turned.
+    CostStep,
     /// Only help in kind is won or lost.
     Passport,
 }
@@ -199,6 +201,8 @@ pub struct BudgetLine {
     pub no_gain: Vec<NoGain>,
     /// Highest hours that were walked.
     pub up_to: Hours,
+    /// Whether there are costs of working on this line, so that the after-costs measures lead.
+    pub has_costs: bool,
 }
 
 /// Splitting a rise (the difference of two wages) at today's hours. No behaviour is predicted.
