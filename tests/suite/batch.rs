@@ -87,6 +87,7 @@ fn pretend_worker() {
 fn household(reference: &str, row: u64) -> Household {
     Household {
         reference: reference.into(),
+        target: None,
         delivery: Delivery::default(),
         instances: vec![],
         job_roles: vec![],
