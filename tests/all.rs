@@ -1,5 +1,8 @@
-//! All integration tests in one binary.
+//! All integration tests, in one binary.
 
 mod suite {
-    pub mod case;
+    mod batch;
+    mod case;
+    mod statement;
+    mod uk;
 }

@@ -1,1 +1,18 @@
-//! (in work)
+//! The only reader of the disk: rule packs, case lists, templates and office files, each with its SHA-256.
+//!
+//! In: paths. Out: texts in memory and readers over tables. Refuses what is not there, is not UTF-8 or
+//! lacks what it must hold. Imports `rules`, `case`, `diag`, `source`.
+
+mod checked;
+mod error;
+mod files;
+mod office;
+mod pack;
+mod templates;
+
+pub use checked::{check_pack, schema_of};
+pub use error::Error;
+pub use files::{Files, TextFile, hash_file, hex, read_folder, read_text};
+pub use office::{HoldRules, Office, OfficeFile, parse_office, read_office};
+pub use pack::{PACK_FILE, PackFiles, built_in_packs, read_pack, read_pack_folder};
+pub use templates::read_templates;

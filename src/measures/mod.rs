@@ -1,8 +1,15 @@
 //! The measures of an assessed household: points, turning points, traps, rates, targets.
 //!
-//! In: grid and walk of the engine. Out: [`Assessment`]. Knows no file, text or layout.
-//! Imports `engine`, `num` (and `program` types through `engine`).
+//! In: a household and programs for its shape. Out: [`Assessment`], or the reasons to hold the household.
+//! Knows no file, text or layout. Imports `engine`, `case` and `num`, and program types through `engine`.
 
+mod assess;
+mod line;
+mod points;
+mod split;
+mod traps;
+mod turns;
 mod types;
 
+pub use assess::{Programs, Request, Verdict, assess, working_at};
 pub use types::*;

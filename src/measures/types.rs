@@ -2,30 +2,7 @@
 
 use crate::num::{Fraction, Hours, Money};
 
-/// What kind of line an item is; says how it enters the sums.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
-pub enum ItemKind {
-    /// Contractual pay; counts in.
-    Pay,
-    /// Other income; counts in.
-    Income,
-    /// Tax; comes off.
-    Tax,
-    /// Social contribution; comes off.
-    Contribution,
-    /// Payment into the person's own pension, sacrificed pay included; comes off.
-    Pension,
-    /// Repayment of a loan through the pay; comes off.
-    Loan,
-    /// Benefit; counts in.
-    Benefit,
-    /// Help in kind that is won or lost: 1 or 0, not in any sum.
-    Passport,
-    /// Paid only because of working; comes off after costs.
-    Cost,
-    /// Rent and local tax; comes off what is left after housing.
-    Housing,
-}
+pub use crate::engine::ItemKind;
 
 /// One line of the statement: an item for one instance (an adult's tax, the household's benefit).
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -91,6 +68,8 @@ pub enum TurnKind {
     Kink,
     /// Net income jumps up (or down where `size` is below zero).
     Cliff,
+    /// A cost of working steps up or down; no rule of the pack turned.
+    CostStep,
     /// Only help in kind is won or lost.
     Passport,
 }
@@ -222,6 +201,8 @@ pub struct BudgetLine {
     pub no_gain: Vec<NoGain>,
     /// Highest hours that were walked.
     pub up_to: Hours,
+    /// Whether there are costs of working on this line, so that the after-costs measures lead.
+    pub has_costs: bool,
 }
 
 /// Splitting a rise (the difference of two wages) at today's hours. No behaviour is predicted.

@@ -6,5 +6,6 @@ mod money;
 mod rounding;
 
 pub use fraction::Fraction;
+pub(crate) use fraction::gcd;
 pub use money::{Hours, Money};
 pub use rounding::{Direction, divide_rounded, round_to};

@@ -1,1 +1,35 @@
-//! (in work)
+//! The client letter: an assessment in, PDF bytes out.
+//!
+//! [`letter_view`] says what is printed, as plain words and whole numbers; a template (Typst markup
+//! with tags) says how it is set; [`Typesetter`] fills the template, lays out pages offline with the
+//! shipped fonts and writes PDF/UA-1 and PDF/A-2a. The same input gives the same bytes. Refuses
+//! characters that the fonts cannot set, undefined names, and values where no text can stand.
+//! Reads no file, clock or environment. Imports `measures`, `diag`, `num`.
+
+mod bars;
+mod build;
+mod chart;
+mod context;
+mod error;
+mod fonts;
+mod money;
+mod place;
+mod templates;
+mod texts;
+mod typeset;
+mod view;
+mod world;
+
+pub use bars::{BarPart, Bars};
+pub use build::letter_view;
+pub use chart::{Chart, Dot, Label, Run, Tick};
+pub use context::{LetterContext, LetterDelivery, Office, missing_labels};
+pub use error::StatementError;
+pub use money::Currency;
+pub use templates::TemplateSet;
+pub use texts::Texts;
+pub use typeset::{PAGE_LIMIT, Typeset, Typesetter, typeset};
+pub use view::{
+    Answer, Column, LetterView, Part, PartKind, Particular, Row, RowWeight, Section, Table,
+    TurnText,
+};

@@ -1,0 +1,359 @@
+//! The rows of `results.csv` and `turning_points.csv` from one household's results.
+//!
+//! Money has two decimals, rates four (0.6300 is 63%), hours no needless zeros. A cell is empty where the value does not
+//! exist: a participation rate without pay, a rate after the last row. Text that came from a list and that a spreadsheet
+//! would take for a formula gets an apostrophe in front.
+
+use crate::measures::{Assessment, BudgetLine, EarnerResult, Effect, Point, Turn, TurnKind};
+use crate::num::{Fraction, Hours, Money};
+use serde::{Deserialize, Serialize};
+
+/// Rows of a CSV table, already written out.
+#[derive(Clone, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
+pub struct Table {
+    /// The rows as text, each with its line end.
+    #[serde(with = "super::frame::bytes")]
+    pub bytes: Vec<u8>,
+    /// How many rows.
+    pub rows: u64,
+}
+
+impl Table {
+    /// Adds a row.
+    pub fn push(&mut self, cells: &[String]) {
+        for (place, cell) in cells.iter().enumerate() {
+            if place > 0 {
+                self.bytes.push(b',');
+            }
+            let quoted =
+                cell.contains([',', '"', '\n', '\r']) || (cells.len() == 1 && cell.is_empty());
+            if quoted {
+                self.bytes.push(b'"');
+                self.bytes.extend(cell.replace('"', "\"\"").bytes());
+                self.bytes.push(b'"');
+            } else {
+                self.bytes.extend(cell.bytes());
+            }
+        }
+        self.bytes.push(b'\n');
+        self.rows += 1;
+    }
+
+    /// A table of these rows.
+    pub fn from_rows(rows: impl IntoIterator<Item = Vec<String>>) -> Table {
+        let mut table = Table::default();
+        for row in rows {
+            table.push(&row);
+        }
+        table
+    }
+}
+
+/// Text for a cell: an apostrophe goes before what a spreadsheet would take for a formula.
+pub(super) fn text_cell(text: &str) -> String {
+    if text.starts_with(['=', '+', '-', '@', '\t', '\r']) {
+        format!("'{text}")
+    } else {
+        text.to_owned()
+    }
+}
+
+/// Which points of a line become rows.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
+pub enum GridRows {
+    /// Not in work, the job's own hours, the end of the named step.
+    Named,
+    /// Those and every other point of the grid.
+    All,
+}
+
+/// Column names of `results.csv` for a pack with these items.
+pub fn results_header(items: &[String]) -> Vec<String> {
+    let front = [
+        "household",
+        "earner",
+        "line",
+        "wage",
+        "point",
+        "hours",
+        "pay",
+    ];
+    let back = [
+        "take_home",
+        "net",
+        "after_costs",
+        "after_housing",
+        "ptr",
+        "ptr_after_costs",
+        "metr_here",
+        "metr_here_after_costs",
+        "metr_step",
+        "metr_step_after_costs",
+        "kept_of_next_hour",
+        "kept_of_next_hour_after_costs",
+        "replacement",
+    ];
+    front
+        .into_iter()
+        .map(str::to_owned)
+        .chain(items.iter().map(|item| format!("item:{item}")))
+        .chain(back.into_iter().map(str::to_owned))
+        .collect()
+}
+
+/// The rows of `results.csv` for one household: for each earner and line, not in work first, then by hours.
+/// `items` are the columns, in the order of [`results_header`]; an item that occurs several times is summed.
+pub fn results(assessment: &Assessment, items: &[String], grid: GridRows) -> Table {
+    let columns: Vec<Vec<usize>> = items
+        .iter()
+        .map(|name| {
+            (0..assessment.items.len())
+                .filter(|i| assessment.items[*i].name == *name)
+                .collect()
+        })
+        .collect();
+    let mut table = Table::default();
+    for earner in &assessment.earners {
+        for line in &earner.lines {
+            let rows = chosen(earner, line, grid);
+            for (place, (name, point)) in rows.iter().enumerate() {
+                let next = rows.get(place + 1).map(|(_, point)| *point);
+                let hour = line
+                    .grid
+                    .iter()
+                    .find(|other| other.hours == Hours(point.hours.0 + 100));
+                let mut cells = vec![
+                    assessment.reference.clone(),
+                    (earner.adult + 1).to_string(),
+                    line_name(line),
+                    wage(line.terms.wage),
+                    (*name).to_owned(),
+                    point.hours.plain(),
+                    point.pay.plain(),
+                ];
+                cells.extend(columns.iter().map(|places| {
+                    match places.as_slice() {
+                        [] => String::new(),
+                        places => places
+                            .iter()
+                            .map(|i| point.items[*i])
+                            .sum::<Money>()
+                            .plain(),
+                    }
+                }));
+                cells.extend([
+                    point.take_home.plain(),
+                    point.net.plain(),
+                    point.after_costs.plain(),
+                    point.after_housing.plain(),
+                    rate(point.ptr),
+                    rate(point.ptr_after_costs),
+                    rate(point.metr_here),
+                    rate(point.metr_here_after_costs),
+                    rate(step_rate(point, next, |p| p.net)),
+                    rate(step_rate(point, next, |p| p.after_costs)),
+                    money(hour.map(|next| next.net - point.net)),
+                    money(hour.map(|next| next.after_costs - point.after_costs)),
+                    rate(point.replacement),
+                ]);
+                table.push(&cells);
+            }
+        }
+    }
+    table
+}
+
+/// The points of a line that become rows, each with its word.
+fn chosen<'a>(
+    earner: &'a EarnerResult,
+    line: &'a BudgetLine,
+    grid: GridRows,
+) -> Vec<(&'static str, &'a Point)> {
+    let own = if line.terms.reference.is_empty() {
+        "today"
+    } else {
+        "offer"
+    };
+    let mut rows = vec![("not_in_work", &earner.not_in_work)];
+    for (place, point) in line.grid.iter().enumerate() {
+        let word = match grid {
+            _ if place == line.own => own,
+            _ if place == line.step_to => "step",
+            GridRows::All => "grid",
+            GridRows::Named => continue,
+        };
+        rows.push((word, point));
+    }
+    rows
+}
+
+/// 1 − ΔY/ΔE from one row to the next, from rounded sums; none where pay does not change.
+fn step_rate(from: &Point, to: Option<&Point>, sum: impl Fn(&Point) -> Money) -> Option<Fraction> {
+    let to = to?;
+    let pay = to.pay - from.pay;
+    if pay == Money::ZERO {
+        return None;
+    }
+    let kept = sum(to) - sum(from);
+    Some(Fraction::ONE - Fraction::new(i128::from(kept.0), i128::from(pay.0)))
+}
+
+/// Column names of `turning_points.csv`.
+pub fn turning_points_header() -> Vec<String> {
+    [
+        "household",
+        "earner",
+        "line",
+        "wage",
+        "kind",
+        "hours",
+        "until_hours",
+        "pay",
+        "net_before",
+        "net_after",
+        "size",
+        "after_costs_before",
+        "after_costs_after",
+        "metr_before",
+        "metr_after",
+        "causes",
+        "effects",
+    ]
+    .map(str::to_owned)
+    .to_vec()
+}
+
+/// The rows of `turning_points.csv` for one household: kinks, cliffs and passport changes of each line by hours, then its
+/// traps and no-gain stretches.
+pub fn turning_points(assessment: &Assessment) -> Table {
+    let mut table = Table::default();
+    for earner in &assessment.earners {
+        for line in &earner.lines {
+            let front = |kind: &str| {
+                vec![
+                    assessment.reference.clone(),
+                    (earner.adult + 1).to_string(),
+                    line_name(line),
+                    wage(line.terms.wage),
+                    kind.to_owned(),
+                ]
+            };
+            for turn in &line.turns {
+                let mut cells = front(turn_word(turn));
+                cells.extend(turn_cells(assessment, turn));
+                table.push(&cells);
+            }
+            for trap in &line.traps {
+                let mut cells = front("trap");
+                cells.extend([
+                    trap.from.decimal(2),
+                    trap.to.map(|to| to.decimal(2)).unwrap_or_default(),
+                    String::new(),
+                    trap.peak.plain(),
+                    (trap.peak - trap.depth).plain(),
+                    (-trap.depth).plain(),
+                ]);
+                cells.resize(turning_points_header().len(), String::new());
+                table.push(&cells);
+            }
+            for stretch in &line.no_gain {
+                let mut cells = front("no_gain");
+                cells.extend([stretch.from.decimal(2), stretch.to.decimal(2)]);
+                cells.resize(turning_points_header().len(), String::new());
+                table.push(&cells);
+            }
+        }
+    }
+    table
+}
+
+fn turn_word(turn: &Turn) -> &'static str {
+    match turn.kind {
+        TurnKind::Kink => "kink",
+        TurnKind::Cliff if turn.size < Money::ZERO => "cliff_down",
+        TurnKind::Cliff => "cliff_up",
+        TurnKind::CostStep => "cost_step",
+        TurnKind::Passport => "passport",
+    }
+}
+
+fn turn_cells(assessment: &Assessment, turn: &Turn) -> Vec<String> {
+    let causes: Vec<String> = turn
+        .causes
+        .iter()
+        .map(|cause| format!("{}: {}", cause.part, cause.line))
+        .collect();
+    let effects: Vec<String> = turn
+        .effects
+        .iter()
+        .map(|effect| effect_words(assessment, effect))
+        .collect();
+    vec![
+        turn.hours.plain(),
+        String::new(),
+        turn.pay.plain(),
+        turn.net_before.plain(),
+        turn.net_after.plain(),
+        turn.size.plain(),
+        turn.after_costs_before.plain(),
+        turn.after_costs_after.plain(),
+        rate(turn.metr_before),
+        rate(turn.metr_after),
+        text_cell(&causes.join("; ")),
+        text_cell(&effects.join("; ")),
+    ]
+}
+
+/// `income_tax of adult 1: jump -12.00, slope -0.2000`, with what is zero left out.
+fn effect_words(assessment: &Assessment, effect: &Effect) -> String {
+    use crate::measures::ItemKind;
+    let item = &assessment.items[effect.item];
+    let whose = match item.adult {
+        Some(adult) => format!("{} of adult {}", item.name, adult + 1),
+        None => item.name.clone(),
+    };
+    if item.kind == ItemKind::Passport {
+        let what = if effect.jump < Money::ZERO {
+            "lost"
+        } else {
+            "won"
+        };
+        return format!("{whose}: {what}");
+    }
+    let mut parts = Vec::new();
+    if effect.jump != Money::ZERO {
+        parts.push(format!("jump {}", effect.jump.plain()));
+    }
+    if !effect.slope.is_zero() {
+        parts.push(format!("slope {}", effect.slope.decimal(4)));
+    }
+    format!("{whose}: {}", parts.join(", "))
+}
+
+/// `today`, or the offer's reference.
+fn line_name(line: &BudgetLine) -> String {
+    if line.terms.reference.is_empty() {
+        "today".to_owned()
+    } else {
+        text_cell(&line.terms.reference)
+    }
+}
+
+/// A wage in ten-thousandths as text with two decimals, or more where it has them.
+pub(crate) fn wage(ten_thousandths: i64) -> String {
+    let text = Fraction::new(i128::from(ten_thousandths), 10_000).decimal(4);
+    let cut = text.strip_suffix("00").unwrap_or(&text);
+    cut.to_owned()
+}
+
+fn rate(value: Option<Fraction>) -> String {
+    value.map(|rate| rate.decimal(4)).unwrap_or_default()
+}
+
+fn money(value: Option<Money>) -> String {
+    value.map(Money::plain).unwrap_or_default()
+}
+
+#[cfg(test)]
+#[path = "tables_tests.rs"]
+mod tests;

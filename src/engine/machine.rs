@@ -1,0 +1,256 @@
+//! A program made ready to run: multipliers worked out once, fixed registers filled once, and for one
+//! household everything that does not vary with the earner's hours worked out once.
+
+use crate::index::Id;
+use crate::num::{Direction, Fraction, Hours, Money, divide_rounded, gcd};
+use crate::program::{Item, Manner, Op, Program, Scales, Table};
+
+/// A step with everything that can be known beforehand. Registers are positions.
+#[derive(Clone, Debug)]
+pub(super) enum Code {
+    Constant(i128),
+    Fact(usize),
+    Hours,
+    Add { a: usize, by_a: i128, b: usize, by_b: i128 },
+    Subtract { a: usize, by_a: i128, b: usize, by_b: i128 },
+    Multiply { a: usize, b: usize },
+    Times { a: usize, by: i128 },
+    Smaller { a: usize, by_a: i128, b: usize, by_b: i128 },
+    Larger { a: usize, by_a: i128, b: usize, by_b: i128 },
+    Choose { when: usize, then: usize, by_then: i128, otherwise: usize, by_otherwise: i128 },
+    /// The result is `units × unit` where units = a × numerator / denominator, rounded.
+    Round { a: usize, numerator: i128, denominator: i128, unit: i128, direction: Direction, manner: Manner },
+    /// The same for a quotient: units = a × numerator / (b × denominator).
+    Divide { a: usize, b: usize, numerator: i128, denominator: i128, unit: i128, direction: Direction },
+    AtLeast { a: usize, by_a: i128, b: usize, by_b: i128 },
+    Above { a: usize, by_a: i128, b: usize, by_b: i128 },
+    Same { a: usize, by_a: i128, b: usize, by_b: i128 },
+    Both { a: usize, b: usize },
+    Either { a: usize, b: usize },
+    Not { a: usize },
+    Lookup { table: Id<Table>, keys: Vec<usize>, scale: i128 },
+    Years { from: usize, to: usize },
+}
+
+/// A program ready to run for any household of its shape.
+#[derive(Clone, Debug)]
+pub struct Machine {
+    pub(super) program: Program,
+    /// With the law's roundings.
+    pub(super) exact: Vec<Code>,
+    /// For the walk. Only the varying steps are used.
+    pub(super) smooth: Vec<Code>,
+    /// Steps that vary with the earner's hours, in order.
+    pub(super) varying: Vec<usize>,
+    /// Steps that do not.
+    pub(super) steady: Vec<usize>,
+}
+
+fn code(program: &Program, at: usize, scale_of: impl Fn(Scales) -> i128) -> Code {
+    let step = &program.steps[Id::new(at)];
+    let scale = |reg: crate::program::Reg| scale_of(program.steps[reg].scale);
+    let own = scale_of(step.scale);
+    let p = |reg: crate::program::Reg| reg.position();
+    let pair = |a, b| {
+        let joint = scale(a) / gcd(scale(a), scale(b)) * scale(b);
+        (p(a), joint / scale(a), p(b), joint / scale(b))
+    };
+    match &step.op {
+        Op::Constant(value) => Code::Constant(value.numerator() * (own / value.denominator())),
+        Op::Fact(input) => Code::Fact(input.position()),
+        Op::Hours => Code::Hours,
+        Op::Add(a, b) => {
+            let (a, by_a, b, by_b) = pair(*a, *b);
+            Code::Add { a, by_a, b, by_b }
+        }
+        Op::Subtract(a, b) => {
+            let (a, by_a, b, by_b) = pair(*a, *b);
+            Code::Subtract { a, by_a, b, by_b }
+        }
+        Op::Multiply(a, b) => Code::Multiply { a: p(*a), b: p(*b) },
+        Op::Times(a, by) => Code::Times { a: p(*a), by: by.numerator() / gcd(by.numerator(), scale(*a)) },
+        Op::Smaller(a, b) => {
+            let (a, by_a, b, by_b) = pair(*a, *b);
+            Code::Smaller { a, by_a, b, by_b }
+        }
+        Op::Larger(a, b) => {
+            let (a, by_a, b, by_b) = pair(*a, *b);
+            Code::Larger { a, by_a, b, by_b }
+        }
+        Op::Choose { when, then, otherwise } => {
+            let (then, by_then, otherwise, by_otherwise) = pair(*then, *otherwise);
+            Code::Choose { when: p(*when), then, by_then, otherwise, by_otherwise }
+        }
+        Op::Round { of, unit, direction, manner } => {
+            let ratio = Fraction::new(unit.denominator(), scale(*of) * unit.numerator());
+            Code::Round {
+                a: p(*of),
+                numerator: ratio.numerator(),
+                denominator: ratio.denominator(),
+                unit: unit.numerator() * (own / unit.denominator()).max(1),
+                direction: *direction,
+                manner: *manner,
+            }
+        }
+        Op::Divide { of, by, unit, direction } => {
+            let ratio = Fraction::new(scale(*by) * unit.denominator(), scale(*of) * unit.numerator());
+            Code::Divide {
+                a: p(*of),
+                b: p(*by),
+                numerator: ratio.numerator(),
+                denominator: ratio.denominator(),
+                unit: unit.numerator(),
+                direction: *direction,
+            }
+        }
+        Op::AtLeast(a, b) => {
+            let (a, by_a, b, by_b) = pair(*a, *b);
+            Code::AtLeast { a, by_a, b, by_b }
+        }
+        Op::Above(a, b) => {
+            let (a, by_a, b, by_b) = pair(*a, *b);
+            Code::Above { a, by_a, b, by_b }
+        }
+        Op::Same(a, b) => {
+            let (a, by_a, b, by_b) = pair(*a, *b);
+            Code::Same { a, by_a, b, by_b }
+        }
+        Op::Both(a, b) => Code::Both { a: p(*a), b: p(*b) },
+        Op::Either(a, b) => Code::Either { a: p(*a), b: p(*b) },
+        Op::Not(a) => Code::Not { a: p(*a) },
+        Op::Lookup { table, keys } => Code::Lookup { table: *table, keys: keys.iter().map(|k| p(*k)).collect(), scale: own },
+        Op::Years { from, to } => Code::Years { from: p(*from), to: p(*to) },
+    }
+}
+
+impl Machine {
+    /// Makes a program ready.
+    pub fn new(program: Program) -> Machine {
+        let all = 0..program.steps.len();
+        let exact = all.clone().map(|at| code(&program, at, |s| s.exact)).collect();
+        let smooth = all.clone().map(|at| code(&program, at, |s| s.smooth)).collect();
+        let (varying, steady) = all.partition(|at| program.steps[Id::new(*at)].varies);
+        Machine { program, exact, smooth, varying, steady }
+    }
+
+    /// The program.
+    pub fn program(&self) -> &Program {
+        &self.program
+    }
+
+    /// Works out everything that does not vary for a household; `facts` holds one value an input of the program, in the units of
+    /// the list.
+    pub fn special(&self, facts: &[i64]) -> Special<'_> {
+        let mut values = vec![0i128; self.exact.len()];
+        for at in &self.steady {
+            values[*at] = self.run(*at, &values, facts, 0);
+        }
+        Special { machine: self, values }
+    }
+
+    /// One step with the law's roundings. `hours` are hundredths.
+    fn run(&self, at: usize, v: &[i128], facts: &[i64], hours: i128) -> i128 {
+        match &self.exact[at] {
+            Code::Constant(value) => *value,
+            Code::Fact(input) => i128::from(facts[*input]),
+            Code::Hours => hours,
+            Code::Add { a, by_a, b, by_b } => v[*a] * by_a + v[*b] * by_b,
+            Code::Subtract { a, by_a, b, by_b } => v[*a] * by_a - v[*b] * by_b,
+            Code::Multiply { a, b } => v[*a] * v[*b],
+            Code::Times { a, by } => v[*a] * by,
+            Code::Smaller { a, by_a, b, by_b } => (v[*a] * by_a).min(v[*b] * by_b),
+            Code::Larger { a, by_a, b, by_b } => (v[*a] * by_a).max(v[*b] * by_b),
+            Code::Choose { when, then, by_then, otherwise, by_otherwise } => {
+                if v[*when] != 0 { v[*then] * by_then } else { v[*otherwise] * by_otherwise }
+            }
+            Code::Round { a, numerator, denominator, unit, direction, .. } => divide_rounded(v[*a] * numerator, *denominator, *direction) * unit,
+            Code::Divide { a, b, numerator, denominator, unit, direction } => {
+                divide_rounded(v[*a] * numerator, (v[*b] * denominator).max(1), *direction) * unit
+            }
+            Code::AtLeast { a, by_a, b, by_b } => i128::from(v[*a] * by_a >= v[*b] * by_b),
+            Code::Above { a, by_a, b, by_b } => i128::from(v[*a] * by_a > v[*b] * by_b),
+            Code::Same { a, by_a, b, by_b } => i128::from(v[*a] * by_a == v[*b] * by_b),
+            Code::Both { a, b } => v[*a] & v[*b],
+            Code::Either { a, b } => v[*a] | v[*b],
+            Code::Not { a } => 1 - v[*a],
+            Code::Lookup { table, keys, scale } => {
+                let value = self.looked_up(*table, keys.iter().map(|k| v[*k]));
+                value.numerator() * (scale / value.denominator())
+            }
+            Code::Years { from, to } => full_years(v[*from], v[*to]),
+        }
+    }
+
+    /// A value of a table; a key outside takes the nearest end.
+    pub(super) fn looked_up(&self, table: Id<Table>, keys: impl Iterator<Item = i128>) -> Fraction {
+        let table = &self.program.tables[table];
+        let index = keys.zip(&table.keys).fold(0usize, |index, (key, (low, n))| {
+            let place = (key - i128::from(*low)).clamp(0, *n as i128 - 1);
+            index * n + usize::try_from(place).expect("a clamped key is a position")
+        });
+        table.values[index]
+    }
+}
+
+/// Full years from one day to another (days since 1970-01-01), at least zero. Somebody born on 29 February is a year older on 1 March.
+pub(super) fn full_years(from: i128, to: i128) -> i128 {
+    use chrono::{Datelike, NaiveDate};
+    let date = |days: i128| i32::try_from(days).ok().and_then(NaiveDate::from_epoch_days).unwrap_or_default();
+    let (from, to) = (date(from), date(to));
+    let years = to.year() - from.year() - i32::from((to.month(), to.day()) < (from.month(), from.day()));
+    i128::from(years.max(0))
+}
+
+/// A machine with one household's facts in it.
+pub struct Special<'m> {
+    pub(super) machine: &'m Machine,
+    /// Registers; those that vary hold nothing yet.
+    pub(super) values: Vec<i128>,
+}
+
+impl<'m> Special<'m> {
+    /// The program.
+    pub fn program(&self) -> &'m Program {
+        &self.machine.program
+    }
+
+    /// Works out all registers at these hours, with the law's roundings, in place.
+    pub(super) fn fill(&self, hours: Hours, values: &mut Vec<i128>) {
+        values.clone_from(&self.values);
+        for at in &self.machine.varying {
+            values[*at] = self.machine.run(*at, values, &[], i128::from(hours.0));
+        }
+    }
+
+    /// Amounts of all items at these hours, in minor units (a passport is 1 or 0), exact with the law's roundings.
+    pub fn at(&self, hours: Hours, values: &mut Vec<i128>) -> Vec<Money> {
+        self.fill(hours, values);
+        self.items(values)
+    }
+
+    pub(super) fn items(&self, values: &[i128]) -> Vec<Money> {
+        let program = &self.machine.program;
+        program.items.iter().map(|item| item_money(item, values[item.reg.position()], program.steps[item.reg].scale.exact)).collect()
+    }
+
+    /// Reasons to hold the household, at these hours.
+    pub fn holds(&self, hours: Hours) -> Vec<String> {
+        let mut values = Vec::new();
+        self.fill(hours, &mut values);
+        let program = &self.machine.program;
+        program.guards.iter().filter(|g| values[g.reg.position()] != 0).map(|g| g.because.clone()).collect()
+    }
+
+    /// Names of the notes that hold at these hours.
+    pub fn notes(&self, hours: Hours) -> Vec<String> {
+        let mut values = Vec::new();
+        self.fill(hours, &mut values);
+        let program = &self.machine.program;
+        program.notes.iter().filter(|n| values[n.reg.position()] != 0).map(|n| n.name.clone()).collect()
+    }
+}
+
+fn item_money(item: &Item, value: i128, scale: i128) -> Money {
+    let scaled = if item.kind == crate::program::ItemKind::Passport { value } else { value * 100 / scale };
+    Money(i64::try_from(scaled).expect("an item is bounded"))
+}

@@ -1,0 +1,125 @@
+//! What a household's results rest on: the facts and amounts that reached its items at given hours.
+//! Branches that were not taken do not count.
+
+use super::machine::Special;
+use crate::index::Id;
+use crate::num::Hours;
+use crate::program::{Amount, FactRef, Op, Reg};
+use std::collections::BTreeSet;
+
+/// Facts and amounts in use.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
+pub struct Used {
+    /// Facts, without the varied hours themselves.
+    pub facts: BTreeSet<(u32, u32, u32)>,
+    /// Amounts, by their position in the program.
+    pub amounts: BTreeSet<usize>,
+}
+
+impl Special<'_> {
+    /// Facts and amounts that reached the items at any of these hours.
+    pub fn used(&self, hours: &[Hours]) -> Used {
+        let program = self.program();
+        let mut reached = vec![false; program.steps.len()];
+        let mut values = Vec::new();
+        for at in hours {
+            self.fill(*at, &mut values);
+            let mut here = vec![false; program.steps.len()];
+            for item in &program.items {
+                here[item.reg.position()] = true;
+            }
+            for (reg, step) in program.steps.iter_with_id().collect::<Vec<_>>().into_iter().rev() {
+                if !here[reg.position()] {
+                    continue;
+                }
+                reached[reg.position()] = true;
+                let mut want = |r: &Reg| here[r.position()] = true;
+                match &step.op {
+                    Op::Constant(_) | Op::Fact(_) | Op::Hours => {}
+                    Op::Choose { when, then, otherwise } => {
+                        want(when);
+                        want(if values[when.position()] != 0 { then } else { otherwise });
+                    }
+                    // Nothing times something rests on the nothing alone.
+                    Op::Multiply(a, b) if values[a.position()] == 0 && values[b.position()] != 0 => want(a),
+                    Op::Multiply(a, b) if values[b.position()] == 0 && values[a.position()] != 0 => want(b),
+                    Op::Both(a, b) if values[a.position()] == 0 => {
+                        let _ = b;
+                        want(a);
+                    }
+                    Op::Either(a, b) if values[a.position()] != 0 => {
+                        let _ = b;
+                        want(a);
+                    }
+                    Op::Add(a, b)
+                    | Op::Subtract(a, b)
+                    | Op::Multiply(a, b)
+                    | Op::Smaller(a, b)
+                    | Op::Larger(a, b)
+                    | Op::AtLeast(a, b)
+                    | Op::Above(a, b)
+                    | Op::Same(a, b)
+                    | Op::Both(a, b)
+                    | Op::Either(a, b)
+                    | Op::Years { from: a, to: b }
+                    | Op::Divide { of: a, by: b, .. } => {
+                        want(a);
+                        want(b);
+                    }
+                    Op::Times(a, _) | Op::Round { of: a, .. } | Op::Not(a) => want(a),
+                    Op::Lookup { keys, .. } => keys.iter().for_each(want),
+                }
+            }
+        }
+        let mut used = Used::default();
+        let mut lines = BTreeSet::new();
+        for (reg, step) in program.steps.iter_with_id() {
+            if !reached[reg.position()] {
+                continue;
+            }
+            if let Op::Fact(input) = &step.op {
+                let FactRef { kind, instance, fact } = program.inputs[*input].fact;
+                used.facts.insert((kind, instance, fact));
+            }
+            lines.extend(step.line.map(Id::position));
+        }
+        // An amount that was folded into another constant counts where its line does.
+        let read: BTreeSet<usize> = program.steps.iter().flat_map(|s| constants_of(&s.op)).map(Id::position).collect();
+        for at in lines {
+            let line = &program.lines[Id::new(at)];
+            for amount in &line.amounts {
+                let name = &program.amounts[*amount].name;
+                let reg = line.inputs.iter().find(|(n, _)| n == name).map(|(_, reg)| reg.position());
+                if reg.is_none_or(|r| reached[r] || !read.contains(&r)) {
+                    used.amounts.insert(amount.position());
+                }
+            }
+        }
+        used
+    }
+
+    /// The amount at a position.
+    pub fn amount(&self, at: usize) -> &Amount {
+        &self.program().amounts[Id::new(at)]
+    }
+}
+
+fn constants_of(op: &Op) -> Vec<Reg> {
+    match op {
+        Op::Constant(_) | Op::Fact(_) | Op::Hours | Op::Lookup { .. } => Vec::new(),
+        Op::Add(a, b)
+        | Op::Subtract(a, b)
+        | Op::Multiply(a, b)
+        | Op::Smaller(a, b)
+        | Op::Larger(a, b)
+        | Op::AtLeast(a, b)
+        | Op::Above(a, b)
+        | Op::Same(a, b)
+        | Op::Both(a, b)
+        | Op::Either(a, b)
+        | Op::Years { from: a, to: b }
+        | Op::Divide { of: a, by: b, .. } => vec![*a, *b],
+        Op::Times(a, _) | Op::Round { of: a, .. } | Op::Not(a) => vec![*a],
+        Op::Choose { when, then, otherwise } => vec![*when, *then, *otherwise],
+    }
+}

@@ -1,0 +1,162 @@
+//! The working of a point: every figure and item as a line, in the order of the law.
+
+use super::machine::Special;
+use crate::num::{Fraction, Hours};
+use crate::program::{Line, Op, Program, Reg};
+use std::collections::BTreeSet;
+
+/// One line of a working.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Worked {
+    /// Title of the instrument.
+    pub part: String,
+    /// Name of the figure or item.
+    pub name: String,
+    /// Kind that it is worked out per (its position in the schema), and the record.
+    pub of: (usize, usize),
+    /// The exact value.
+    pub exact: Fraction,
+    /// The value as text with its unit.
+    pub value: String,
+    /// Where its rule stands in the pack's text.
+    pub span: crate::source::Span,
+    /// The values that went in, `name = value`.
+    pub inputs: Vec<String>,
+    /// Law reference; may be empty for a figure.
+    pub law: String,
+    /// Positions of the amounts that went in, among the program's.
+    pub amounts: Vec<usize>,
+}
+
+/// All lines that the items need, at these hours.
+pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
+    let mut values = Vec::new();
+    special.fill(hours, &mut values);
+    let program = special.program();
+    let needed = needed(program);
+    let mut lines: Vec<&Line> = program.lines.iter_with_id().filter(|(id, _)| needed.contains(&id.position())).map(|(_, l)| l).collect();
+    lines.sort_by_key(|l| (l.order, l.instance));
+    let exact = |reg: Reg| Fraction::new(values[reg.position()], program.steps[reg].scale.exact);
+    lines
+        .iter()
+        .filter_map(|line| {
+            let reg = line.reg?;
+            Some(Worked {
+                part: line.part.clone(),
+                name: line.name.clone(),
+                of: (line.kind as usize, line.instance as usize),
+                exact: exact(reg),
+                value: shown(exact(reg), &line.unit, &line.words),
+                span: line.span,
+                inputs: line.inputs.iter().map(|(name, reg)| format!("{name} = {}", bare(exact(*reg), unit_of(program, *reg)))).collect(),
+                law: line.law.clone(),
+                amounts: line.amounts.iter().map(|a| a.position()).collect(),
+            })
+        })
+        .collect()
+}
+
+/// Lines whose registers the items depend on.
+fn needed(program: &Program) -> BTreeSet<usize> {
+    let mut wanted = vec![false; program.steps.len()];
+    for item in &program.items {
+        wanted[item.reg.position()] = true;
+        if let Some(reg) = program.lines[item.line].reg {
+            wanted[reg.position()] = true;
+        }
+    }
+    let mut lines = BTreeSet::new();
+    for (reg, step) in program.steps.iter_with_id().collect::<Vec<_>>().into_iter().rev() {
+        if !wanted[reg.position()] {
+            continue;
+        }
+        if let Some(line) = step.line {
+            lines.insert(line.position());
+        }
+        let mut want = |r: &Reg| wanted[r.position()] = true;
+        match &step.op {
+            Op::Constant(_) | Op::Fact(_) | Op::Hours => {}
+            Op::Add(a, b)
+            | Op::Subtract(a, b)
+            | Op::Multiply(a, b)
+            | Op::Smaller(a, b)
+            | Op::Larger(a, b)
+            | Op::AtLeast(a, b)
+            | Op::Above(a, b)
+            | Op::Same(a, b)
+            | Op::Both(a, b)
+            | Op::Either(a, b)
+            | Op::Years { from: a, to: b }
+            | Op::Divide { of: a, by: b, .. } => {
+                want(a);
+                want(b);
+            }
+            Op::Times(a, _) | Op::Round { of: a, .. } | Op::Not(a) => want(a),
+            Op::Choose { when, then, otherwise } => {
+                want(when);
+                want(then);
+                want(otherwise);
+            }
+            Op::Lookup { keys, .. } => keys.iter().for_each(want),
+        }
+    }
+    // A line whose register was folded into a constant or is another line's belongs to nobody's steps; it is needed where a
+    // needed line names it.
+    loop {
+        let named: BTreeSet<usize> = program
+            .lines
+            .iter_with_id()
+            .filter(|(id, _)| lines.contains(&id.position()))
+            .flat_map(|(_, line)| line.inputs.iter())
+            .flat_map(|(name, reg)| {
+                let plain = name.trim_end_matches(" of partner");
+                program
+                    .lines
+                    .iter_with_id()
+                    .filter(move |(_, l)| l.reg == Some(*reg) && l.name == plain)
+                    .map(|(id, _)| id.position())
+            })
+            .collect();
+        let before = lines.len();
+        lines.extend(named);
+        lines.extend(program.items.iter().map(|i| i.line.position()));
+        if lines.len() == before {
+            return lines;
+        }
+    }
+}
+
+/// The unit of a register that is some line's.
+fn unit_of(program: &Program, reg: Reg) -> (&str, &[String]) {
+    program.lines.iter().find(|l| l.reg == Some(reg)).map_or(("", &[]), |l| (l.unit.as_str(), l.words.as_slice()))
+}
+
+fn bare(value: Fraction, (unit, words): (&str, &[String])) -> String {
+    shown(value, unit, words)
+}
+
+/// A value with its unit: `1,048.00 a month` is written `1048.00 a month`.
+fn shown(value: Fraction, unit: &str, words: &[String]) -> String {
+    if !words.is_empty() {
+        return usize::try_from(value.floor()).ok().and_then(|at| words.get(at)).cloned().unwrap_or_default();
+    }
+    let trimmed = |places: u32| {
+        let text = value.decimal(places);
+        if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.').to_owned() } else { text }
+    };
+    match unit {
+        "yesno" => if value.is_zero() { "no" } else { "yes" }.to_owned(),
+        "rate" => {
+            let percent = value * Fraction::whole(100);
+            let text = percent.decimal(4);
+            format!("{}%", text.trim_end_matches('0').trim_end_matches('.'))
+        }
+        "hours" => format!("{} hours", trimmed(4)),
+        "money" => value.decimal(2),
+        _ if unit.starts_with("money") => {
+            let exact_pennies = (value * Fraction::whole(100)).denominator() == 1;
+            format!("{} {}", value.decimal(if exact_pennies { 2 } else { 6 }), &unit[6..])
+        }
+        _ => trimmed(6),
+    }
+}

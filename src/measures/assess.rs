@@ -1,0 +1,282 @@
+//! A household to its assessment.
+
+use super::line::{Asked, Worked, work_out};
+use super::points::{Sums, Totals, point};
+use super::split::{holding, quarter_hours, rise, target};
+use super::types::{AmountUse, Assessment, EarnerResult, FactUse, ItemInfo, JobTerms, OfferMeasures, WorkingLine};
+use crate::case::{ADULT, Household, JOB, Known, Schema};
+use crate::engine::{JobChoice, Machine, Setting, Special, Used, fact_text, working};
+use crate::num::{Hours, Money};
+use crate::program::Shape;
+use std::collections::BTreeMap;
+use std::sync::Arc;
+
+/// Where machines for shapes come from; whoever has the pack keeps those already made.
+pub trait Programs {
+    /// The machine for a shape.
+    ///
+    /// # Errors
+    /// Where the pack cannot make it, in words.
+    fn machine(&mut self, shape: &Shape) -> Result<Arc<Machine>, String>;
+}
+
+/// What is asked of every household of a list.
+#[derive(Clone, Debug)]
+pub struct Request {
+    /// Last hours of the grid; it starts at 0 and is widened to contain every offer.
+    pub grid_to: Hours,
+    /// Step of the grid.
+    pub grid_step: Hours,
+    /// How many hours more the named step of today's line goes.
+    pub more: Hours,
+}
+
+impl Default for Request {
+    fn default() -> Self {
+        Request { grid_to: Hours::whole(48), grid_step: Hours::whole(1), more: Hours::whole(4) }
+    }
+}
+
+/// What becomes of a household.
+#[derive(Clone, Debug)]
+pub enum Verdict {
+    /// The pack does not cover it; each reason is a sentence.
+    Held(Vec<String>),
+    /// Worked out.
+    Assessed(Box<Assessment>),
+}
+
+/// Works a household out. `target` is a net sum a period that the household must have.
+///
+/// # Errors
+/// Where the pack cannot make a program for the household's shape.
+pub fn assess(
+    household: &Household,
+    schema: &Schema,
+    programs: &mut dyn Programs,
+    request: &Request,
+    wanted: Option<Money>,
+) -> Result<Verdict, String> {
+    let mut reasons: Vec<String> = Vec::new();
+    let mut notes: Vec<String> = Vec::new();
+    let mut earners = Vec::new();
+    let mut items = Vec::new();
+    let mut gathered = Gathered::default();
+    for adult in 0..household.instances[ADULT].len() {
+        let Some(setting) = Setting::new(household, adult, JobChoice::Today) else { continue };
+        let machine = programs.machine(&setting.shape)?;
+        let program = machine.program();
+        let special = machine.special(&setting.facts(program));
+        let today = setting.own_hours();
+        for reason in special.holds(today) {
+            if !reasons.contains(&reason) {
+                reasons.push(reason);
+            }
+        }
+        for note in special.notes(today) {
+            if !notes.contains(&note) {
+                notes.push(note);
+            }
+        }
+        if items.is_empty() {
+            items = item_infos(&special);
+            gathered.add(&special, &special.used(&[Hours(0), today]), household, schema);
+        }
+        if let Some(result) = earner(household, schema, &machine, &special, &setting, request, wanted, &mut gathered) {
+            earners.push(result);
+        }
+    }
+    if !reasons.is_empty() {
+        return Ok(Verdict::Held(reasons));
+    }
+    let (facts, amounts) = gathered.finish(household, schema);
+    Ok(Verdict::Assessed(Box::new(Assessment { reference: household.reference.clone(), items, earners, notes, facts, amounts })))
+}
+
+fn item_infos(special: &Special<'_>) -> Vec<ItemInfo> {
+    let program = special.program();
+    program
+        .items
+        .iter()
+        .map(|item| {
+            let line = &program.lines[item.line];
+            ItemInfo {
+                name: line.name.clone(),
+                kind: item.kind,
+                adult: item.adult.map(|a| a as usize),
+                law: line.law.clone(),
+                part: line.part.clone(),
+            }
+        })
+        .collect()
+}
+
+/// Hours of the grid: from 0 by the step, with every named number of hours in it.
+fn grid(request: &Request, up_to: Hours, named: &[Hours]) -> Vec<Hours> {
+    let mut hours: Vec<Hours> = (0..).map(|n| Hours(n * request.grid_step.0.max(1))).take_while(|h| *h <= up_to).collect();
+    hours.extend(named);
+    hours.push(up_to);
+    hours.sort_unstable();
+    hours.dedup();
+    hours
+}
+
+#[expect(clippy::too_many_arguments, reason = "the parts of one household that its earners share")]
+fn earner(
+    household: &Household,
+    schema: &Schema,
+    machine: &Machine,
+    special: &Special<'_>,
+    setting: &Setting<'_>,
+    request: &Request,
+    wanted: Option<Money>,
+    gathered: &mut Gathered,
+) -> Option<EarnerResult> {
+    let adult = setting.shape.earner as usize;
+    let offers: Vec<usize> = (0..household.offers.len()).filter(|o| household.offers[*o].owner == adult).collect();
+    let today = setting.own_hours();
+    let has_job = today.0 > 0 && setting.wage() > 0;
+    if !has_job && offers.is_empty() {
+        return None;
+    }
+    let sums = Sums::new(special, setting.shape.earner);
+    // Y(0): all jobs of the earner ended.
+    let further = household.instances[JOB].iter().filter(|job| job.owner == adult).count() > 1;
+    let mut values = Vec::new();
+    let zero_items = if further {
+        machine.special(&setting.clone().without_further_jobs().facts(machine.program())).at(Hours(0), &mut values)
+    } else {
+        special.at(Hours(0), &mut values)
+    };
+    let at_zero: Totals = sums.totals(&zero_items);
+    let not_in_work = point(&sums, Hours(0), zero_items, &at_zero, None);
+    let offered = offers.iter().map(|o| Hours(household.offers[*o].values[0]));
+    let named: Vec<Hours> = offered.chain([today, Hours(today.0 + request.more.0)]).map(|h| Hours(h.0.min(16_800))).collect();
+    let widest = named.iter().copied().max().unwrap_or_default();
+    let up_to = request.grid_to.max(Hours(widest.0.div_euclid(100) * 100 + if widest.0 % 100 == 0 { 0 } else { 100 }));
+    let hours = grid(request, up_to, &named);
+    let mut lines: Vec<Worked> = Vec::new();
+    let mut target_hours = None;
+    if has_job {
+        let terms = JobTerms { offer: String::new(), reference: String::new(), wage: setting.wage(), hours: today };
+        let step_to = Hours((today.0 + request.more.0).min(16_800));
+        lines.push(work_out(special, setting, Asked { terms, grid: &hours, step_to, up_to, at_zero: &at_zero }));
+        gathered.add(special, &special.used(&[Hours(0), today, step_to]), household, schema);
+        target_hours = wanted.map(|sum| target(&quarter_hours(special, &sums, up_to), sum));
+    }
+    let mut measures = Vec::new();
+    for offer in offers {
+        let Some(other) = Setting::new(household, adult, JobChoice::Offer(offer)) else { continue };
+        let special = machine.special(&other.facts(machine.program()));
+        let record = &household.offers[offer];
+        let own = other.own_hours();
+        let terms = JobTerms { offer: record.label.clone(), reference: record.reference.clone(), wage: other.wage(), hours: own };
+        let worked = work_out(&special, &other, Asked { terms, grid: &hours, step_to: own, up_to, at_zero: &at_zero });
+        gathered.add(&special, &special.used(&[own]), household, schema);
+        let quarters = quarter_hours(&special, &sums, up_to);
+        if target_hours.is_none() {
+            target_hours = wanted.map(|sum| target(&quarters, sum));
+        }
+        let today_net = lines.first().filter(|_| has_job).map_or(not_in_work.net, |line| line.line.grid[line.line.own].net);
+        let split = if has_job { lines.first().and_then(|old| rise(old, &worked, today)) } else { None };
+        measures.push(OfferMeasures { line: lines.len(), holding: holding(&quarters, today_net), rise: split });
+        lines.push(worked);
+    }
+    Some(EarnerResult {
+        adult,
+        name: household.instances[ADULT][adult].label.clone(),
+        not_in_work,
+        has_job,
+        lines: lines.into_iter().map(|w| w.line).collect(),
+        offers: measures,
+        target: target_hours,
+    })
+}
+
+/// Facts and amounts of all programs of a household.
+#[derive(Default)]
+struct Gathered {
+    facts: std::collections::BTreeSet<(u32, u32, u32)>,
+    amounts: BTreeMap<String, AmountUse>,
+}
+
+impl Gathered {
+    fn add(&mut self, special: &Special<'_>, used: &Used, _household: &Household, _schema: &Schema) {
+        self.facts.extend(used.facts.iter().copied());
+        for at in &used.amounts {
+            let amount = special.amount(*at);
+            self.amounts.entry(amount.name.clone()).or_insert_with(|| AmountUse {
+                name: amount.name.clone(),
+                value: amount.value.clone(),
+                from: amount.from.clone(),
+                to: amount.to.clone(),
+                source: amount.source.clone(),
+                locator: amount.locator.clone(),
+                confirmed: amount.confirmed,
+                changed_because: amount.changed_because.clone(),
+            });
+        }
+    }
+
+    fn finish(self, household: &Household, schema: &Schema) -> (Vec<FactUse>, Vec<AmountUse>) {
+        let mut places = self.facts;
+        // Hours of the main jobs vary, so no program reads them as facts; the statement rests on them all the same.
+        for (at, job) in household.instances[JOB].iter().enumerate() {
+            if job.values[0] > 0 {
+                places.extend([(JOB as u32, at as u32, 0), (JOB as u32, at as u32, 1)]);
+            }
+        }
+        let facts = places
+            .into_iter()
+            .filter_map(|(kind, instance, fact)| {
+                let (kind, instance, fact) = (kind as usize, instance as usize, fact as usize);
+                let record = household.instances.get(kind)?.get(instance)?;
+                // A blank job stands for none.
+                if kind == JOB && record.values[0] == 0 {
+                    return None;
+                }
+                let spec = &schema.kinds[kind].facts[fact];
+                let owner = if kind == JOB { household.instances[ADULT].get(record.owner) } else { Some(record) };
+                let of = owner.map_or("", |r| if r.label.is_empty() { r.reference.as_str() } else { r.label.as_str() });
+                Some(FactUse {
+                    kind: schema.kinds[kind].name.clone(),
+                    of: if kind == crate::case::HOUSEHOLD { String::new() } else { of.to_owned() },
+                    name: spec.name.clone(),
+                    value: fact_text(&spec.ty, record.values[fact]),
+                    known: match record.known[fact] {
+                        Known::Seen => 's',
+                        Known::Told => 't',
+                        Known::Assumed => 'a',
+                    },
+                })
+            })
+            .collect();
+        (facts, self.amounts.into_values().collect())
+    }
+}
+
+/// The working of one point of one earner: every figure and item in the order of the law. `rule` gives the text of a rule by its span.
+///
+/// # Errors
+/// Where there is no such adult or offer, or the pack cannot make a program.
+pub fn working_at(
+    household: &Household,
+    schema: &Schema,
+    programs: &mut dyn Programs,
+    adult: usize,
+    choice: JobChoice,
+    hours: Hours,
+    rule: &dyn Fn(crate::source::Span) -> String,
+) -> Result<Vec<WorkingLine>, String> {
+    let setting = Setting::new(household, adult, choice).ok_or_else(|| "there is no such adult or offer".to_owned())?;
+    let machine = programs.machine(&setting.shape)?;
+    let special = machine.special(&setting.facts(machine.program()));
+    Ok(working(&special, hours)
+        .into_iter()
+        .map(|line| {
+            let (kind, instance) = line.of;
+            let of = if kind == crate::case::HOUSEHOLD { String::new() } else { format!("{} {}", schema.kinds[kind].name, instance + 1) };
+            WorkingLine { part: line.part, name: line.name, of, value: line.value, formula: rule(line.span), inputs: line.inputs, law: line.law }
+        })
+        .collect())
+}

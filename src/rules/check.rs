@@ -1,0 +1,590 @@
+//! Looks up the names of one expression and works out its type.
+
+use super::ast::{BinaryOp, CompareOp, Expr, ExprKind, Ident};
+use super::declare::kinds_of_word;
+use super::pack::{ADULT, Pack};
+use super::tree::{Node, Over, Target, What};
+use super::types::{Period, Ty};
+use crate::diag::{Diagnostic, nearest};
+use crate::num::{Direction, Fraction};
+use crate::program::Manner;
+use crate::source::Span;
+use std::collections::HashMap;
+
+/// Every figure, item and fact by kind and name.
+pub(super) struct Names {
+    by_kind: Vec<HashMap<String, (Target, Ty)>>,
+    amounts: HashMap<String, usize>,
+}
+
+impl Names {
+    pub(super) fn new(pack: &Pack) -> Names {
+        let mut by_kind: Vec<HashMap<String, (Target, Ty)>> = vec![HashMap::new(); pack.kinds.len()];
+        for (kind, decl) in pack.kinds.iter().enumerate() {
+            for (fact, f) in decl.facts.iter().enumerate() {
+                by_kind[kind].insert(f.name.clone(), (Target::Fact { kind, fact }, f.ty));
+            }
+        }
+        for (at, definition) in pack.definitions.iter().enumerate() {
+            by_kind[definition.kind].insert(definition.name.clone(), (Target::Figure(at), definition.ty));
+        }
+        let amounts = pack.amounts.iter().enumerate().map(|(at, a)| (a.name.clone(), at)).collect();
+        Names { by_kind, amounts }
+    }
+}
+
+pub(super) struct Context<'a> {
+    pack: &'a Pack,
+    names: &'a Names,
+    /// Kinds of the records at hand, the innermost last.
+    scopes: Vec<usize>,
+    dated: Option<usize>,
+}
+
+type Faults = Vec<Diagnostic>;
+
+impl<'a> Context<'a> {
+    pub(super) fn new(pack: &'a Pack, names: &'a Names, kind: usize, dated: Option<usize>) -> Self {
+        Context { pack, names, scopes: vec![kind], dated }
+    }
+
+    /// The checked tree of an expression that must have a type.
+    pub(super) fn wanted(&mut self, expr: &Expr, ty: Ty, faults: &mut Faults) -> Option<Node> {
+        let node = self.node(expr, Some(ty), faults)?;
+        if node.ty.fits(ty) || (node.is_zero() && ty.is_quantity()) {
+            Some(Node { ty, ..node })
+        } else {
+            let mut fault = Diagnostic::fault(expr.span, format!("this is {}", self.shown(node.ty))).expected(self.shown(ty));
+            if let (Ty::Money(Some(from)), Ty::Money(Some(to))) = (node.ty, ty) {
+                fault = self.conversion_hint(fault, from, to);
+            }
+            faults.push(fault);
+            None
+        }
+    }
+
+    fn conversion_hint(&self, fault: Diagnostic, from: Period, to: Period) -> Diagnostic {
+        match self.pack.conversions.iter().find(|c| c.from == from && c.to == to) {
+            Some(conversion) => fault.hint(format!("write `converted by {}`", conversion.name)),
+            None => fault.hint(format!("declare a `conversion` from {} to {}", from.word(), to.word())),
+        }
+    }
+
+    fn shown(&self, ty: Ty) -> String {
+        match ty {
+            Ty::Choice(at) => format!("the choice `{}`", self.pack.choices[at].name),
+            other => format!("{other}"),
+        }
+    }
+
+    fn node(&mut self, expr: &Expr, hint: Option<Ty>, faults: &mut Faults) -> Option<Node> {
+        let span = expr.span;
+        let make = |ty, what| Some(Node { ty, span, what });
+        match &expr.kind {
+            ExprKind::Number(value) => {
+                let ty = if value.denominator() == 1 { Ty::Count } else { Ty::Number };
+                make(ty, What::Fixed(*value))
+            }
+            ExprKind::Percent(value) => make(Ty::Rate, What::Fixed(*value)),
+            ExprKind::HoursLiteral(value) => make(Ty::Hours, What::Fixed(*value)),
+            ExprKind::Money(value, period) => {
+                let period = match period {
+                    None => None,
+                    Some(word) => match Period::from_word(&word.text) {
+                        Some(found) => Some(found),
+                        None => {
+                            faults.push(
+                                Diagnostic::fault(word.span, format!("`{}` is not a period", word.text))
+                                    .expected(format!("one of {}", Period::WORDS.join(", "))),
+                            );
+                            return None;
+                        }
+                    },
+                };
+                make(Ty::Money(period), What::Fixed(*value))
+            }
+            ExprKind::Day(day) => make(Ty::Date, What::Fixed(Fraction::whole(i128::from(*day)))),
+            ExprKind::YesNo(value) => make(Ty::YesNo, What::Fixed(Fraction::whole(i128::from(*value)))),
+            ExprKind::Name(name) => self.name(name, hint, faults),
+            ExprKind::Of { name, whose, failing } => self.of(name, whose, failing.as_deref(), span, faults),
+            ExprKind::Lookup { table, keys } => self.lookup(table, keys, span, faults),
+            ExprKind::Where { when, give, otherwise } => {
+                let when = self.wanted(when, Ty::YesNo, faults);
+                let (give, otherwise, ty) = self.joined(give, otherwise, hint, faults)?;
+                make(ty, What::Where { when: Box::new(when?), give: Box::new(give), otherwise: Box::new(otherwise) })
+            }
+            ExprKind::Extreme { larger, list } => {
+                let nodes: Vec<Option<Node>> = list.iter().map(|e| self.node(e, hint, faults)).collect();
+                let nodes: Vec<Node> = nodes.into_iter().collect::<Option<_>>()?;
+                let first = nodes.iter().find(|n| !n.is_zero()).map_or(Ty::Count, |n| n.ty);
+                let mut ty = first;
+                for node in &nodes {
+                    match ty.join(node.ty) {
+                        Some(joint) if joint.is_quantity() => ty = joint,
+                        _ if node.is_zero() && ty.is_quantity() => {}
+                        _ => {
+                            faults.push(self.mismatch(node, ty));
+                            return None;
+                        }
+                    }
+                }
+                make(ty, What::Extreme { larger: *larger, list: nodes })
+            }
+            ExprKind::SumOver { kind, with, body } => {
+                let over = self.over(kind, with.as_deref(), Some((body, None)), None, faults)?;
+                let ty = over[0].body.as_ref().map_or(Ty::Number, |b| b.ty);
+                if !ty.is_quantity() {
+                    faults.push(Diagnostic::fault(body.span, format!("this is {}", self.shown(ty))).expected("something that can be added"));
+                    return None;
+                }
+                make(ty, What::Sum(over))
+            }
+            ExprKind::CountOf { kind, with } => {
+                let over = self.over(kind, with.as_deref(), None, None, faults)?;
+                make(Ty::Count, What::Count(over))
+            }
+            ExprKind::AnyEvery { every, kind, with } => {
+                let over = self.over(kind, Some(with), None, None, faults)?;
+                make(Ty::YesNo, What::Any { every: *every, over })
+            }
+            ExprKind::First { kind, by, down, with, give, failing } => {
+                let over = self.over(kind, with.as_deref(), Some((give, hint)), Some(by), faults);
+                let failing = self.node(failing, hint, faults);
+                let (mut over, failing) = (over?, failing?);
+                let only = self.one_kind(kind, &mut over, faults)?;
+                let ty = only.body.as_ref().map_or(Ty::Number, |b| b.ty);
+                let failing = self.fit(failing, ty, faults)?;
+                make(ty, What::First { down: *down, over: Box::new(only), failing: Box::new(failing) })
+            }
+            ExprKind::Place { by, down, with } => {
+                let here = *self.scopes.last()?;
+                let kind = Ident { text: self.pack.kinds[here].name.clone(), span: by.span };
+                let mut over = self.over(&kind, with.as_deref(), None, Some(by), faults)?;
+                let only = self.one_kind(&kind, &mut over, faults)?;
+                make(Ty::Count, What::Place { down: *down, over: Box::new(only) })
+            }
+            ExprKind::Years { from, to } => {
+                let (from, to) = (self.wanted(from, Ty::Date, faults), self.wanted(to, Ty::Date, faults));
+                make(Ty::Count, What::Years { from: Box::new(from?), to: Box::new(to?) })
+            }
+            ExprKind::Missing(name) => match self.names.amounts.get(&name.text) {
+                Some(amount) => make(Ty::YesNo, What::Missing { amount: *amount, dated: self.picked(span, faults)? }),
+                None => {
+                    let near = nearest(&name.text, self.names.amounts.keys().map(String::as_str));
+                    let fault = Diagnostic::fault(name.span, format!("`{}` is not an amount", name.text)).expected("a name of `amounts.csv`");
+                    faults.push(with_near(fault, near));
+                    None
+                }
+            },
+            ExprKind::Binary { op, left, right } => self.binary(*op, left, right, span, faults),
+            ExprKind::Round { of, direction, unit, manner } => {
+                if let ExprKind::Binary { op: BinaryOp::Divide, left, right } = &of.kind {
+                    let (left, right) = (self.node(left, None, faults)?, self.node(right, None, faults)?);
+                    if !right.is_fixed() {
+                        return self.divide_rounded(left, right, (*direction, *unit, *manner), span, faults);
+                    }
+                }
+                let of = self.node(of, hint, faults)?;
+                if !of.ty.is_quantity() {
+                    faults.push(Diagnostic::fault(of.span, format!("this is {}", self.shown(of.ty))).expected("a quantity to round"));
+                    return None;
+                }
+                let whole = unit.denominator() == 1 && of.ty.is_scalar() && of.ty != Ty::Rate;
+                let ty = if whole { Ty::Count } else { of.ty };
+                make(ty, What::Round { of: Box::new(of), direction: *direction, unit: *unit, manner: *manner })
+            }
+            ExprKind::Convert { of, by } => {
+                let of = self.node(of, None, faults)?;
+                let Some(at) = self.pack.conversions.iter().position(|c| c.name == by.text) else {
+                    let near = nearest(&by.text, self.pack.conversions.iter().map(|c| c.name.as_str()));
+                    faults.push(with_near(Diagnostic::fault(by.span, format!("`{}` is not a conversion", by.text)).expected("the name of a `conversion`"), near));
+                    return None;
+                };
+                let conversion = &self.pack.conversions[at];
+                if of.ty != Ty::Money(Some(conversion.from)) {
+                    faults.push(
+                        Diagnostic::fault(of.span, format!("this is {}", self.shown(of.ty))).expected(format!("{}", Ty::Money(Some(conversion.from)))),
+                    );
+                    return None;
+                }
+                make(Ty::Money(Some(conversion.to)), What::Convert { of: Box::new(of), conversion: at })
+            }
+            ExprKind::Charge { of, by } => {
+                let of = self.node(of, None, faults)?;
+                let Some(at) = self.pack.bands.iter().position(|b| b.name == by.text) else {
+                    let near = nearest(&by.text, self.pack.bands.iter().map(|b| b.name.as_str()));
+                    faults.push(with_near(Diagnostic::fault(by.span, format!("`{}` are not bands", by.text)).expected("the name of `bands`"), near));
+                    return None;
+                };
+                let (ty, kind) = (self.pack.bands[at].ty, self.pack.bands[at].kind);
+                let of = self.fit(of, ty, faults)?;
+                self.reaches(kind, by, faults)?;
+                make(ty, What::Charge { of: Box::new(of), bands: at })
+            }
+            ExprKind::PlaceOn { of, on } => {
+                let of = self.node(of, None, faults)?;
+                let Some(at) = self.pack.scales.iter().position(|s| s.name == on.text) else {
+                    let near = nearest(&on.text, self.pack.scales.iter().map(|s| s.name.as_str()));
+                    faults.push(with_near(Diagnostic::fault(on.span, format!("`{}` is not a scale", on.text)).expected("the name of a `scale`"), near));
+                    return None;
+                };
+                let (ty, gives, kind) = (self.pack.scales[at].ty, self.pack.scales[at].gives, self.pack.scales[at].kind);
+                let of = self.fit(of, ty, faults)?;
+                self.reaches(kind, on, faults)?;
+                make(gives, What::PlaceOn { of: Box::new(of), scale: at })
+            }
+            ExprKind::Compare { op, left, right } => {
+                let equality = matches!(op, CompareOp::Is | CompareOp::IsNot);
+                let left = self.node(left, None, faults)?;
+                let right = self.node(right, Some(left.ty), faults)?;
+                let fits = left.ty.join(right.ty).is_some()
+                    || (left.is_zero() && right.ty.is_quantity())
+                    || (right.is_zero() && left.ty.is_quantity());
+                if !fits {
+                    faults.push(self.mismatch(&right, left.ty));
+                    return None;
+                }
+                let ordered = left.ty.is_quantity() || left.ty == Ty::Date || left.is_zero();
+                if !equality && !ordered {
+                    faults.push(
+                        Diagnostic::fault(left.span, format!("{} has no order", self.shown(left.ty))).expected("`is` or `is not`"),
+                    );
+                    return None;
+                }
+                make(Ty::YesNo, What::Compare { op: *op, left: Box::new(left), right: Box::new(right) })
+            }
+            ExprKind::Not(inner) => {
+                let inner = self.wanted(inner, Ty::YesNo, faults)?;
+                make(Ty::YesNo, What::Not(Box::new(inner)))
+            }
+            ExprKind::Both(left, right) | ExprKind::Either(left, right) => {
+                let both = matches!(expr.kind, ExprKind::Both(..));
+                let (left, right) = (self.wanted(left, Ty::YesNo, faults), self.wanted(right, Ty::YesNo, faults));
+                let (left, right) = (Box::new(left?), Box::new(right?));
+                make(Ty::YesNo, if both { What::Both(left, right) } else { What::Either(left, right) })
+            }
+        }
+    }
+
+    fn mismatch(&self, node: &Node, wanted: Ty) -> Diagnostic {
+        let fault = Diagnostic::fault(node.span, format!("this is {}", self.shown(node.ty))).expected(self.shown(wanted));
+        match (node.ty, wanted) {
+            (Ty::Money(Some(from)), Ty::Money(Some(to))) if from != to => self.conversion_hint(fault, from, to),
+            _ => fault,
+        }
+    }
+
+    fn fit(&self, node: Node, ty: Ty, faults: &mut Faults) -> Option<Node> {
+        if node.ty.fits(ty) || (node.is_zero() && ty.is_quantity()) {
+            return Some(Node { ty, ..node });
+        }
+        faults.push(self.mismatch(&node, ty));
+        None
+    }
+
+    fn joined(&mut self, give: &Expr, otherwise: &Expr, hint: Option<Ty>, faults: &mut Faults) -> Option<(Node, Node, Ty)> {
+        let give = self.node(give, hint, faults);
+        let otherwise = self.node(otherwise, hint.or(give.as_ref().map(|g| g.ty)), faults);
+        let (give, otherwise) = (give?, otherwise?);
+        let ty = match give.ty.join(otherwise.ty) {
+            Some(ty) => ty,
+            None if give.is_zero() && otherwise.ty.is_quantity() => otherwise.ty,
+            None if otherwise.is_zero() && give.ty.is_quantity() => give.ty,
+            None => {
+                faults.push(self.mismatch(&otherwise, give.ty));
+                return None;
+            }
+        };
+        Some((give, otherwise, ty))
+    }
+
+    /// The date of the instrument that picks its amounts.
+    fn picked(&self, span: Span, faults: &mut Faults) -> Option<usize> {
+        if self.dated.is_none() {
+            faults.push(Diagnostic::fault(span, "an amount is used, but no date picks it").expected("`part \"…\" dated by …` at the start of the file"));
+        }
+        self.dated
+    }
+
+    /// Finds a name from the innermost scope outward.
+    fn find(&self, name: &str) -> Option<(usize, usize, Target, Ty)> {
+        for (level, start) in self.scopes.iter().enumerate().rev() {
+            let mut kind = Some(*start);
+            while let Some(at) = kind {
+                if let Some((target, ty)) = self.names.by_kind[at].get(name) {
+                    return Some((level, at, *target, *ty));
+                }
+                kind = self.pack.kinds[at].owner;
+            }
+        }
+        None
+    }
+
+    fn name(&self, name: &Ident, hint: Option<Ty>, faults: &mut Faults) -> Option<Node> {
+        let span = name.span;
+        if let Some((level, kind, target, ty)) = self.find(&name.text) {
+            return Some(Node { ty, span, what: What::Name { target, kind, level, text: name.text.clone() } });
+        }
+        if let Some(Ty::Choice(at)) = hint
+            && let Some(word) = self.pack.choices[at].words.iter().position(|w| *w == name.text)
+        {
+            return Some(Node { ty: Ty::Choice(at), span, what: What::Fixed(Fraction::whole(word as i128)) });
+        }
+        if let Some(at) = self.names.amounts.get(&name.text) {
+            let dated = self.picked(span, faults)?;
+            return Some(Node { ty: self.pack.amounts[*at].ty, span, what: What::Amount { amount: *at, dated } });
+        }
+        if let Some(at) = self.pack.manifest.dates.iter().position(|(date, _)| *date == name.text).or((name.text == "date").then_some(0)) {
+            return Some(Node { ty: Ty::Date, span, what: What::Dated(at) });
+        }
+        self.unknown(name, hint, faults);
+        None
+    }
+
+    fn unknown(&self, name: &Ident, hint: Option<Ty>, faults: &mut Faults) {
+        let mut known: Vec<&str> = Vec::new();
+        let mut reachable = vec![false; self.pack.kinds.len()];
+        for start in &self.scopes {
+            let mut kind = Some(*start);
+            while let Some(at) = kind {
+                reachable[at] = true;
+                kind = self.pack.kinds[at].owner;
+            }
+        }
+        for (kind, names) in self.names.by_kind.iter().enumerate() {
+            if reachable[kind] {
+                known.extend(names.keys().map(String::as_str));
+            }
+        }
+        known.extend(self.names.amounts.keys().map(String::as_str));
+        known.extend(self.pack.manifest.dates.iter().map(|(name, _)| name.as_str()));
+        let mut expected = "a figure, fact or amount".to_owned();
+        if let Some(Ty::Choice(at)) = hint {
+            known.extend(self.pack.choices[at].words.iter().map(String::as_str));
+            expected = format!("one of {}", self.pack.choices[at].words.join(", "));
+        }
+        let mut fault = Diagnostic::fault(name.span, format!("`{}` is not known here", name.text)).expected(expected);
+        let elsewhere = self.names.by_kind.iter().position(|names| names.contains_key(&name.text));
+        if let Some(kind) = elsewhere {
+            fault = fault.hint(format!("it belongs to `{}`; say it under `per {0}`, or sum over it", self.pack.kinds[kind].name));
+        } else {
+            fault = with_near(fault, nearest(&name.text, known));
+        }
+        faults.push(fault);
+    }
+
+    fn of(&mut self, name: &Ident, whose: &Ident, failing: Option<&Expr>, span: Span, faults: &mut Faults) -> Option<Node> {
+        let kind = if whose.text == "partner" { ADULT } else {
+            let found = kinds_of_word(&self.pack.kinds, &whose.text);
+            match found.as_slice() {
+                [one] => *one,
+                _ => {
+                    faults.push(Diagnostic::fault(whose.span, format!("`{}` is nobody's relation", whose.text)).expected("`partner`, or the kind of an owner"));
+                    return None;
+                }
+            }
+        };
+        let level = self.scopes.iter().enumerate().rev().find(|(_, start)| self.climbs(**start, kind)).map(|(level, _)| level);
+        let Some(level) = level else {
+            faults.push(
+                Diagnostic::fault(whose.span, format!("there is no `{}` here", whose.text))
+                    .expected(format!("a place under `per {}`", self.pack.kinds[kind].name)),
+            );
+            return None;
+        };
+        let Some((target, ty)) = self.names.by_kind[kind].get(&name.text).copied() else {
+            let near = nearest(&name.text, self.names.by_kind[kind].keys().map(String::as_str));
+            let fault = Diagnostic::fault(name.span, format!("`{}` is not known of `{}`", name.text, self.pack.kinds[kind].name));
+            faults.push(with_near(fault.expected("one of its figures or facts"), near));
+            return None;
+        };
+        if whose.text != "partner" {
+            return Some(Node { ty, span, what: What::Name { target, kind, level, text: name.text.clone() } });
+        }
+        let failing = match failing {
+            Some(expr) => {
+                let node = self.node(expr, Some(ty), faults)?;
+                Some(Box::new(self.fit(node, ty, faults)?))
+            }
+            None => {
+                faults.push(
+                    Diagnostic::fault(span, "nothing stands in where there is no partner").expected(format!("`{} of partner failing …`", name.text)),
+                );
+                return None;
+            }
+        };
+        Some(Node { ty, span, what: What::Partner { target, level, failing, text: name.text.clone() } })
+    }
+
+    /// Whether `kind` is `start` or one of its owners.
+    fn climbs(&self, start: usize, kind: usize) -> bool {
+        let mut at = Some(start);
+        while let Some(here) = at {
+            if here == kind {
+                return true;
+            }
+            at = self.pack.kinds[here].owner;
+        }
+        false
+    }
+
+    /// Bands and scales must be said where their own kind can be reached.
+    fn reaches(&self, kind: usize, name: &Ident, faults: &mut Faults) -> Option<()> {
+        if self.scopes.last().is_some_and(|here| self.climbs(*here, kind)) {
+            return Some(());
+        }
+        faults.push(
+            Diagnostic::fault(name.span, format!("`{}` is declared per {}", name.text, self.pack.kinds[kind].name))
+                .expected(format!("a place under `per {}`", self.pack.kinds[kind].name)),
+        );
+        None
+    }
+
+    fn lookup(&mut self, table: &Ident, keys: &[Expr], span: Span, faults: &mut Faults) -> Option<Node> {
+        let Some(at) = self.pack.tables.iter().position(|t| t.name == table.text) else {
+            let near = nearest(&table.text, self.pack.tables.iter().map(|t| t.name.as_str()));
+            faults.push(with_near(Diagnostic::fault(table.span, format!("`{}` is not a table", table.text)).expected("the name of a `table`"), near));
+            return None;
+        };
+        self.picked(span, faults)?;
+        let decl = &self.pack.tables[at];
+        if decl.keys.len() != keys.len() {
+            faults.push(
+                Diagnostic::fault(span, format!("`{}` is looked up by {}", table.text, keys.len())).expected(format!("{} keys", decl.keys.len())),
+            );
+            return None;
+        }
+        let wanted: Vec<Ty> = decl.keys.iter().map(|k| k.map_or(Ty::Count, Ty::Choice)).collect();
+        let gives = decl.gives;
+        let nodes: Vec<Option<Node>> = keys.iter().zip(wanted).map(|(e, ty)| self.wanted(e, ty, faults)).collect();
+        Some(Node { ty: gives, span, what: What::Lookup { table: at, keys: nodes.into_iter().collect::<Option<_>>()? } })
+    }
+
+    /// The kinds that a sum goes over, each with its own reading of condition and body.
+    fn over(&mut self, kind: &Ident, with: Option<&Expr>, body: Option<(&Expr, Option<Ty>)>, by: Option<&Ident>, faults: &mut Faults) -> Option<Vec<Over>> {
+        let kinds = kinds_of_word(&self.pack.kinds, &kind.text);
+        if kinds.is_empty() {
+            let near = nearest(&kind.text, self.pack.kinds.iter().map(|k| k.name.as_str()));
+            faults.push(with_near(Diagnostic::fault(kind.span, format!("`{}` is not a kind", kind.text)).expected("a kind such as `child` or `job`"), near));
+            return None;
+        }
+        let mut out = Vec::new();
+        let mut whole = true;
+        for kind in kinds {
+            self.scopes.push(kind);
+            let condition = with.map(|e| self.wanted(e, Ty::YesNo, faults));
+            let inner = body.map(|(e, hint)| self.node(e, hint, faults));
+            let key = by.map(|name| self.name(name, None, faults));
+            self.scopes.pop();
+            whole &= condition.as_ref().is_none_or(Option::is_some) && inner.as_ref().is_none_or(Option::is_some) && key.as_ref().is_none_or(Option::is_some);
+            out.push(Over { kind, with: condition.flatten(), body: inner.flatten(), by: key.flatten() });
+        }
+        whole.then_some(out)
+    }
+
+    fn one_kind(&self, kind: &Ident, over: &mut Vec<Over>, faults: &mut Faults) -> Option<Over> {
+        if over.len() == 1 {
+            return over.pop();
+        }
+        faults.push(Diagnostic::fault(kind.span, format!("`{}` stands for several kinds", kind.text)).expected("one kind to put in order"));
+        None
+    }
+
+    fn binary(&mut self, op: BinaryOp, left: &Expr, right: &Expr, span: Span, faults: &mut Faults) -> Option<Node> {
+        let (left, right) = (self.node(left, None, faults), self.node(right, None, faults));
+        let (left, right) = (left?, right?);
+        let ty = match op {
+            BinaryOp::Add | BinaryOp::Subtract | BinaryOp::Beyond | BinaryOp::LimitedTo | BinaryOp::RaisedTo => {
+                let joint = match left.ty.join(right.ty) {
+                    Some(ty) if ty.is_quantity() => Some(ty),
+                    _ if left.is_zero() && right.ty.is_quantity() => Some(right.ty),
+                    _ if right.is_zero() && left.ty.is_quantity() => Some(left.ty),
+                    _ => None,
+                };
+                match joint {
+                    Some(ty) => ty,
+                    None if !left.ty.is_quantity() => {
+                        faults.push(
+                            Diagnostic::fault(left.span, format!("this is {}", self.shown(left.ty))).expected(format!("a quantity before `{}`", op.word())),
+                        );
+                        return None;
+                    }
+                    None => {
+                        faults.push(self.mismatch(&right, left.ty));
+                        return None;
+                    }
+                }
+            }
+            BinaryOp::Multiply => match (left.ty, right.ty) {
+                (Ty::Money(Some(Period::Hour)), Ty::Hours) | (Ty::Hours, Ty::Money(Some(Period::Hour))) => Ty::Money(Some(Period::Week)),
+                (a, b) if a.is_scalar() && b.is_scalar() => a.join(b).unwrap_or(Ty::Number),
+                (a, b) if a.is_quantity() && b.is_scalar() => a,
+                (a, b) if a.is_scalar() && b.is_quantity() => b,
+                (a, b) => {
+                    faults.push(
+                        Diagnostic::fault(span, format!("{} times {}", self.shown(a), self.shown(b)))
+                            .expected("a quantity times a number, or money an hour times hours"),
+                    );
+                    return None;
+                }
+            },
+            BinaryOp::Divide => {
+                if !right.is_fixed() {
+                    faults.push(
+                        Diagnostic::fault(right.span, "this is not a fixed number")
+                            .expected("a number or an amount")
+                            .hint("multiply out, or round the quotient at once: `(a / b rounded half up to 0.01)`"),
+                    );
+                    return None;
+                }
+                match (left.ty, right.ty) {
+                    (a, b) if a.is_quantity() && b.is_scalar() => if a == Ty::Count { Ty::Number } else { a },
+                    (a, b) if a == b && a.is_quantity() => Ty::Number,
+                    (_, _) => {
+                        faults.push(self.mismatch(&right, left.ty));
+                        return None;
+                    }
+                }
+            }
+        };
+        Some(Node { ty, span, what: What::Binary { op, left: Box::new(left), right: Box::new(right) } })
+    }
+
+    fn divide_rounded(
+        &mut self,
+        of: Node,
+        by: Node,
+        (direction, unit, manner): (Direction, Fraction, Option<Manner>),
+        span: Span,
+        faults: &mut Faults,
+    ) -> Option<Node> {
+        let above_zero = match &by.what {
+            What::Name { target: Target::Fact { kind, fact }, .. } => self.pack.kinds[*kind].facts[*fact].range.0 > Fraction::ZERO,
+            What::Binary { op: BinaryOp::RaisedTo, right, .. } => matches!(right.what, What::Fixed(value) if value > Fraction::ZERO),
+            _ => false,
+        };
+        if !above_zero {
+            faults.push(
+                Diagnostic::fault(by.span, "this could be nothing")
+                    .expected("a fact whose range starts above zero, or `… raised to` a number above zero"),
+            );
+            return None;
+        }
+        let ty = match (of.ty, by.ty) {
+            (a, b) if a.is_quantity() && b.is_scalar() => a,
+            (a, b) if a == b && a.is_quantity() => Ty::Number,
+            (_, _) => {
+                faults.push(self.mismatch(&by, of.ty));
+                return None;
+            }
+        };
+        Some(Node { ty, span, what: What::DivideRounded { of: Box::new(of), by: Box::new(by), direction, unit, manner } })
+    }
+}
+
+fn with_near(fault: Diagnostic, near: Option<&str>) -> Diagnostic {
+    match near {
+        Some(near) => fault.hint(format!("did you mean `{near}`?")),
+        None => fault,
+    }
+}

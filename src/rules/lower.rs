@@ -1,0 +1,333 @@
+//! A checked pack to a flat program, for dates, changed amounts and a shape of household.
+//!
+//! Sums and searches are unrolled; a figure that no item needs is left out. `lower_expr` holds the expressions.
+
+use super::amounts::day_text;
+use super::pack::{ADULT, Change, FactDecl, FactKind, HOUSEHOLD, JOB, Pack};
+use super::types::{Period, Ty};
+use crate::diag::{Diagnostic, nearest};
+use crate::index::Id;
+use crate::num::{Direction, Fraction};
+use crate::program::{Amount, Builder, FactRef, Guard, Item, ItemKind, Line, Manner, Note, Program, Reg, Shape, Table};
+use std::collections::HashMap;
+
+pub(super) struct Lowering<'a> {
+    pub pack: &'a Pack,
+    pub dates: &'a [i64],
+    changes: &'a [Change],
+    pub shape: &'a Shape,
+    pub builder: Builder,
+    done: HashMap<(usize, usize), Reg>,
+    amounts: HashMap<(usize, usize), (Id<Amount>, Reg)>,
+    tables: HashMap<usize, Id<Table>>,
+    pub faults: Vec<Diagnostic>,
+    /// Expressions being unrolled; bounded by the parser and by the absence of circles.
+    pub part: usize,
+}
+
+/// Checks dates and changed amounts of a list.
+pub(super) fn accepts(pack: &Pack, dates: &[i64], changes: &[Change]) -> Result<(), Vec<Diagnostic>> {
+    let mut faults = Vec::new();
+    for ((name, _), day) in pack.manifest.dates.iter().zip(dates) {
+        if *day < pack.manifest.from || *day > pack.manifest.to {
+            faults.push(
+                Diagnostic::general(format!("the date `{name}` is {}", day_text(*day)))
+                    .expected(format!("a day from {} to {}, which the pack covers", day_text(pack.manifest.from), day_text(pack.manifest.to))),
+            );
+        }
+    }
+    for change in changes {
+        if !pack.amounts.iter().any(|a| a.name == change.amount) {
+            let fault = Diagnostic::general(format!("`{}` is not an amount of the pack", change.amount)).expected("a name of `amounts.csv`");
+            let near = nearest(&change.amount, pack.amounts.iter().map(|a| a.name.as_str()));
+            faults.push(match near {
+                Some(near) => fault.hint(format!("did you mean `{near}`?")),
+                None => fault,
+            });
+        }
+    }
+    if faults.is_empty() { Ok(()) } else { Err(faults) }
+}
+
+/// Makes the program.
+pub(super) fn program(pack: &Pack, dates: &[i64], changes: &[Change], shape: &Shape) -> Result<Program, Vec<Diagnostic>> {
+    accepts(pack, dates, changes)?;
+    let mut lowering = Lowering {
+        pack,
+        dates,
+        changes,
+        shape,
+        builder: Builder::new(shape.clone()),
+        done: HashMap::new(),
+        amounts: HashMap::new(),
+        tables: HashMap::new(),
+        faults: Vec::new(),
+        part: 0,
+    };
+    lowering.everything();
+    let lines: Vec<(String, crate::source::Span)> =
+        lowering.builder.program().lines.iter().map(|line| (line.name.clone(), line.span)).collect();
+    let faults = lowering.faults;
+    match lowering.builder.finish() {
+        Ok(program) if faults.is_empty() => Ok(program),
+        Ok(_) => Err(faults),
+        Err(too_large) => {
+            let mut faults = faults;
+            faults.push(match too_large.line {
+                Some(line) => {
+                    let (name, span) = &lines[line.position()];
+                    Diagnostic::fault(*span, format!("`{name}` could hold a number that is too large"))
+                        .expected("numbers that fit into 112 bits at their scale")
+                        .hint("round an intermediate figure, or narrow the range of a fact")
+                }
+                None => Diagnostic::general("a number of the pack is too large").expected("numbers that fit into 112 bits"),
+            });
+            Err(faults)
+        }
+    }
+}
+
+/// Lowers a large and a small household at every date at which an amount changes, to find what only shows then.
+pub(super) fn probe(pack: &Pack, faults: &mut Vec<Diagnostic>) {
+    let mut days: Vec<i64> = vec![pack.manifest.from, pack.manifest.to];
+    for amount in &pack.amounts {
+        days.extend(amount.rows.iter().map(|row| row.from).filter(|day| *day > pack.manifest.from && *day <= pack.manifest.to));
+    }
+    days.sort_unstable();
+    days.dedup();
+    for day in days {
+        for shape in [small(pack), large(pack)] {
+            let dates = vec![day; pack.manifest.dates.len()];
+            if let Err(found) = program(pack, &dates, &[], &shape) {
+                faults.extend(found);
+                return;
+            }
+        }
+    }
+}
+
+fn small(pack: &Pack) -> Shape {
+    let mut owners: Vec<Vec<u32>> = vec![Vec::new(); pack.kinds.len()];
+    owners[HOUSEHOLD] = vec![0];
+    owners[ADULT] = vec![0];
+    owners[JOB] = vec![0];
+    Shape { owners, earner: 0, varied_job: 0 }
+}
+
+fn large(pack: &Pack) -> Shape {
+    let mut owners: Vec<Vec<u32>> = pack.kinds.iter().map(|kind| if kind.owner == Some(ADULT) { vec![0, 1, 1] } else { vec![0; 3] }).collect();
+    owners[HOUSEHOLD] = vec![0];
+    owners[ADULT] = vec![0, 0];
+    Shape { owners, earner: 1, varied_job: 1 }
+}
+
+impl Lowering<'_> {
+    fn everything(&mut self) {
+        let pack = self.pack;
+        for (at, definition) in pack.definitions.iter().enumerate() {
+            let Some(kind) = definition.item else { continue };
+            for instance in 0..self.count(definition.kind) {
+                let reg = self.figure(at, instance);
+                let adult = self.climb(definition.kind, instance, ADULT).map(|at| at as u32);
+                let line = self.line_of(at, instance);
+                self.builder.item(Item { kind, line, reg, adult });
+            }
+        }
+        for (conditions, hold) in [(&pack.holds, true), (&pack.notes, false)] {
+            for condition in conditions {
+                self.part = condition.part;
+                let mut any = None;
+                for instance in 0..self.count(condition.kind) {
+                    let reg = self.node(&condition.when, &mut vec![(condition.kind, instance)]);
+                    any = Some(any.map_or(reg, |before| self.builder.either(before, reg)));
+                }
+                let Some(reg) = any else { continue };
+                if hold {
+                    self.builder.guard(Guard { reg, because: condition.text.clone() });
+                } else {
+                    self.builder.note(Note { reg, name: condition.text.clone() });
+                }
+            }
+        }
+    }
+
+    pub(super) fn count(&self, kind: usize) -> usize {
+        self.shape.owners.get(kind).map_or(0, Vec::len)
+    }
+
+    /// The record of `wanted` that a record is, or belongs to.
+    pub(super) fn climb(&self, kind: usize, instance: usize, wanted: usize) -> Option<usize> {
+        let (mut kind, mut instance) = (kind, instance);
+        while kind != wanted {
+            let owner = self.pack.kinds[kind].owner?;
+            instance = self.shape.owners[kind][instance] as usize;
+            kind = owner;
+        }
+        Some(instance)
+    }
+
+    fn line_of(&self, definition: usize, instance: usize) -> Id<Line> {
+        let name = &self.pack.definitions[definition];
+        let found = self
+            .builder
+            .program()
+            .lines
+            .iter_with_id()
+            .find(|(_, l)| l.name == name.name && l.kind == name.kind as u32 && l.instance == instance as u32);
+        found.map(|(id, _)| id).expect("a figure that was worked out has a line")
+    }
+
+    /// The register of a figure or item of one record.
+    pub(super) fn figure(&mut self, at: usize, instance: usize) -> Reg {
+        if let Some(reg) = self.done.get(&(at, instance)) {
+            return *reg;
+        }
+        let pack = self.pack;
+        let definition = &pack.definitions[at];
+        let body = definition.body.as_ref().expect("a checked pack has no empty figure");
+        let (title, _) = &pack.parts[definition.part];
+        let words = match definition.ty {
+            Ty::Choice(choice) => pack.choices[choice].words.clone(),
+            _ => Vec::new(),
+        };
+        let before_part = std::mem::replace(&mut self.part, definition.part);
+        let (line, before) = self.builder.open(Line {
+            name: definition.name.clone(),
+            part: title.clone(),
+            law: definition.law.clone(),
+            kind: definition.kind as u32,
+            instance: instance as u32,
+            reg: None,
+            span: definition.span,
+            inputs: Vec::new(),
+            amounts: Vec::new(),
+            unit: definition.ty.to_string(),
+            words,
+            order: at as u32,
+        });
+        let mut reg = self.node(body, &mut vec![(definition.kind, instance)]);
+        if definition.item.is_some_and(|kind| kind != ItemKind::Passport) {
+            reg = self.builder.round(reg, Fraction::new(1, 100), Direction::HalfUp, Manner::Minor);
+        }
+        self.builder.close(line, reg, before);
+        self.part = before_part;
+        self.done.insert((at, instance), reg);
+        reg
+    }
+
+    /// The register of a fact of one record.
+    pub(super) fn fact(&mut self, kind: usize, instance: usize, fact: usize) -> Reg {
+        if kind == JOB && fact == 0 && instance == self.shape.varied_job as usize {
+            return self.builder.hours();
+        }
+        let decl = &self.pack.kinds[kind].facts[fact];
+        let largest = |value: Fraction| value.numerator().unsigned_abs().div_ceil(value.denominator().unsigned_abs());
+        let limit = largest(decl.range.0).max(largest(decl.range.1));
+        let place = FactRef { kind: kind as u32, instance: instance as u32, fact: fact as u32 };
+        self.builder.fact(place, units(decl), limit)
+    }
+
+    /// Value of an amount on its date: its register, and the amount for the working.
+    pub(super) fn amount(&mut self, amount: usize, dated: usize) -> Reg {
+        if let Some((id, reg)) = self.amounts.get(&(amount, dated)).copied() {
+            self.builder.amount_went_in(id);
+            return reg;
+        }
+        let decl = &self.pack.amounts[amount];
+        let change = self.changes.iter().find(|c| c.amount == decl.name);
+        let row = decl.on(self.dates[dated]);
+        let percent = decl.ty == Ty::Rate;
+        let value = match change {
+            Some(change) if percent => change.value / Fraction::whole(100),
+            Some(change) => change.value,
+            None => row.and_then(|row| row.value).unwrap_or(Fraction::ZERO),
+        };
+        let shown = change.map_or_else(|| row.map_or_else(String::new, |r| r.shown.clone()), |c| plain(c.value));
+        let entry = Amount {
+            name: decl.name.clone(),
+            value: format!("{shown} {}", decl.unit).trim().to_owned(),
+            from: row.map_or_else(String::new, |r| day_text(r.from)),
+            to: row.filter(|r| r.to != i64::MAX).map_or_else(String::new, |r| day_text(r.to)),
+            source: row.map_or_else(String::new, |r| r.source.clone()),
+            locator: row.map_or_else(String::new, |r| r.locator.clone()),
+            confirmed: row.is_some_and(|r| r.confirmed),
+            changed_because: change.map_or_else(String::new, |c| c.because.clone()),
+        };
+        let id = self.builder.amount(entry);
+        let reg = self.builder.constant(value);
+        self.amounts.insert((amount, dated), (id, reg));
+        self.builder.amount_went_in(id);
+        reg
+    }
+
+    /// Whether an amount is absent on its date.
+    pub(super) fn is_missing(&self, amount: usize, dated: usize) -> bool {
+        let decl = &self.pack.amounts[amount];
+        let changed = self.changes.iter().any(|c| c.amount == decl.name);
+        !changed && decl.on(self.dates[dated]).is_none_or(|row| row.value.is_none())
+    }
+
+    /// A keyed table on its date, dense in its keys.
+    pub(super) fn table(&mut self, at: usize, span: crate::source::Span) -> Id<Table> {
+        if let Some(id) = self.tables.get(&at) {
+            return *id;
+        }
+        let decl = &self.pack.tables[at];
+        let day = self.dates[0];
+        let rows: Vec<_> = decl.rows.iter().filter(|r| r.row.from <= day && day <= r.row.to).collect();
+        let mut keys = Vec::new();
+        let mut places: Vec<Vec<Option<i64>>> = Vec::new();
+        for (position, key) in decl.keys.iter().enumerate() {
+            let column: Vec<Option<i64>> = rows
+                .iter()
+                .map(|r| match key {
+                    Some(choice) => self.pack.choices[*choice].words.iter().position(|w| *w == r.keys[position]).map(|p| p as i64),
+                    None => r.keys[position].parse().ok(),
+                })
+                .collect();
+            for (row, found) in rows.iter().zip(&column) {
+                if found.is_none() {
+                    self.faults.push(Diagnostic::fault(row.row.span, format!("`{}` is not a key of this table", row.keys[position])));
+                }
+            }
+            let (low, high) = match key {
+                Some(choice) => (0, self.pack.choices[*choice].words.len() as i64 - 1),
+                None => (column.iter().flatten().min().copied().unwrap_or(0), column.iter().flatten().max().copied().unwrap_or(0)),
+            };
+            keys.push((low, usize::try_from(high - low + 1).unwrap_or(1).min(10_000)));
+            places.push(column);
+        }
+        let size: usize = keys.iter().map(|(_, n)| n).product();
+        let mut values: Vec<Option<Fraction>> = vec![None; size.min(100_000)];
+        for (row_at, row) in rows.iter().enumerate() {
+            let index = places.iter().zip(&keys).try_fold(0usize, |index, (column, (low, n))| {
+                column[row_at].and_then(|k| usize::try_from(k - low).ok()).filter(|k| k < n).map(|k| index * n + k)
+            });
+            if let Some(slot) = index.and_then(|i| values.get_mut(i)) {
+                *slot = row.row.value;
+            }
+        }
+        if values.iter().any(Option::is_none) {
+            self.faults.push(
+                Diagnostic::fault(span, format!("the table `{}` has gaps on {}", decl.name, day_text(day))).expected("a value for every key"),
+            );
+        }
+        let values = values.into_iter().map(|v| v.unwrap_or(Fraction::ZERO)).collect();
+        let id = self.builder.table(Table { name: decl.name.clone(), keys, values });
+        self.tables.insert(at, id);
+        id
+    }
+}
+
+/// Units to one of a fact as lists hold it.
+fn units(decl: &FactDecl) -> i64 {
+    match &decl.kind {
+        FactKind::Money(Some(Period::Hour)) | FactKind::Rate => 10_000,
+        FactKind::Money(_) | FactKind::Hours | FactKind::Number => 100,
+        FactKind::Count | FactKind::Date | FactKind::YesNo | FactKind::Choice(_) => 1,
+    }
+}
+
+fn plain(value: Fraction) -> String {
+    value.decimal(6).trim_end_matches('0').trim_end_matches('.').to_owned()
+}

@@ -1,0 +1,225 @@
+//! A checked pack and the ways to use it.
+
+use super::amounts::{AmountDecl, TableRow};
+use super::ast::Part;
+use super::manifest::Manifest;
+use super::tree::{BandsDecl, Condition, Definition, ScaleDecl};
+use super::types::{Period, Ty};
+use crate::diag::{Diagnostic, Severity};
+use crate::num::Fraction;
+use crate::program::{ItemKind, Program, Shape};
+use crate::source::{FileId, Sources};
+use std::collections::BTreeMap;
+
+/// The texts of a pack, read by somebody else.
+#[derive(Clone, Debug)]
+pub struct PackTexts {
+    /// All texts, under the names that messages show.
+    pub sources: Sources,
+    /// `pack.toml`.
+    pub manifest: FileId,
+    /// The `.rules` files, in the order of the law.
+    pub rules: Vec<FileId>,
+    /// `amounts.csv`, if there is one.
+    pub amounts: Option<FileId>,
+    /// `tables/NAME.csv`, by name.
+    pub tables: Vec<(String, FileId)>,
+    /// `labels.<language>.csv`, by language.
+    pub labels: Vec<(String, FileId)>,
+}
+
+/// An amount that a list changes for a what-if.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Change {
+    /// Name of the amount.
+    pub amount: String,
+    /// The value in the amount's unit (a percentage for a rate).
+    pub value: Fraction,
+    /// Why.
+    pub because: String,
+}
+
+/// What a fact may hold.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum FactKind {
+    /// Money of a period, or a sum.
+    Money(Option<Period>),
+    /// A rate.
+    Rate,
+    /// Hours a week.
+    Hours,
+    /// A number.
+    Number,
+    /// A whole number.
+    Count,
+    /// A day.
+    Date,
+    /// Yes or no.
+    YesNo,
+    /// One of these words.
+    Choice(Vec<String>),
+}
+
+/// A fact that a list may hold.
+#[derive(Clone, Debug)]
+pub struct FactDecl {
+    /// Name.
+    pub name: String,
+    /// What it may hold.
+    pub kind: FactKind,
+    /// Least and largest value (a rate as a fraction of one; a date in days).
+    pub range: (Fraction, Fraction),
+    /// The value where it is left out; none where it is required. A choice is the position of its word.
+    pub default: Option<Fraction>,
+    /// The question that asks for it.
+    pub ask: String,
+    pub(super) ty: Ty,
+}
+
+/// A kind of record.
+#[derive(Clone, Debug)]
+pub struct KindDecl {
+    /// Its word.
+    pub name: String,
+    /// Position of the kind that it belongs to.
+    pub owner: Option<usize>,
+    /// Its facts.
+    pub facts: Vec<FactDecl>,
+}
+
+/// Position of the household among the kinds.
+pub(super) const HOUSEHOLD: usize = 0;
+/// Position of adults.
+pub(super) const ADULT: usize = 1;
+/// Position of children.
+pub(super) const CHILD: usize = 2;
+/// Position of other adults.
+pub(super) const OTHER: usize = 3;
+/// Position of jobs.
+pub(super) const JOB: usize = 4;
+
+#[derive(Clone, Debug)]
+pub(super) struct ChoiceDecl {
+    pub name: String,
+    pub words: Vec<String>,
+}
+
+#[derive(Clone, Debug)]
+pub(super) struct ConversionDecl {
+    pub name: String,
+    pub from: Period,
+    pub to: Period,
+    pub times: Fraction,
+    pub law: String,
+}
+
+#[derive(Clone, Debug)]
+pub(super) struct TableDecl {
+    pub name: String,
+    /// None for a count.
+    pub keys: Vec<Option<usize>>,
+    pub gives: Ty,
+    pub rows: Vec<TableRow>,
+}
+
+/// A checked pack.
+#[derive(Clone, Debug)]
+pub struct Pack {
+    /// What it says of itself.
+    pub manifest: Manifest,
+    /// The kinds of record and their facts: household, adult, child, other, job, then the pack's own.
+    pub kinds: Vec<KindDecl>,
+    /// Labels by language.
+    pub labels: BTreeMap<String, BTreeMap<String, String>>,
+    /// The texts.
+    pub sources: Sources,
+    /// Warnings that were found.
+    pub warnings: Vec<Diagnostic>,
+    pub(super) parts: Vec<(String, String)>,
+    pub(super) choices: Vec<ChoiceDecl>,
+    pub(super) conversions: Vec<ConversionDecl>,
+    pub(super) amounts: Vec<AmountDecl>,
+    pub(super) tables: Vec<TableDecl>,
+    pub(super) bands: Vec<BandsDecl>,
+    pub(super) scales: Vec<ScaleDecl>,
+    pub(super) definitions: Vec<Definition>,
+    pub(super) holds: Vec<Condition>,
+    pub(super) notes: Vec<Condition>,
+}
+
+/// Checks a pack.
+///
+/// # Errors
+/// Every fault of its texts, with the texts to show them in.
+pub fn check(texts: PackTexts) -> Result<Pack, (Sources, Vec<Diagnostic>)> {
+    let mut faults = Vec::new();
+    let sources = texts.sources;
+    let manifest = super::manifest::read(texts.manifest, &sources.get(texts.manifest).text, &mut faults);
+    let parts: Vec<Part> =
+        texts.rules.iter().map(|file| super::parser::parse(*file, &sources.get(*file).text, &mut faults)).collect();
+    let Some(manifest) = manifest else { return Err((sources, faults)) };
+    let amounts = texts
+        .amounts
+        .map(|file| super::amounts::read(file, &sources.get(file).text, &manifest.currency, &mut faults))
+        .unwrap_or_default();
+    let mut labels = BTreeMap::new();
+    for (language, file) in &texts.labels {
+        labels.insert(language.clone(), super::labels::read(*file, &sources.get(*file).text, &mut faults));
+    }
+    let table_texts: Vec<(String, FileId, String)> =
+        texts.tables.iter().map(|(name, file)| (name.clone(), *file, sources.get(*file).text.clone())).collect();
+    let clean_syntax = faults.is_empty();
+    let pack = super::declare::declare(manifest, parts, amounts, labels, &table_texts, &mut faults);
+    // Unused names and circles would only echo earlier faults.
+    if clean_syntax && faults.is_empty() {
+        super::graph::check(&pack, &mut faults);
+    }
+    if faults.is_empty() {
+        super::lower::probe(&pack, &mut faults);
+    }
+    faults.sort_by_key(|f| f.span.map(|s| (s.file, s.start)));
+    faults.dedup();
+    let (faults, warnings): (Vec<_>, Vec<_>) = faults.into_iter().partition(|f| f.severity == Severity::Fault);
+    if faults.is_empty() { Ok(Pack { sources, warnings, ..pack }) } else { Err((sources, faults)) }
+}
+
+impl Pack {
+    /// The flat program for these dates (in the order of [`Manifest::dates`], in days since 1970-01-01), changed amounts and shape.
+    ///
+    /// # Errors
+    /// A date outside the pack, a change of an unknown amount, a number that could overflow.
+    pub fn program(&self, dates: &[i64], changes: &[Change], shape: &Shape) -> Result<Program, Vec<Diagnostic>> {
+        super::lower::program(self, dates, changes, shape)
+    }
+
+    /// Checks the dates and changed amounts of a list against the pack, before any household is read.
+    ///
+    /// # Errors
+    /// Every fault: a date outside the days covered, a changed amount that the pack does not know.
+    pub fn accepts(&self, dates: &[i64], changes: &[Change]) -> Result<(), Vec<Diagnostic>> {
+        super::lower::accepts(self, dates, changes)
+    }
+
+    /// Names and kinds of the items, in the order of the law, without those of one name that follow.
+    pub fn item_names(&self) -> Vec<(String, ItemKind)> {
+        let mut out: Vec<(String, ItemKind)> = Vec::new();
+        for definition in &self.definitions {
+            if let Some(kind) = definition.item
+                && !out.iter().any(|(name, _)| *name == definition.name)
+            {
+                out.push((definition.name.clone(), kind));
+            }
+        }
+        out
+    }
+
+    /// Names of the notes.
+    pub fn note_names(&self) -> Vec<String> {
+        self.notes.iter().map(|note| note.text.clone()).collect()
+    }
+
+    /// Titles and laws of the instruments, in the order of the law.
+    pub fn instruments(&self) -> &[(String, String)] {
+        &self.parts
+    }
+}

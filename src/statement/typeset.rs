@@ -1,0 +1,138 @@
+//! From a view to PDF bytes. A [`Typesetter`] is made once and used for many letters.
+
+use super::context::LetterContext;
+use super::error::StatementError;
+use super::templates::{Filler, TemplateSet, check_glyphs};
+use super::texts::Texts;
+use super::view::LetterView;
+use super::world::Desk;
+use chrono::NaiveDate;
+use std::sync::Arc;
+
+/// The template of the client letter.
+const CLIENT: &str = "client/letter.typ";
+/// Letters after which the typesetter's memory is swept.
+const SWEEP_EVERY: u64 = 8;
+/// Sweeps that an unused result survives.
+const SWEEP_AGE: usize = 2;
+/// Pages that a letter in ordinary print may have.
+pub const PAGE_LIMIT: usize = 4;
+/// Sizes of print above this one are large print and may need more pages.
+const ORDINARY_PRINT: u8 = 12;
+
+/// A finished document.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Typeset {
+    /// The PDF.
+    pub bytes: Vec<u8>,
+    /// Its pages.
+    pub pages: usize,
+}
+
+/// Templates compiled once, fonts loaded once. One thread uses one; it is not for sharing.
+pub struct Typesetter {
+    filler: Filler,
+    desk: Desk,
+    made: u64,
+}
+
+impl Typesetter {
+    /// Reads a template set.
+    ///
+    /// # Errors
+    /// Where a template does not parse.
+    pub fn new(set: &TemplateSet) -> Result<Typesetter, StatementError> {
+        Ok(Typesetter {
+            filler: Filler::new(set)?,
+            desk: Desk::new(set.shared())?,
+            made: 0,
+        })
+    }
+
+    /// Typesets a client letter. The same view, texts and day give the same bytes.
+    ///
+    /// # Errors
+    /// Where a text cannot be set (the field and the character are named), a template is faulty, or a
+    /// letter in ordinary print needs more than [`PAGE_LIMIT`] pages.
+    pub fn letter(
+        &mut self,
+        view: &LetterView,
+        texts: &Arc<Texts>,
+        issued: NaiveDate,
+    ) -> Result<Typeset, StatementError> {
+        let value = minijinja::Value::from(minijinja::value::Serde(view));
+        check_glyphs(&value)?;
+        let made = self.document(CLIENT, &value, texts, &view.number, issued)?;
+        if view.print_size <= ORDINARY_PRINT && made.pages > PAGE_LIMIT {
+            return Err(StatementError::TooLong {
+                pages: made.pages,
+                limit: PAGE_LIMIT,
+            });
+        }
+        Ok(made)
+    }
+
+    /// The Typst source of a client letter, for those who write templates.
+    ///
+    /// # Errors
+    /// As for [`Typesetter::letter`].
+    pub fn source(&self, view: &LetterView, texts: &Arc<Texts>) -> Result<String, StatementError> {
+        let value = minijinja::Value::from(minijinja::value::Serde(view));
+        check_glyphs(&value)?;
+        let source = self.filler.fill(CLIENT, &value, texts)?;
+        Ok(source.text().to_owned())
+    }
+
+    /// Fills one template with any view and typesets it.
+    ///
+    /// # Errors
+    /// As for [`Typesetter::letter`], without the limit of pages.
+    pub fn any<V: serde::Serialize>(
+        &mut self,
+        template: &str,
+        view: &V,
+        texts: &Arc<Texts>,
+        identity: &str,
+        issued: NaiveDate,
+    ) -> Result<Typeset, StatementError> {
+        let value = minijinja::Value::from(minijinja::value::Serde(view));
+        check_glyphs(&value)?;
+        self.document(template, &value, texts, identity, issued)
+    }
+
+    fn document(
+        &mut self,
+        template: &str,
+        view: &minijinja::Value,
+        texts: &Arc<Texts>,
+        identity: &str,
+        issued: NaiveDate,
+    ) -> Result<Typeset, StatementError> {
+        let source = self.filler.fill(template, view, texts)?;
+        let pages = self.desk.pages(source.clone());
+        let made = pages.and_then(|document| {
+            Ok(Typeset {
+                bytes: self.desk.pdf(&document, source, identity, issued)?,
+                pages: document.pages().len(),
+            })
+        });
+        self.made += 1;
+        if self.made.is_multiple_of(SWEEP_EVERY) {
+            comemo::evict(SWEEP_AGE);
+        }
+        made
+    }
+}
+
+/// Builds and typesets one client letter.
+///
+/// # Errors
+/// As for [`super::letter_view`] and [`Typesetter::letter`].
+pub fn typeset(
+    typesetter: &mut Typesetter,
+    assessment: &crate::measures::Assessment,
+    context: &LetterContext,
+) -> Result<Typeset, StatementError> {
+    let view = super::letter_view(assessment, context)?;
+    typesetter.letter(&view, &context.texts, context.issued)
+}

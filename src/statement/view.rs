@@ -1,0 +1,165 @@
+//! What a letter says, as plain values: finished words, whole numbers, and the drawing of the chart.
+//! Templates see exactly this. All sums are already written out; lengths are hundredths of a point.
+
+use serde::Serialize;
+
+/// Everything that the letter template gets.
+#[derive(Clone, Debug, Serialize)]
+pub struct LetterView {
+    /// Language tag.
+    pub language: String,
+    /// `a4` or `us-letter`.
+    pub paper: String,
+    /// Size of print in points.
+    pub print_size: u8,
+    /// Title of the document.
+    pub title: String,
+    /// Statement number, on every page.
+    pub number: String,
+    /// Name of the office; may be empty.
+    pub office: String,
+    /// Lines under the office's name.
+    pub office_lines: Vec<String>,
+    /// Lines of name and address; empty where none was given.
+    pub address: Vec<String>,
+    /// Whose statement it is, where there is no address.
+    pub whose: String,
+    /// Number, days, place and rules.
+    pub particulars: Vec<Particular>,
+    /// The letter's main sentence on what it is.
+    pub estimate: Vec<String>,
+    /// What defers to the offices and advisers; on page one.
+    pub caution: String,
+    /// Changed amounts of a what-if with the reasons; empty for none.
+    pub what_if: Vec<String>,
+    /// The word for the statement period.
+    pub period: String,
+    /// Whether sections need the earner's name as a heading.
+    pub named: bool,
+    /// One section an earner, the leading one first.
+    pub sections: Vec<Section>,
+    /// The closing parts, in order: each with its heading and paragraphs.
+    pub closing: Vec<Part>,
+}
+
+/// A name and its value in the letter's head.
+#[derive(Clone, Debug, Serialize)]
+pub struct Particular {
+    /// What it is.
+    pub name: String,
+    /// Its value.
+    pub value: String,
+}
+
+/// A part with a heading.
+#[derive(Clone, Debug, Serialize)]
+pub struct Part {
+    /// The heading.
+    pub heading: String,
+    /// How the lines are set.
+    pub kind: PartKind,
+    /// Paragraphs or points of a list.
+    pub lines: Vec<String>,
+}
+
+/// How the lines of a part are set.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize)]
+#[serde(rename_all = "lowercase")]
+pub enum PartKind {
+    /// One below the other.
+    Paragraphs,
+    /// Points with a mark.
+    Points,
+    /// Numbered steps.
+    Steps,
+}
+
+/// What one earner's hours do.
+#[derive(Clone, Debug, Serialize)]
+pub struct Section {
+    /// Heading of the section.
+    pub heading: String,
+    /// First answers, one a named step.
+    pub answers: Vec<Answer>,
+    /// What is measured: empty for net income, else that it is after costs of working.
+    pub measure: String,
+    /// The chart.
+    pub chart: super::chart::Chart,
+    /// Where the next ten units go.
+    pub bars: super::bars::Bars,
+    /// Heading of the turning points.
+    pub turns_heading: String,
+    /// Turning points in words, at most five.
+    pub turns: Vec<TurnText>,
+    /// That there are more, or that there is none; may be empty.
+    pub turns_note: String,
+    /// Heading of the table.
+    pub table_heading: String,
+    /// The short table, in as many pieces as fit side by side.
+    pub tables: Vec<Table>,
+    /// Further parts: passported help, if the job ends.
+    pub parts: Vec<Part>,
+}
+
+/// A first answer.
+#[derive(Clone, Debug, Serialize)]
+pub struct Answer {
+    /// The named step: `4 hours more`, the offer's words.
+    pub step: String,
+    /// What is kept, in large type.
+    pub kept: String,
+    /// The second sentence and the marginal one.
+    pub detail: String,
+}
+
+/// A turning point in words.
+#[derive(Clone, Debug, Serialize)]
+pub struct TurnText {
+    /// Where, in hours.
+    pub place: String,
+    /// Where, in pay; may be empty.
+    pub pay: String,
+    /// What happens.
+    pub what: String,
+}
+
+/// A table with one column of names and a few of sums.
+#[derive(Clone, Debug, Serialize)]
+pub struct Table {
+    /// Heads of the columns of sums.
+    pub columns: Vec<Column>,
+    /// Rows in order.
+    pub rows: Vec<Row>,
+    /// What the table is, for readers who do not see it.
+    pub summary: String,
+}
+
+/// Head of a column.
+#[derive(Clone, Debug, Serialize)]
+pub struct Column {
+    /// `Today`, `4 hours more`, the offer.
+    pub name: String,
+    /// Its hours; may be empty.
+    pub hours: String,
+}
+
+/// A row of sums.
+#[derive(Clone, Debug, Serialize)]
+pub struct Row {
+    /// What it is.
+    pub name: String,
+    /// One sum a column.
+    pub cells: Vec<String>,
+    /// Whether it is a sum of the rows above.
+    pub weight: RowWeight,
+}
+
+/// How heavy a row is.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize)]
+#[serde(rename_all = "lowercase")]
+pub enum RowWeight {
+    /// An ordinary row.
+    Plain,
+    /// A total.
+    Total,
+}
