@@ -4,7 +4,7 @@
 //! exist: a participation rate without pay, a rate after the last row. Text that came from a list and that a spreadsheet
 //! would take for a formula gets an apostrophe in front.
 
-use crate::measures::{Assessment, BudgetLine, EarnerResult, Effect, Point, Turn, TurnKind};
+use crate::measures::{ItemKind, Assessment, BudgetLine, EarnerResult, Effect, Point, Turn, TurnKind};
 use crate::num::{Fraction, Hours, Money};
 use serde::{Deserialize, Serialize};
 
@@ -134,6 +134,10 @@ pub fn results(assessment: &Assessment, items: &[String], grid: GridRows) -> Tab
                 cells.extend(columns.iter().map(|places| {
                     match places.as_slice() {
                         [] => String::new(),
+                        // Help in kind has no sum: 1 where it is there, else 0.
+                        [first, ..] if assessment.items[*first].kind == ItemKind::Passport => {
+                            places.iter().map(|i| point.items[*i].0).max().unwrap_or(0).to_string()
+                        }
                         places => places
                             .iter()
                             .map(|i| point.items[*i])
