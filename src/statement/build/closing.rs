@@ -84,11 +84,7 @@ fn add(
     lines: Vec<String>,
 ) -> Result<(), StatementError> {
     if !lines.is_empty() {
-        parts.push(Part {
-            heading: words.plain(heading)?,
-            kind,
-            lines,
-        });
+        parts.push(words.part(heading, kind, lines)?);
     }
     Ok(())
 }

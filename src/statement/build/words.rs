@@ -5,6 +5,7 @@ use crate::num::{Fraction, Hours, Money};
 use crate::statement::context::LetterContext;
 use crate::statement::error::StatementError;
 use crate::statement::money::{Currency, day, readable};
+use crate::statement::view::{Part, PartKind};
 use chrono::NaiveDate;
 
 /// Which income a section speaks of.
@@ -93,6 +94,17 @@ impl<'a> Words<'a> {
     /// A fixed text without values.
     pub fn plain(&self, key: &str) -> Result<String, StatementError> {
         self.say(key, &[])
+    }
+
+    /// A part with a fixed heading.
+    pub fn part(
+        &self,
+        heading: &str,
+        kind: PartKind,
+        lines: Vec<String>,
+    ) -> Result<Part, StatementError> {
+        let size = self.context.delivery.print_size.max(12);
+        Ok(Part::new(self.plain(heading)?, kind, lines, size))
     }
 
     /// A label of the pack, if it has one.
