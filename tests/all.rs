@@ -3,6 +3,7 @@
 mod suite {
     mod batch;
     mod case;
+    mod cli;
     mod statement;
     mod uk;
 }

@@ -17,6 +17,7 @@ mod ledger;
 mod outcome;
 mod pool;
 mod prepare;
+mod proof;
 mod record;
 mod run;
 mod tables;
@@ -35,6 +36,7 @@ pub use outcome::{
 };
 pub use pool::{Done, PoolFigures, PoolPlan, StopFlag, drive};
 pub use prepare::{Places, Prepared, built_in_templates, checked, findings, prepare};
+pub use proof::{Proof, prove};
 pub use record::{Inputs, Record};
 pub use run::{Progress, RunPlan, Summary, run};
 pub(crate) use tables::wage;

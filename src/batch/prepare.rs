@@ -1,6 +1,7 @@
 //! Everything that a command needs before the first household, read and checked: the list, its rule pack, the office and
 //! the templates. In: where they are. Out: [`Prepared`], or every fault that stands in the way.
 
+use super::RunFolder;
 use crate::case::{ReadOptions, Schema};
 use crate::diag::Diagnostic;
 use crate::load::{
@@ -149,19 +150,19 @@ fn check_office(office: &OfficeFile, schema: &Schema) -> Result<(), Error> {
 }
 
 impl Prepared {
-    /// Reads the whole list once. A list that is out of order is sorted: into `sorting` where there is such a folder, else in
+    /// Reads the whole list once. A list that is out of order is sorted: into the run's folder where there is one, else in
     /// memory.
     ///
     /// # Errors
     /// Where a table cannot be read or a copy not written.
-    pub fn survey(&self, sorting: Option<&Path>) -> Result<(Survey, Rows), Error> {
+    pub fn survey(&self, folder: Option<&RunFolder>) -> Result<(Survey, Rows), super::Error> {
         let rows = Rows::AsWritten;
         let survey = self.list.survey(&self.schema, &self.options, &rows)?;
         match survey.sorting {
             Sorting::InOrder => Ok((survey, rows)),
             Sorting::Needed => {
-                let rows = match sorting {
-                    Some(folder) => self.list.sort_into(folder)?,
+                let rows = match folder {
+                    Some(folder) => self.list.sort_into(&folder.sorting()?)?,
                     None => self.list.sort_in_memory()?,
                 };
                 Ok((self.list.survey(&self.schema, &self.options, &rows)?, rows))

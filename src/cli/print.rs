@@ -29,7 +29,7 @@ pub(super) fn print(args: &PrintArgs) -> Result<Exit, Failure> {
         Existing::Refuse
     };
     let folder = RunFolder::take(&args.to, existing)?;
-    let (survey, rows) = prepared.survey(Some(&folder.sorting()?))?;
+    let (survey, rows) = prepared.survey(Some(&folder))?;
     if !survey.list_faults.is_empty() {
         return Err(crate::load::Error::Faults(survey.list_faults).into());
     }
@@ -142,7 +142,14 @@ fn inputs(prepared: &Prepared, args: &PrintArgs) -> Inputs {
     Inputs {
         list: prepared.list.hashes.clone(),
         pack_title: prepared.pack.manifest.title.clone(),
-        pack: prepared.pack_files.files.hashes(),
+        // Examples are for `prove` alone.
+        pack: prepared
+            .pack_files
+            .files
+            .hashes()
+            .into_iter()
+            .filter(|(name, _)| !name.starts_with("examples/"))
+            .collect(),
         templates: prepared.templates.hashes(),
         office: prepared
             .office
@@ -190,8 +197,8 @@ fn tell(summary: &Summary, run_id: &str, args: &PrintArgs, issued: NaiveDate) {
     let seconds = summary.milliseconds / 1000;
     let tenths = summary.milliseconds / 100 % 10;
     eprintln!(
-        "{} statements in {seconds}.{tenths} seconds, in `{}`",
-        ledger.pieces,
+        "{} in {seconds}.{tenths} seconds, in `{}`",
+        counted(ledger.pieces, "statement"),
         args.to.display()
     );
     if ledger.held > 0 {
@@ -202,8 +209,16 @@ fn tell(summary: &Summary, run_id: &str, args: &PrintArgs, issued: NaiveDate) {
     }
     if ledger.stray_faults > 0 {
         eprintln!(
-            "{} faults belong to no household of the list",
-            ledger.stray_faults
+            "of no household of the list: {}",
+            counted(ledger.stray_faults, "fault")
         );
+    }
+}
+
+/// `1 fault`, `2 faults`.
+fn counted(count: u64, what: &str) -> String {
+    match count {
+        1 => format!("1 {what}"),
+        many => format!("{many} {what}s"),
     }
 }

@@ -133,7 +133,11 @@ fn list(path: &Path, args: &VetArgs) -> Result<Report, Error> {
         ..Places::default()
     };
     let prepared = prepare(path, &places)?;
-    let (survey, rows) = prepared.survey(None)?;
+    let (survey, rows) = match prepared.survey(None) {
+        Ok(found) => found,
+        Err(crate::batch::Error::List(error)) => return Err(error),
+        Err(error) => return Err(Error::Findings(vec![error.to_string()])),
+    };
     let mut faults: Vec<String> = survey.list_faults.iter().map(ToString::to_string).collect();
     let (_, readings) = prepared
         .list

@@ -5,6 +5,7 @@
 
 mod checked;
 mod error;
+mod examples;
 mod files;
 mod list;
 mod office;
@@ -14,6 +15,7 @@ mod terms;
 
 pub use checked::{check_pack, schema_of};
 pub use error::Error;
+pub use examples::{Asks, Case, Example, Expect, What, read_examples};
 pub use files::{Files, TextFile, hash_file, hex, read_folder, read_text};
 pub use list::{CaseList, LIST_FILE, Readings, Rows, Sorting, Survey};
 pub use office::{HoldRules, Office, OfficeFile, parse_office, read_office};
