@@ -43,3 +43,44 @@ fn looks() {
     times.sort();
     println!("median of 50: {:?}", times[25]);
 }
+
+#[test]
+fn bench_variants() {
+    if std::env::var("HOURWORTH_BENCH").is_err() { return }
+    let set = TemplateSet::built_in();
+    let get = |name: &str| set.files().find(|(n, _)| *n == name).unwrap().1.to_owned();
+    let page = get("shared/page.typ");
+    let section = get("client/section.typ");
+    let footer_start = page.find("    footer: context {").unwrap();
+    let footer_end = page[footer_start..].find("    },\n  )").unwrap() + footer_start;
+    let no_footer = format!("{}    footer: {{ number{}", &page[..footer_start], &page[footer_end..]);
+    let variants = [
+        ("all", set.clone()),
+        ("no footer context", set.clone().with("shared/page.typ", no_footer.clone())),
+        ("no table", set.clone().with("client/section.typ", section.replace("{%- for k in section.tables %}", "{%- for k in [] %}"))),
+        ("no chart", set.clone().with("client/section.typ", section.replace("{%- if c.width %}", "{%- if 0 %}"))),
+        ("no bars", set.clone().with("client/section.typ", section.replace("{%- if g.title %}", "{%- if 0 %}"))),
+        ("no footer, table, chart, bars", set.clone().with("shared/page.typ", no_footer).with("client/section.typ", section.replace("{%- for k in section.tables %}", "{%- for k in [] %}").replace("{%- if c.width %}", "{%- if 0 %}").replace("{%- if g.title %}", "{%- if 0 %}"))),
+    ];
+    let (assessment, context) = (invented::tenant(), invented::context());
+    for _ in 0..2 {
+    for (name, set) in variants.iter().filter(|v| std::env::var("HOURWORTH_BENCH").is_ok_and(|w| w == "1" || w == v.0)) {
+        let mut typesetter = Typesetter::new(set).unwrap();
+        let mut times: Vec<_> = (0..60)
+            .map(|turn| {
+                let mut context = context.clone();
+                context.number = format!("N-{turn}");
+                let home = invented::Home { award: 900 + turn, rent: 600 + turn, ..invented::TENANT };
+                let assessment = invented::assessment(&home, vec![invented::earner(&home, 0, "Ana", Some((1600, 127_100 + turn as i64 * 100)), &[])]);
+                let begin = std::time::Instant::now();
+                let view = hourworth::statement::letter_view(&assessment, &context).unwrap();
+                let mid = begin.elapsed();
+                typesetter.letter(&view, &context.texts, context.issued).unwrap();
+                (begin.elapsed(), mid)
+            })
+            .collect();
+        times.sort();
+        println!("{name}: {:?} (view {:?})", times[30].0, times[30].1);
+    }}
+    let _ = assessment;
+}
