@@ -374,7 +374,12 @@ fn draw_marks(plot: &Plot<'_>, scale: &Scale, chart: &mut Chart, placer: &mut Pl
     let mut wanted: Vec<Wanted> = vec![];
     for mark in plot.marks.iter().filter(|mark| !mark.label.is_empty()) {
         let target = (scale.x(mark.hours), scale.y(mark.sum));
-        wanted.push(Wanted::new(mark.label.clone(), Weight::Bold, target, plot.size));
+        wanted.push(Wanted::new(
+            mark.label.clone(),
+            Weight::Bold,
+            target,
+            plot.size,
+        ));
     }
     for drop in &plot.drops {
         let middle = f64::midpoint(scale.y(drop.sums.0), scale.y(drop.sums.1));

@@ -74,10 +74,7 @@ pub(super) fn chart(
         let to = trap.to.map_or(place(main.up_to.as_fraction()), place);
         bands.push(Band {
             hours: (place(trap.from), to),
-            label: words.say(
-                "chart.band",
-                &[("hours", &hours_text(hours(trap.from)))],
-            )?,
+            label: words.say("chart.band", &[("hours", &hours_text(hours(trap.from)))])?,
         });
     }
     let plot = Plot {
