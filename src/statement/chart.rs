@@ -21,6 +21,8 @@ pub struct Chart {
     pub height: i64,
     /// Left, top, right and bottom of the plot.
     pub plot: [i64; 4],
+    /// How far the words of a tick of the sums stand above it: half a line.
+    pub lift: i64,
     /// Where zero lies, if inside the plot and not its bottom.
     pub zero: Vec<i64>,
     /// Ticks of the hours, from left to right.
@@ -48,7 +50,7 @@ pub struct Chart {
 pub struct Tick {
     /// Place along the axis.
     pub at: i64,
-    /// Left edge of the words (hours) or right edge (sums).
+    /// Left edge of the words.
     pub edge: i64,
     /// The words.
     pub text: String,
@@ -267,12 +269,13 @@ pub(super) fn draw(plot: &Plot<'_>) -> Chart {
         alt: plot.alt.clone(),
         width: hundredths(plot.width),
         height: hundredths(height),
+        lift: hundredths(size * LINE / 2.0),
         plot: [area.left, area.top, area.right, area.bottom].map(hundredths),
         ..Chart::default()
     };
     for (sum, text) in sum_words {
         let at = scale.y(sum);
-        let edge = hundredths(margin);
+        let edge = hundredths(margin - width(&text, Weight::Regular, size));
         chart.sum_ticks.push(Tick {
             at: hundredths(at),
             edge,
@@ -371,7 +374,12 @@ fn draw_marks(plot: &Plot<'_>, scale: &Scale, chart: &mut Chart, placer: &mut Pl
     let mut wanted: Vec<Wanted> = vec![];
     for mark in plot.marks.iter().filter(|mark| !mark.label.is_empty()) {
         let target = (scale.x(mark.hours), scale.y(mark.sum));
-        wanted.push(Wanted::new(mark.label.clone(), Weight::Bold, target, plot.size));
+        wanted.push(Wanted::new(
+            mark.label.clone(),
+            Weight::Bold,
+            target,
+            plot.size,
+        ));
     }
     for drop in &plot.drops {
         let middle = f64::midpoint(scale.y(drop.sums.0), scale.y(drop.sums.1));

@@ -23,7 +23,7 @@ mod view;
 mod world;
 
 pub use bars::{BarPart, Bars};
-pub use build::letter_view;
+pub use build::{Detail, letter_view};
 pub use chart::{Chart, Dot, Label, Run, Tick};
 pub use context::{LetterContext, LetterDelivery, Office, missing_labels};
 pub use error::StatementError;

@@ -219,7 +219,9 @@ impl Placer {
             if self.taken.iter().any(|other| other.holds(point)) {
                 cost += 12.0;
             }
-            let near = |other: &&(f64, f64)| (other.0 - point.0).hypot(other.1 - point.1) < 2.5;
+            let near = |other: &&(f64, f64)| {
+                (other.0 - point.0).abs() < 2.0 && (other.1 - point.1).abs() < 2.0
+            };
             cost += self.points.iter().filter(near).count() as f64 * 3.0;
         }
         cost

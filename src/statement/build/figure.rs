@@ -74,10 +74,7 @@ pub(super) fn chart(
         let to = trap.to.map_or(place(main.up_to.as_fraction()), place);
         bands.push(Band {
             hours: (place(trap.from), to),
-            label: words.say(
-                "chart.band",
-                &[("hours", &hours_text(hours(trap.from)))],
-            )?,
+            label: words.say("chart.band", &[("hours", &hours_text(hours(trap.from)))])?,
         });
     }
     let plot = Plot {
@@ -129,6 +126,7 @@ fn marks(
     size: f64,
 ) -> Result<Vec<Mark>, StatementError> {
     let today = Words::today(earner);
+    let main_wage = earner.lines.first().map(|line| line.terms.wage);
     let said = |at: Hours, sum: Money| {
         let values = [
             ("hours", hours_text(at)),
@@ -163,7 +161,18 @@ fn marks(
     for step in steps {
         let mut label = wrapped(&step.name, Weight::Bold, size, size * 13.0);
         label.truncate(2);
-        label.push(said(step.to.hours, measure.at(step.to))?);
+        let other_wage = main_wage.is_some_and(|wage| wage != step.line.terms.wage);
+        label.push(if other_wage {
+            let (at, wage) = (
+                hours_text(step.to.hours),
+                words.currency.wage(step.line.terms.wage),
+            );
+            let sum = words.currency.whole(measure.at(step.to));
+            let values = [("hours", at.as_str()), ("wage", &wage), ("sum", &sum)];
+            words.say("chart.hours_wage_sum", &values)?
+        } else {
+            said(step.to.hours, measure.at(step.to))?
+        });
         marks.push(Mark {
             hours: place(step.to.hours.as_fraction()),
             sum: units(measure.at(step.to)),

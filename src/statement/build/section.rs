@@ -1,11 +1,14 @@
 //! One earner's section: first answers, chart, bars, turning points, table, passported help, the way back.
 
+use super::Detail;
 use super::figure;
 use super::table;
 use super::turns;
 use super::words::{Measure, Words, hours_text, listed};
 use crate::measures::{BudgetLine, EarnerResult, ItemKind, OfferMeasures, Point};
 use crate::num::{Fraction, Hours, Money};
+use crate::statement::bars::Bars;
+use crate::statement::chart::Chart;
 use crate::statement::error::StatementError;
 use crate::statement::money::{kept_of_ten, readable};
 use crate::statement::view::{Answer, PartKind, Section};
@@ -60,8 +63,12 @@ pub(super) fn steps<'a>(
     Ok(steps)
 }
 
-/// Builds the section.
-pub(super) fn section(words: &Words<'_>, earner: &EarnerResult) -> Result<Section, StatementError> {
+/// Builds the section that has this place in the letter, counted from 0.
+pub(super) fn section(
+    words: &Words<'_>,
+    earner: &EarnerResult,
+    place: usize,
+) -> Result<Section, StatementError> {
     let measure = words.measure(earner);
     let steps = steps(words, earner)?;
     let mut answers = vec![];
@@ -90,8 +97,16 @@ pub(super) fn section(words: &Words<'_>, earner: &EarnerResult) -> Result<Sectio
             Measure::Net => String::new(),
             Measure::AfterCosts => words.plain("measure.after_costs")?,
         },
-        chart: figure::chart(words, earner, &steps, measure)?,
-        bars: figure::bars(words, earner, &steps, measure)?,
+        chart: match (words.detail, place) {
+            (Detail::Full, _) | (Detail::Brief, 0) => {
+                figure::chart(words, earner, &steps, measure)?
+            }
+            (Detail::Brief, _) => Chart::default(),
+        },
+        bars: match words.detail {
+            Detail::Full => figure::bars(words, earner, &steps, measure)?,
+            Detail::Brief => Bars::default(),
+        },
         turns_heading: words.plain("turns.heading")?,
         turns: turns.texts,
         turns_lead: turns.lead,

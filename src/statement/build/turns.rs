@@ -1,5 +1,6 @@
 //! Turning points in words: at most five, falls and traps between today and the steps first.
 
+use super::Detail;
 use super::section::Step;
 use super::words::{Measure, Words, hours_text, listed};
 use crate::measures::{BudgetLine, EarnerResult, ItemKind, NoGain, Segment, Trap, Turn, TurnKind};
@@ -101,7 +102,10 @@ pub(super) fn turns(
     on_offers(words, main, steps, range, measure, &mut candidates)?;
     let all = candidates.len();
     candidates.sort_by(|a, b| (a.rank, a.away, a.at).cmp(&(b.rank, b.away, b.at)));
-    candidates.truncate(MOST);
+    candidates.truncate(match words.detail {
+        Detail::Full => MOST,
+        Detail::Brief => FILL,
+    });
     let mut position = 0;
     candidates.retain(|found| {
         position += 1;
@@ -426,9 +430,10 @@ fn on_offers(
             jump(turn, measure).0 <= -LEAST_JUMP
                 && turn.hours >= range.0
                 && turn.hours <= step.to.hours
-                && !main.turns.iter().any(|known| {
-                    known.hours == turn.hours && jump(known, measure).0 <= -LEAST_JUMP
-                })
+                && !main
+                    .turns
+                    .iter()
+                    .any(|known| known.hours == turn.hours && jump(known, measure).0 <= -LEAST_JUMP)
         });
         for turn in falls {
             let sum = words.currency.short(-jump(turn, measure));

@@ -1,5 +1,6 @@
 //! Names and numbers as a letter says them.
 
+use super::Detail;
 use crate::measures::{Assessment, EarnerResult, ItemKind, Point, Segment};
 use crate::num::{Fraction, Hours, Money};
 use crate::statement::context::LetterContext;
@@ -57,6 +58,8 @@ pub(super) struct Words<'a> {
     pub assessment: &'a Assessment,
     /// The run, the pack and the delivery.
     pub context: &'a LetterContext,
+    /// How much is said.
+    pub detail: Detail,
     /// How sums are written.
     pub currency: Currency,
     /// The word for the statement period.
@@ -69,6 +72,7 @@ impl<'a> Words<'a> {
     pub fn new(
         assessment: &'a Assessment,
         context: &'a LetterContext,
+        detail: Detail,
     ) -> Result<Words<'a>, StatementError> {
         let texts = &context.texts;
         let key = format!("period.{}", context.period);
@@ -78,6 +82,7 @@ impl<'a> Words<'a> {
         Ok(Words {
             assessment,
             context,
+            detail,
             currency: Currency::of(&context.currency),
             period: texts.say(&key, &[])?,
             months,
