@@ -138,9 +138,22 @@ fn printing_balances_and_says_so() {
     let desk = Desk::new();
     let said = desk.say("print cases --to run --issued 2026-05-05");
     assert_eq!((said.status, said.out.as_str()), (1, ""));
-    insta::assert_snapshot!(steady(&said.err), @"");
-    insta::assert_snapshot!(desk.read("run/held.csv"), @"");
-    insta::assert_snapshot!(desk.read("run/rejects.csv"), @"");
+    insta::assert_snapshot!(steady(&said.err), @r"
+    run <run>, issued 2026-05-05: 4 households = 2 printed + 1 held + 1 rejected
+    2 statements in <time> seconds, in `run`
+    held: the reasons are in `held.csv`
+    rejected: every fault is in `rejects.csv`
+    of no household of the list: 1 fault
+    ");
+    insta::assert_snapshot!(desk.read("run/held.csv"), @r"
+    household,reason
+    HA-03,the client asked to wait
+    ");
+    insta::assert_snapshot!(desk.read("run/rejects.csv"), @r#"
+    household,stage,file,row,column,value,fault,expected
+    HA-04,reading,households.csv,5,tenure,castle,"found `castle`, an unknown choice","`none`, `owner`, `private` or `social`"
+    ,reading,members.csv,7,household,HA-09,"found `HA-09`, a household that is not in the list","a household that `households.csv` names; add the household, or take the row out"
+    "#);
     let statements = contents(&desk.path("run/statements"));
     let names: Vec<_> = statements.keys().map(|name| name.to_str().unwrap()).collect();
     assert_eq!(names, ["HA-01.client.pdf", "HA-02.client.pdf"]);
@@ -150,7 +163,7 @@ fn printing_balances_and_says_so() {
     // Once more: refused, then replaced, and rejects allowed.
     let again = desk.say("print cases --to run --issued 2026-05-05");
     assert_eq!(again.status, 2);
-    insta::assert_snapshot!(again.err, @"");
+    insta::assert_snapshot!(again.err, @"hourworth: `run` holds a run already; give `--replace` to make it again, or choose another folder");
     let before = contents(&desk.path("run"));
     let replaced = desk.say("print cases --to run --issued 2026-05-05 --replace --allow-rejects");
     assert_eq!(replaced.status, 0);
@@ -210,10 +223,13 @@ fn one_household_is_shown() {
     assert_eq!(value["earners"][0]["lines"][1]["line"], "shift");
     let faulty = desk.say("show cases --household HA-04");
     assert_eq!((faulty.status, faulty.out.as_str()), (1, ""));
-    insta::assert_snapshot!(faulty.err, @"");
+    insta::assert_snapshot!(faulty.err, @r"
+    household `HA-04` has faults:
+      households.csv row 5, column tenure: found `castle`, an unknown choice; expected `none`, `owner`, `private` or `social`
+    ");
     let unknown = desk.say("show cases --household HA-77");
     assert_eq!(unknown.status, 2);
-    insta::assert_snapshot!(unknown.err, @"");
+    insta::assert_snapshot!(unknown.err, @"hourworth: the list has no household `HA-77`, found 4 others");
 }
 
 #[test]
@@ -230,10 +246,10 @@ fn the_working_is_numbered_and_an_unknown_offer_is_refused() {
     assert_eq!(pay["value"], "881.23 a month");
     let unknown = desk.say("working cases --household HA-01 --hours 16 --offer night");
     assert_eq!(unknown.status, 2);
-    insta::assert_snapshot!(unknown.err, @"");
+    insta::assert_snapshot!(unknown.err, @"hourworth: adult 1 of `HA-01` has no offer `night`, expected one of `shift`");
     let nobody = desk.say("working cases --household HA-01 --hours 16 --earner 2");
     assert_eq!(nobody.status, 2);
-    insta::assert_snapshot!(nobody.err, @"");
+    insta::assert_snapshot!(nobody.err, @"hourworth: `HA-01` has no adult 2, expected 1 to 1");
 }
 
 #[test]
@@ -242,10 +258,17 @@ fn vetting_prints_every_fault() {
     desk.write("office.toml", "name = \"Harrowmere Advice Rooms\"\ntelefone = \"1\"\n");
     let said = desk.say("vet cases uk office.toml");
     assert_eq!((said.status, said.err.as_str()), (1, ""));
-    insta::assert_snapshot!(said.out, @"");
+    insta::assert_snapshot!(said.out, @r"
+    households.csv row 5, column tenure: found `castle`, an unknown choice; expected `none`, `owner`, `private` or `social`
+    members.csv row 7, column household: found `HA-09`, a household that is not in the list; expected a household that `households.csv` names; add the household, or take the row out
+    case list `cases`: 2 faults, 4 households, 1 of them faulty
+    rule pack `uk`: no fault
+    `office.toml` line 2, column 1: unknown field `telefone`, expected one of `name`, `address`, `phone`, `email`, `hours`, `accreditation`, `signatory`, `privacy`, `complaints`, `hold`
+    office file `office.toml`: 1 fault
+    ");
     let nothing = desk.say("vet nowhere");
     assert_eq!(nothing.status, 2);
-    insta::assert_snapshot!(nothing.err, @"");
+    insta::assert_snapshot!(nothing.err, @"hourworth: `nowhere` is nothing to check, expected a folder with `pack.toml`, `list.toml` or templates, a `.toml` file, or one of the built-in packs: uk");
 }
 
 #[test]
@@ -257,11 +280,14 @@ fn faults_of_the_settings_stop_a_run_before_it_starts() {
     );
     let said = desk.say("print cases --to run");
     assert_eq!(said.status, 2);
-    insta::assert_snapshot!(said.err, @"");
+    insta::assert_snapshot!(said.err, @r"
+    hourworth: `list.toml`: the pack has no date `paiment`; expected one of assessment, payment; did you mean `payment`?
+    `list.toml`: the date `payment` is missing; expected day on which the pay is paid; write `payment = …` below `[dates]`
+    ");
     desk.write("cases/list.toml", "pack = \"uk\"\ndate = 2031-05-04\n[dates]\npayment = 2026-05-29\n");
     let said = desk.say("print cases --to run");
     assert_eq!(said.status, 2);
-    insta::assert_snapshot!(said.err, @"");
+    insta::assert_snapshot!(said.err, @"hourworth: the date `assessment` is 2031-05-04; expected a day from 2024-04-08 to 2027-03-31, which the pack covers");
     assert!(!desk.path("run").exists());
 }
 
@@ -274,11 +300,16 @@ fn the_office_holds_what_it_has_not_seen() {
     );
     let said = desk.say("print cases --to run --office office.toml --no-statements --issued 2026-05-05");
     assert_eq!(said.status, 0, "{}", said.err);
-    insta::assert_snapshot!(desk.read("run/held.csv"), @"");
+    insta::assert_snapshot!(desk.read("run/held.csv"), @r#"
+    household,reason
+    HA-02,"`rent` is assumed, the office wants it seen"
+    HA-03,the client asked to wait
+    HA-03,"`rent` is told, the office wants it seen"
+    "#);
     desk.write("office.toml", "[hold]\nmust_be_seen = [\"rnt\"]\n");
     let said = desk.say("print cases --to other --office office.toml");
     assert_eq!(said.status, 2);
-    insta::assert_snapshot!(said.err, @"");
+    insta::assert_snapshot!(said.err, @"hourworth: `office.toml`: `must_be_seen` names `rnt`, expected a fact of the pack; did you mean `rent`?");
 }
 
 #[test]
