@@ -291,6 +291,8 @@ pub struct AmountUse {
     pub confirmed: bool,
     /// Set where a list changed the amount for a what-if: the reason given.
     pub changed_because: String,
+    /// Title of the instrument that used it first.
+    pub part: String,
 }
 
 /// One line of a working: a figure or an item at one point, in the order of the law.
@@ -310,6 +312,8 @@ pub struct WorkingLine {
     pub inputs: Vec<String>,
     /// Law reference; may be empty for a figure.
     pub law: String,
+    /// The amounts of the law that went in.
+    pub amounts: Vec<AmountUse>,
 }
 
 /// Everything that was worked out for one household.

@@ -678,6 +678,7 @@ pub fn assessment(home: &Home, earners: Vec<EarnerResult>) -> Assessment {
             locator: "p. 1".into(),
             confirmed: true,
             changed_because: String::new(),
+            part: "Invented part".to_owned(),
         }],
     }
 }
