@@ -157,7 +157,7 @@ fn printing_balances_and_says_so() {
     ");
     insta::assert_snapshot!(desk.read("run/rejects.csv"), @r#"
     household,stage,file,row,column,value,fault,expected
-    HA-04,reading,households.csv,5,tenure,castle,"found `castle`, an unknown choice","`none`, `owner`, `private` or `social`"
+    HA-04,reading,households.csv,5,tenure,castle,"found `castle`, an unknown tenure","`none`, `owner`, `private` or `social`"
     ,reading,members.csv,7,household,HA-09,"found `HA-09`, a household that is not in the list","a household that `households.csv` names; add the household, or take the row out"
     "#);
     let statements = contents(&desk.path("run/statements"));
@@ -246,7 +246,7 @@ fn one_household_is_shown() {
     assert_eq!((faulty.status, faulty.out.as_str()), (1, ""));
     insta::assert_snapshot!(faulty.err, @r"
     household `HA-04` has faults:
-      households.csv row 5, column tenure: found `castle`, an unknown choice; expected `none`, `owner`, `private` or `social`
+      households.csv row 5, column tenure: found `castle`, an unknown tenure; expected `none`, `owner`, `private` or `social`
     ");
     let unknown = desk.say("show cases --household HA-77");
     assert_eq!(unknown.status, 2);
@@ -283,7 +283,7 @@ fn vetting_prints_every_fault() {
     let said = desk.say("vet cases uk office.toml");
     assert_eq!((said.status, said.err.as_str()), (1, ""));
     insta::assert_snapshot!(said.out, @r"
-    households.csv row 5, column tenure: found `castle`, an unknown choice; expected `none`, `owner`, `private` or `social`
+    households.csv row 5, column tenure: found `castle`, an unknown tenure; expected `none`, `owner`, `private` or `social`
     members.csv row 7, column household: found `HA-09`, a household that is not in the list; expected a household that `households.csv` names; add the household, or take the row out
     case list `cases`: 2 faults, 4 households, 1 of them faulty
     rule pack `uk`: no fault
