@@ -4,7 +4,7 @@
 //! exist: a participation rate without pay, a rate after the last row. Text that came from a list and that a spreadsheet
 //! would take for a formula gets an apostrophe in front.
 
-use crate::measures::{Assessment, BudgetLine, EarnerResult, Effect, Point, Turn, TurnKind};
+use crate::measures::{Assessment, BudgetLine, EarnerResult, Effect, ItemKind, Point, Turn, TurnKind};
 use crate::num::{Fraction, Hours, Money};
 use serde::{Deserialize, Serialize};
 
@@ -131,16 +131,7 @@ pub fn results(assessment: &Assessment, items: &[String], grid: GridRows) -> Tab
                     point.hours.plain(),
                     point.pay.plain(),
                 ];
-                cells.extend(columns.iter().map(|places| {
-                    match places.as_slice() {
-                        [] => String::new(),
-                        places => places
-                            .iter()
-                            .map(|i| point.items[*i])
-                            .sum::<Money>()
-                            .plain(),
-                    }
-                }));
+                cells.extend(columns.iter().map(|places| item(assessment, places, point)));
                 cells.extend([
                     point.take_home.plain(),
                     point.net.plain(),
@@ -161,6 +152,17 @@ pub fn results(assessment: &Assessment, items: &[String], grid: GridRows) -> Tab
         }
     }
     table
+}
+
+/// The sum of an item over its instances; a passport is the number of those who have it. Empty where the household has no
+/// such item.
+fn item(assessment: &Assessment, places: &[usize], point: &Point) -> String {
+    let sum: Money = places.iter().map(|i| point.items[*i]).sum();
+    match places.first() {
+        None => String::new(),
+        Some(first) if assessment.items[*first].kind == ItemKind::Passport => sum.0.to_string(),
+        Some(_) => sum.plain(),
+    }
 }
 
 /// The points of a line that become rows, each with its word.
@@ -306,7 +308,6 @@ fn turn_cells(assessment: &Assessment, turn: &Turn) -> Vec<String> {
 
 /// `income_tax of adult 1: jump -12.00, slope -0.2000`, with what is zero left out.
 fn effect_words(assessment: &Assessment, effect: &Effect) -> String {
-    use crate::measures::ItemKind;
     let item = &assessment.items[effect.item];
     let whose = match item.adult {
         Some(adult) => format!("{} of adult {}", item.name, adult + 1),

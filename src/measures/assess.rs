@@ -80,9 +80,9 @@ pub fn assess(
         }
         if items.is_empty() {
             items = item_infos(&special);
-            gathered.add(&special, &special.used(&[Hours(0), today]), household, schema);
+            gathered.add(&special, &special.used(&[Hours(0), today]));
         }
-        if let Some(result) = earner(household, schema, &machine, &special, &setting, request, wanted, &mut gathered) {
+        if let Some(result) = earner(household, &machine, &special, &setting, request, wanted, &mut gathered) {
             earners.push(result);
         }
     }
@@ -121,10 +121,8 @@ fn grid(request: &Request, up_to: Hours, named: &[Hours]) -> Vec<Hours> {
     hours
 }
 
-#[expect(clippy::too_many_arguments, reason = "the parts of one household that its earners share")]
 fn earner(
     household: &Household,
-    schema: &Schema,
     machine: &Machine,
     special: &Special<'_>,
     setting: &Setting<'_>,
@@ -161,7 +159,7 @@ fn earner(
         let terms = JobTerms { offer: String::new(), reference: String::new(), wage: setting.wage(), hours: today };
         let step_to = Hours((today.0 + request.more.0).min(16_800));
         lines.push(work_out(special, setting, Asked { terms, grid: &hours, step_to, up_to, at_zero: &at_zero }));
-        gathered.add(special, &special.used(&[Hours(0), today, step_to]), household, schema);
+        gathered.add(special, &special.used(&[Hours(0), today, step_to]));
         target_hours = wanted.map(|sum| target(&quarter_hours(special, &sums, up_to), sum));
     }
     let mut measures = Vec::new();
@@ -170,9 +168,9 @@ fn earner(
         let special = machine.special(&other.facts(machine.program()));
         let record = &household.offers[offer];
         let own = other.own_hours();
-        let terms = JobTerms { offer: record.label.clone(), reference: record.reference.clone(), wage: other.wage(), hours: own };
+        let terms = JobTerms { offer: offer_words(record, measures.len() + 1), reference: record.reference.clone(), wage: other.wage(), hours: own };
         let worked = work_out(&special, &other, Asked { terms, grid: &hours, step_to: own, up_to, at_zero: &at_zero });
-        gathered.add(&special, &special.used(&[own]), household, schema);
+        gathered.add(&special, &special.used(&[own]));
         let quarters = quarter_hours(&special, &sums, up_to);
         if target_hours.is_none() {
             target_hours = wanted.map(|sum| target(&quarters, sum));
@@ -193,6 +191,15 @@ fn earner(
     })
 }
 
+/// The words of an offer, or what stands for them.
+fn offer_words(record: &crate::case::Instance, number: usize) -> String {
+    match (record.label.trim(), record.reference.trim()) {
+        ("", "") => format!("offer {number}"),
+        ("", reference) => format!("offer {reference}"),
+        (words, _) => words.to_owned(),
+    }
+}
+
 /// Facts and amounts of all programs of a household.
 #[derive(Default)]
 struct Gathered {
@@ -201,7 +208,7 @@ struct Gathered {
 }
 
 impl Gathered {
-    fn add(&mut self, special: &Special<'_>, used: &Used, _household: &Household, _schema: &Schema) {
+    fn add(&mut self, special: &Special<'_>, used: &Used) {
         self.facts.extend(used.facts.iter().copied());
         for at in &used.amounts {
             let amount = special.amount(*at);

@@ -170,7 +170,7 @@ impl Builder {
         let scale = scale.unwrap_or(Scales { exact: 1, smooth: 1 });
         let shared = matches!(op, Op::Constant(_) | Op::Fact(_) | Op::Hours);
         let line = if shared { None } else { self.line };
-        self.program.steps.push(Step { op, scale, limit: limit.unwrap_or(0), degree, varies, line })
+        self.program.steps.push(Step { op, scale, limit: limit.unwrap_or(0), degree, varies, line, factor: None })
     }
 
     /// A fixed number.
@@ -262,8 +262,8 @@ impl Builder {
     /// The product.
     pub fn multiply(&mut self, a: Reg, b: Reg) -> Reg {
         match (self.fixed(a), self.fixed(b)) {
-            (Some(x), _) => self.times(b, x),
-            (None, Some(y)) => self.times(a, y),
+            (Some(x), _) => self.times_fixed(b, x, a),
+            (None, Some(y)) => self.times_fixed(a, y, b),
             (None, None) => {
                 let (x, y) = (self.step(a), self.step(b));
                 let scale = (|| {
@@ -277,6 +277,16 @@ impl Builder {
                 self.push(Op::Multiply(a, b), scale, limit, degree, varies)
             }
         }
+    }
+
+    /// The product with a fixed number that stands in a register.
+    fn times_fixed(&mut self, a: Reg, by: Fraction, factor: Reg) -> Reg {
+        let before = self.program.steps.len();
+        let reg = self.times(a, by);
+        if self.program.steps.len() > before && matches!(self.step(reg).op, Op::Times(..)) {
+            self.program.steps[reg].factor = Some(factor);
+        }
+        reg
     }
 
     /// The product with a fixed number.
@@ -349,7 +359,7 @@ impl Builder {
             // Every value of this scale is a multiple of the unit.
             unit.numerator() == 1 && unit.denominator() % scale == 0
         };
-        if already(step.scale.exact) {
+        if !step.varies && already(step.scale.exact) {
             return of;
         }
         let smooth = match manner {

@@ -135,6 +135,8 @@ pub struct Step {
     pub varies: bool,
     /// The figure or item that it belongs to; none for shared constants and facts.
     pub line: Option<Id<Line>>,
+    /// The register of the fixed factor of a product, so that a working can say which amount it was.
+    pub factor: Option<Reg>,
 }
 
 /// A fact that fills a register.

@@ -36,7 +36,7 @@ pub(super) enum StatementKind {
     Record { name: Ident, owner: Ident },
     Choice { name: Ident, words: Vec<Ident> },
     Fact(Box<FactStatement>),
-    Conversion { name: Ident, from: Ident, to: Ident, times: Fraction, law: String },
+    Conversion { name: Ident, from: Ident, to: Ident, times: Fraction },
     Table { name: Ident, keys: Vec<Ident>, gives: TypeName },
     Bands { name: Ident, of: TypeName, bands: Vec<Band> },
     Scale { name: Ident, of: TypeName, gives: TypeName, steps: Vec<ScaleStep> },

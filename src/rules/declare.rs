@@ -179,7 +179,7 @@ impl Declarer<'_> {
         for statement in &part.statements {
             match &statement.what {
                 StatementKind::Fact(fact) => self.fact(fact),
-                StatementKind::Conversion { name, from, to, times, law } if self.fresh("conversion", name) => {
+                StatementKind::Conversion { name, from, to, times } if self.fresh("conversion", name) => {
                     let periods = [from, to].map(|word| {
                         let found = Period::from_word(&word.text);
                         if found.is_none() {
@@ -190,7 +190,7 @@ impl Declarer<'_> {
                         found
                     });
                     if let [Some(from), Some(to)] = periods {
-                        self.pack.conversions.push(ConversionDecl { name: name.text.clone(), from, to, times: *times, law: law.clone() });
+                        self.pack.conversions.push(ConversionDecl { name: name.text.clone(), from, to, times: *times });
                     }
                 }
                 StatementKind::Table { name, keys, gives } if self.fresh("table", name) => {

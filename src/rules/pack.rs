@@ -110,7 +110,6 @@ pub(super) struct ConversionDecl {
     pub from: Period,
     pub to: Period,
     pub times: Fraction,
-    pub law: String,
 }
 
 #[derive(Clone, Debug)]

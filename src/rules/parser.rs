@@ -324,8 +324,9 @@ impl Parser<'_> {
             times = times / by;
         }
         self.word("see")?;
-        let law = self.text("a law reference as a text")?;
-        Ok(StatementKind::Conversion { name, from, to, times, law })
+        // The reference is for whoever reads the pack.
+        self.text("a law reference as a text")?;
+        Ok(StatementKind::Conversion { name, from, to, times })
     }
 
     fn item(&mut self) -> Parsed<StatementKind> {
