@@ -86,7 +86,7 @@ pub fn differences(section: &Section, pack: &Pack) -> Vec<String> {
     section.expects.iter().filter_map(|expect| difference(expect, pack, &schema, &household)).collect()
 }
 
-/// `NAME [of KIND N] [at H hours] [on DAY] = VALUE`, `note NAME` or `held TEXT`.
+/// `NAME [of KIND N] [at H hours] [on DAY] = VALUE`; `note` and `held` stand for the notes and the reasons to hold.
 fn difference(expect: &str, pack: &Pack, schema: &Schema, household: &Household) -> Option<String> {
     let (head, wanted) = expect.split_once(" = ").unwrap_or((expect, ""));
     let words: Vec<&str> = head.split(' ').collect();
@@ -104,8 +104,8 @@ fn difference(expect: &str, pack: &Pack, schema: &Schema, household: &Household)
         Hours(i64::try_from((decimal(h).expect("hours") * Fraction::whole(100)).floor()).expect("hours of a week"))
     });
     match words[0] {
-        "note" => return (special.notes(hours).join(", ") != words[1..].join(" ")).then(|| format!("notes: {:?}", special.notes(hours))),
-        "held" => return (special.holds(hours).join(", ") != words[1..].join(" ")).then(|| format!("holds: {:?}", special.holds(hours))),
+        "note" => return (special.notes(hours).join(", ") != wanted).then(|| format!("notes: {:?}", special.notes(hours))),
+        "held" => return (special.holds(hours).join(", ") != wanted).then(|| format!("holds: {:?}", special.holds(hours))),
         _ => {}
     }
     let (name, kind) = name_and_kind(head);

@@ -108,7 +108,7 @@ impl Section {
         for expect in &self.expects {
             let head = expect.split_once(" = ").map_or("", |(head, _)| head);
             let (name, kind) = name_and_kind(head);
-            if !name.is_empty() && !rules.1.contains(&format!("item {name}:")) && !shown.contains(&(name, kind)) {
+            if !["", "note", "held"].contains(&name) && !rules.1.contains(&format!("item {name}:")) && !shown.contains(&(name, kind)) {
                 rules.1.push_str(&format!("per {kind}\nitem shown_{name}: passport = {name} is {name} see \"shown\"\n"));
                 shown.push((name, kind));
             }

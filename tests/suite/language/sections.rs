@@ -66,6 +66,6 @@ fn a_wrong_section_is_noticed() {
     assert_eq!(judged_of(&format!("--- a ---\n{item}expect: pay = 5.00 a month\n")), [""; 0]);
     assert_eq!(judged_of(&format!("--- a ---\n{item}expect: pay = 6.00 a month\n")), ["  pay = 5.00 a month, expected 6.00 a month"]);
     assert_eq!(judged_of(&format!("--- a ---\n{item}")), ["  the section expects nothing"]);
-    assert_eq!(judged_of(&format!("--- refuses-a ---\n{item}# Fault: 1-2 no\n")).len(), 2);
+    assert_eq!(judged_of(&format!("--- refuses-a ---\n{item}# Fault: 1-2 no\n")), ["  expected test.rules:3 # Fault: 1-2 no"]);
     assert!(!judged_of("--- a ---\nitem pay: pay = money 5 a week see \"s.1\"\nexpect: pay = 5.00 a week\n").is_empty());
 }
