@@ -3,6 +3,7 @@
 mod suite {
     mod batch;
     mod case;
+    mod oracle;
     mod statement;
     mod uk;
 }
