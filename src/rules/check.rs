@@ -446,7 +446,7 @@ impl<'a> Context<'a> {
             faults.push(with_near(Diagnostic::fault(table.span, format!("`{}` is not a table", table.text)).expected("the name of a `table`"), near));
             return None;
         };
-        self.picked(span, faults)?;
+        let dated = self.picked(span, faults)?;
         let decl = &self.pack.tables[at];
         if decl.keys.len() != keys.len() {
             faults.push(
@@ -457,7 +457,7 @@ impl<'a> Context<'a> {
         let wanted: Vec<Ty> = decl.keys.iter().map(|k| k.map_or(Ty::Count, Ty::Choice)).collect();
         let gives = decl.gives;
         let nodes: Vec<Option<Node>> = keys.iter().zip(wanted).map(|(e, ty)| self.wanted(e, ty, faults)).collect();
-        Some(Node { ty: gives, span, what: What::Lookup { table: at, keys: nodes.into_iter().collect::<Option<_>>()? } })
+        Some(Node { ty: gives, span, what: What::Lookup { table: at, dated, keys: nodes.into_iter().collect::<Option<_>>()? } })
     }
 
     /// The kinds that a sum goes over, each with its own reading of condition and body.

@@ -19,7 +19,7 @@ pub(super) struct Lowering<'a> {
     pub builder: Builder,
     done: HashMap<(usize, usize), Reg>,
     amounts: HashMap<(usize, usize), (Id<Amount>, Reg)>,
-    tables: HashMap<usize, Id<Table>>,
+    tables: HashMap<(usize, usize), Id<Table>>,
     pub faults: Vec<Diagnostic>,
     /// Expressions being unrolled; bounded by the parser and by the absence of circles.
     pub part: usize,
@@ -87,11 +87,15 @@ pub(super) fn program(pack: &Pack, dates: &[i64], changes: &[Change], shape: &Sh
     }
 }
 
-/// Lowers a large and a small household at every date at which an amount changes, to find what only shows then.
+/// Lowers a large and a small household at every date at which an amount or table changes, to find what only shows then.
 pub(super) fn probe(pack: &Pack, faults: &mut Vec<Diagnostic>) {
     let mut days: Vec<i64> = vec![pack.manifest.from, pack.manifest.to];
-    for amount in &pack.amounts {
-        days.extend(amount.rows.iter().map(|row| row.from).filter(|day| *day > pack.manifest.from && *day <= pack.manifest.to));
+    let amounts = pack.amounts.iter().flat_map(|amount| &amount.rows);
+    let tables = pack.tables.iter().flat_map(|table| table.rows.iter().map(|entry| &entry.row));
+    for row in amounts.chain(tables) {
+        // A row that ends may leave a gap on the day after.
+        let changes = [row.from, row.to.saturating_add(1)];
+        days.extend(changes.into_iter().filter(|day| *day > pack.manifest.from && *day <= pack.manifest.to));
     }
     days.sort_unstable();
     days.dedup();
@@ -268,12 +272,12 @@ impl Lowering<'_> {
     }
 
     /// A keyed table on its date, dense in its keys.
-    pub(super) fn table(&mut self, at: usize, span: crate::source::Span) -> Id<Table> {
-        if let Some(id) = self.tables.get(&at) {
+    pub(super) fn table(&mut self, at: usize, dated: usize, span: crate::source::Span) -> Id<Table> {
+        if let Some(id) = self.tables.get(&(at, dated)) {
             return *id;
         }
         let decl = &self.pack.tables[at];
-        let day = self.dates[0];
+        let day = self.dates[dated];
         let rows: Vec<_> = decl.rows.iter().filter(|r| r.row.from <= day && day <= r.row.to).collect();
         let mut keys = Vec::new();
         let mut places: Vec<Vec<Option<i64>>> = Vec::new();
@@ -314,7 +318,7 @@ impl Lowering<'_> {
         }
         let values = values.into_iter().map(|v| v.unwrap_or(Fraction::ZERO)).collect();
         let id = self.builder.table(Table { name: decl.name.clone(), keys, values });
-        self.tables.insert(at, id);
+        self.tables.insert((at, dated), id);
         id
     }
 }

@@ -47,9 +47,9 @@ impl Lowering<'_> {
                 self.builder.went_in(&format!("{text} of partner"), reg);
                 reg
             }
-            What::Lookup { table, keys } => {
+            What::Lookup { table, dated, keys } => {
                 let keys = keys.iter().map(|key| self.node(key, scopes)).collect();
-                let id = self.table(*table, node.span);
+                let id = self.table(*table, *dated, node.span);
                 self.builder.lookup(id, keys)
             }
             What::Where { when, give, otherwise } => {

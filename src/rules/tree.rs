@@ -45,7 +45,8 @@ pub(super) enum What {
     Name { target: Target, kind: usize, level: usize, text: String },
     /// The same of the partner; `failing` where there is none.
     Partner { target: Target, level: usize, failing: Option<Box<Node>>, text: String },
-    Lookup { table: usize, keys: Vec<Node> },
+    /// A value of a table, whose rows are picked by a date of the pack.
+    Lookup { table: usize, dated: usize, keys: Vec<Node> },
     Where { when: Box<Node>, give: Box<Node>, otherwise: Box<Node> },
     Extreme { larger: bool, list: Vec<Node> },
     Sum(Vec<Over>),
