@@ -1,5 +1,6 @@
 //! A household to its assessment.
 
+use super::couple::couple;
 use super::line::{Asked, Worked, work_out};
 use super::points::{Sums, Totals, point};
 use super::split::{holding, quarter_hours, rise, target};
@@ -61,6 +62,7 @@ pub fn assess(
     let mut notes: Vec<String> = Vec::new();
     let mut earners = Vec::new();
     let mut items = Vec::new();
+    let mut table = None;
     let mut gathered = Gathered::default();
     for adult in 0..household.instances[ADULT].len() {
         let Some(setting) = Setting::new(household, adult, JobChoice::Today) else { continue };
@@ -80,6 +82,7 @@ pub fn assess(
         }
         if items.is_empty() {
             items = item_infos(&special);
+            table = couple(household, &machine);
             gathered.add(&special, &special.used(&[Hours(0), today]));
         }
         if let Some(result) = earner(household, &machine, &special, &setting, request, wanted, &mut gathered) {
@@ -90,7 +93,7 @@ pub fn assess(
         return Ok(Verdict::Held(reasons));
     }
     let (facts, amounts) = gathered.finish(household, schema);
-    Ok(Verdict::Assessed(Box::new(Assessment { reference: household.reference.clone(), items, earners, notes, facts, amounts })))
+    Ok(Verdict::Assessed(Box::new(Assessment { reference: household.reference.clone(), items, earners, couple: table, notes, facts, amounts })))
 }
 
 fn item_infos(special: &Special<'_>) -> Vec<ItemInfo> {

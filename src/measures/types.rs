@@ -316,6 +316,21 @@ pub struct WorkingLine {
     pub amounts: Vec<AmountUse>,
 }
 
+/// Net income for each pair of the partners' hours, everything else fixed.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct CoupleTable {
+    /// Today's hours of the first and second adult.
+    pub own: (Hours, Hours),
+    /// Hours of the first adult: the rows.
+    pub first: Vec<Hours>,
+    /// Hours of the second adult: the columns.
+    pub second: Vec<Hours>,
+    /// Net income, by row and column.
+    pub net: Vec<Vec<Money>>,
+    /// The same after costs.
+    pub after_costs: Vec<Vec<Money>>,
+}
+
 /// Everything that was worked out for one household.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Assessment {
@@ -325,6 +340,8 @@ pub struct Assessment {
     pub items: Vec<ItemInfo>,
     /// One entry an earner; an adult without a job and without an offer has none.
     pub earners: Vec<EarnerResult>,
+    /// The table of both partners' hours, where both have a job today.
+    pub couple: Option<CoupleTable>,
     /// Names of the pack's notes that hold at today's hours.
     pub notes: Vec<String>,
     /// The facts used, with how they are known.

@@ -659,6 +659,7 @@ pub fn assessment(home: &Home, earners: Vec<EarnerResult>) -> Assessment {
             })
             .collect(),
         earners,
+        couple: None,
         notes: vec![],
         facts: vec![
             fact("", "rent", &format!("£{}.00 a month", home.rent), 's'),
