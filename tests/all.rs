@@ -5,6 +5,7 @@ mod suite {
     mod case;
     mod cli;
     mod language;
+    mod oracle;
     mod statement;
     mod uk;
 }

@@ -1,7 +1,7 @@
 //! Running a pack's published examples. In: a pack and an example. Out: for each published value, what the pack gives.
 
 use super::Books;
-use crate::case::{ListSettings, ReadOptions, read_single, day_of};
+use crate::case::{ListSettings, ReadOptions, day_of, read_single};
 use crate::load::{Case, Expect, Terms, What};
 use crate::num::Fraction;
 use crate::rules::Pack;

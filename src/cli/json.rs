@@ -20,6 +20,12 @@ pub(super) fn json(assessment: &Assessment) -> Value {
             "part": item.part,
         })).collect::<Value>(),
         "earners": assessment.earners.iter().map(|e| earner(assessment, e)).collect::<Value>(),
+        "couple": assessment.couple.as_ref().map(|table| json!({
+            "first": table.first.iter().map(|h| h.plain()).collect::<Vec<_>>(),
+            "second": table.second.iter().map(|h| h.plain()).collect::<Vec<_>>(),
+            "net": sums(&table.net),
+            "after_costs": sums(&table.after_costs),
+        })),
         "notes": assessment.notes,
         "facts": assessment.facts.iter().map(|fact| json!({
             "kind": fact.kind,
@@ -38,6 +44,10 @@ pub(super) fn json(assessment: &Assessment) -> Value {
             "changed_because": amount.changed_because,
         })).collect::<Value>(),
     })
+}
+
+fn sums(rows: &[Vec<Money>]) -> Vec<Vec<String>> {
+    rows.iter().map(|row| row.iter().map(|sum| sum.plain()).collect()).collect()
 }
 
 fn kind(kind: ItemKind) -> &'static str {

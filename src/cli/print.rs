@@ -4,9 +4,9 @@ use super::args::PrintArgs;
 use super::exit::{Exit, Failure};
 use super::progress::Told;
 use crate::batch::{
-    Entry, Existing, FaultRow, GridRows, Inputs, Orders, Places, PoolPlan, Prepared, Record, Reject,
-    RunFolder, RunPlan, Statements, StopFlag, Summary, WorkerCommand, item_columns, pack_folder,
-    prepare, run, setup,
+    Entry, Existing, FaultRow, GridRows, Inputs, Orders, Places, PoolPlan, Prepared, Record,
+    Reject, RunFolder, RunPlan, Statements, StopFlag, Summary, WorkerCommand, item_columns,
+    pack_folder, prepare, run, setup,
 };
 use crate::case::{Fault, RejectedHousehold};
 use chrono::NaiveDate;

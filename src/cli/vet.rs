@@ -59,7 +59,12 @@ pub(super) fn vet(args: &VetArgs) -> Result<Exit, Failure> {
             1 => "1 fault".to_owned(),
             many => format!("{many} faults"),
         };
-        writeln!(out, "{words} `{}`: {count}{}", path.display(), report.counted)?;
+        writeln!(
+            out,
+            "{words} `{}`: {count}{}",
+            path.display(),
+            report.counted
+        )?;
         if !report.faults.is_empty() {
             exit = Exit::Found;
         }

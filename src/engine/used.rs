@@ -5,15 +5,15 @@ use super::machine::Special;
 use crate::index::Id;
 use crate::num::Hours;
 use crate::program::{Amount, FactRef, Op, Reg};
-use std::collections::BTreeSet;
+use std::collections::{BTreeMap, BTreeSet};
 
 /// Facts and amounts in use.
 #[derive(Clone, Debug, Default, PartialEq, Eq)]
 pub struct Used {
     /// Facts, without the varied hours themselves.
     pub facts: BTreeSet<(u32, u32, u32)>,
-    /// Amounts, by their position in the program.
-    pub amounts: BTreeSet<usize>,
+    /// Amounts by their position in the program, with the title of the instrument that used them first.
+    pub amounts: BTreeMap<usize, String>,
 }
 
 impl Special<'_> {
@@ -101,9 +101,9 @@ impl Special<'_> {
             let line = &program.lines[Id::new(at)];
             for amount in &line.amounts {
                 let name = &program.amounts[*amount].name;
-                let reg = line.inputs.iter().find(|(n, _)| n == name).map(|(_, reg)| reg.position());
+                let reg = line.inputs.iter().find(|e| e.name == *name).map(|e| e.reg.position());
                 if reg.is_none_or(|r| reached[r] || !read.contains(&r)) {
-                    used.amounts.insert(amount.position());
+                    used.amounts.entry(amount.position()).or_insert_with(|| line.part.clone());
                 }
             }
         }

@@ -48,7 +48,7 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
                 exact: exact(reg),
                 value: shown(exact(reg), &line.unit, &line.words),
                 span: line.span,
-                inputs: line.inputs.iter().map(|(name, reg)| format!("{name} = {}", bare(exact(*reg), unit_of(program, *reg)))).collect(),
+                inputs: line.inputs.iter().map(|e| format!("{} = {}", e.name, shown(exact(e.reg), &e.unit, &e.words))).collect(),
                 law: line.law.clone(),
                 amounts: line.amounts.iter().map(|a| a.position()).collect(),
             })
@@ -108,12 +108,12 @@ fn needed(program: &Program) -> BTreeSet<usize> {
             .iter_with_id()
             .filter(|(id, _)| lines.contains(&id.position()))
             .flat_map(|(_, line)| line.inputs.iter())
-            .flat_map(|(name, reg)| {
-                let plain = name.trim_end_matches(" of partner");
+            .flat_map(|entered| {
+                let plain = entered.name.trim_end_matches(" of partner");
                 program
                     .lines
                     .iter_with_id()
-                    .filter(move |(_, l)| l.reg == Some(*reg) && l.name == plain)
+                    .filter(move |(_, l)| l.reg == Some(entered.reg) && l.name == plain)
                     .map(|(id, _)| id.position())
             })
             .collect();
@@ -124,15 +124,6 @@ fn needed(program: &Program) -> BTreeSet<usize> {
             return lines;
         }
     }
-}
-
-/// The unit of a register that is some line's.
-fn unit_of(program: &Program, reg: Reg) -> (&str, &[String]) {
-    program.lines.iter().find(|l| l.reg == Some(reg)).map_or(("", &[]), |l| (l.unit.as_str(), l.words.as_slice()))
-}
-
-fn bare(value: Fraction, (unit, words): (&str, &[String])) -> String {
-    shown(value, unit, words)
 }
 
 /// A value with its unit: `1,048.00 a month` is written `1048.00 a month`.
@@ -153,6 +144,10 @@ fn shown(value: Fraction, unit: &str, words: &[String]) -> String {
             format!("{}%", text.trim_end_matches('0').trim_end_matches('.'))
         }
         "hours" => format!("{} hours", trimmed(4)),
+        "date" => i32::try_from(value.floor())
+            .ok()
+            .and_then(chrono::NaiveDate::from_epoch_days)
+            .map_or_else(String::new, |d| d.format("%Y-%m-%d").to_string()),
         "money" => value.decimal(2),
         _ if unit.starts_with("money") => {
             let exact_pennies = (value * Fraction::whole(100)).denominator() == 1;

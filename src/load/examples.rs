@@ -279,7 +279,10 @@ mod tests {
             fault("expressed = false"),
             "`examples/a.toml`: `X`: an example that is not expressed needs a `reason`"
         );
-        assert_eq!(fault("expressed = true"), "`examples/a.toml`: `X`: `date` is missing");
+        assert_eq!(
+            fault("expressed = true"),
+            "`examples/a.toml`: `X`: `date` is missing"
+        );
         assert!(fault("expressed = true\ndait = 1").contains("unknown field `dait`"));
     }
 }

@@ -92,11 +92,11 @@ impl Builder {
     }
 
     /// Notes that a named value went into the open line.
-    pub fn went_in(&mut self, name: &str, reg: Reg) {
+    pub fn went_in(&mut self, entered: super::Entered) {
         if let Some(line) = self.line {
             let inputs = &mut self.program.lines[line].inputs;
-            if !inputs.iter().any(|(n, r)| n == name && *r == reg) {
-                inputs.push((name.to_owned(), reg));
+            if !inputs.contains(&entered) {
+                inputs.push(entered);
             }
         }
     }

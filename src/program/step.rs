@@ -150,6 +150,19 @@ pub struct Input {
     pub reg: Reg,
 }
 
+/// A named value that went into a line.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Entered {
+    /// Its name in the rule text.
+    pub name: String,
+    /// Its register.
+    pub reg: Reg,
+    /// What the value means: `money a month`, `rate` … for printing.
+    pub unit: String,
+    /// Words of a choice, in order; empty for other values.
+    pub words: Vec<String>,
+}
+
 /// A figure or item of one record.
 #[derive(Clone, Debug)]
 pub struct Line {
@@ -167,8 +180,8 @@ pub struct Line {
     pub reg: Option<Reg>,
     /// Where it stands in the rule text.
     pub span: Span,
-    /// The lines, facts and amounts that went in, with their registers, as named in the rule text.
-    pub inputs: Vec<(String, Reg)>,
+    /// The lines, facts and amounts that went in, as named in the rule text.
+    pub inputs: Vec<Entered>,
     /// The amounts that went in.
     pub amounts: Vec<Id<Amount>>,
     /// What the value means: `money a month`, `rate` … for printing.

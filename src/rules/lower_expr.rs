@@ -7,7 +7,7 @@ use super::tree::{Limit, Node, Over, Target, What};
 use super::types::Ty;
 use crate::diag::Diagnostic;
 use crate::num::Fraction;
-use crate::program::{Manner, Reg};
+use crate::program::{Entered, Manner, Reg};
 use crate::source::Span;
 
 /// The records at hand: kind and position, the innermost last.
@@ -21,7 +21,7 @@ impl Lowering<'_> {
             What::Amount { amount, dated } => {
                 let reg = self.amount(*amount, *dated);
                 let name = self.pack.amounts[*amount].name.clone();
-                self.builder.went_in(&name, reg);
+                self.went_in(name, reg, node.ty);
                 reg
             }
             What::Missing { amount, dated } => {
@@ -33,7 +33,7 @@ impl Lowering<'_> {
                 let (from, instance) = scopes[*level];
                 let instance = self.climb(from, instance, *kind).expect("a checked name can be reached");
                 let reg = self.target(*target, *kind, instance);
-                self.builder.went_in(text, reg);
+                self.went_in(text.clone(), reg, node.ty);
                 reg
             }
             What::Partner { target, level, failing, text } => {
@@ -45,7 +45,7 @@ impl Lowering<'_> {
                     (None, Some(failing)) => self.node(failing, scopes),
                     (None, None) => self.builder.constant(Fraction::ZERO),
                 };
-                self.builder.went_in(&format!("{text} of partner"), reg);
+                self.went_in(format!("{text} of partner"), reg, node.ty);
                 reg
             }
             What::Lookup { table, dated, keys } => {
@@ -169,6 +169,14 @@ impl Lowering<'_> {
                 self.builder.either(left, right)
             }
         }
+    }
+
+    fn went_in(&mut self, name: String, reg: Reg, ty: Ty) {
+        let words = match ty {
+            Ty::Choice(choice) => self.pack.choices[choice].words.clone(),
+            _ => Vec::new(),
+        };
+        self.builder.went_in(Entered { name, reg, unit: ty.to_string(), words });
     }
 
     fn target(&mut self, target: Target, kind: usize, instance: usize) -> Reg {

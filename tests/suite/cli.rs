@@ -69,7 +69,10 @@ impl Desk {
             lines.map(|line| format!("{line}\n")).collect()
         };
         desk.write("cases/households.csv", &without(HOUSEHOLDS, "HA-04"));
-        desk.write("cases/members.csv", &without(&without(MEMBERS, "HA-04"), "HA-09"));
+        desk.write(
+            "cases/members.csv",
+            &without(&without(MEMBERS, "HA-04"), "HA-09"),
+        );
         desk.write("cases/jobs.csv", &without(JOBS, "HA-04"));
         desk
     }
@@ -126,7 +129,10 @@ fn contents(folder: &Path) -> BTreeMap<PathBuf, Vec<u8>> {
             if path.is_dir() {
                 folders.push(path);
             } else if !path.ends_with("timings.json") && !path.ends_with(".hourworth-lock") {
-                all.insert(path.strip_prefix(folder).unwrap().to_owned(), fs::read(path).unwrap());
+                all.insert(
+                    path.strip_prefix(folder).unwrap().to_owned(),
+                    fs::read(path).unwrap(),
+                );
             }
         }
     }
@@ -151,11 +157,14 @@ fn printing_balances_and_says_so() {
     ");
     insta::assert_snapshot!(desk.read("run/rejects.csv"), @r#"
     household,stage,file,row,column,value,fault,expected
-    HA-04,reading,households.csv,5,tenure,castle,"found `castle`, an unknown choice","`none`, `owner`, `private` or `social`"
+    HA-04,reading,households.csv,5,tenure,castle,"found `castle`, an unknown tenure","`none`, `owner`, `private` or `social`"
     ,reading,members.csv,7,household,HA-09,"found `HA-09`, a household that is not in the list","a household that `households.csv` names; add the household, or take the row out"
     "#);
     let statements = contents(&desk.path("run/statements"));
-    let names: Vec<_> = statements.keys().map(|name| name.to_str().unwrap()).collect();
+    let names: Vec<_> = statements
+        .keys()
+        .map(|name| name.to_str().unwrap())
+        .collect();
     assert_eq!(names, ["HA-01.client.pdf", "HA-02.client.pdf"]);
     assert!(statements.values().all(|pdf| pdf.starts_with(b"%PDF-")));
     // No name and no address in what a log could hold.
@@ -204,7 +213,13 @@ fn a_list_out_of_order_gives_the_same_tables() {
         );
     }
     assert!(!desk.path("turned/sorting").exists());
-    assert!(!desk.path("turned/statements").read_dir().unwrap().any(|_| true));
+    assert!(
+        !desk
+            .path("turned/statements")
+            .read_dir()
+            .unwrap()
+            .any(|_| true)
+    );
 }
 
 #[test]
@@ -213,7 +228,13 @@ fn one_household_is_shown() {
     let said = desk.say("show cases --household ha-01");
     assert_eq!((said.status, said.err.as_str()), (0, ""));
     assert!(said.out.starts_with("household HA-01\n"), "{}", said.out);
-    for part in ["turning points:", "> 16", "offer shift: 30 hours", "holding hours:", "T today, 1 shift"] {
+    for part in [
+        "turning points:",
+        "> 16",
+        "offer shift: 30 hours",
+        "holding hours:",
+        "T today, 1 shift",
+    ] {
         assert!(said.out.contains(part), "{part}: {}", said.out);
     }
     assert!(!said.out.contains("Quill"));
@@ -225,7 +246,7 @@ fn one_household_is_shown() {
     assert_eq!((faulty.status, faulty.out.as_str()), (1, ""));
     insta::assert_snapshot!(faulty.err, @r"
     household `HA-04` has faults:
-      households.csv row 5, column tenure: found `castle`, an unknown choice; expected `none`, `owner`, `private` or `social`
+      households.csv row 5, column tenure: found `castle`, an unknown tenure; expected `none`, `owner`, `private` or `social`
     ");
     let unknown = desk.say("show cases --household HA-77");
     assert_eq!(unknown.status, 2);
@@ -255,11 +276,14 @@ fn the_working_is_numbered_and_an_unknown_offer_is_refused() {
 #[test]
 fn vetting_prints_every_fault() {
     let desk = Desk::new();
-    desk.write("office.toml", "name = \"Harrowmere Advice Rooms\"\ntelefone = \"1\"\n");
+    desk.write(
+        "office.toml",
+        "name = \"Harrowmere Advice Rooms\"\ntelefone = \"1\"\n",
+    );
     let said = desk.say("vet cases uk office.toml");
     assert_eq!((said.status, said.err.as_str()), (1, ""));
     insta::assert_snapshot!(said.out, @r"
-    households.csv row 5, column tenure: found `castle`, an unknown choice; expected `none`, `owner`, `private` or `social`
+    households.csv row 5, column tenure: found `castle`, an unknown tenure; expected `none`, `owner`, `private` or `social`
     members.csv row 7, column household: found `HA-09`, a household that is not in the list; expected a household that `households.csv` names; add the household, or take the row out
     case list `cases`: 2 faults, 4 households, 1 of them faulty
     rule pack `uk`: no fault
@@ -284,7 +308,10 @@ fn faults_of_the_settings_stop_a_run_before_it_starts() {
     hourworth: `list.toml`: the pack has no date `paiment`; expected one of assessment, payment; did you mean `payment`?
     `list.toml`: the date `payment` is missing; expected day on which the pay is paid; write `payment = …` below `[dates]`
     ");
-    desk.write("cases/list.toml", "pack = \"uk\"\ndate = 2031-05-04\n[dates]\npayment = 2026-05-29\n");
+    desk.write(
+        "cases/list.toml",
+        "pack = \"uk\"\ndate = 2031-05-04\n[dates]\npayment = 2026-05-29\n",
+    );
     let said = desk.say("print cases --to run");
     assert_eq!(said.status, 2);
     insta::assert_snapshot!(said.err, @"hourworth: the date `assessment` is 2031-05-04; expected a day from 2024-04-08 to 2027-03-31, which the pack covers");
@@ -298,7 +325,8 @@ fn the_office_holds_what_it_has_not_seen() {
         "office.toml",
         "name = \"Harrowmere Advice Rooms\"\n[hold]\nmust_be_seen = [\"rent\"]\nwithout_address = true\n",
     );
-    let said = desk.say("print cases --to run --office office.toml --no-statements --issued 2026-05-05");
+    let said =
+        desk.say("print cases --to run --office office.toml --no-statements --issued 2026-05-05");
     assert_eq!(said.status, 0, "{}", said.err);
     insta::assert_snapshot!(desk.read("run/held.csv"), @r#"
     household,reason
@@ -322,10 +350,23 @@ fn the_results_explain_themselves() {
         .records()
         .map(|row| {
             let row = row.unwrap();
-            header.iter().map(str::to_owned).zip(row.iter().map(str::to_owned)).collect()
+            header
+                .iter()
+                .map(str::to_owned)
+                .zip(row.iter().map(str::to_owned))
+                .collect()
         })
         .collect();
-    let points: Vec<_> = rows.iter().map(|row| (row["household"].as_str(), row["line"].as_str(), row["point"].as_str())).collect();
+    let points: Vec<_> = rows
+        .iter()
+        .map(|row| {
+            (
+                row["household"].as_str(),
+                row["line"].as_str(),
+                row["point"].as_str(),
+            )
+        })
+        .collect();
     assert_eq!(
         points,
         [
@@ -343,7 +384,9 @@ fn the_results_explain_themselves() {
     assert_eq!(rows[0]["item:free_prescriptions"], "1");
     assert_eq!(rows[1]["pay"], "881.23");
     // What a row says of the step must follow from the sums of the two rows.
-    let pennies = |row: &BTreeMap<String, String>, name: &str| -> i64 { row[name].replace('.', "").parse().unwrap() };
+    let pennies = |row: &BTreeMap<String, String>, name: &str| -> i64 {
+        row[name].replace('.', "").parse().unwrap()
+    };
     let kept = pennies(&rows[2], "net") - pennies(&rows[1], "net");
     let paid = pennies(&rows[2], "pay") - pennies(&rows[1], "pay");
     let rate = 10_000 - (kept * 20_000 + paid) / (2 * paid);
@@ -355,7 +398,13 @@ fn a_form_is_written_once_and_never_over_a_file() {
     let desk = Desk::new();
     let said = desk.say("form uk --to blank");
     assert_eq!((said.status, said.err.as_str()), (0, ""));
-    assert!(said.out.lines().any(|line| line.replace('\\', "/") == "blank/households.csv"), "{}", said.out);
+    assert!(
+        said.out
+            .lines()
+            .any(|line| line.replace('\\', "/") == "blank/households.csv"),
+        "{}",
+        said.out
+    );
     desk.write("blank/jobs.csv", "mine");
     let again = desk.say("form uk --to blank");
     assert_eq!((again.status, again.out.as_str()), (2, ""));
@@ -368,10 +417,20 @@ fn the_published_examples_are_run() {
     let said = desk.say("prove uk");
     let last = said.out.lines().last().unwrap();
     assert!(last.contains(" examples: "), "{last}");
-    let failed: Vec<&str> = said.out.lines().filter(|line| line.starts_with("not met")).collect();
+    let failed: Vec<&str> = said
+        .out
+        .lines()
+        .filter(|line| line.starts_with("not met"))
+        .collect();
     assert_eq!(said.status, i32::from(!failed.is_empty()));
     assert!(failed.is_empty(), "{}", failed.join("\n"));
-    assert!(said.out.lines().filter(|line| line.starts_with("met")).count() > 50);
+    assert!(
+        said.out
+            .lines()
+            .filter(|line| line.starts_with("met"))
+            .count()
+            > 50
+    );
 }
 
 #[test]
@@ -379,8 +438,18 @@ fn help_and_wrong_arguments() {
     let desk = Desk::new();
     let help = desk.say("--help");
     assert_eq!(help.status, 0);
-    assert!(!help.out.contains("worker\n") && !help.out.contains("  worker"), "{}", help.out);
+    assert!(
+        !help.out.contains("worker\n") && !help.out.contains("  worker"),
+        "{}",
+        help.out
+    );
     let wrong = desk.say("working cases --household HA-01 --hours 1,5");
     assert_eq!((wrong.status, wrong.out.as_str()), (2, ""));
-    assert!(wrong.err.contains("found `1,5`, expected hours from 0 to 168"), "{}", wrong.err);
+    assert!(
+        wrong
+            .err
+            .contains("found `1,5`, expected hours from 0 to 168"),
+        "{}",
+        wrong.err
+    );
 }

@@ -659,6 +659,7 @@ pub fn assessment(home: &Home, earners: Vec<EarnerResult>) -> Assessment {
             })
             .collect(),
         earners,
+        couple: None,
         notes: vec![],
         facts: vec![
             fact("", "rent", &format!("£{}.00 a month", home.rent), 's'),
@@ -678,6 +679,7 @@ pub fn assessment(home: &Home, earners: Vec<EarnerResult>) -> Assessment {
             locator: "p. 1".into(),
             confirmed: true,
             changed_because: String::new(),
+            part: "Invented part".to_owned(),
         }],
     }
 }

@@ -420,6 +420,7 @@ fn changed_and_unconfirmed_amounts_are_named() {
         locator: "p. 2".into(),
         confirmed,
         changed_because: because.into(),
+        part: "Invented part".into(),
     };
     assessment.amounts.push(amount(
         "work_allowance",

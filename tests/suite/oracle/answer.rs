@@ -1,0 +1,727 @@
+//! The oracle: rule text evaluated as it reads, recursively, on numbers of any size. In: a book, days, a home and hours. Out:
+//! every item, the holds and the notes. Nothing is compiled, unrolled or scaled; the one shortcut is that what was worked
+//! out once for a home and does not vary with the hours is remembered.
+//!
+//! Two manners of rounding: by the `law`, and `smooth`, where a rounding of what varies with the earner's hours is left out unless
+//! it says `as steps`.
+
+use super::book::{ADULT, Book, Condition, JOB, Ladder, Limit, Row};
+use super::reader::{Expr, Search, Sign, Test, Way};
+use super::text::{Q, full_years, q, whole};
+use num_bigint::BigInt;
+use num_traits::{ToPrimitive, Zero};
+use std::cell::RefCell;
+use std::collections::HashMap;
+
+/// Which roundings are made.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub enum Mode {
+    Law,
+    Smooth,
+}
+
+/// A record: its owner and its facts in units of the list.
+#[derive(Clone, Debug)]
+pub struct Record {
+    pub owner: usize,
+    pub values: Vec<i64>,
+}
+
+/// The records of a household by kind, and the job whose hours vary.
+#[derive(Clone, Debug)]
+pub struct Home {
+    pub records: Vec<Vec<Record>>,
+    pub varied_job: usize,
+}
+
+/// What an expression comes to.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Value {
+    Number(Q),
+    Truth(bool),
+    Word(String),
+}
+
+impl Value {
+    fn number(self) -> Q {
+        match self {
+            Value::Number(value) => value,
+            Value::Truth(yes) => whole(i128::from(yes)),
+            Value::Word(word) => panic!("`{word}` is no quantity"),
+        }
+    }
+
+    fn truth(self) -> bool {
+        match self {
+            Value::Truth(yes) => yes,
+            Value::Number(value) => !value.is_zero(),
+            Value::Word(word) => panic!("`{word}` is not yes or no"),
+        }
+    }
+}
+
+/// What a value depends on.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Course {
+    /// On the pack, the dates and who lives there alone: it has this value.
+    Fixed(Value),
+    /// On facts too.
+    Steady,
+    /// On the hours of the varied job too.
+    Varies,
+}
+
+impl Course {
+    fn is(&self, yes: bool) -> bool {
+        matches!(self, Course::Fixed(value) if value.clone().truth() == yes)
+    }
+
+    fn rank(&self) -> u8 {
+        match self {
+            Course::Fixed(_) => 0,
+            Course::Steady => 1,
+            Course::Varies => 2,
+        }
+    }
+}
+
+/// One of several results, by a condition that may not be known.
+fn either_course(when: &Course, yes: Course, no: Course) -> Course {
+    match when {
+        Course::Fixed(known) => if known.clone().truth() { yes } else { no },
+        Course::Steady | Course::Varies if matches!(yes, Course::Fixed(_)) && yes == no => yes,
+        Course::Steady | Course::Varies => [when.clone(), yes, no].into_iter().max_by_key(Course::rank).expect("three courses"),
+    }
+}
+
+/// Records at hand: kind and position, the innermost last.
+type Scopes = Vec<(usize, usize)>;
+
+/// Where an expression is said: the part, which picks the amounts, and the records at hand.
+struct Place<'p> {
+    part: usize,
+    scopes: &'p Scopes,
+}
+
+impl Place<'_> {
+    fn inside(&self, kind: usize, record: usize) -> Scopes {
+        let mut scopes = self.scopes.clone();
+        scopes.push((kind, record));
+        scopes
+    }
+
+    fn here(&self) -> (usize, usize) {
+        *self.scopes.last().expect("an expression is said of a record")
+    }
+}
+
+/// One evaluation: the hours, the manner of rounding, and what was worked out in it.
+pub struct Run {
+    hours: Q,
+    mode: Mode,
+    done: RefCell<HashMap<(usize, usize), Value>>,
+}
+
+/// An item of one record: name, kind, record.
+pub type ItemOf = (String, usize, usize);
+
+/// The oracle for one home on given days.
+pub struct Oracle<'a> {
+    book: &'a Book,
+    days: Vec<i64>,
+    home: Home,
+    courses: RefCell<HashMap<(usize, usize), Course>>,
+    steady: RefCell<HashMap<(usize, usize), Value>>,
+}
+
+/// `value` as a multiple of `unit`.
+pub fn rounded(value: &Q, way: Way, unit: &Q) -> Q {
+    let units = value / unit;
+    let half = q(1, 2);
+    let whole_units = match way {
+        Way::Up => units.ceil(),
+        Way::Down => units.floor(),
+        Way::HalfUp => (units + half).floor(),
+        Way::HalfDown => (units - half).ceil(),
+        Way::HalfEven => {
+            let (low, high) = ((&units - &half).ceil(), (&units + &half).floor());
+            let even = |n: &Q| (n.to_integer() % BigInt::from(2)).is_zero();
+            if even(&low) { low } else { high }
+        }
+    };
+    whole_units * unit
+}
+
+impl<'a> Oracle<'a> {
+    pub fn new(book: &'a Book, days: Vec<i64>, home: Home) -> Oracle<'a> {
+        Oracle { book, days, home, courses: RefCell::default(), steady: RefCell::default() }
+    }
+
+    /// All items at these hours, in the order of the law.
+    pub fn items(&self, hours: &Q, mode: Mode) -> Vec<(ItemOf, Q)> {
+        let run = self.run(hours, mode);
+        let mut out = Vec::new();
+        for (at, figure) in self.book.figures.iter().enumerate().filter(|(_, f)| f.item.is_some()) {
+            for record in 0..self.count(figure.kind) {
+                out.push(((figure.name.clone(), figure.kind, record), self.figure(at, record, &run).number()));
+            }
+        }
+        out
+    }
+
+    /// A figure or item of one record by the law; none where the book has none of that name, or its value is a word.
+    pub fn figure_by_law(&self, name: &str, kind: usize, record: usize, hours: &Q) -> Option<Q> {
+        let at = *self.book.names[kind].get(name)?;
+        match self.figure(at, record, &self.run(hours, Mode::Law)) {
+            Value::Word(_) => None,
+            value => Some(value.number()),
+        }
+    }
+
+    /// Reasons to hold, by the law.
+    pub fn holds(&self, hours: &Q) -> Vec<String> {
+        self.conditions(&self.book.holds, hours)
+    }
+
+    /// Names of the notes that hold, by the law.
+    pub fn notes(&self, hours: &Q) -> Vec<String> {
+        self.conditions(&self.book.notes, hours)
+    }
+
+    fn conditions(&self, list: &[Condition], hours: &Q) -> Vec<String> {
+        let run = self.run(hours, Mode::Law);
+        let mut out = Vec::new();
+        for condition in list {
+            for kind in &condition.kinds {
+                let holds = |record| self.value(&condition.when, &Place { part: condition.part, scopes: &vec![(*kind, record)] }, &run).truth();
+                if (0..self.count(*kind)).any(holds) && !out.contains(&condition.text) {
+                    out.push(condition.text.clone());
+                }
+            }
+        }
+        out.sort();
+        out
+    }
+
+    fn run(&self, hours: &Q, mode: Mode) -> Run {
+        Run { hours: hours.clone(), mode, done: RefCell::default() }
+    }
+
+    fn count(&self, kind: usize) -> usize {
+        self.home.records[kind].len()
+    }
+
+    /// The record of kind `wanted` that a record is, or belongs to.
+    fn owner(&self, kind: usize, record: usize, wanted: usize) -> Option<usize> {
+        if kind == wanted {
+            return Some(record);
+        }
+        self.owner(self.book.kinds[kind].owner?, self.home.records[kind][record].owner, wanted)
+    }
+
+    fn figure(&self, at: usize, record: usize, run: &Run) -> Value {
+        if let Some(value) = self.steady.borrow().get(&(at, record)).or(run.done.borrow().get(&(at, record))) {
+            return value.clone();
+        }
+        let figure = &self.book.figures[at];
+        let scopes = vec![(figure.kind, record)];
+        let mut value = self.value(&figure.expr, &Place { part: figure.part, scopes: &scopes }, run);
+        let varies = self.figure_course(at, record) == Course::Varies;
+        if figure.item.as_deref().is_some_and(|kind| kind != "passport") && (run.mode == Mode::Law || !varies) {
+            value = Value::Number(rounded(&value.number(), Way::HalfUp, &q(1, 100)));
+        }
+        let done = if varies { &run.done } else { &self.steady };
+        done.borrow_mut().insert((at, record), value.clone());
+        value
+    }
+
+    /// A fact of a record.
+    fn fact(&self, kind: usize, record: usize, fact: usize, run: &Run) -> Value {
+        if (kind, record, fact) == (JOB, self.home.varied_job, 0) {
+            return Value::Number(run.hours.clone());
+        }
+        let value = self.home.records[kind][record].values[fact];
+        let decl = &self.book.kinds[kind].facts[fact];
+        match (decl.ty.as_str(), self.book.choices.get(&decl.ty)) {
+            ("yesno", _) => Value::Truth(value != 0),
+            (_, Some(words)) => Value::Word(words[usize::try_from(value).expect("a position")].clone()),
+            (_, None) => Value::Number(q(i128::from(value), i128::from(decl.units))),
+        }
+    }
+
+    /// The record that a name at hand belongs to: the innermost record first, then its owners, then the next one out.
+    fn nearest(&self, name: &str, scopes: &Scopes) -> Option<(usize, usize)> {
+        for (kind, record) in scopes.iter().rev() {
+            let (mut kind, mut record) = (*kind, *record);
+            loop {
+                if self.book.names[kind].contains_key(name) || self.book.kinds[kind].facts.iter().any(|f| f.name == name) {
+                    return Some((kind, record));
+                }
+                let Some(owner) = self.book.kinds[kind].owner else { break };
+                record = self.home.records[kind][record].owner;
+                kind = owner;
+            }
+        }
+        None
+    }
+
+    /// A figure, item or fact of a record.
+    fn of_record(&self, name: &str, kind: usize, record: usize, run: &Run) -> Value {
+        match self.book.names[kind].get(name) {
+            Some(figure) => self.figure(*figure, record, run),
+            None => {
+                let fact = self.book.kinds[kind].facts.iter().position(|f| f.name == name).unwrap_or_else(|| panic!("`{name}` is known"));
+                self.fact(kind, record, fact, run)
+            }
+        }
+    }
+
+    /// The row that holds on the date of a part.
+    fn picked<'r>(&self, rows: impl Iterator<Item = &'r Row>, part: usize) -> Vec<&'r Row> {
+        let day = self.days[self.book.dated[part].expect("a part that uses amounts is dated")];
+        rows.filter(|row| row.from <= day && day <= row.to).collect()
+    }
+
+    /// The adult of a relation, or the record of a kind, that `of` means.
+    fn relation(&self, whose: &str, place: &Place<'_>) -> (usize, Option<usize>) {
+        let kind = if whose == "partner" { ADULT } else { self.book.kinds_of(whose)[0] };
+        let found = place.scopes.iter().rev().find_map(|(k, r)| self.owner(*k, *r, kind)).expect("the relation is at hand");
+        if whose != "partner" {
+            return (kind, Some(found));
+        }
+        (kind, (0..self.count(ADULT)).find(|adult| *adult != found))
+    }
+
+    /// The records that a sum, count or search goes over: those of the record at hand where the kind belongs below it, else all.
+    fn among(&self, kind: usize, place: &Place<'_>) -> Vec<usize> {
+        let (here, at) = place.here();
+        (0..self.count(kind)).filter(|r| kind == here || self.owner(kind, *r, here).is_none_or(|owner| owner == at)).collect()
+    }
+
+    fn eligible(&self, over: &Search, kind: usize, record: usize, place: &Place<'_>, run: &Run) -> bool {
+        over.with.as_ref().is_none_or(|with| self.value(with, &Place { part: place.part, scopes: &place.inside(kind, record) }, run).truth())
+    }
+
+    fn key(&self, over: &Search, kind: usize, record: usize, place: &Place<'_>, run: &Run) -> Q {
+        self.name(&over.by, &Place { part: place.part, scopes: &place.inside(kind, record) }, run).number()
+    }
+
+    /// Whether `a` stands before `b`: the smaller key, `down` the larger; a tie keeps the order of the list.
+    fn before(&self, over: &Search, kind: usize, a: usize, b: usize, place: &Place<'_>, run: &Run) -> bool {
+        let (x, y) = (self.key(over, kind, a, place, run), self.key(over, kind, b, place, run));
+        if x == y {
+            a < b
+        } else if over.down {
+            x > y
+        } else {
+            x < y
+        }
+    }
+
+    /// The one of these that stands before all others.
+    fn leading(&self, over: &Search, kind: usize, list: &[usize], place: &Place<'_>, run: &Run) -> Option<usize> {
+        list.iter().copied().find(|a| list.iter().all(|b| a == b || self.before(over, kind, *a, *b, place, run)))
+    }
+
+    /// A bare name.
+    fn name(&self, name: &str, place: &Place<'_>, run: &Run) -> Value {
+        if let Some((kind, record)) = self.nearest(name, place.scopes) {
+            return self.of_record(name, kind, record, run);
+        }
+        if let Some(rows) = self.book.amounts.get(name) {
+            // Nothing is known on that day: the household is held.
+            let value = self.picked(rows.iter(), place.part).first().and_then(|row| row.value.clone()).unwrap_or_default();
+            return Value::Number(value);
+        }
+        if let Some(date) = self.date(name) {
+            return Value::Number(whole(i128::from(self.days[date])));
+        }
+        Value::Word(name.to_owned())
+    }
+
+    fn date(&self, name: &str) -> Option<usize> {
+        self.book.dates.iter().position(|d| d == name).or((name == "date").then_some(0))
+    }
+
+    fn value(&self, expr: &Expr, place: &Place<'_>, run: &Run) -> Value {
+        let number = |e: &Expr| self.value(e, place, run).number();
+        let truth = |e: &Expr| self.value(e, place, run).truth();
+        match expr {
+            Expr::Number(value) => Value::Number(value.clone()),
+            Expr::Day(day) => Value::Number(whole(i128::from(*day))),
+            Expr::YesNo(yes) => Value::Truth(*yes),
+            Expr::Name(name) => self.name(name, place, run),
+            Expr::Of { name, whose, failing } => match self.relation(whose, place) {
+                (kind, Some(record)) => self.of_record(name, kind, record, run),
+                (_, None) => self.value(failing.as_ref().expect("something stands in"), place, run),
+            },
+            Expr::Lookup { table, keys } => {
+                let keys: Vec<Value> = keys.iter().map(|k| self.value(k, place, run)).collect();
+                Value::Number(self.looked_up(table, &keys, place.part))
+            }
+            Expr::Where { when, give, otherwise } => self.value(if truth(when) { give } else { otherwise }, place, run),
+            Expr::Larger(list) => Value::Number(list.iter().map(number).max().expect("a list has an entry")),
+            Expr::Smaller(list) => Value::Number(list.iter().map(number).min().expect("a list has an entry")),
+            Expr::SumOver { over, body } => {
+                let mut total = Q::zero();
+                for (kind, record) in self.counted(over, place, run) {
+                    total += self.value(body, &Place { part: place.part, scopes: &place.inside(kind, record) }, run).number();
+                }
+                Value::Number(total)
+            }
+            Expr::CountOf(over) => Value::Number(whole(self.counted(over, place, run).len() as i128)),
+            Expr::Any(over) => Value::Truth(!self.counted(over, place, run).is_empty()),
+            Expr::Every(over) => {
+                let all: usize = self.book.kinds_of(&over.kind).iter().map(|kind| self.among(*kind, place).len()).sum();
+                Value::Truth(self.counted(over, place, run).len() == all)
+            }
+            Expr::First { over, give, failing } => {
+                let kind = self.book.kinds_of(&over.kind)[0];
+                let list: Vec<usize> = self.among(kind, place).into_iter().filter(|r| self.eligible(over, kind, *r, place, run)).collect();
+                match self.leading(over, kind, &list, place, run) {
+                    Some(record) => self.value(give, &Place { part: place.part, scopes: &place.inside(kind, record) }, run),
+                    None => self.value(failing, place, run),
+                }
+            }
+            Expr::Place(over) => {
+                let (kind, me) = place.here();
+                let others = (0..self.count(kind)).filter(|other| *other != me);
+                let ahead = others.filter(|other| self.eligible(over, kind, *other, place, run) && self.before(over, kind, *other, me, place, run));
+                Value::Number(whole(1 + ahead.count() as i128))
+            }
+            Expr::Years { from, to } => {
+                let day = |e: &Expr| number(e).to_integer().to_i64().expect("a day");
+                Value::Number(whole(i128::from(full_years(day(from), day(to)))))
+            }
+            Expr::Missing(name) => {
+                let row = self.picked(self.book.amounts[name].iter(), place.part);
+                Value::Truth(row.first().is_none_or(|row| row.value.is_none()))
+            }
+            Expr::Pair { sign, left, right } => Value::Number(pair(*sign, number(left), number(right))),
+            Expr::Rounded { of, way, unit, steps } => {
+                let value = number(of);
+                let left_out = run.mode == Mode::Smooth && !steps && self.course(of, place) == Course::Varies;
+                Value::Number(if left_out { value } else { rounded(&value, *way, unit) })
+            }
+            Expr::Converted { of, by } => Value::Number(number(of) * &self.book.conversions[by]),
+            Expr::Charged { of, by } => {
+                let ladder = &self.book.bands[by];
+                let all = number(of);
+                let (mut low, mut total) = (Q::zero(), Q::zero());
+                self.on_ladder(ladder, place, |inside| {
+                    for (rate, limit) in &ladder.lines {
+                        let rate = self.value(rate, inside, run).number();
+                        let high = match limit {
+                            Limit::UpTo(limit) | Limit::Below(limit) => self.value(limit, inside, run).number(),
+                            Limit::Beyond => all.clone().max(low.clone()),
+                        };
+                        // What of it lies between the two limits.
+                        let slice = all.clone().min(high.clone()) - &low;
+                        total += slice.max(Q::zero()) * rate;
+                        low = high;
+                    }
+                });
+                Value::Number(total)
+            }
+            Expr::Placed { of, on } => {
+                let ladder = &self.book.scales[on];
+                let all = number(of);
+                self.on_ladder(ladder, place, |inside| {
+                    let holds = |limit: &Limit| match limit {
+                        Limit::UpTo(limit) => all <= self.value(limit, inside, run).number(),
+                        Limit::Below(limit) => all < self.value(limit, inside, run).number(),
+                        Limit::Beyond => true,
+                    };
+                    let step = ladder.lines.iter().find(|(_, limit)| holds(limit)).expect("the last step goes beyond");
+                    self.value(&step.0, inside, run)
+                })
+            }
+            Expr::Compared { test, left, right } => {
+                let (left, right) = (self.value(left, place, run), self.value(right, place, run));
+                let same = match (&left, &right) {
+                    (Value::Word(left), Value::Word(right)) => left == right,
+                    (_, _) => matches!(test, Test::Is | Test::IsNot) && left.clone().number() == right.clone().number(),
+                };
+                Value::Truth(match test {
+                    Test::Is => same,
+                    Test::IsNot => !same,
+                    Test::Above => left.number() > right.number(),
+                    Test::Below => left.number() < right.number(),
+                    Test::AtLeast => left.number() >= right.number(),
+                    Test::AtMost => left.number() <= right.number(),
+                })
+            }
+            Expr::Not(inner) => Value::Truth(!truth(inner)),
+            Expr::And(left, right) => Value::Truth(truth(left) && truth(right)),
+            Expr::Or(left, right) => Value::Truth(truth(left) || truth(right)),
+        }
+    }
+
+    /// The records that a condition counts, kind by kind.
+    fn counted(&self, over: &Search, place: &Place<'_>, run: &Run) -> Vec<(usize, usize)> {
+        let kinds = self.book.kinds_of(&over.kind);
+        let all = kinds.into_iter().flat_map(|kind| self.among(kind, place).into_iter().map(move |record| (kind, record)));
+        all.filter(|(kind, record)| self.eligible(over, *kind, *record, place, run)).collect()
+    }
+
+    /// Evaluates what stands on the lines of bands or a scale where these were declared.
+    fn on_ladder<T>(&self, ladder: &Ladder, place: &Place<'_>, call: impl FnOnce(&Place<'_>) -> T) -> T {
+        let (kind, record) = place.here();
+        let own = self.owner(kind, record, ladder.kind).expect("a ladder can be reached");
+        call(&Place { part: ladder.part, scopes: &vec![(ladder.kind, own)] })
+    }
+
+    /// The row of a table; a count outside takes the nearest end.
+    fn looked_up(&self, name: &str, keys: &[Value], part: usize) -> Q {
+        let table = &self.book.tables[name];
+        let mut rows = self.picked(table.rows.iter(), part);
+        for (at, key) in keys.iter().enumerate() {
+            let wanted = match key {
+                Value::Word(word) => word.clone(),
+                count => {
+                    let column = rows.iter().map(|row| row.keys[at].parse::<i64>().expect("a count"));
+                    let (low, high) = (column.clone().min().expect("a table has rows"), column.max().expect("a table has rows"));
+                    let count = count.clone().number().to_integer();
+                    count.clamp(BigInt::from(low), BigInt::from(high)).to_string()
+                }
+            };
+            rows.retain(|row| row.keys[at] == wanted);
+        }
+        rows[0].value.clone().expect("a table has no gaps")
+    }
+
+    /// What a figure depends on.
+    fn figure_course(&self, at: usize, record: usize) -> Course {
+        if let Some(course) = self.courses.borrow().get(&(at, record)) {
+            return course.clone();
+        }
+        let figure = &self.book.figures[at];
+        let course = self.course(&figure.expr, &Place { part: figure.part, scopes: &vec![(figure.kind, record)] });
+        self.courses.borrow_mut().insert((at, record), course.clone());
+        course
+    }
+
+    fn record_course(&self, name: &str, kind: usize, record: usize) -> Course {
+        match self.book.names[kind].get(name) {
+            Some(figure) => self.figure_course(*figure, record),
+            None if (kind, record) == (JOB, self.home.varied_job) && name == "hours" => Course::Varies,
+            None => Course::Steady,
+        }
+    }
+
+    fn name_course(&self, name: &str, place: &Place<'_>) -> Course {
+        match self.nearest(name, place.scopes) {
+            Some((kind, record)) => self.record_course(name, kind, record),
+            None => Course::Fixed(self.name(name, place, &self.nowhere())),
+        }
+    }
+
+    /// A run for what depends on no hours.
+    fn nowhere(&self) -> Run {
+        self.run(&Q::zero(), Mode::Law)
+    }
+
+    /// The most that any of these depends on; the expression's own value where all are fixed.
+    fn joined(&self, expr: &Expr, place: &Place<'_>, parts: impl IntoIterator<Item = Course>) -> Course {
+        match parts.into_iter().max_by_key(Course::rank) {
+            Some(Course::Varies) => Course::Varies,
+            Some(Course::Steady) => Course::Steady,
+            Some(Course::Fixed(_)) | None => Course::Fixed(self.value(expr, place, &self.nowhere())),
+        }
+    }
+
+    fn with_course(&self, over: &Search, kind: usize, record: usize, place: &Place<'_>) -> Course {
+        match &over.with {
+            None => Course::Fixed(Value::Truth(true)),
+            Some(with) => self.course(with, &Place { part: place.part, scopes: &place.inside(kind, record) }),
+        }
+    }
+
+    fn key_course(&self, over: &Search, kind: usize, record: usize, place: &Place<'_>) -> Course {
+        self.name_course(&over.by, &Place { part: place.part, scopes: &place.inside(kind, record) })
+    }
+
+    /// Whether an expression is made of numbers and amounts alone.
+    fn plain(&self, expr: &Expr, place: &Place<'_>) -> bool {
+        match expr {
+            Expr::Number(_) => true,
+            Expr::Name(name) => self.nearest(name, place.scopes).is_none() && self.book.amounts.contains_key(name),
+            Expr::Pair { left, right, .. } => self.plain(left, place) && self.plain(right, place),
+            Expr::Rounded { of, .. } | Expr::Converted { of, .. } => self.plain(of, place),
+            Expr::Larger(list) | Expr::Smaller(list) => list.iter().all(|e| self.plain(e, place)),
+            _ => false,
+        }
+    }
+
+    /// What an expression depends on. A branch that cannot be taken does not count, nor does a factor of nothing.
+    fn course(&self, expr: &Expr, place: &Place<'_>) -> Course {
+        let of = |e: &Expr| self.course(e, place);
+        let nothing = Course::Fixed(Value::Number(Q::zero()));
+        let inside = |kind, record, e: &Expr| self.course(e, &Place { part: place.part, scopes: &place.inside(kind, record) });
+        match expr {
+            Expr::Number(_) | Expr::Day(_) | Expr::YesNo(_) | Expr::Missing(_) => self.joined(expr, place, []),
+            Expr::Name(name) => self.name_course(name, place),
+            Expr::Of { name, whose, failing } => match self.relation(whose, place) {
+                (kind, Some(record)) => self.record_course(name, kind, record),
+                (_, None) => of(failing.as_ref().expect("something stands in")),
+            },
+            // The keys do not vary, by the checker.
+            Expr::Lookup { .. } | Expr::Years { .. } => Course::Steady,
+            Expr::Where { when, give, otherwise } => match of(when) {
+                known @ Course::Fixed(_) => of(if known.is(true) { give } else { otherwise }),
+                unknown => either_course(&unknown, of(give), of(otherwise)),
+            },
+            Expr::Larger(list) | Expr::Smaller(list) => self.joined(expr, place, list.iter().map(of)),
+            Expr::SumOver { over, body } => {
+                let mut parts = Vec::new();
+                for kind in self.book.kinds_of(&over.kind) {
+                    for record in self.among(kind, place) {
+                        let when = self.with_course(over, kind, record, place);
+                        if !when.is(false) {
+                            parts.push(either_course(&when, inside(kind, record, body), nothing.clone()));
+                        }
+                    }
+                }
+                self.joined(expr, place, parts)
+            }
+            Expr::CountOf(over) => {
+                let mut parts = Vec::new();
+                for kind in self.book.kinds_of(&over.kind) {
+                    parts.extend(self.among(kind, place).into_iter().map(|record| self.with_course(over, kind, record, place)));
+                }
+                self.joined(expr, place, parts)
+            }
+            Expr::Any(over) | Expr::Every(over) => {
+                let decides = matches!(expr, Expr::Any(_));
+                let mut parts = Vec::new();
+                for kind in self.book.kinds_of(&over.kind) {
+                    for record in self.among(kind, place) {
+                        let part = self.with_course(over, kind, record, place);
+                        if part.is(decides) {
+                            return part;
+                        }
+                        parts.push(part);
+                    }
+                }
+                self.joined(expr, place, parts)
+            }
+            Expr::First { over, give, failing } => {
+                let kind = self.book.kinds_of(&over.kind)[0];
+                let could: Vec<(usize, Course)> = self.among(kind, place).into_iter().map(|r| (r, self.with_course(over, kind, r, place))).filter(|(_, c)| !c.is(false)).collect();
+                let sure = could.iter().all(|(_, c)| c.is(true));
+                let keys: Vec<Course> = could.iter().map(|(r, _)| self.key_course(over, kind, *r, place)).collect();
+                if sure && (could.len() < 2 || keys.iter().all(|k| k.rank() == 0)) {
+                    let list: Vec<usize> = could.iter().map(|(r, _)| *r).collect();
+                    let led = if list.len() < 2 { list.first().copied() } else { self.leading(over, kind, &list, place, &self.nowhere()) };
+                    return led.map_or_else(|| of(failing), |r| inside(kind, r, give));
+                }
+                let mut parts: Vec<Course> = could.iter().map(|(r, _)| inside(kind, *r, give)).collect();
+                if could.len() > 1 {
+                    parts.extend(keys);
+                }
+                parts.extend(could.into_iter().map(|(_, c)| c));
+                parts.push(of(failing));
+                self.joined(expr, place, parts)
+            }
+            Expr::Place(over) => {
+                let (kind, me) = place.here();
+                let mine = self.key_course(over, kind, me, place);
+                let mut parts = Vec::new();
+                for other in (0..self.count(kind)).filter(|other| *other != me) {
+                    let eligible = self.with_course(over, kind, other, place);
+                    let key = self.key_course(over, kind, other, place);
+                    let known = mine.rank() == 0 && key.rank() == 0;
+                    if eligible.is(false) || (known && !self.before(over, kind, other, me, place, &self.nowhere())) {
+                        continue;
+                    }
+                    parts.push(eligible);
+                    if !known {
+                        parts.extend([key, mine.clone()]);
+                    }
+                }
+                self.joined(expr, place, parts)
+            }
+            Expr::Pair { sign, left, right } => {
+                let (left, right) = (of(left), of(right));
+                let is_nothing = |c: &Course| matches!(c, Course::Fixed(Value::Number(value)) if value.is_zero());
+                if *sign == Sign::Multiply && (is_nothing(&left) || is_nothing(&right)) {
+                    return nothing;
+                }
+                self.joined(expr, place, [left, right])
+            }
+            Expr::Rounded { of: inner, .. } => {
+                let by_fact = matches!(&**inner, Expr::Pair { sign: Sign::Divide, right, .. } if !self.plain(right, place));
+                match of(inner) {
+                    // A quotient by what is no plain number counts as resting on facts.
+                    Course::Fixed(_) if by_fact => Course::Steady,
+                    course => self.joined(expr, place, [course]),
+                }
+            }
+            Expr::Converted { of: inner, .. } => self.joined(expr, place, [of(inner)]),
+            Expr::Charged { of: inner, by } => {
+                let ladder = &self.book.bands[by];
+                let mut parts = Vec::new();
+                self.on_ladder(ladder, place, |inside| {
+                    let mut low = nothing.clone();
+                    for (rate, limit) in &ladder.lines {
+                        let rate = self.course(rate, inside);
+                        let high = match limit {
+                            Limit::UpTo(limit) | Limit::Below(limit) => self.course(limit, inside),
+                            Limit::Beyond => nothing.clone(),
+                        };
+                        if !matches!(&rate, Course::Fixed(Value::Number(value)) if value.is_zero()) {
+                            parts.extend([of(inner), rate, low, high.clone()]);
+                        }
+                        low = high;
+                    }
+                });
+                self.joined(expr, place, parts)
+            }
+            Expr::Placed { of: inner, on } => {
+                let ladder = &self.book.scales[on];
+                let all = of(inner);
+                self.on_ladder(ladder, place, |inside| {
+                    let mut result = nothing.clone();
+                    for (value, limit) in ladder.lines.iter().rev() {
+                        let value = self.course(value, inside);
+                        result = match limit {
+                            Limit::Beyond => value,
+                            Limit::UpTo(e) | Limit::Below(e) => {
+                                let holds = match (&all, self.course(e, inside), limit) {
+                                    (Course::Fixed(all), Course::Fixed(end), Limit::Below(_)) => Course::Fixed(Value::Truth(all.clone().number() < end.number())),
+                                    (Course::Fixed(all), Course::Fixed(end), _) => Course::Fixed(Value::Truth(all.clone().number() <= end.number())),
+                                    (all, end, _) => if all.rank() > end.rank() { all.clone() } else { end },
+                                };
+                                either_course(&holds, value, result)
+                            }
+                        };
+                    }
+                    result
+                })
+            }
+            Expr::Compared { left, right, .. } => self.joined(expr, place, [of(left), of(right)]),
+            Expr::Not(inner) => self.joined(expr, place, [of(inner)]),
+            Expr::And(left, right) | Expr::Or(left, right) => {
+                let decides = matches!(expr, Expr::Or(..));
+                let (left, right) = (of(left), of(right));
+                match [left.is(decides), right.is(decides)] {
+                    [true, _] => left,
+                    [_, true] => right,
+                    [false, false] => self.joined(expr, place, [left, right]),
+                }
+            }
+        }
+    }
+}
+
+fn pair(sign: Sign, left: Q, right: Q) -> Q {
+    match sign {
+        Sign::Add => left + right,
+        Sign::Subtract => left - right,
+        Sign::Multiply => left * right,
+        Sign::Divide => left / right,
+        Sign::Beyond => (left - right).max(Q::zero()),
+        Sign::LimitedTo => left.min(right),
+        Sign::RaisedTo => left.max(right),
+    }
+}
