@@ -61,6 +61,7 @@ impl<'a> Context<'a> {
     pub(super) fn wanted(&mut self, expr: &Expr, ty: Ty, faults: &mut Faults) -> Option<Node> {
         let node = self.node(expr, Some(ty), faults)?;
         if let (Ty::Rate, What::Fixed(value), true) = (ty, &node.what, node.ty != Ty::Rate)
+            && node.ty.is_scalar()
             && *value > Fraction::ONE
         {
             let (whole, percent) = (value.decimal(0), (*value * Fraction::whole(100)).decimal(0));
@@ -91,7 +92,7 @@ impl<'a> Context<'a> {
     fn shown(&self, ty: Ty) -> String {
         match ty {
             Ty::Choice(at) => format!("the choice `{}`", self.pack.choices[at].name),
-            other => format!("{other}"),
+            other => other.words(),
         }
     }
 

@@ -178,6 +178,10 @@ impl Declarer<'_> {
                     return None;
                 }
             },
+            (_, Some(period)) if Ty::WORDS.contains(&word) || self.pack.choices.iter().any(|c| c.name == word) => {
+                self.faults.push(Diagnostic::fault(period.span, format!("`{word}` has no period")).expected("a period only after `money a`"));
+                return None;
+            }
             ("rate", _) => Ty::Rate,
             ("hours", _) => Ty::Hours,
             ("number", _) => Ty::Number,
@@ -295,7 +299,7 @@ impl Declarer<'_> {
                 widest
             }
             Some((_, _, span)) if !ty.is_quantity() => {
-                self.faults.push(Diagnostic::fault(span, format!("a {ty} has no range")).expected("`from … to …` only for numbers"));
+                self.faults.push(Diagnostic::fault(span, format!("{} has no range", ty.words())).expected("`from … to …` only for money, rates, hours and numbers"));
                 widest
             }
             Some((low, high, _)) => (low, high),
@@ -370,7 +374,7 @@ impl Declarer<'_> {
     fn shown(&self, ty: Ty) -> String {
         match ty {
             Ty::Choice(at) => format!("one of {}", self.pack.choices[at].words.join(", ")),
-            other => format!("a value of type {other}"),
+            other => other.words(),
         }
     }
 

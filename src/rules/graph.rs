@@ -32,7 +32,7 @@ struct Graph<'a> {
 }
 
 /// How many expressions may stand inside each other from an item down to the facts, so that no pack can exhaust the stack.
-const DEEPEST: usize = 1_000;
+const DEEPEST: usize = 500;
 
 pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
     let order = Order::new(pack).run(faults);
@@ -152,7 +152,7 @@ impl<'a> Order<'a> {
         faults.push(
             Diagnostic::fault(first.name_span, format!("`{}` needs itself: {}", first.name, names.join(" needs ")))
                 .expected("figures that do not need each other")
-                .hint("split one of them so that one part does not need the other, or work it out `as if` a fact were settled"),
+                .hint("split one of them so that one part does not need the other"),
         );
     }
 }

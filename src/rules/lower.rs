@@ -105,8 +105,12 @@ pub(super) fn probe(pack: &Pack, faults: &mut Vec<Diagnostic>) {
         for shape in [small(pack), large(pack)] {
             let dates = vec![day; pack.manifest.dates.len()];
             if let Err(found) = program(pack, &dates, &[], &shape) {
-                let new: Vec<_> = found.into_iter().filter(|fault| !faults.contains(fault)).collect();
-                faults.extend(new);
+                for fault in found {
+                    if !faults.iter().any(|f| f.span == fault.span && f.message == fault.message) {
+                        let later = day > pack.manifest.from;
+                        faults.push(if later { fault.hint(format!("it is so from {}", day_text(day))) } else { fault });
+                    }
+                }
             }
         }
     }

@@ -279,7 +279,7 @@ impl Lowering<'_> {
             BinaryOp::Divide => match self.builder.fixed_value(right) {
                 Some(value) if !value.is_zero() => self.builder.times(left, Fraction::ONE / value),
                 _ => {
-                    self.faults.push(Diagnostic::fault(node.span, "this divides by nothing").expected("an amount above zero"));
+                    self.faults.push(Diagnostic::fault(node.span, "this divides by nothing").expected("a divisor other than zero"));
                     left
                 }
             },

@@ -31,8 +31,8 @@ pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
     }
     let used = reached(pack);
     let mut report = |span: Option<Span>, what: &str, name: &str| {
-        let fault = Diagnostic { span, ..Diagnostic::general(format!("the {what} `{name}` is not used")) };
-        faults.push(fault.expected("something that an item, hold or note needs").hint("use it, or remove it"));
+        let fault = Diagnostic { span, ..Diagnostic::general(format!("nothing needs the {what} `{name}`")) };
+        faults.push(fault.expected("an item, hold or note that does").hint("use it, or remove it"));
     };
     for (at, definition) in pack.definitions.iter().enumerate() {
         if !used.figures.contains(&at) {

@@ -58,7 +58,7 @@ impl Section {
         let mut section = Section { name, files: vec![], records: vec![], expects: vec![], faults: vec![] };
         let (mut file, mut rows) = (RULES.to_owned(), vec![]);
         let mut text = String::new();
-        if !body.lines().any(|l| l.starts_with("part ")) {
+        if !body.lines().take_while(|l| !l.starts_with("@ ")).any(|l| l.starts_with("part ")) {
             text.push_str("part \"Test\" dated by day\n");
         }
         for line in body.lines() {
