@@ -202,3 +202,23 @@ pub fn smaller(schema: &Schema, household: &Household) -> Vec<Household> {
     }
     out
 }
+
+/// A household for a schema that lacks some of the facts or kinds.
+pub fn project(from: &Schema, to: &Schema, household: &Household) -> Household {
+    let mut copy = household.clone();
+    copy.instances = to
+        .kinds
+        .iter()
+        .map(|kind| {
+            let old = from.kinds.iter().position(|k| k.name == kind.name).expect("no kind is new");
+            let place = |fact: &FactSpec| from.kinds[old].facts.iter().position(|f| f.name == fact.name).expect("no fact is new");
+            let records = household.instances[old].iter();
+            records.map(|r| Instance { values: kind.facts.iter().map(|f| r.values[place(f)]).collect(), ..r.clone() }).collect()
+        })
+        .collect();
+    let place = |fact: &FactSpec| from.kinds[JOB].facts.iter().position(|f| f.name == fact.name).expect("no fact is new");
+    for offer in &mut copy.offers {
+        offer.values = to.kinds[JOB].facts.iter().map(|f| offer.values[place(f)]).collect();
+    }
+    copy
+}
