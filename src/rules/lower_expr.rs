@@ -291,7 +291,12 @@ impl Lowering<'_> {
         let mut total = none;
         for (rate, limit) in &decl.bands {
             let rate = self.node(rate, &mut inner);
-            let limit = limit.as_ref().map(|limit| self.node(limit, &mut inner));
+            // A limit below nothing, or below the one before it, leaves an empty band.
+            let limit = limit.as_ref().map(|limit| {
+                let limit = self.node(limit, &mut inner);
+                let both_fixed = self.builder.is_fixed(limit) && low.is_some_and(|low| self.builder.is_fixed(low));
+                if both_fixed { limit } else { self.builder.larger(limit, low.unwrap_or(none)) }
+            });
             if let (Some(low), Some(high)) = (low, limit)
                 && let (Some(low), Some(high)) = (self.builder.fixed_value(low), self.builder.fixed_value(high))
                 && high <= low

@@ -420,9 +420,10 @@ impl<'a> Oracle<'a> {
                         let rate = self.value(rate, inside, run).number();
                         let high = match limit {
                             Limit::UpTo(limit) | Limit::Below(limit) => self.value(limit, inside, run).number(),
-                            Limit::Beyond => all.clone().max(low.clone()),
+                            Limit::Beyond => all.clone(),
                         };
-                        // What of it lies between the two limits.
+                        // What of it lies between the two limits. A limit below the one before it leaves an empty band.
+                        let high = high.max(low.clone());
                         let slice = all.clone().min(high.clone()) - &low;
                         total += slice.max(Q::zero()) * rate;
                         low = high;

@@ -16,6 +16,8 @@ pub struct Village<'a> {
     /// The day of the list.
     pub day: i64,
     pub most_children: usize,
+    /// The highest wage, in ten-thousandths.
+    pub most_pay: i64,
 }
 
 /// The values of all amounts, and of those by the month, week and year.
@@ -88,8 +90,9 @@ impl Village<'_> {
                 1..=7 => luck.between(500, 4000) * 100,
                 8 => luck.between(50_000, 400_000),
                 9 | 10 => luck.between(4000, 30_000) * 100,
-                _ => fact.max,
-            },
+                _ => self.most_pay,
+            }
+            .min(self.most_pay),
             _ => match (fact.need, luck.percent(50)) {
                 (Need::Default(value), true) => value,
                 _ => self.any(luck, kind, fact),

@@ -166,11 +166,19 @@ impl Maker<'_> {
             };
             let ty = self.any_type();
             let depth = 1 + self.luck.below(4);
-            let piece = self.piece(ty, &[kind], depth, Room { degree: 2, steady: false });
+            let mut piece = self.piece(ty, &[kind], depth, Room { degree: 2, steady: false });
+            // Most figures vary with hours; what only a given-up one needs is left out later.
+            for _ in 0..6 {
+                if !piece.varies || piece.level == VALUE {
+                    piece = self.piece(ty, &[kind], depth.max(2), Room { degree: 2, steady: false });
+                }
+            }
             self.figure_of(kind, ty, piece);
         }
         // Whatever nothing needs is shown.
-        let unused: Vec<Named> = self.names.iter().filter(|n| !self.out.uses(&n.name)).cloned().collect();
+        let figures: Vec<Named> = self.names.iter().filter(|n| n.name.starts_with("figure")).cloned().collect();
+        let twins = |name: &str| figures.iter().filter(|n| n.name == name).count() > 1;
+        let unused: Vec<Named> = figures.iter().filter(|n| twins(&n.name) || !self.out.uses(&n.name)).cloned().collect();
         for named in unused {
             self.part = self.luck.below(2);
             self.shown(&named);
@@ -222,11 +230,8 @@ impl Maker<'_> {
 
     fn figure_of(&mut self, kind: usize, ty: Ty, piece: Piece) {
         // Now and then a name that another kind has too.
-        let twin = self.names.iter().find(|n| n.kind != kind && n.name.starts_with("figure")).map(|n| n.name.clone());
-        let name = match twin {
-            Some(name) if self.luck.percent(6) => name,
-            _ => self.fresh("figure"),
-        };
+        let others: Vec<String> = self.names.iter().filter(|n| n.kind != kind && n.name.starts_with("figure")).map(|n| n.name.clone()).collect();
+        let name = if !others.is_empty() && self.luck.percent(2) { self.luck.pick(&others).clone() } else { self.fresh("figure") };
         self.say("figure", Some(kind), &name, format!("figure {name}: {} = {}", self.type_text(ty), piece.text));
         self.names.push(Named { name, kind, ty, degree: piece.degree, varies: piece.varies, divides: false });
     }
@@ -370,7 +375,7 @@ impl Maker<'_> {
     fn new_fact(&mut self, ty: Ty, kind: usize, divides: bool) -> Named {
         let name = self.fresh("fact");
         let range = match ty {
-            Ty::Money(_) if divides => " from 1 to 500",
+            Ty::Money(_) if divides => " from 40 to 500",
             Ty::Money(Some(0)) => " from 0 to 100",
             Ty::Money(_) => *self.luck.pick(&[" from 0 to 1000", " from 0 to 20000", " from 10 to 5000"]),
             Ty::Rate if divides => " from 1% to 90%",
@@ -824,7 +829,7 @@ impl Maker<'_> {
                 };
                 self.join("/", &left, PRODUCT, &Piece::plain(right), VALUE, PRODUCT)
             }
-            6 if scalar || self.luck.percent(50) => {
+            6 if matches!(ty, Ty::Rate | Ty::Number) || (!scalar && self.luck.percent(50)) => {
                 // Over a fact, rounded at once.
                 let left = self.piece(if scalar { Ty::Money(Some(2)) } else { ty }, scopes, depth, room);
                 let wanted = if scalar { Ty::Money(Some(2)) } else { *self.luck.pick(&[Ty::Count, Ty::Number]) };
@@ -838,9 +843,8 @@ impl Maker<'_> {
                 };
                 let way = *self.luck.pick(&["up", "down", "half up", "half down", "half even"]);
                 let unit = match (left.varies, ty) {
-                    (_, Ty::Count) => "1",
                     (true, Ty::Money(_)) => "50",
-                    (true, _) => "1",
+                    (true, _) => "5",
                     (false, Ty::Money(_)) => "0.01",
                     (false, _) => *self.luck.pick(&["0.01", "1", "0.5"]),
                 };

@@ -56,7 +56,7 @@ fn question(ready: &Ready, seed: u64) -> Question {
     let mut luck = Luck::new(seed ^ 0x5EED);
     let (from, to) = (day(DAYS[0]).expect("a day"), day(DAYS[3]).expect("a day"));
     let days: Vec<i64> = (0..2).map(|_| if luck.percent(40) { day(DAYS[luck.below(4)]).expect("a day") } else { luck.between(from, to) }).collect();
-    let village = Village { schema: &ready.schema, marks: marks(&ready.book), day: days[0], most_children: 3 };
+    let village = Village { schema: &ready.schema, marks: marks(&ready.book), day: days[0], most_children: 3, most_pay: 600_000 };
     let household = village.household(&mut luck);
     let earner = luck.below(household.instances[ADULT].len());
     let offered = household.offers.first().is_some_and(|offer| offer.owner == earner);
@@ -107,6 +107,64 @@ fn shrink(invented: &Invented, ready: Box<Ready>, question: &mut Question, fault
 
 fn printed(texts: &[(String, String)]) -> String {
     texts.iter().filter(|(name, _)| name != "pack.toml" && name != "order.txt").map(|(name, text)| format!("--- {name}\n{text}")).collect()
+}
+
+/// Texts with a few words of their rules taken out, doubled, swapped or replaced.
+fn broken(luck: &mut Luck, texts: &[(String, String)]) -> Vec<(String, String)> {
+    let mut texts = texts.to_vec();
+    let names: Vec<usize> = (0..texts.len()).filter(|at| texts[*at].0 != "order.txt").collect();
+    for _ in 0..1 + luck.below(3) {
+        let text = &mut texts[*luck.pick(&names)].1;
+        let mut pieces: Vec<String> = text.split_inclusive([' ', '\n', ',', '(', ')']).map(str::to_owned).collect();
+        if pieces.is_empty() {
+            continue;
+        }
+        let (at, other) = (luck.below(pieces.len()), luck.below(pieces.len()));
+        match luck.below(6) {
+            0 => {
+                pieces.remove(at);
+            }
+            1 => pieces.insert(at, pieces[other].clone()),
+            2 => pieces.swap(at, other),
+            3 => pieces[at] = pieces[other].clone(),
+            4 => pieces[at] = (*luck.pick(&STRANGE)).to_owned(),
+            _ => {
+                let cut = luck.below(text.len() + 1);
+                pieces = vec![text.char_indices().take_while(|(place, _)| *place < cut).map(|(_, c)| c).collect()];
+            }
+        }
+        *text = pieces.concat();
+    }
+    texts
+}
+
+/// Things that do not belong in a rule.
+const STRANGE: [&str; 24] = [
+    "\"", "(", ")", "[", "]", "-", "99999999999999999", "0", "0.00000001 ", "999999999999999999.5 ", "\u{feff}", "£", "2026-02-30 ", "0000-01-01 ", "9999-12-31 ",
+    "hours ", "where ", "give ", "per job\n", "beyond ", "* hours * hours ", "/ hours ", "rounded up to 0 ", "#",
+];
+
+#[test]
+fn broken_packs_are_refused_in_words() {
+    let packs = 2500 * super::times();
+    let (mut refused, mut tally) = (0, Tally::default());
+    for seed in (SEED * 3..).take(packs) {
+        let mut luck = Luck::new(seed);
+        let texts = broken(&mut luck, &invent(&mut Luck::new(SEED + seed % 500)).texts());
+        match check(&texts) {
+            Err(fault) => panic!("seed {seed}: {fault}\n{}", printed(&texts)),
+            Ok(Err(_)) => refused += 1,
+            // What is still a pack is one like any other.
+            Ok(Ok(ready)) => {
+                let question = question(&ready, seed);
+                if let Err(fault) = ask(&ready, &question, &question.household, &mut tally) {
+                    panic!("seed {seed}, days {:?}: {fault}\n{}\n{}", question.days, printed(&texts), shown(&ready.schema, &question.household));
+                }
+            }
+        }
+    }
+    println!("{refused} of {packs} refused; {tally:?}");
+    assert!(refused * 4 > packs, "too few are refused: {refused} of {packs}");
 }
 
 #[test]
