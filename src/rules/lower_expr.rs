@@ -301,7 +301,13 @@ impl Lowering<'_> {
         for (rate, limit) in &decl.bands {
             let rate = self.node(rate, &mut inner);
             let span = limit.as_ref().map(|limit| limit.span);
-            let limit = limit.as_ref().map(|limit| self.node(limit, &mut inner));
+            // A limit below nothing, or below the one before it, leaves an empty band.
+            let limit = limit.as_ref().map(|limit| {
+                let limit = self.node(limit, &mut inner);
+                let before = low.unwrap_or(none);
+                let both_fixed = self.builder.is_fixed(limit) && self.builder.is_fixed(before);
+                if both_fixed { limit } else { self.builder.larger(limit, before) }
+            });
             let before = low.map_or(Some(Fraction::ZERO), |low| self.builder.fixed_value(low));
             if let (Some(before), Some(limit), Some(span)) = (before, limit, span)
                 && let Some(high) = self.builder.fixed_value(limit)
