@@ -35,7 +35,7 @@ fn value(spec: &FactSpec, given: Option<&str>) -> i64 {
     }
 }
 
-fn household(schema: &Schema, records: &[Record]) -> Household {
+pub fn household(schema: &Schema, records: &[Record]) -> Household {
     let mut instances: Vec<Vec<Instance>> = vec![vec![]; schema.kinds.len()];
     let mut add = |kind: usize, owner: usize, facts: &[(String, String)]| {
         for (name, _) in facts {
