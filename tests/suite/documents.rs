@@ -5,9 +5,26 @@ use std::path::Path;
 
 const DOCUMENTS: [&str; 3] = ["README.md", "DEVELOPERS.md", "rules/README.md"];
 /// Folders that a path in a document starts with.
-const TOPS: [&str; 7] = ["src/", "tests/", "templates/", "rules/", "demo_cases/", "benches/", ".ci/"];
+const TOPS: [&str; 7] = [
+    "src/",
+    "tests/",
+    "templates/",
+    "rules/",
+    "demo_cases/",
+    "benches/",
+    ".ci/",
+];
 /// Words of other tools. The page of words in the design says what to write in their place.
-const FORBIDDEN: [&str; 8] = ["baseline", "reform", "scenario", "policy", "entity", "variable", "parameter", "better off"];
+const FORBIDDEN: [&str; 8] = [
+    "baseline",
+    "reform",
+    "scenario",
+    "policy",
+    "entity",
+    "variable",
+    "parameter",
+    "better off",
+];
 /// Proper names that hold such a word.
 const NAMES: [&str; 2] = ["Welfare Reform Act", "Welfare Reform and Work Act"];
 
@@ -16,7 +33,11 @@ fn tree() -> Vec<(String, String)> {
     fn gather(folder: &Path, out: &mut Vec<(String, String)>) {
         for entry in fs::read_dir(folder).expect("a folder of the tree") {
             let path = entry.expect("an entry").path();
-            let name = path.strip_prefix(".").unwrap_or(&path).to_string_lossy().replace('\\', "/");
+            let name = path
+                .strip_prefix(".")
+                .unwrap_or(&path)
+                .to_string_lossy()
+                .replace('\\', "/");
             let hidden = name.starts_with('.') && !name.starts_with(".ci");
             if hidden || ["target", "out", "Cargo.lock"].contains(&name.as_str()) {
                 continue;
@@ -44,9 +65,22 @@ fn paths(text: &str) -> Vec<&str> {
             out.extend(line.split('`').skip(1).step_by(2));
         }
     }
-    let placeholder = |path: &str| path.contains(['*', '<', '…', ' ']) || path.contains("NAME") || path.contains("PACK");
-    let root = |path: &str| ["README.md", "DEVELOPERS.md", "Cargo.toml", "Cargo.lock", "clippy.toml"].contains(&path);
-    out.retain(|path| !placeholder(path) && (root(path) || TOPS.iter().any(|top| path.starts_with(top))));
+    let placeholder = |path: &str| {
+        path.contains(['*', '<', '…', ' ']) || path.contains("NAME") || path.contains("PACK")
+    };
+    let root = |path: &str| {
+        [
+            "README.md",
+            "DEVELOPERS.md",
+            "Cargo.toml",
+            "Cargo.lock",
+            "clippy.toml",
+        ]
+        .contains(&path)
+    };
+    out.retain(|path| {
+        !placeholder(path) && (root(path) || TOPS.iter().any(|top| path.starts_with(top)))
+    });
     out
 }
 
@@ -54,10 +88,15 @@ fn paths(text: &str) -> Vec<&str> {
 fn every_path_that_a_document_names_exists() {
     let mut named = 0;
     for document in DOCUMENTS {
-        let Ok(text) = fs::read_to_string(document) else { continue };
+        let Ok(text) = fs::read_to_string(document) else {
+            continue;
+        };
         for path in paths(&text) {
             named += 1;
-            assert!(Path::new(path).exists(), "{document} names `{path}`, which does not exist");
+            assert!(
+                Path::new(path).exists(),
+                "{document} names `{path}`, which does not exist"
+            );
         }
     }
     assert!(named > 10, "only {named} paths were found");
@@ -73,7 +112,11 @@ fn paths_are_found_in_backticks_alone() {
 fn source_files_stay_below_800_lines() {
     for (name, text) in tree() {
         if name.starts_with("src/") && name.ends_with(".rs") {
-            assert!(text.lines().count() < 800, "{name} has {} lines: split it", text.lines().count());
+            assert!(
+                text.lines().count() < 800,
+                "{name} has {} lines: split it",
+                text.lines().count()
+            );
         }
     }
 }
@@ -85,7 +128,9 @@ fn machine_path(text: &str) -> Option<&str> {
     text.lines().find(|line| {
         folders.iter().any(|folder| {
             // `https://example.org/home/` and `a/tmp/b` are no such places.
-            line.match_indices(folder.as_str()).any(|(at, _)| !line[..at].ends_with(|c: char| c.is_alphanumeric() || ".-_})".contains(c)))
+            line.match_indices(folder.as_str()).any(|(at, _)| {
+                !line[..at].ends_with(|c: char| c.is_alphanumeric() || ".-_})".contains(c))
+            })
         })
     })
 }
@@ -114,8 +159,15 @@ fn forbidden(text: &str) -> Vec<String> {
             let stem = word.strip_suffix('y').unwrap_or(word);
             let found = lower.match_indices(stem).any(|(at, _)| {
                 let starts = !lower[..at].ends_with(|c: char| c.is_alphanumeric());
-                let rest: String = lower[at + stem.len()..].chars().take_while(|c| c.is_alphanumeric()).collect();
-                let ends = if stem == word { ["", "s", "ed", "s’"].contains(&rest.as_str()) } else { ["y", "ies"].contains(&rest.as_str()) };
+                let rest: String = lower[at + stem.len()..]
+                    .chars()
+                    .take_while(|c| c.is_alphanumeric())
+                    .collect();
+                let ends = if stem == word {
+                    ["", "s", "ed", "s’"].contains(&rest.as_str())
+                } else {
+                    ["y", "ies"].contains(&rest.as_str())
+                };
                 starts && ends
             });
             if found {
@@ -131,7 +183,8 @@ fn is_for_users(name: &str) -> bool {
     let folder = |top: &str| name.starts_with(top);
     // Titles of sources in amounts and examples are quoted as published.
     let quoted = folder("rules/") && (name.contains("/examples/") || name.ends_with("amounts.csv"));
-    let own = folder("templates/") || folder("rules/") || folder("demo_cases/") || folder("src/cli/");
+    let own =
+        folder("templates/") || folder("rules/") || folder("demo_cases/") || folder("src/cli/");
     (own && !quoted) || DOCUMENTS.contains(&name)
 }
 
@@ -140,17 +193,31 @@ fn no_text_for_users_has_a_forbidden_word() {
     let wrong: Vec<String> = tree()
         .iter()
         .filter(|(name, _)| is_for_users(name))
-        .flat_map(|(name, text)| forbidden(text).into_iter().map(move |what| format!("{name}: {what}")))
+        .flat_map(|(name, text)| {
+            forbidden(text)
+                .into_iter()
+                .map(move |what| format!("{name}: {what}"))
+        })
         .collect();
     assert!(wrong.is_empty(), "{}", wrong.join("\n"));
-    assert!(is_for_users("templates/text/en.toml") && is_for_users("rules/uk/labels.en.csv") && !is_for_users("rules/uk/amounts.csv"));
+    assert!(
+        is_for_users("templates/text/en.toml")
+            && is_for_users("rules/uk/labels.en.csv")
+            && !is_for_users("rules/uk/amounts.csv")
+    );
 }
 
 #[test]
 fn forbidden_words_are_found_in_every_form() {
     let count = |text: &str| forbidden(text).len();
-    assert_eq!(count("Policies, a policy; variables; you are better off"), 3);
+    assert_eq!(
+        count("Policies, a policy; variables; you are better off"),
+        3
+    );
     assert_eq!(count("Welfare Reform Act 2012 s.96"), 0);
-    assert_eq!(count("an invariable informality, identities and reformation"), 0);
+    assert_eq!(
+        count("an invariable informality, identities and reformation"),
+        0
+    );
     assert_eq!(count("the Reformed baseline"), 2);
 }

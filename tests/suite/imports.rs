@@ -19,8 +19,39 @@ const ALLOWED: [(&str, &[&str]); 13] = [
     ("measures", &["source", "num", "program", "case", "engine"]),
     ("statement", &["num", "diag", "measures"]),
     ("load", &["source", "num", "diag", "rules", "case"]),
-    ("batch", &["index", "source", "num", "program", "rules", "case", "engine", "measures", "statement", "load", "diag"]),
-    ("cli", &["index", "source", "num", "program", "rules", "case", "engine", "measures", "statement", "load", "diag", "batch"]),
+    (
+        "batch",
+        &[
+            "index",
+            "source",
+            "num",
+            "program",
+            "rules",
+            "case",
+            "engine",
+            "measures",
+            "statement",
+            "load",
+            "diag",
+        ],
+    ),
+    (
+        "cli",
+        &[
+            "index",
+            "source",
+            "num",
+            "program",
+            "rules",
+            "case",
+            "engine",
+            "measures",
+            "statement",
+            "load",
+            "diag",
+            "batch",
+        ],
+    ),
 ];
 
 /// Code without comments. Texts stay: nothing in one looks like a path into the crate.
@@ -57,8 +88,15 @@ fn named(file: &str, text: &str) -> Vec<String> {
 
 /// First words of a path, or of each path in a group `{a::b, c}`.
 fn heads(path: &str) -> Vec<String> {
-    let word = |text: &str| text.trim_start().chars().take_while(|c| c.is_alphanumeric() || *c == '_').collect::<String>();
-    let Some(group) = path.strip_prefix('{') else { return vec![word(path)] };
+    let word = |text: &str| {
+        text.trim_start()
+            .chars()
+            .take_while(|c| c.is_alphanumeric() || *c == '_')
+            .collect::<String>()
+    };
+    let Some(group) = path.strip_prefix('{') else {
+        return vec![word(path)];
+    };
     let (mut depth, mut out, mut start) = (0, vec![], 0);
     for (at, c) in group.char_indices() {
         match c {
@@ -88,8 +126,17 @@ fn forbidden(file: &str, text: &str) -> Vec<String> {
         return vec![format!("{file}: `{folder}` stands in no row of the table")];
     };
     let known = |name: &str| ALLOWED.iter().any(|(n, _)| *n == name);
-    let wrong = named(file, text).into_iter().filter(|name| known(name) && name != folder && !allowed.contains(&name.as_str()));
-    wrong.map(|name| format!("{file}: `{folder}` imports `{name}`, expected only {}", allowed.join(", "))).collect()
+    let wrong = named(file, text)
+        .into_iter()
+        .filter(|name| known(name) && name != folder && !allowed.contains(&name.as_str()));
+    wrong
+        .map(|name| {
+            format!(
+                "{file}: `{folder}` imports `{name}`, expected only {}",
+                allowed.join(", ")
+            )
+        })
+        .collect()
 }
 
 fn files(folder: &Path, out: &mut Vec<(String, String)>) {
@@ -99,8 +146,13 @@ fn files(folder: &Path, out: &mut Vec<(String, String)>) {
             files(&path, out);
         } else if path.extension().is_some_and(|e| e == "rs") {
             let name = path.strip_prefix("src").expect("below src").components();
-            let name: Vec<_> = name.map(|c| c.as_os_str().to_string_lossy().into_owned()).collect();
-            out.push((name.join("/"), fs::read_to_string(&path).expect("a source file")));
+            let name: Vec<_> = name
+                .map(|c| c.as_os_str().to_string_lossy().into_owned())
+                .collect();
+            out.push((
+                name.join("/"),
+                fs::read_to_string(&path).expect("a source file"),
+            ));
         }
     }
 }
@@ -109,11 +161,22 @@ fn files(folder: &Path, out: &mut Vec<(String, String)>) {
 fn every_import_is_allowed() {
     let mut found = vec![];
     files(Path::new("src"), &mut found);
-    let wrong: Vec<String> = found.iter().flat_map(|(file, text)| forbidden(file, text)).collect();
+    let wrong: Vec<String> = found
+        .iter()
+        .flat_map(|(file, text)| forbidden(file, text))
+        .collect();
     assert!(wrong.is_empty(), "{}", wrong.join("\n"));
     // The reading finds something at all: these imports are known to be there.
-    let of = |folder: &str| found.iter().filter(|(f, _)| f.starts_with(folder)).flat_map(|(f, t)| named(f, t)).collect::<Vec<_>>();
-    assert!(of("engine/").iter().any(|n| n == "program") && of("load/").iter().any(|n| n == "rules"));
+    let of = |folder: &str| {
+        found
+            .iter()
+            .filter(|(f, _)| f.starts_with(folder))
+            .flat_map(|(f, t)| named(f, t))
+            .collect::<Vec<_>>()
+    };
+    assert!(
+        of("engine/").iter().any(|n| n == "program") && of("load/").iter().any(|n| n == "rules")
+    );
 }
 
 #[test]
@@ -121,7 +184,10 @@ fn the_table_runs_one_way() {
     // The rows stand in an order in which each names only rows before it, `diag` and `num` apart.
     for (at, (name, allowed)) in ALLOWED.iter().enumerate() {
         for other in *allowed {
-            let place = ALLOWED.iter().position(|(n, _)| n == other).expect("a row of the table");
+            let place = ALLOWED
+                .iter()
+                .position(|(n, _)| n == other)
+                .expect("a row of the table");
             assert!(place < at, "`{name}` names `{other}`");
         }
     }
@@ -131,13 +197,43 @@ fn the_table_runs_one_way() {
 fn a_wrong_import_is_found_however_it_is_written() {
     let wrong = |file: &str, text: &str| forbidden(file, text).len();
     assert_eq!(wrong("rules/check.rs", "use crate::case::Schema;"), 1);
-    assert_eq!(wrong("rules/check.rs", "use crate::{diag::Diagnostic, case::{Schema, Known}, engine};"), 2);
-    assert_eq!(wrong("rules/check.rs", "fn f() -> crate::load::Error { hourworth::cli::run() }"), 2);
-    assert_eq!(wrong("rules/deep/check.rs", "use super::super::super::load::Error;"), 1);
+    assert_eq!(
+        wrong(
+            "rules/check.rs",
+            "use crate::{diag::Diagnostic, case::{Schema, Known}, engine};"
+        ),
+        2
+    );
+    assert_eq!(
+        wrong(
+            "rules/check.rs",
+            "fn f() -> crate::load::Error { hourworth::cli::run() }"
+        ),
+        2
+    );
+    assert_eq!(
+        wrong(
+            "rules/deep/check.rs",
+            "use super::super::super::load::Error;"
+        ),
+        1
+    );
     assert_eq!(wrong("rules/mod.rs", "use super::load::Error;"), 1);
-    assert_eq!(wrong("num/money.rs", "use crate::num::Fraction; use super::Fraction;"), 0);
+    assert_eq!(
+        wrong(
+            "num/money.rs",
+            "use crate::num::Fraction; use super::Fraction;"
+        ),
+        0
+    );
     assert_eq!(wrong("num/money.rs", "use crate::index::Id;"), 1);
-    assert_eq!(wrong("rules/check.rs", "// use crate::case::Schema;\nuse other_crate::case::Schema;"), 0);
+    assert_eq!(
+        wrong(
+            "rules/check.rs",
+            "// use crate::case::Schema;\nuse other_crate::case::Schema;"
+        ),
+        0
+    );
     assert_eq!(wrong("cli/mod.rs", "use crate::batch::Places;"), 0);
     assert_eq!(wrong("elsewhere/mod.rs", ""), 1);
 }

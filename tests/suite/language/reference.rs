@@ -41,10 +41,22 @@ fn every_example_gives_what_stands_beside_it() {
     assert!(blocks.len() >= 12, "only {} examples", blocks.len());
     for (line, body) in blocks {
         let section = Section::new(format!("line {line}"), &body);
-        assert!(!section.expects.is_empty(), "the example at line {line} expects nothing");
+        assert!(
+            !section.expects.is_empty(),
+            "the example at line {line} expects nothing"
+        );
         match section.check() {
-            Ok(pack) => wrong.extend(differences(&section, &pack).into_iter().map(|d| format!("{}: {d}", section.name))),
-            Err(_) => wrong.extend(section.found().into_iter().map(|f| format!("{}: {}:{} {}", section.name, f.0, f.1, f.2))),
+            Ok(pack) => wrong.extend(
+                differences(&section, &pack)
+                    .into_iter()
+                    .map(|d| format!("{}: {d}", section.name)),
+            ),
+            Err(_) => wrong.extend(
+                section
+                    .found()
+                    .into_iter()
+                    .map(|f| format!("{}: {}:{} {}", section.name, f.0, f.1, f.2)),
+            ),
         }
     }
     assert!(wrong.is_empty(), "{}", wrong.join("\n"));
@@ -52,21 +64,37 @@ fn every_example_gives_what_stands_beside_it() {
 
 /// The words in quotes of the grammar.
 fn grammar_words() -> BTreeSet<String> {
-    let grammar = blocks(&reference(), "").into_iter().find(|(_, body)| body.starts_with("file ")).expect("the grammar").1;
+    let grammar = blocks(&reference(), "")
+        .into_iter()
+        .find(|(_, body)| body.starts_with("file "))
+        .expect("the grammar")
+        .1;
     let quoted = grammar.split('"').skip(1).step_by(2);
-    quoted.filter(|word| word.chars().all(|c| c.is_ascii_lowercase())).map(str::to_owned).collect()
+    quoted
+        .filter(|word| word.chars().all(|c| c.is_ascii_lowercase()))
+        .map(str::to_owned)
+        .collect()
 }
 
 fn words_of(text: &str) -> BTreeSet<String> {
     let lines = text.lines().map(|l| l.split('#').next().unwrap_or(""));
-    lines.flat_map(|l| l.split(|c: char| !c.is_ascii_alphanumeric() && c != '_')).map(str::to_owned).collect()
+    lines
+        .flat_map(|l| l.split(|c: char| !c.is_ascii_alphanumeric() && c != '_'))
+        .map(str::to_owned)
+        .collect()
 }
 
 #[test]
 fn every_word_of_the_grammar_has_an_example() {
-    let examples: String = blocks(&reference(), "rules").into_iter().map(|(_, body)| body).collect();
+    let examples: String = blocks(&reference(), "rules")
+        .into_iter()
+        .map(|(_, body)| body)
+        .collect();
     let known = words_of(&examples);
-    let without: Vec<String> = grammar_words().into_iter().filter(|word| !known.contains(word)).collect();
+    let without: Vec<String> = grammar_words()
+        .into_iter()
+        .filter(|word| !known.contains(word))
+        .collect();
     assert!(without.is_empty(), "no example of {}", without.join(", "));
 }
 
@@ -76,7 +104,10 @@ fn every_word_of_the_grammar_has_a_section_that_is_worked_out() {
         .map(|name| fs::read_to_string(format!("tests/language/{name}.txt")).expect("the sections"))
         .concat();
     let known = words_of(&texts);
-    let without: Vec<String> = grammar_words().into_iter().filter(|word| !known.contains(word)).collect();
+    let without: Vec<String> = grammar_words()
+        .into_iter()
+        .filter(|word| !known.contains(word))
+        .collect();
     assert!(without.is_empty(), "no section with {}", without.join(", "));
     assert!(grammar_words().len() > 70);
 }

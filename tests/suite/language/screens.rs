@@ -40,10 +40,14 @@ child: birth = 2017-01-01
 
 fn listing(text: &str) -> String {
     let section: Section = sections(text).remove(0);
-    let pack = section.check().unwrap_or_else(|(sources, faults)| panic!("{}", faults[0].line(&sources)));
+    let pack = section
+        .check()
+        .unwrap_or_else(|(sources, faults)| panic!("{}", faults[0].line(&sources)));
     let household = super::bench::household(&schema_of(&pack), &section.records);
     let setting = Setting::new(&household, 0, JobChoice::Today).expect("the first adult");
-    pack.program(&[20_500], &[], &setting.shape).expect("a program").to_string()
+    pack.program(&[20_500], &[], &setting.shape)
+        .expect("a program")
+        .to_string()
 }
 
 #[test]
@@ -70,7 +74,10 @@ bands tax_bands of money a month
 "#;
     let section = sections(text).remove(0);
     let (sources, faults) = section.check().expect_err("five faults");
-    let shown: Vec<String> = faults.iter().map(|fault| fault.render(&sources, false)).collect();
+    let shown: Vec<String> = faults
+        .iter()
+        .map(|fault| fault.render(&sources, false))
+        .collect();
     assert_eq!(shown.len(), 5, "{}", shown.join("\n\n"));
     insta::with_settings!({ description => text, omit_expression => true }, { insta::assert_snapshot!(shown.join("\n\n")) });
 }
