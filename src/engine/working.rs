@@ -136,7 +136,6 @@ fn shown(value: Fraction, unit: &str, words: &[String]) -> String {
         if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.').to_owned() } else { text }
     };
     match unit {
-        "date" => super::fact_text(&crate::case::FactType::Date, i64::try_from(value.floor()).unwrap_or(0)),
         "yesno" => if value.is_zero() { "no" } else { "yes" }.to_owned(),
         "rate" => {
             let percent = value * Fraction::whole(100);

@@ -54,9 +54,26 @@ pub(super) const RESERVED: [&str; 42] = [
     "or", "otherwise", "over", "partner", "place", "placed", "raised", "required", "rounded", "where", "with",
 ];
 
+/// Words that stand inside statements only where no name can stand, and yet are no names, so that text reads well.
+const INSIDE: [&str; 15] =
+    ["see", "smaller", "sum", "times", "to", "up", "down", "years", "yes", "no", "most", "least", "slope", "steps", "hours"];
+
 /// Whether a word may be the name of a figure, item, fact or record.
 pub(super) fn can_name(word: &str) -> bool {
     !STATEMENTS.contains(&word)
         && !RESERVED.contains(&word)
-        && !["see", "smaller", "sum", "times", "to", "up", "down", "years", "yes", "no", "most", "least", "slope", "steps", "hours"].contains(&word)
+        && !INSIDE.contains(&word)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_grammar_of_the_reference_has_every_word() {
+        let reference = include_str!("../../rules/README.md");
+        for word in STATEMENTS.iter().chain(&RESERVED).chain(&INSIDE) {
+            assert!(reference.contains(&format!("\"{word}\"")), "`{word}` stands in no rule of the grammar");
+        }
+    }
 }
