@@ -3,7 +3,7 @@
 use super::ast::{BinaryOp, CompareOp, Expr, ExprKind, Ident};
 use super::declare::{kinds_of_word, with_near};
 use super::pack::{ADULT, Pack};
-use super::tree::{Node, Over, Target, What};
+use super::tree::{Changed, Node, Over, Target, What};
 use super::types::{Period, Ty};
 use crate::diag::{Diagnostic, nearest};
 use crate::num::{Direction, Fraction};
@@ -123,6 +123,10 @@ impl<'a> Context<'a> {
                 make(Ty::Money(period), What::Fixed(*value))
             }
             ExprKind::Day(day) => make(Ty::Date, What::Fixed(Fraction::whole(i128::from(*day)))),
+            ExprKind::YesNo(value) if self.yes_no_word(*value, hint).is_some() => {
+                let word = self.yes_no_word(*value, hint)?;
+                make(hint?, What::Fixed(Fraction::whole(word as i128)))
+            }
             ExprKind::YesNo(value) => make(Ty::YesNo, What::Fixed(Fraction::whole(i128::from(*value)))),
             ExprKind::Name(name) => self.name(name, hint, faults),
             ExprKind::Of { name, whose, failing } => self.of(name, whose, failing.as_deref(), span, faults),
@@ -193,6 +197,7 @@ impl<'a> Context<'a> {
                     self.absent(name, "is not an amount", "a name of `amounts.csv`", known, faults)
                 }
             },
+            ExprKind::AsIf { name, changes } => self.as_if(name, changes, span, faults),
             ExprKind::Binary { op, left, right } => self.binary(*op, left, right, span, faults),
             ExprKind::Round { of, direction, unit, manner } => {
                 if let ExprKind::Binary { op: BinaryOp::Divide, left, right } = &of.kind {
@@ -487,6 +492,48 @@ impl<'a> Context<'a> {
                 .expected(format!("a place under `per {}`", self.pack.kinds[kind].name)),
         );
         None
+    }
+
+    /// The place of `yes` or `no` among the words of a choice that is wanted here.
+    fn yes_no_word(&self, value: bool, hint: Option<Ty>) -> Option<usize> {
+        let Some(Ty::Choice(at)) = hint else { return None };
+        self.pack.choices[at].words.iter().position(|w| w == if value { "yes" } else { "no" })
+    }
+
+    /// A figure once more under changed facts.
+    fn as_if(&mut self, name: &Ident, changes: &[(Ident, Expr)], span: Span, faults: &mut Faults) -> Option<Node> {
+        let mut changed = Vec::new();
+        let mut whole = true;
+        for (fact, value) in changes {
+            match self.find(&fact.text) {
+                Some((level, _, Target::Fact { kind, fact: at }, ty)) => match self.wanted(value, ty, faults) {
+                    Some(value) => changed.push(Changed { kind, fact: at, level, value }),
+                    None => whole = false,
+                },
+                Some((_, _, Target::Figure(_), _)) => {
+                    faults.push(Diagnostic::fault(fact.span, format!("`{}` is a figure", fact.text)).expected("a fact to change"));
+                    whole = false;
+                }
+                None => {
+                    self.unknown(fact, None, faults);
+                    whole = false;
+                }
+            }
+        }
+        match self.find(&name.text) {
+            Some((level, kind, Target::Figure(figure), ty)) if whole => {
+                Some(Node { ty, span, what: What::AsIf { figure, kind, level, changes: changed, text: name.text.clone() } })
+            }
+            Some((_, _, Target::Figure(_), _)) => None,
+            Some((_, _, Target::Fact { .. }, _)) => {
+                faults.push(Diagnostic::fault(name.span, format!("`{}` is a fact", name.text)).expected("a figure or item to work out once more"));
+                None
+            }
+            None => {
+                self.unknown(name, None, faults);
+                None
+            }
+        }
     }
 
     fn lookup(&mut self, table: &Ident, keys: &[Expr], span: Span, faults: &mut Faults) -> Option<Node> {

@@ -660,6 +660,7 @@ pub fn assessment(home: &Home, earners: Vec<EarnerResult>) -> Assessment {
             .collect(),
         earners,
         couple: None,
+        unclaimed: vec![],
         notes: vec![],
         facts: vec![
             fact("", "rent", &format!("£{}.00 a month", home.rent), 's'),
