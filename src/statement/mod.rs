@@ -16,6 +16,7 @@ mod error;
 mod fonts;
 mod money;
 mod place;
+mod room;
 mod templates;
 mod texts;
 mod typeset;

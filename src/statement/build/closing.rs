@@ -1,6 +1,7 @@
 //! The closing parts: what is in the sum, the facts, unconfirmed amounts, whom to tell, next steps.
 //! Only what concerns this household: items that are not zero at a point that the letter shows.
 
+use super::Detail;
 use super::facts::facts;
 use super::words::{Words, enumerated, listed};
 use crate::measures::ItemKind;
@@ -10,18 +11,47 @@ use crate::statement::view::{Line, Part, PartKind};
 
 /// All closing parts in order.
 pub(super) fn parts(words: &Words<'_>) -> Result<Vec<Part>, StatementError> {
-    let wanted = [
-        ("sum.heading", PartKind::Paragraphs, counted(words)?),
-        ("facts.heading", PartKind::Paragraphs, facts(words)?),
-        ("unconfirmed.heading", PartKind::Paragraphs, unconfirmed(words)?),
-        ("report.heading", PartKind::Paragraphs, reports(words)?),
-        ("next.heading", PartKind::Steps, next_steps(words)?),
-    ];
-    wanted
-        .into_iter()
-        .filter(|(_, _, lines)| !lines.is_empty())
-        .map(|(heading, kind, lines)| words.part(heading, kind, lines))
-        .collect()
+    let mut rests_on = counted(words)?;
+    rests_on.extend(facts(words)?);
+    rests_on.extend(unconfirmed(words)?);
+    if words.detail == Detail::Full {
+        rests_on.extend(glossary(words)?);
+    }
+    Ok(vec![
+        words.part("sum.heading", PartKind::Paragraphs, rests_on)?,
+        words.part("report.heading", PartKind::Paragraphs, reports(words)?)?,
+        words.part("next.heading", PartKind::Steps, next_steps(words)?)?,
+    ])
+}
+
+/// What the benefits, taxes and help in kind of this household are, in the pack's words.
+fn glossary(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
+    let mut lines: Vec<Line> = vec![];
+    for (position, item) in words.assessment.items.iter().enumerate() {
+        let explained = match item.kind {
+            ItemKind::Benefit | ItemKind::Passport | ItemKind::Tax | ItemKind::Contribution => true,
+            ItemKind::Pay
+            | ItemKind::Income
+            | ItemKind::Pension
+            | ItemKind::Loan
+            | ItemKind::Cost
+            | ItemKind::Housing => false,
+        };
+        if !explained || !words.marks.present(position) || words.folded(&item.name) {
+            continue;
+        }
+        if let Some(what) = words.label(&format!("what.{}", item.name)) {
+            let name = words.item(position)?;
+            let line = Line {
+                lead: words.say("glossary.lead", &[("name", &name)])?,
+                text: what,
+            };
+            if !lines.contains(&line) {
+                lines.push(line);
+            }
+        }
+    }
+    Ok(lines)
 }
 
 /// The pack's notes that hold for this household; at most one part.
@@ -119,8 +149,10 @@ fn unconfirmed(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
         let count = count.to_string();
         said.push(words.say("unconfirmed.group", &[("name", &name), ("count", &count)])?);
     }
-    let text = words.say("unconfirmed.line", &[("list", &enumerated(&said))])?;
-    Ok(vec![Line::from(text)])
+    Ok(vec![Line {
+        lead: words.plain("unconfirmed.lead")?,
+        text: words.say("unconfirmed.line", &[("list", &enumerated(&said))])?,
+    }])
 }
 
 /// Whom to tell what by when: each office once, in the order of the statement's items.
@@ -138,7 +170,7 @@ fn reports(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
         let (Some(office), Some(report)) = (office, report) else {
             continue;
         };
-        let office = capital(&office);
+        let (office, report) = (capital(&office), report.trim_end_matches('.').to_owned());
         match offices.iter_mut().find(|(known, _)| *known == office) {
             Some((_, said)) if said.contains(&report) => {}
             Some((_, said)) => said.push(report),
@@ -149,7 +181,7 @@ fn reports(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
     for (office, said) in offices {
         lines.push(Line {
             lead: words.say("report.lead", &[("office", &office)])?,
-            text: said.join(" "),
+            text: format!("{}.", listed(&said)),
         });
     }
     if lines.is_empty() {

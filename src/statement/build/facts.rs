@@ -11,6 +11,8 @@ use chrono::NaiveDate;
 
 /// The label of a fact that is not worth a word where it is no or none.
 const UNSAID: &str = "-";
+/// Facts that were assumed to be no or none are named up to this many.
+const NAMED_NONE: usize = 12;
 
 /// All facts, by how they are known.
 pub(super) fn facts(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
@@ -93,14 +95,16 @@ fn push(
     Ok(())
 }
 
-/// Adds the facts that were assumed to be no or none: their names, each once; only how many in a brief letter.
+/// Adds the facts that were assumed to be no or none: the names of some, people's own first, each once; and how many more.
 fn push_none(
     words: &Words<'_>,
     lines: &mut Vec<Line>,
     facts: &[&FactUse],
 ) -> Result<(), StatementError> {
+    let (own, others): (Vec<&FactUse>, Vec<&FactUse>) =
+        facts.iter().partition(|fact| !fact.of.is_empty());
     let mut names: Vec<String> = vec![];
-    for fact in facts {
+    for fact in own.into_iter().chain(others) {
         let labels = &words.context.labels;
         let name = none_of_value(words, fact)
             .or_else(|| labels.get(&format!("none.{}", fact.name)).cloned())
@@ -109,18 +113,27 @@ fn push_none(
             names.push(name);
         }
     }
-    if names.is_empty() {
-        return Ok(());
+    let most = match words.detail {
+        Detail::Full => NAMED_NONE,
+        Detail::Short | Detail::Brief => NAMED_NONE / 2,
+    };
+    let more = names.len().saturating_sub(most);
+    if more > 1 {
+        names.truncate(most);
     }
-    let count = names.len().to_string();
     let list = enumerated(&names);
-    lines.push(Line {
-        lead: words.plain("facts.assumed_none_lead")?,
-        text: match words.detail {
-            Detail::Full => words.say("facts.list", &[("list", &list)])?,
-            Detail::Brief => words.say("facts.count", &[("count", &count)])?,
-        },
-    });
+    if !names.is_empty() {
+        lines.push(Line {
+            lead: words.plain("facts.assumed_none_lead")?,
+            text: match more {
+                0 | 1 => words.say("facts.list", &[("list", &list)])?,
+                _ => {
+                    let count = more.to_string();
+                    words.say("facts.some", &[("list", &list), ("count", &count)])?
+                }
+            },
+        });
+    }
     Ok(())
 }
 

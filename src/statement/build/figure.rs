@@ -24,10 +24,10 @@ const LEAST_STRETCH: Fraction = Fraction::ONE;
 /// Stretches shorter than this, in hours, get no bar unless they start at today's hours.
 const LEAST_BAR: Fraction = Fraction::ONE;
 
-/// Width of the text in points: the page less its margins of 24 and 18 mm.
+/// Width of the text in points: the page less its margins of 20 and 18 mm.
 pub(in crate::statement) fn text_width(paper: &str) -> f64 {
     let page = if paper == "us-letter" { 612.0 } else { 595.28 };
-    page - (24.0 + 18.0) * 72.0 / 25.4
+    page - (20.0 + 18.0) * 72.0 / 25.4
 }
 
 /// A place for drawing.
@@ -292,7 +292,13 @@ fn title(
             words.say(key, &[("hours", &at), ("ten", &said[0])])
         }
         [..] => {
-            let list = said.join(&words.plain("chart.title_slopes_then")?);
+            let mut list = String::new();
+            for ten in &said {
+                list = match list.as_str() {
+                    "" => ten.clone(),
+                    first => words.say("chart.title_slopes_then", &[("first", first), ("next", ten)])?,
+                };
+            }
             words.say("chart.title_slopes", &[("list", &list)])
         }
     }

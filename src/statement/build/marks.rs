@@ -1,7 +1,7 @@
 //! Which items concern a household, and which sums rest on amounts of the law that nobody has checked.
 //! An instrument is a part's title up to its first comma: `Universal Credit, award` is of `Universal Credit`.
 
-use crate::measures::{Assessment, Cause, EarnerResult, Point, Segment, Turn};
+use crate::measures::{Assessment, Cause, EarnerResult, ItemKind, Point, Segment, Turn};
 
 /// The sign at a sum that rests on an unconfirmed amount.
 pub(super) const STAR: &str = "*";
@@ -65,6 +65,12 @@ impl Marks {
     /// Whether an item concerns this household.
     pub fn present(&self, item: usize) -> bool {
         self.present[item]
+    }
+
+    /// Whether the household has a benefit at one of the points that are shown.
+    pub fn has_benefits(&self, assessment: &Assessment) -> bool {
+        let items = assessment.items.iter().zip(&self.present);
+        items.into_iter().any(|(item, present)| *present && item.kind == ItemKind::Benefit)
     }
 
     /// The sign for sums at these points, of the items that a test picks; empty where none rests on an unconfirmed amount.

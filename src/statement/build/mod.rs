@@ -21,13 +21,17 @@ use super::view::LetterView;
 use crate::measures::{Assessment, EarnerResult};
 use words::Words;
 
+pub(super) use figure::text_width;
+
 /// How much a letter says.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Detail {
     /// Everything.
     Full,
-    /// For letters that would be too long: the chart of the leading person alone, no bars, three turning points
-    /// a person, and of the facts that were assumed to be none only how many they are.
+    /// For letters that fit on two pages without the bars, the words explained, and the longer list of facts that were
+    /// assumed to be none.
+    Short,
+    /// For letters that would be too long: as short, and the chart of the leading person alone, three turning points a person.
     Brief,
 }
 

@@ -32,7 +32,7 @@ pub(super) fn section(
     let back = Line::from(way_back(words, earner, measure)?);
     parts.push(words.part("back.heading", PartKind::Paragraphs, vec![back])?);
     let drawn = match words.detail {
-        Detail::Full => asked,
+        Detail::Full | Detail::Short => asked,
         Detail::Brief => place == 0,
     };
     Ok(Section {
@@ -87,14 +87,12 @@ fn passported(
         let has = |point: &Point| point.items[position].0 != 0;
         let change = steps.iter().find(|step| has(step.to) != has(today));
         let text = match change {
-            Some(step) => help_changes(words, (today, step), position, &name)?,
-            None if has(today) => words.say("passport.kept", &[("name", &name)])?,
+            Some(step) => help_changes(words, (today, step), position)?,
+            None if has(today) => words.plain("passport.kept")?,
             None => continue,
         };
-        let line = match words.label(&format!("what.{}", item.name)) {
-            Some(what) if !words.folded(&item.name) => Line::from(format!("{text} {what}")),
-            Some(_) | None => Line::from(text),
-        };
+        let lead = words.say("passport.lead", &[("name", &name)])?;
+        let line = Line { lead, text };
         if !lines.contains(&line) {
             lines.push(line);
         }
@@ -112,7 +110,6 @@ fn help_changes(
     words: &Words<'_>,
     (today, step): (&Point, &Step<'_>),
     position: usize,
-    name: &str,
 ) -> Result<String, StatementError> {
     let (wanted, verb) = match today.items[position].0 {
         0 => (1, "won"),
@@ -133,12 +130,12 @@ fn help_changes(
     match turn {
         Some(turn) if step.to.hours >= today.hours => {
             let (hours, pay) = (hours_text(turn.hours), words.currency.short(turn.pay));
-            let values = [("name", name), ("hours", &hours), ("pay", &pay)];
+            let values = [("hours", hours.as_str()), ("pay", &pay)];
             words.say(&format!("passport.{verb}"), &values)
         }
         Some(_) | None => words.say(
             &format!("passport.{verb}_step"),
-            &[("name", name), ("step", &step.name)],
+            &[("step", &step.name)],
         ),
     }
 }
@@ -164,7 +161,9 @@ fn way_back(
         let hours = hours_text(fewer);
         lines.push(against(words, ("back.fewer", &hours), point, values)?);
     }
-    lines.push(words.plain("back.report")?);
+    if words.marks.has_benefits(words.assessment) {
+        lines.push(words.plain("back.report")?);
+    }
     Ok(lines.join(" "))
 }
 

@@ -14,17 +14,20 @@ const EFFECTS: usize = 3;
 /// The least change of what is kept of ten units that is worth a line, in minor units.
 const LEAST_SLOPE: i64 = 5;
 
-/// A turn in words; none where it is too small to matter.
+/// A turn in words, or several changes of slope that lie close together; none where it is too small to matter.
 pub(super) fn turn_text(
     words: &Words<'_>,
     line: &BudgetLine,
-    turn: &Turn,
+    near: &[Turn],
     measure: Measure,
 ) -> Result<Option<(Way, TurnText)>, StatementError> {
+    let (Some(turn), Some(last)) = (near.first(), near.last()) else {
+        return Ok(None);
+    };
     let size = jump(turn, measure);
     let slopes = (
         segment_before(line, turn).map_or(turn.metr_before, |segment| measure.rate(segment)),
-        segment_after(line, turn).map_or(turn.metr_after, |segment| measure.rate(segment)),
+        segment_after(line, last).map_or(last.metr_after, |segment| measure.rate(segment)),
     );
     let slopes = (slopes.0.map(kept_of_ten), slopes.1.map(kept_of_ten));
     let turned = match slopes {
@@ -61,9 +64,11 @@ pub(super) fn turn_text(
         return Ok(None);
     };
     let mut said = vec![];
-    let causes = causes(words, line, turn)?;
-    if !causes.is_empty() {
-        said.push(format!("{}.", capital(causes.trim_end_matches('.'))));
+    for turn in near {
+        let causes = causes(words, line, turn)?;
+        if !causes.is_empty() {
+            said.push(format!("{}.", capital(causes.trim_end_matches('.'))));
+        }
     }
     match way {
         Way::Falls | Way::Rises => {
@@ -91,7 +96,8 @@ pub(super) fn turn_text(
             said.push(words.say(key, &[("name", &enumerated(&names))])?);
         }
     }
-    let star = words.marks.of_turn(turn);
+    let stars = near.iter().map(|turn| words.marks.of_turn(turn));
+    let star = stars.max().unwrap_or_default();
     let place = words.say("turns.place", &[("hours", &hours_text(turn.hours))])?;
     let text = TurnText {
         place: format!("{place}{star}"),

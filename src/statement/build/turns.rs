@@ -94,6 +94,14 @@ pub(super) fn own_traps(line: &BudgetLine, measure: Measure) -> Vec<&Trap> {
     line.traps.iter().filter(of_cost).collect()
 }
 
+/// The turns in order; changes of slope that lie within a quarter of an hour of each other count as one.
+fn together(turns: &[Turn]) -> impl Iterator<Item = &[Turn]> {
+    turns.chunk_by(|one, next| {
+        let kinks = one.kind == TurnKind::Kink && next.kind == TurnKind::Kink;
+        kinks && (next.at - one.at) * Fraction::whole(4) <= Fraction::ONE
+    })
+}
+
 /// Chooses and words the turning points of the section that has this place in the letter.
 pub(super) fn turns(
     words: &Words<'_>,
@@ -113,12 +121,19 @@ pub(super) fn turns(
     let inside = |hours: Hours| hours >= range.0 && hours <= range.1;
     let mut candidates = vec![];
     let mut costs: Vec<&Turn> = vec![];
-    for turn in &main.turns {
+    let mut help_on_the_way = false;
+    for near in together(&main.turns) {
+        let Some(turn) = near.first() else { continue };
         if is_cost_step(main, turn, measure) {
             if inside(turn.hours) && turn.at > Fraction::ZERO {
                 costs.push(turn);
             }
-        } else if let Some((way, text)) = turn_text(words, main, turn, measure)? {
+        } else if let Some((way, text)) = turn_text(words, main, near, measure)? {
+            // Help in kind that is won or lost on the way to a step has a part of its own.
+            if way == Way::Passport && inside(turn.hours) {
+                help_on_the_way = true;
+                continue;
+            }
             candidates.push(Candidate {
                 rank: rank(way, inside(turn.hours)),
                 away: (turn.hours.0 - today.0).abs(),
@@ -155,17 +170,22 @@ pub(super) fn turns(
     let all = candidates.len();
     candidates.sort_by(|a, b| (a.rank, a.away, a.at).cmp(&(b.rank, b.away, b.at)));
     candidates.truncate(match (words.detail, place) {
-        (Detail::Full, 0) => MOST,
-        (Detail::Full, _) | (Detail::Brief, _) => FILL,
+        (Detail::Full | Detail::Short, 0) => MOST,
+        (Detail::Full | Detail::Short, _) | (Detail::Brief, _) => FILL,
     });
+    let on_the_way = help_on_the_way
+        || candidates
+            .iter()
+            .any(|found| found.rank <= Rank::SlopeOnTheWay);
+    let fill = match words.detail {
+        Detail::Full | Detail::Brief => FILL,
+        Detail::Short => 1,
+    };
     let mut position = 0;
     candidates.retain(|found| {
         position += 1;
-        found.rank < Rank::Beyond || position <= FILL
+        found.rank < Rank::FallBeyond || position <= fill
     });
-    let on_the_way = candidates
-        .iter()
-        .any(|found| found.rank <= Rank::SlopeOnTheWay);
     candidates.sort_by(|a, b| a.at.cmp(&b.at));
     let lead = if on_the_way {
         String::new()
