@@ -412,7 +412,8 @@ impl<'a> Oracle<'a> {
                     for (rate, limit) in &ladder.lines {
                         let rate = self.value(rate, inside, run).number();
                         let high = match limit {
-                            Limit::UpTo(limit) | Limit::Below(limit) => self.value(limit, inside, run).number(),
+                            // A limit below the one before leaves its line empty.
+                            Limit::UpTo(limit) | Limit::Below(limit) => self.value(limit, inside, run).number().max(low.clone()),
                             Limit::Beyond => all.clone().max(low.clone()),
                         };
                         // What of it lies between the two limits.
@@ -669,6 +670,7 @@ impl<'a> Oracle<'a> {
                             Limit::UpTo(limit) | Limit::Below(limit) => self.course(limit, inside),
                             Limit::Beyond => nothing.clone(),
                         };
+                        let high = if low.rank() > high.rank() { low.clone() } else { high };
                         if !matches!(&rate, Course::Fixed(Value::Number(value)) if value.is_zero()) {
                             parts.extend([of(inner), rate, low, high.clone()]);
                         }
