@@ -219,6 +219,17 @@ mod tests {
     }
 
     #[test]
+    fn what_does_not_fit_is_none() {
+        let large = Fraction::whole(i128::MAX);
+        assert_eq!(large.checked_add(Fraction::ONE), None);
+        assert_eq!(large.checked_mul(Fraction::whole(2)), None);
+        assert_eq!(Fraction::new(1, i128::MAX).checked_mul(Fraction::new(1, 2)), None);
+        // What cancels still fits.
+        assert_eq!(large.checked_mul(Fraction::new(1, i128::MAX)), Some(Fraction::ONE));
+        assert_eq!(Fraction::new(1, 6).checked_add(Fraction::new(1, 3)), Some(Fraction::new(1, 2)));
+    }
+
+    #[test]
     fn floors_and_ceilings_below_zero() {
         assert_eq!(
             (Fraction::new(-7, 2).floor(), Fraction::new(-7, 2).ceil()),

@@ -285,3 +285,21 @@ pub(super) fn read_table(file: FileId, text: &str, keys: usize, ty: Ty, words: &
     }
     out
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn days_and_numbers_are_read_strictly() {
+        assert_eq!(day("1970-01-02"), Some(1));
+        assert_eq!(day("2024-02-29"), Some(19_782));
+        for wrong in ["2026-02-29", "2026-2-28", "2026- 2-28", "+2026-2-28", "02026-2-28", "2026/02/28", "2026-02-28 ", ""] {
+            assert_eq!(day(wrong), None, "`{wrong}`");
+        }
+        assert_eq!(decimal("-0.55"), Some(Fraction::new(-55, 100)));
+        for wrong in ["", "-", ".5", "5.", "1,000", "1e3", "+1", "--1", "1.2.3", "1234567890123456789"] {
+            assert_eq!(decimal(wrong), None, "`{wrong}`");
+        }
+    }
+}

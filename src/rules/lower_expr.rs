@@ -323,36 +323,29 @@ impl Lowering<'_> {
         let (from, at) = *scopes.last().expect("bands are said of a record");
         let own = self.climb(from, at, decl.kind).expect("checked bands can be reached");
         let mut inner = vec![(decl.kind, own)];
-        let mut low: Option<Reg> = None;
+        let mut low = none;
         let mut total = none;
-        for (rate, limit) in &decl.bands {
+        for (at, (rate, limit)) in decl.bands.iter().enumerate() {
             let rate = self.node(rate, &mut inner);
-            let span = limit.as_ref().map(|limit| limit.span);
-            // A limit below nothing, or below the one before it, leaves an empty band.
-            let limit = limit.as_ref().map(|limit| {
-                let limit = self.node(limit, &mut inner);
-                let before = low.unwrap_or(none);
-                let both_fixed = self.builder.is_fixed(limit) && self.builder.is_fixed(before);
-                if both_fixed { limit } else { self.builder.larger(limit, before) }
-            });
-            let before = low.map_or(Some(Fraction::ZERO), |low| self.builder.fixed_value(low));
-            if let (Some(before), Some(limit), Some(span)) = (before, limit, span)
-                && let Some(high) = self.builder.fixed_value(limit)
-                && (high < before || high == before && low.is_some())
-            {
-                self.faults.push(falls(span, &decl.name));
-            }
-            let upper = limit.map_or(of, |limit| self.builder.smaller(of, limit));
-            let inside = match low {
-                None => upper,
-                Some(low) => {
-                    let over = self.builder.subtract(upper, low);
-                    self.builder.larger(over, none)
+            let high = match limit {
+                None => None,
+                Some(limit) => {
+                    let high = self.node(limit, &mut inner);
+                    if let (Some(before), Some(value)) = (self.builder.fixed_value(low), self.builder.fixed_value(high))
+                        && (value < before || value == before && at > 0)
+                    {
+                        self.faults.push(falls(limit.span, &decl.name));
+                    }
+                    // A limit that only this household's facts bring below the one before leaves its band empty.
+                    Some(self.builder.larger(high, low))
                 }
             };
+            let upper = high.map_or(of, |high| self.builder.smaller(of, high));
+            let inside = self.builder.subtract(upper, low);
+            let inside = if at == 0 { inside } else { self.builder.larger(inside, none) };
             let share = self.builder.multiply(inside, rate);
             total = self.builder.add(total, share);
-            low = limit;
+            low = high.unwrap_or(low);
         }
         total
     }

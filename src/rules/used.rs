@@ -24,6 +24,9 @@ struct Used {
     kinds: BTreeSet<usize>,
 }
 
+/// What a list holds, the positions that are used, and the declarations.
+type List<'a> = (&'a str, &'a BTreeSet<usize>, Vec<(Span, &'a str)>);
+
 pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
     if pack.definitions.iter().all(|d| d.item.is_none()) {
         faults.push(Diagnostic::general("the pack has no item").expected("at least one `item`, as a statement consists of them"));
@@ -57,7 +60,7 @@ pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
             report(Some(amount.rows[0].span), "amount", &amount.name);
         }
     }
-    let lists: [(&str, &BTreeSet<usize>, Vec<(Span, &str)>); 4] = [
+    let lists: [List<'_>; 4] = [
         ("table", &used.tables, pack.tables.iter().map(|t| (t.span, t.name.as_str())).collect()),
         ("conversion", &used.conversions, pack.conversions.iter().map(|c| (c.span, c.name.as_str())).collect()),
         ("bands", &used.bands, pack.bands.iter().map(|b| (b.span, b.name.as_str())).collect()),

@@ -750,6 +750,7 @@ pub fn context() -> LetterContext {
             .iter()
             .map(|(key, text)| ((*key).to_owned(), (*text).to_owned()))
             .collect::<BTreeMap<_, _>>(),
+        facts: BTreeMap::new(),
         texts: TemplateSet::built_in()
             .texts("en")
             .expect("the texts are sound"),
