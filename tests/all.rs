@@ -3,6 +3,8 @@
 mod suite {
     mod batch;
     mod case;
+    mod cli;
+    mod language;
     mod oracle;
     mod statement;
     mod uk;

@@ -144,6 +144,7 @@ pub(crate) fn assessment() -> Assessment {
             offers: vec![],
             target: None,
         }],
+        couple: None,
         notes: vec![],
         facts: vec![],
         amounts: vec![],

@@ -53,7 +53,7 @@ impl RunFolder {
         let holds = fs::read_dir(path)
             .map_err(Error::write(path))?
             .filter_map(Result::ok)
-            .any(|entry| entry.file_name() != LOCK);
+            .any(|entry| entry.file_name() != LOCK && entry.file_name() != SORTING);
         if holds && !marked {
             return Err(Error::ForeignFolder(path.to_owned()));
         }
@@ -124,11 +124,6 @@ impl RunFolder {
         Ok(folder)
     }
 
-    /// Removes the folder for sorting, if there is one.
-    pub(super) fn sorted(&self) {
-        let _ = fs::remove_dir_all(self.path.join(SORTING));
-    }
-
     /// Where a file of the run lies.
     pub(super) fn file(&self, name: &str) -> PathBuf {
         self.path.join(name)
@@ -143,6 +138,13 @@ impl RunFolder {
     pub(super) fn make(&self, name: &str) -> Result<(), Error> {
         let folder = self.path.join(name);
         private_folder(&folder).map_err(Error::write(&folder))
+    }
+}
+
+impl Drop for RunFolder {
+    /// Sorted copies of a list do not outlive the run.
+    fn drop(&mut self) {
+        let _ = fs::remove_dir_all(self.path.join(SORTING));
     }
 }
 

@@ -6,6 +6,7 @@
 
 mod archive;
 mod aside;
+mod books;
 mod child;
 mod error;
 #[cfg(test)]
@@ -15,13 +16,17 @@ mod frame;
 mod ledger;
 mod outcome;
 mod pool;
+mod prepare;
+mod proof;
 mod record;
 mod run;
 mod tables;
+mod work;
 mod worker;
 
 pub use archive::pack_folder;
 pub use aside::Aside;
+pub use books::Books;
 pub use child::WorkerCommand;
 pub use error::Error;
 pub use folder::{Existing, RunFolder};
@@ -30,8 +35,11 @@ pub use outcome::{
     Assessor, Entry, FaultRow, Outcome, Product, Reject, StatementFile, statement_number,
 };
 pub use pool::{Done, PoolFigures, PoolPlan, StopFlag, drive};
+pub use prepare::{Places, Prepared, built_in_templates, checked, findings, prepare};
+pub use proof::{Proof, prove};
 pub use record::{Inputs, Record};
 pub use run::{Progress, RunPlan, Summary, run};
 pub(crate) use tables::wage;
 pub use tables::{GridRows, Table, results, results_header, turning_points, turning_points_header};
+pub use work::{Orders, Statements, Work, item_columns, setup, work};
 pub use worker::serve;

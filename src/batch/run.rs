@@ -72,7 +72,6 @@ where
         Ok(())
     })?;
     let ledger = writer.finish()?;
-    folder.sorted();
     let ended = plan.record.json(State::Ended(&ledger));
     folder.write(RECORD, ended.as_bytes(), Forced::ToDisk)?;
     let summary = Summary {

@@ -4,7 +4,9 @@
 //! exist: a participation rate without pay, a rate after the last row. Text that came from a list and that a spreadsheet
 //! would take for a formula gets an apostrophe in front.
 
-use crate::measures::{Assessment, BudgetLine, EarnerResult, Effect, Point, Turn, TurnKind};
+use crate::measures::{
+    Assessment, BudgetLine, EarnerResult, Effect, ItemKind, Point, Turn, TurnKind,
+};
 use crate::num::{Fraction, Hours, Money};
 use serde::{Deserialize, Serialize};
 
@@ -68,6 +70,20 @@ pub enum GridRows {
 }
 
 /// Column names of `results.csv` for a pack with these items.
+///
+/// * `household`, `earner` (1 for the first adult), `line` (`today`, or the offer's reference), `wage` (an hour)
+/// * `point`: `not_in_work` (all jobs of the earner ended), `today` or `offer` (the job's own hours), `step` (four hours more than
+///   today), `grid`
+/// * `hours` (a week), `pay` (E, all jobs of the earner)
+/// * `item:NAME`: one column an item of the pack, summed over the household's members; a passport is a count
+/// * `take_home`, `net` (Y), `after_costs`, `after_housing`
+/// * `ptr`: 1 − [Y(h) − Y(0)] / E(h); empty without pay; `ptr_after_costs` likewise
+/// * `metr_here`: 1 − dY/dE to the right, roundings smoothed; `metr_here_after_costs` likewise
+/// * `metr_step`: 1 − ΔY/ΔE to the next row of the same line, from the rounded sums; empty on the last row and where pay does not
+///   change; `metr_step_after_costs` likewise
+/// * `kept_of_next_hour`: net income one hour further on, less net income here; empty where the grid has no such hour;
+///   `kept_of_next_hour_after_costs` likewise
+/// * `replacement`: Y(0) / Y(h)
 pub fn results_header(items: &[String]) -> Vec<String> {
     let front = [
         "household",
@@ -131,16 +147,7 @@ pub fn results(assessment: &Assessment, items: &[String], grid: GridRows) -> Tab
                     point.hours.plain(),
                     point.pay.plain(),
                 ];
-                cells.extend(columns.iter().map(|places| {
-                    match places.as_slice() {
-                        [] => String::new(),
-                        places => places
-                            .iter()
-                            .map(|i| point.items[*i])
-                            .sum::<Money>()
-                            .plain(),
-                    }
-                }));
+                cells.extend(columns.iter().map(|places| item(assessment, places, point)));
                 cells.extend([
                     point.take_home.plain(),
                     point.net.plain(),
@@ -161,6 +168,17 @@ pub fn results(assessment: &Assessment, items: &[String], grid: GridRows) -> Tab
         }
     }
     table
+}
+
+/// The sum of an item over its instances; a passport is the number of those who have it. Empty where the household has no
+/// such item.
+fn item(assessment: &Assessment, places: &[usize], point: &Point) -> String {
+    let sum: Money = places.iter().map(|i| point.items[*i]).sum();
+    match places.first() {
+        None => String::new(),
+        Some(first) if assessment.items[*first].kind == ItemKind::Passport => sum.0.to_string(),
+        Some(_) => sum.plain(),
+    }
 }
 
 /// The points of a line that become rows, each with its word.
@@ -199,6 +217,16 @@ fn step_rate(from: &Point, to: Option<&Point>, sum: impl Fn(&Point) -> Money) ->
 }
 
 /// Column names of `turning_points.csv`.
+///
+/// * `household`, `earner`, `line`, `wage` as in `results.csv`
+/// * `kind`: `kink`, `cliff_down`, `cliff_up`, `passport`, `trap`, `no_gain`
+/// * `hours`: where it lies, or where a trap or a stretch starts; `until_hours`: where a trap or a stretch ends, empty where a trap
+///   is not regained
+/// * `pay`: E there; for a cliff the first payable pay from which the new branch stays
+/// * `net_before`, `net_after`, `size`: exact sums at the point; for a trap its highest net income before, its lowest inside, and
+///   what is lost at most
+/// * `after_costs_before`, `after_costs_after`, `metr_before`, `metr_after`
+/// * `causes`: the rules that turned; `effects`: what changed for each item, adding up to the whole
 pub fn turning_points_header() -> Vec<String> {
     [
         "household",
@@ -306,7 +334,6 @@ fn turn_cells(assessment: &Assessment, turn: &Turn) -> Vec<String> {
 
 /// `income_tax of adult 1: jump -12.00, slope -0.2000`, with what is zero left out.
 fn effect_words(assessment: &Assessment, effect: &Effect) -> String {
-    use crate::measures::ItemKind;
     let item = &assessment.items[effect.item];
     let whose = match item.adult {
         Some(adult) => format!("{} of adult {}", item.name, adult + 1),

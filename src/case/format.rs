@@ -268,7 +268,7 @@ pub(super) fn read_fact(text: &str, fact: &FactSpec, format: Format) -> Result<i
         }
         FactType::Date => days_since_1970(read_day(text, format.dates)?),
         FactType::YesNo => read_yes_no(text)?,
-        FactType::Choice(words) => read_word("choice", text, words)? as i64,
+        FactType::Choice(words) => read_word(&fact.name.replace('_', " "), text, words)? as i64,
     };
     match &fact.ty {
         FactType::Money(_) if value < 0 && fact.min >= 0 => return Err(Problem::NegativeMoney),

@@ -73,7 +73,8 @@ pub struct Household {
     pub instances: Vec<Vec<Instance>>,
     /// The role of each job in `instances[JOB]`.
     pub job_roles: Vec<JobRole>,
-    /// Jobs on offer; `owner` is the adult. They are not among the instances.
+    /// Jobs on offer; `owner` is the adult. They are not among the instances. One without a reference in the list is given `offer-1` and
+    /// so on.
     pub offers: Vec<Instance>,
     /// Row of the household in its file, counted from 1 with the header; 0 for a single household.
     pub row: u64,

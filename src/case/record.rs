@@ -2,7 +2,7 @@
 //! Imports nothing outside `case`.
 
 use super::fault::Place;
-use super::layout::Layout;
+use super::layout::{Holds, Layout};
 use super::problem::Problem;
 use std::sync::Arc;
 
@@ -51,7 +51,8 @@ impl Record {
 
     /// The place of a column, or of the record where the column was not written.
     pub(super) fn place(&self, layout: &Layout, column: usize) -> Place {
-        let name = layout.columns[column].name.clone();
+        let meant = &layout.columns[column];
+        let name = meant.name.clone();
         match &self.standing {
             Standing::Row { row, .. } => Place::Cell {
                 row: *row,
@@ -62,7 +63,11 @@ impl Record {
                 Place::Text {
                     line: spot.line,
                     column: spot.column,
-                    key: name,
+                    key: if meant.holds == Holds::Household {
+                        "reference".into()
+                    } else {
+                        name
+                    },
                 }
             }
         }

@@ -199,6 +199,9 @@ Examples:
 pub struct ProveArgs {
     /// Rule pack: a built-in name or a folder
     pub pack: String,
+    /// Text for people or JSON for programs, one object a line
+    #[arg(long, value_enum, default_value_t)]
+    pub format: Format,
 }
 
 /// `hourworth form`.

@@ -1,5 +1,5 @@
 //! An [`Assessment`] for programs. Money and rates are text, so that no reader turns them into floats: money with two
-//! decimals, rates and slopes with four, places in hours with six. A value that does not exist is null.
+//! decimals (a passport is 1 or 0), rates and slopes with four, places in hours with six. A value that does not exist is null.
 
 use crate::batch::wage;
 use crate::measures::{
@@ -20,6 +20,12 @@ pub(super) fn json(assessment: &Assessment) -> Value {
             "part": item.part,
         })).collect::<Value>(),
         "earners": assessment.earners.iter().map(|e| earner(assessment, e)).collect::<Value>(),
+        "couple": assessment.couple.as_ref().map(|table| json!({
+            "first": table.first.iter().map(|h| h.plain()).collect::<Vec<_>>(),
+            "second": table.second.iter().map(|h| h.plain()).collect::<Vec<_>>(),
+            "net": sums(&table.net),
+            "after_costs": sums(&table.after_costs),
+        })),
         "notes": assessment.notes,
         "facts": assessment.facts.iter().map(|fact| json!({
             "kind": fact.kind,
@@ -38,6 +44,10 @@ pub(super) fn json(assessment: &Assessment) -> Value {
             "changed_because": amount.changed_because,
         })).collect::<Value>(),
     })
+}
+
+fn sums(rows: &[Vec<Money>]) -> Vec<Vec<String>> {
+    rows.iter().map(|row| row.iter().map(|sum| sum.plain()).collect()).collect()
 }
 
 fn kind(kind: ItemKind) -> &'static str {
@@ -59,7 +69,7 @@ fn earner(assessment: &Assessment, earner: &EarnerResult) -> Value {
     json!({
         "adult": earner.adult + 1,
         "has_job": earner.has_job,
-        "not_in_work": point(&earner.not_in_work),
+        "not_in_work": point(assessment, &earner.not_in_work),
         "lines": earner.lines.iter().map(|l| line(assessment, l)).collect::<Value>(),
         "offers": earner.offers.iter().map(|offer| json!({
             "line": offer.line,
@@ -87,7 +97,7 @@ fn line(assessment: &Assessment, line: &BudgetLine) -> Value {
         "first_minute": line.first_minute.plain(),
         "own": line.own,
         "step_to": line.step_to,
-        "grid": line.grid.iter().map(point).collect::<Value>(),
+        "grid": line.grid.iter().map(|p| point(assessment, p)).collect::<Value>(),
         "turning_points": line.turns.iter().map(|t| turn(assessment, t)).collect::<Value>(),
         "segments": line.segments.iter().map(segment).collect::<Value>(),
         "traps": line.traps.iter().map(|trap| json!({
@@ -107,11 +117,19 @@ fn rate(value: Option<Fraction>) -> Option<String> {
     value.map(|rate| rate.decimal(4))
 }
 
-fn point(point: &Point) -> Value {
+fn point(assessment: &Assessment, point: &Point) -> Value {
+    let kinds = assessment.items.iter().map(|item| item.kind);
+    let items: Vec<String> = kinds
+        .zip(&point.items)
+        .map(|(kind, amount)| match kind {
+            ItemKind::Passport => amount.0.to_string(),
+            _ => amount.plain(),
+        })
+        .collect();
     json!({
         "hours": point.hours.plain(),
         "pay": point.pay.plain(),
-        "items": point.items.iter().map(|item| item.plain()).collect::<Vec<_>>(),
+        "items": items,
         "take_home": point.take_home.plain(),
         "net": point.net.plain(),
         "after_costs": point.after_costs.plain(),

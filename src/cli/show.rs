@@ -3,7 +3,7 @@
 
 use super::chart::{Mark, chart};
 use crate::batch::wage;
-use crate::measures::{Assessment, BudgetLine, EarnerResult, OfferMeasures, Point, Turn, TurnKind};
+use crate::measures::{Assessment, BudgetLine, CoupleTable, EarnerResult, OfferMeasures, Point, Turn, TurnKind};
 use crate::num::{Fraction, Hours, Money};
 
 /// The words that the figures need beside them.
@@ -61,6 +61,9 @@ pub fn show(assessment: &Assessment, terms: &Terms) -> String {
             });
         }
     }
+    if let Some(table) = &assessment.couple {
+        out.extend(couple(table));
+    }
     if assessment.earners.is_empty() {
         out.push("no adult has a job or an offer: there is no line to show".into());
     }
@@ -69,6 +72,29 @@ pub fn show(assessment: &Assessment, terms: &Terms) -> String {
     }
     out.push(String::new());
     out.join("\n")
+}
+
+/// Net income for each pair of the partners' hours.
+fn couple(table: &CoupleTable) -> Vec<String> {
+    let mut out = vec![
+        String::new(),
+        "net income by both partners' hours a week (down: adult 1, across: adult 2):".to_owned(),
+        String::new(),
+    ];
+    let mark = |hours: &Hours, own: Hours| if *hours == own { format!("> {}", hours.plain()) } else { hours.plain() };
+    let mut head = format!("{:>8}", "hours");
+    for hours in &table.second {
+        head.push_str(&format!("{:>11}", mark(hours, table.own.1)));
+    }
+    out.push(head);
+    for (hours, row) in table.first.iter().zip(&table.net) {
+        let mut line = format!("{:>8}", mark(hours, table.own.0));
+        for sum in row {
+            line.push_str(&format!("{:>11}", sum.plain()));
+        }
+        out.push(line);
+    }
+    out
 }
 
 fn heading(earner: &EarnerResult, line: &BudgetLine) -> String {

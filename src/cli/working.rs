@@ -1,6 +1,6 @@
 //! The working at one point as numbered lines. In: the lines in the order of the law. Out: text or JSON.
 
-use crate::measures::WorkingLine;
+use crate::measures::{AmountUse, WorkingLine};
 use serde_json::{Value, json};
 
 /// Numbered lines under the headings of their instruments.
@@ -34,8 +34,29 @@ pub(super) fn text(lines: &[WorkingLine]) -> String {
         if !line.inputs.is_empty() {
             out.push_str(&format!("        with {}\n", line.inputs.join(", ")));
         }
+        for amount in &line.amounts {
+            out.push_str(&format!("        {}\n", amount_words(amount)));
+        }
     }
     out
+}
+
+/// An amount with its days, source and status.
+fn amount_words(amount: &AmountUse) -> String {
+    let days = match amount.to.as_str() {
+        "" => format!("from {}", amount.from),
+        to => format!("{} to {to}", amount.from),
+    };
+    let place = match amount.locator.as_str() {
+        "" => amount.source.clone(),
+        locator => format!("{}, {locator}", amount.source),
+    };
+    let status = match (amount.changed_because.as_str(), amount.confirmed) {
+        ("", true) => String::new(),
+        ("", false) => "; not confirmed".to_owned(),
+        (why, _) => format!("; changed by the list: {why}"),
+    };
+    format!("amount {} {}, {days}: {place}{status}", amount.name, amount.value)
 }
 
 /// The same for programs.
@@ -53,6 +74,7 @@ pub(super) fn json(lines: &[WorkingLine]) -> Value {
                 "formula": line.formula,
                 "inputs": line.inputs,
                 "law": line.law,
+                "amounts": line.amounts.iter().map(amount_words).collect::<Vec<_>>(),
             })
         })
         .collect()
@@ -72,6 +94,7 @@ mod tests {
             formula: "pay beyond allowance".into(),
             inputs: vec!["pay = 20.00".into(), "allowance = 8.00".into()],
             law: law.into(),
+            amounts: vec![],
         };
         let lines = [
             line("Invented Tax", "taxed", "adult 1", ""),

@@ -1,6 +1,6 @@
 //! Exact evaluation at hours that are no whole hundredth, such as those of a whole-penny pay.
 
-use super::machine::Special;
+use super::machine::{Code, Special};
 use crate::index::Id;
 use crate::num::{Fraction, Money, divide_rounded};
 use crate::program::{ItemKind, Op};
@@ -8,6 +8,9 @@ use crate::program::{ItemKind, Op};
 impl Special<'_> {
     /// Amounts of all items at any hours, in minor units, with the law's roundings.
     pub fn exactly_at(&self, hours: Fraction) -> Vec<Money> {
+        if let Some(values) = self.integers_at(hours) {
+            return self.items(&values);
+        }
         let values = self.fractions_at(hours);
         let program = self.program();
         program
@@ -20,6 +23,75 @@ impl Special<'_> {
                 Money(i64::try_from(scaled.floor()).expect("an item is bounded"))
             })
             .collect()
+    }
+
+    /// All registers at hours p/q as whole numbers of 1 / (scale × q to a power); none where one does not fit.
+    fn integers_at(&self, hours: Fraction) -> Option<Vec<i128>> {
+        let machine = self.machine;
+        let (p, q) = (hours.numerator(), hours.denominator());
+        let powers_of_q = [Some(1), Some(q), q.checked_mul(q)];
+        let mut v = self.values.clone();
+        let power = |at: usize| machine.powers[at] as usize;
+        for at in &machine.varying {
+            let up = |n: i128, by: i128, from: usize, to: usize| -> Option<i128> {
+                n.checked_mul(by)?.checked_mul((*powers_of_q.get(to - from)?)?)
+            };
+            let pair = |a: usize, by_a: i128, b: usize, by_b: i128| -> Option<(i128, i128)> {
+                let top = power(a).max(power(b));
+                Some((up(v[a], by_a, power(a), top)?, up(v[b], by_b, power(b), top)?))
+            };
+            v[*at] = match &machine.exact[*at] {
+                Code::Constant(value) => *value,
+                Code::Fact(_) | Code::Lookup { .. } | Code::Years { .. } => return None,
+                Code::Hours => p.checked_mul(100)?,
+                Code::Add { a, by_a, b, by_b } => {
+                    let (x, y) = pair(*a, *by_a, *b, *by_b)?;
+                    x.checked_add(y)?
+                }
+                Code::Subtract { a, by_a, b, by_b } => {
+                    let (x, y) = pair(*a, *by_a, *b, *by_b)?;
+                    x.checked_sub(y)?
+                }
+                Code::Multiply { a, b } => v[*a].checked_mul(v[*b])?,
+                Code::Times { a, by } => v[*a].checked_mul(*by)?,
+                Code::Smaller { a, by_a, b, by_b } => {
+                    let (x, y) = pair(*a, *by_a, *b, *by_b)?;
+                    x.min(y)
+                }
+                Code::Larger { a, by_a, b, by_b } => {
+                    let (x, y) = pair(*a, *by_a, *b, *by_b)?;
+                    x.max(y)
+                }
+                Code::Choose { when, then, by_then, otherwise, by_otherwise } => {
+                    let (x, y) = pair(*then, *by_then, *otherwise, *by_otherwise)?;
+                    if v[*when] != 0 { x } else { y }
+                }
+                Code::Round { a, numerator, denominator, unit, direction, .. } => {
+                    let below = denominator.checked_mul((*powers_of_q.get(power(*a))?)?)?;
+                    divide_rounded(v[*a].checked_mul(*numerator)?, below, *direction) * unit
+                }
+                Code::Divide { a, b, numerator, denominator, unit, direction } => {
+                    let below = v[*b].checked_mul(*denominator)?.max(1).checked_mul((*powers_of_q.get(power(*a))?)?)?;
+                    divide_rounded(v[*a].checked_mul(*numerator)?, below, *direction) * unit
+                }
+                Code::AtLeast { a, by_a, b, by_b } => {
+                    let (x, y) = pair(*a, *by_a, *b, *by_b)?;
+                    i128::from(x >= y)
+                }
+                Code::Above { a, by_a, b, by_b } => {
+                    let (x, y) = pair(*a, *by_a, *b, *by_b)?;
+                    i128::from(x > y)
+                }
+                Code::Same { a, by_a, b, by_b } => {
+                    let (x, y) = pair(*a, *by_a, *b, *by_b)?;
+                    i128::from(x == y)
+                }
+                Code::Both { a, b } => v[*a] & v[*b],
+                Code::Either { a, b } => v[*a] | v[*b],
+                Code::Not { a } => 1 - v[*a],
+            };
+        }
+        Some(v)
     }
 
     /// All registers at any hours as fractions, with the law's roundings.
@@ -63,4 +135,34 @@ impl Special<'_> {
         }
         v
     }
+}
+
+/// The power of q that each register carries at hours p/q: one more for each factor of hours since the last rounding.
+pub(super) fn powers(codes: &[Code]) -> Vec<u32> {
+    let mut powers: Vec<u32> = Vec::with_capacity(codes.len());
+    for code in codes {
+        let power = match code {
+            Code::Constant(_)
+            | Code::Fact(_)
+            | Code::Round { .. }
+            | Code::Divide { .. }
+            | Code::AtLeast { .. }
+            | Code::Above { .. }
+            | Code::Same { .. }
+            | Code::Both { .. }
+            | Code::Either { .. }
+            | Code::Not { .. }
+            | Code::Lookup { .. }
+            | Code::Years { .. } => 0,
+            Code::Hours => 1,
+            Code::Add { a, b, .. } | Code::Subtract { a, b, .. } | Code::Smaller { a, b, .. } | Code::Larger { a, b, .. } => {
+                powers[*a].max(powers[*b])
+            }
+            Code::Choose { then, otherwise, .. } => powers[*then].max(powers[*otherwise]),
+            Code::Multiply { a, b } => powers[*a] + powers[*b],
+            Code::Times { a, .. } => powers[*a],
+        };
+        powers.push(power);
+    }
+    powers
 }

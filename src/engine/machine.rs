@@ -44,6 +44,8 @@ pub struct Machine {
     pub(super) varying: Vec<usize>,
     /// Steps that do not.
     pub(super) steady: Vec<usize>,
+    /// At hours p/q a register holds whole numbers of 1 / (scale × q to this power), with the law's roundings.
+    pub(super) powers: Vec<u32>,
 }
 
 fn code(program: &Program, at: usize, scale_of: impl Fn(Scales) -> i128) -> Code {
@@ -130,7 +132,9 @@ impl Machine {
         let exact = all.clone().map(|at| code(&program, at, |s| s.exact)).collect();
         let smooth = all.clone().map(|at| code(&program, at, |s| s.smooth)).collect();
         let (varying, steady) = all.partition(|at| program.steps[Id::new(*at)].varies);
-        Machine { program, exact, smooth, varying, steady }
+        let exact: Vec<Code> = exact;
+        let powers = super::exact::powers(&exact);
+        Machine { program, exact, smooth, varying, steady, powers }
     }
 
     /// The program.

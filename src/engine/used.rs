@@ -5,15 +5,15 @@ use super::machine::Special;
 use crate::index::Id;
 use crate::num::Hours;
 use crate::program::{Amount, FactRef, Op, Reg};
-use std::collections::BTreeSet;
+use std::collections::{BTreeMap, BTreeSet};
 
 /// Facts and amounts in use.
 #[derive(Clone, Debug, Default, PartialEq, Eq)]
 pub struct Used {
     /// Facts, without the varied hours themselves.
     pub facts: BTreeSet<(u32, u32, u32)>,
-    /// Amounts, by their position in the program.
-    pub amounts: BTreeSet<usize>,
+    /// Amounts by their position in the program, with the title of the instrument that used them first.
+    pub amounts: BTreeMap<usize, String>,
 }
 
 impl Special<'_> {
@@ -43,19 +43,25 @@ impl Special<'_> {
                     // Nothing times something rests on the nothing alone.
                     Op::Multiply(a, b) if values[a.position()] == 0 && values[b.position()] != 0 => want(a),
                     Op::Multiply(a, b) if values[b.position()] == 0 && values[a.position()] != 0 => want(b),
-                    Op::Both(a, b) if values[a.position()] == 0 => {
-                        let _ = b;
-                        want(a);
-                    }
-                    Op::Either(a, b) if values[a.position()] != 0 => {
-                        let _ = b;
-                        want(a);
+                    Op::Both(a, _) if values[a.position()] == 0 => want(a),
+                    Op::Either(a, _) if values[a.position()] != 0 => want(a),
+                    // A fixed limit that did not bite reached nothing.
+                    Op::Smaller(a, b) | Op::Larger(a, b) => {
+                        let smaller = matches!(step.op, Op::Smaller(..));
+                        let (x, y) = (program.steps[*a].scale.exact, program.steps[*b].scale.exact);
+                        let (left, right) = (values[a.position()] * y, values[b.position()] * x);
+                        let a_wins = if smaller { left <= right } else { left >= right };
+                        let fixed = |r: &Reg| matches!(program.steps[*r].op, Op::Constant(_));
+                        if a_wins || !fixed(a) {
+                            want(a);
+                        }
+                        if !a_wins || !fixed(b) {
+                            want(b);
+                        }
                     }
                     Op::Add(a, b)
                     | Op::Subtract(a, b)
                     | Op::Multiply(a, b)
-                    | Op::Smaller(a, b)
-                    | Op::Larger(a, b)
                     | Op::AtLeast(a, b)
                     | Op::Above(a, b)
                     | Op::Same(a, b)
@@ -66,7 +72,13 @@ impl Special<'_> {
                         want(a);
                         want(b);
                     }
-                    Op::Times(a, _) | Op::Round { of: a, .. } | Op::Not(a) => want(a),
+                    // Nothing lies above the limit here, so neither the limit nor the rate reached anything.
+                    Op::Times(a, _) if values[a.position()] == 0 && matches!(program.steps[*a].op, Op::Larger(..)) => {}
+                    Op::Times(a, _) => {
+                        want(a);
+                        step.factor.iter().for_each(&mut want);
+                    }
+                    Op::Round { of: a, .. } | Op::Not(a) => want(a),
                     Op::Lookup { keys, .. } => keys.iter().for_each(want),
                 }
             }
@@ -84,14 +96,14 @@ impl Special<'_> {
             lines.extend(step.line.map(Id::position));
         }
         // An amount that was folded into another constant counts where its line does.
-        let read: BTreeSet<usize> = program.steps.iter().flat_map(|s| constants_of(&s.op)).map(Id::position).collect();
+        let read: BTreeSet<usize> = program.steps.iter().flat_map(|s| constants_of(&s.op).into_iter().chain(s.factor)).map(Id::position).collect();
         for at in lines {
             let line = &program.lines[Id::new(at)];
             for amount in &line.amounts {
                 let name = &program.amounts[*amount].name;
-                let reg = line.inputs.iter().find(|(n, _)| n == name).map(|(_, reg)| reg.position());
+                let reg = line.inputs.iter().find(|e| e.name == *name).map(|e| e.reg.position());
                 if reg.is_none_or(|r| reached[r] || !read.contains(&r)) {
-                    used.amounts.insert(amount.position());
+                    used.amounts.entry(amount.position()).or_insert_with(|| line.part.clone());
                 }
             }
         }

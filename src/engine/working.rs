@@ -48,7 +48,7 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
                 exact: exact(reg),
                 value: shown(exact(reg), &line.unit, &line.words),
                 span: line.span,
-                inputs: line.inputs.iter().map(|(name, reg)| format!("{name} = {}", bare(exact(*reg), unit_of(program, *reg)))).collect(),
+                inputs: line.inputs.iter().map(|e| format!("{} = {}", e.name, shown(exact(e.reg), &e.unit, &e.words))).collect(),
                 law: line.law.clone(),
                 amounts: line.amounts.iter().map(|a| a.position()).collect(),
             })
@@ -108,12 +108,12 @@ fn needed(program: &Program) -> BTreeSet<usize> {
             .iter_with_id()
             .filter(|(id, _)| lines.contains(&id.position()))
             .flat_map(|(_, line)| line.inputs.iter())
-            .flat_map(|(name, reg)| {
-                let plain = name.trim_end_matches(" of partner");
+            .flat_map(|entered| {
+                let plain = entered.name.trim_end_matches(" of partner");
                 program
                     .lines
                     .iter_with_id()
-                    .filter(move |(_, l)| l.reg == Some(*reg) && l.name == plain)
+                    .filter(move |(_, l)| l.reg == Some(entered.reg) && l.name == plain)
                     .map(|(id, _)| id.position())
             })
             .collect();
@@ -126,15 +126,6 @@ fn needed(program: &Program) -> BTreeSet<usize> {
     }
 }
 
-/// The unit of a register that is some line's.
-fn unit_of(program: &Program, reg: Reg) -> (&str, &[String]) {
-    program.lines.iter().find(|l| l.reg == Some(reg)).map_or(("", &[]), |l| (l.unit.as_str(), l.words.as_slice()))
-}
-
-fn bare(value: Fraction, (unit, words): (&str, &[String])) -> String {
-    shown(value, unit, words)
-}
-
 /// A value with its unit: `1,048.00 a month` is written `1048.00 a month`.
 fn shown(value: Fraction, unit: &str, words: &[String]) -> String {
     if !words.is_empty() {
@@ -145,6 +136,7 @@ fn shown(value: Fraction, unit: &str, words: &[String]) -> String {
         if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.').to_owned() } else { text }
     };
     match unit {
+        "date" => super::fact_text(&crate::case::FactType::Date, i64::try_from(value.floor()).unwrap_or(0)),
         "yesno" => if value.is_zero() { "no" } else { "yes" }.to_owned(),
         "rate" => {
             let percent = value * Fraction::whole(100);

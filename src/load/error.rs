@@ -1,5 +1,6 @@
 //! What can go wrong with a file that should be read.
 
+use crate::case::Fault;
 use std::io;
 use std::path::{Path, PathBuf};
 
@@ -38,13 +39,31 @@ pub enum Error {
         /// The packs that are built in.
         known: String,
     },
-    /// A table is not CSV.
-    #[error("`{path}` is not a table: {cause}")]
-    Table {
-        /// The file.
+    /// A list, or its settings, with faults.
+    #[error("{}", lines(.0))]
+    Faults(Vec<Fault>),
+    /// A rule pack or a list's terms with faults, ready to be printed.
+    #[error("{}", .0.join("\n"))]
+    Findings(Vec<String>),
+    /// A table that is not in the order of its households.
+    #[error(
+        "`{file}` row {row}: found `{reference}` after a later reference, expected rows in the order of `household`"
+    )]
+    Unsorted {
+        /// The table.
+        file: String,
+        /// The first row that comes too late.
+        row: u64,
+        /// Its household.
+        reference: String,
+    },
+    /// A sorted copy could not be written.
+    #[error("`{path}` cannot be written: {cause}")]
+    Sort {
+        /// The copy.
         path: PathBuf,
-        /// What the reader said.
-        cause: csv::Error,
+        /// What the system said.
+        cause: io::Error,
     },
 }
 
@@ -64,4 +83,10 @@ impl Error {
             what: what.into(),
         }
     }
+}
+
+/// One line a fault.
+fn lines(faults: &[Fault]) -> String {
+    let lines: Vec<String> = faults.iter().map(ToString::to_string).collect();
+    lines.join("\n")
 }

@@ -34,6 +34,16 @@ impl Files {
             .map(|file| file.text.as_str())
     }
 
+    /// Files of texts that are at hand.
+    pub fn of_texts<'t>(texts: impl Iterator<Item = (&'t str, &'t str)>) -> Files {
+        let file = |(name, text): (&str, &str)| TextFile {
+            name: name.to_owned(),
+            text: text.to_owned(),
+            sha256: hex(&Sha256::digest(text)),
+        };
+        Files(texts.map(file).collect())
+    }
+
     /// Names and hashes, for a run's record.
     pub fn hashes(&self) -> Vec<(String, String)> {
         self.0

@@ -5,14 +5,20 @@
 
 mod checked;
 mod error;
+mod examples;
 mod files;
+mod list;
 mod office;
 mod pack;
 mod templates;
+mod terms;
 
 pub use checked::{check_pack, schema_of};
 pub use error::Error;
+pub use examples::{Asks, Case, Example, Expect, What, read_examples};
 pub use files::{Files, TextFile, hash_file, hex, read_folder, read_text};
+pub use list::{CaseList, LIST_FILE, Readings, Rows, Sorting, Survey};
 pub use office::{HoldRules, Office, OfficeFile, parse_office, read_office};
 pub use pack::{PACK_FILE, PackFiles, built_in_packs, read_pack, read_pack_folder};
 pub use templates::read_templates;
+pub use terms::{Terms, terms_of};

@@ -1,5 +1,6 @@
 //! A household to its assessment.
 
+use super::couple::couple;
 use super::line::{Asked, Worked, work_out};
 use super::points::{Sums, Totals, point};
 use super::split::{holding, quarter_hours, rise, target};
@@ -7,7 +8,7 @@ use super::types::{AmountUse, Assessment, EarnerResult, FactUse, ItemInfo, JobTe
 use crate::case::{ADULT, Household, JOB, Known, Schema};
 use crate::engine::{JobChoice, Machine, Setting, Special, Used, fact_text, working};
 use crate::num::{Hours, Money};
-use crate::program::Shape;
+use crate::program::{Amount, Shape};
 use std::collections::BTreeMap;
 use std::sync::Arc;
 
@@ -61,6 +62,7 @@ pub fn assess(
     let mut notes: Vec<String> = Vec::new();
     let mut earners = Vec::new();
     let mut items = Vec::new();
+    let mut table = None;
     let mut gathered = Gathered::default();
     for adult in 0..household.instances[ADULT].len() {
         let Some(setting) = Setting::new(household, adult, JobChoice::Today) else { continue };
@@ -80,9 +82,10 @@ pub fn assess(
         }
         if items.is_empty() {
             items = item_infos(&special);
-            gathered.add(&special, &special.used(&[Hours(0), today]), household, schema);
+            table = couple(household, &machine);
+            gathered.add(&special, &special.used(&[Hours(0), today]));
         }
-        if let Some(result) = earner(household, schema, &machine, &special, &setting, request, wanted, &mut gathered) {
+        if let Some(result) = earner(household, &machine, &special, &setting, request, wanted, &mut gathered) {
             earners.push(result);
         }
     }
@@ -90,7 +93,7 @@ pub fn assess(
         return Ok(Verdict::Held(reasons));
     }
     let (facts, amounts) = gathered.finish(household, schema);
-    Ok(Verdict::Assessed(Box::new(Assessment { reference: household.reference.clone(), items, earners, notes, facts, amounts })))
+    Ok(Verdict::Assessed(Box::new(Assessment { reference: household.reference.clone(), items, earners, couple: table, notes, facts, amounts })))
 }
 
 fn item_infos(special: &Special<'_>) -> Vec<ItemInfo> {
@@ -121,10 +124,8 @@ fn grid(request: &Request, up_to: Hours, named: &[Hours]) -> Vec<Hours> {
     hours
 }
 
-#[expect(clippy::too_many_arguments, reason = "the parts of one household that its earners share")]
 fn earner(
     household: &Household,
-    schema: &Schema,
     machine: &Machine,
     special: &Special<'_>,
     setting: &Setting<'_>,
@@ -161,7 +162,7 @@ fn earner(
         let terms = JobTerms { offer: String::new(), reference: String::new(), wage: setting.wage(), hours: today };
         let step_to = Hours((today.0 + request.more.0).min(16_800));
         lines.push(work_out(special, setting, Asked { terms, grid: &hours, step_to, up_to, at_zero: &at_zero }));
-        gathered.add(special, &special.used(&[Hours(0), today, step_to]), household, schema);
+        gathered.add(special, &special.used(&[Hours(0), today, step_to]));
         target_hours = wanted.map(|sum| target(&quarter_hours(special, &sums, up_to), sum));
     }
     let mut measures = Vec::new();
@@ -170,9 +171,9 @@ fn earner(
         let special = machine.special(&other.facts(machine.program()));
         let record = &household.offers[offer];
         let own = other.own_hours();
-        let terms = JobTerms { offer: record.label.clone(), reference: record.reference.clone(), wage: other.wage(), hours: own };
+        let terms = JobTerms { offer: offer_words(record, measures.len() + 1), reference: record.reference.clone(), wage: other.wage(), hours: own };
         let worked = work_out(&special, &other, Asked { terms, grid: &hours, step_to: own, up_to, at_zero: &at_zero });
-        gathered.add(&special, &special.used(&[own]), household, schema);
+        gathered.add(&special, &special.used(&[own]));
         let quarters = quarter_hours(&special, &sums, up_to);
         if target_hours.is_none() {
             target_hours = wanted.map(|sum| target(&quarters, sum));
@@ -193,6 +194,29 @@ fn earner(
     })
 }
 
+fn amount_use(amount: &Amount, part: &str) -> AmountUse {
+    AmountUse {
+        name: amount.name.clone(),
+        value: amount.value.clone(),
+        from: amount.from.clone(),
+        to: amount.to.clone(),
+        source: amount.source.clone(),
+        locator: amount.locator.clone(),
+        confirmed: amount.confirmed,
+        changed_because: amount.changed_because.clone(),
+        part: part.to_owned(),
+    }
+}
+
+/// The words of an offer, or what stands for them.
+fn offer_words(record: &crate::case::Instance, number: usize) -> String {
+    match (record.label.trim(), record.reference.trim()) {
+        ("", "") => format!("offer {number}"),
+        ("", reference) => format!("offer {reference}"),
+        (words, _) => words.to_owned(),
+    }
+}
+
 /// Facts and amounts of all programs of a household.
 #[derive(Default)]
 struct Gathered {
@@ -201,20 +225,11 @@ struct Gathered {
 }
 
 impl Gathered {
-    fn add(&mut self, special: &Special<'_>, used: &Used, _household: &Household, _schema: &Schema) {
+    fn add(&mut self, special: &Special<'_>, used: &Used) {
         self.facts.extend(used.facts.iter().copied());
-        for at in &used.amounts {
+        for (at, part) in &used.amounts {
             let amount = special.amount(*at);
-            self.amounts.entry(amount.name.clone()).or_insert_with(|| AmountUse {
-                name: amount.name.clone(),
-                value: amount.value.clone(),
-                from: amount.from.clone(),
-                to: amount.to.clone(),
-                source: amount.source.clone(),
-                locator: amount.locator.clone(),
-                confirmed: amount.confirmed,
-                changed_because: amount.changed_because.clone(),
-            });
+            self.amounts.entry(amount.name.clone()).or_insert_with(|| amount_use(amount, part));
         }
     }
 
@@ -276,7 +291,8 @@ pub fn working_at(
         .map(|line| {
             let (kind, instance) = line.of;
             let of = if kind == crate::case::HOUSEHOLD { String::new() } else { format!("{} {}", schema.kinds[kind].name, instance + 1) };
-            WorkingLine { part: line.part, name: line.name, of, value: line.value, formula: rule(line.span), inputs: line.inputs, law: line.law }
+            let amounts = line.amounts.iter().map(|at| amount_use(special.amount(*at), &line.part)).collect();
+            WorkingLine { part: line.part, name: line.name, of, value: line.value, formula: rule(line.span), inputs: line.inputs, law: line.law, amounts }
         })
         .collect())
 }

@@ -86,7 +86,7 @@ fn segments(sums: &Sums, walk: &Walk, stretches: &[Stretch]) -> Vec<Segment> {
                     .items
                     .iter()
                     .enumerate()
-                    .map(|(item, c)| share(c.slope(s.from)) * Fraction::whole(i128::from(sums.sign(item))))
+                    .map(|(item, c)| if c.c[1] == 0 && c.c[2] == 0 { Fraction::ZERO } else { share(c.slope(s.from)) } * Fraction::whole(i128::from(sums.sign(item))))
                     .collect(),
                 // V = Y(h) − ω h at the start of the segment (methods section 8).
                 virtual_income: s.net.at(Fraction::ZERO) + virtual_shift(s),

@@ -4,6 +4,7 @@
 //! Knows no file, text or layout. Imports `engine`, `case` and `num`, and program types through `engine`.
 
 mod assess;
+mod couple;
 mod line;
 mod points;
 mod split;

@@ -4,7 +4,7 @@ use super::points::Stretch;
 use super::turns::minor;
 use super::types::{NoGain, Trap};
 use crate::engine::Curve;
-use crate::num::{Fraction, Money};
+use crate::num::Fraction;
 
 /// Ranges of hours where a curve is below its highest value at fewer hours by more than one currency unit somewhere inside. `at_zero` is the
 /// value at zero hours.
@@ -75,9 +75,4 @@ pub(super) fn no_gain(stretches: &[Stretch], curve: impl Fn(&Stretch) -> Curve) 
         }
     }
     out
-}
-
-/// A sum of money as a fraction of the currency unit.
-pub(super) fn units(sum: Money) -> Fraction {
-    sum.in_units()
 }

@@ -28,10 +28,14 @@ fn turn(special: &Special<'_>, sums: &Sums, walk: &Walk, stretches: &[Stretch], 
     let left = right_at.checked_sub(1).map(|l| (&stretches[l], &walk.pieces[l]));
     let mut effects = Vec::new();
     let (mut jump_net, mut jump_costs) = (Fraction::ZERO, Fraction::ZERO);
+    let same_pay = left.is_some_and(|(s, _)| s.pay.slope(at) == right.pay.slope(at));
     for item in 0..right_piece.items.len() {
         let kind = sums.kind(item);
         let sign = Fraction::whole(i128::from(sums.sign(item)));
         let after = right_piece.items[item];
+        if same_pay && left.is_some_and(|(_, piece)| piece.items[item] == after) {
+            continue;
+        }
         let before_value = match left {
             Some((_, piece)) => piece.items[item].at(at),
             None => bend.values[item],

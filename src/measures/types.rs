@@ -291,6 +291,8 @@ pub struct AmountUse {
     pub confirmed: bool,
     /// Set where a list changed the amount for a what-if: the reason given.
     pub changed_because: String,
+    /// Title of the instrument that used it first.
+    pub part: String,
 }
 
 /// One line of a working: a figure or an item at one point, in the order of the law.
@@ -310,6 +312,23 @@ pub struct WorkingLine {
     pub inputs: Vec<String>,
     /// Law reference; may be empty for a figure.
     pub law: String,
+    /// The amounts of the law that went in.
+    pub amounts: Vec<AmountUse>,
+}
+
+/// Net income for each pair of the partners' hours, everything else fixed.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct CoupleTable {
+    /// Today's hours of the first and second adult.
+    pub own: (Hours, Hours),
+    /// Hours of the first adult: the rows.
+    pub first: Vec<Hours>,
+    /// Hours of the second adult: the columns.
+    pub second: Vec<Hours>,
+    /// Net income, by row and column.
+    pub net: Vec<Vec<Money>>,
+    /// The same after costs.
+    pub after_costs: Vec<Vec<Money>>,
 }
 
 /// Everything that was worked out for one household.
@@ -321,6 +340,8 @@ pub struct Assessment {
     pub items: Vec<ItemInfo>,
     /// One entry an earner; an adult without a job and without an offer has none.
     pub earners: Vec<EarnerResult>,
+    /// The table of both partners' hours, where both have a job today.
+    pub couple: Option<CoupleTable>,
     /// Names of the pack's notes that hold at today's hours.
     pub notes: Vec<String>,
     /// The facts used, with how they are known.

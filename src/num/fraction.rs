@@ -86,6 +86,21 @@ impl Fraction {
         self.numerator < 0
     }
 
+    /// The sum, or none where it does not fit.
+    pub fn checked_add(self, other: Fraction) -> Option<Fraction> {
+        let common = gcd(self.denominator, other.denominator);
+        let (left, right) = (other.denominator / common, self.denominator / common);
+        let numerator = (self.numerator.checked_mul(left)?).checked_add(other.numerator.checked_mul(right)?)?;
+        Some(Fraction::new(numerator, self.denominator.checked_mul(left)?))
+    }
+
+    /// The product, or none where it does not fit.
+    pub fn checked_mul(self, other: Fraction) -> Option<Fraction> {
+        let (first, second) = (gcd(self.numerator, other.denominator).max(1), gcd(other.numerator, self.denominator).max(1));
+        let numerator = (self.numerator / first).checked_mul(other.numerator / second)?;
+        Some(Fraction::new(numerator, (self.denominator / second).checked_mul(other.denominator / first)?))
+    }
+
     /// The point half way to the other.
     pub fn midpoint(self, other: Fraction) -> Fraction {
         (self + other) / Fraction::whole(2)

@@ -23,8 +23,11 @@ pub enum Direction {
 /// Where the denominator is not above zero, or the result does not fit.
 pub fn divide_rounded(numerator: i128, denominator: i128, direction: Direction) -> i128 {
     assert!(denominator > 0, "a rounding needs a denominator above zero");
-    let floor = numerator.div_euclid(denominator);
-    let rest = numerator.rem_euclid(denominator);
+    // Most numbers are small, and a division of 64 bits is several times faster.
+    let (floor, rest) = match (i64::try_from(numerator), i64::try_from(denominator)) {
+        (Ok(n), Ok(d)) => (i128::from(n.div_euclid(d)), i128::from(n.rem_euclid(d))),
+        (_, _) => (numerator.div_euclid(denominator), numerator.rem_euclid(denominator)),
+    };
     if rest == 0 {
         return floor;
     }

@@ -2,7 +2,7 @@
 
 use super::{Amount, Guard, Input, Item, Line, Manner, Note, Op, Program, Reg, Scales, Shape, Step, Table};
 use crate::index::{Id, IdVec};
-use crate::num::{Direction, Fraction, round_to};
+use crate::num::{Direction, Fraction, divide_rounded};
 use std::collections::HashMap;
 
 /// The most hours a week that a program is made for.
@@ -29,6 +29,11 @@ pub struct Builder {
 
 fn common(a: i128, b: i128) -> Option<i128> {
     (a / crate::num::gcd(a, b)).checked_mul(b)
+}
+
+/// A size in the whole numbers of a scale.
+fn scaled(limit: u128, scale: i128) -> Option<u128> {
+    limit.max(1).checked_mul(scale.unsigned_abs())
 }
 
 fn size(value: Fraction) -> u128 {
@@ -87,11 +92,11 @@ impl Builder {
     }
 
     /// Notes that a named value went into the open line.
-    pub fn went_in(&mut self, name: &str, reg: Reg) {
+    pub fn went_in(&mut self, entered: super::Entered) {
         if let Some(line) = self.line {
             let inputs = &mut self.program.lines[line].inputs;
-            if !inputs.iter().any(|(n, r)| n == name && *r == reg) {
-                inputs.push((name.to_owned(), reg));
+            if !inputs.contains(&entered) {
+                inputs.push(entered);
             }
         }
     }
@@ -161,16 +166,34 @@ impl Builder {
         let fits = match (scale, limit) {
             (Some(scale), Some(limit)) => [scale.exact, scale.smooth]
                 .iter()
-                .all(|s| limit.max(1).checked_mul(s.unsigned_abs()).is_some_and(|v| v >> BITS == 0)),
+                .all(|s| scaled(limit, *s).is_some_and(|v| v >> BITS == 0)),
             _ => false,
         };
-        if !fits && self.too_large.is_none() {
-            self.too_large = Some(TooLarge { line: self.line });
+        if !fits {
+            self.overflow();
         }
         let scale = scale.unwrap_or(Scales { exact: 1, smooth: 1 });
         let shared = matches!(op, Op::Constant(_) | Op::Fact(_) | Op::Hours);
         let line = if shared { None } else { self.line };
-        self.program.steps.push(Step { op, scale, limit: limit.unwrap_or(0), degree, varies, line })
+        self.program.steps.push(Step { op, scale, limit: limit.unwrap_or(0), degree, varies, line, factor: None })
+    }
+
+    /// A fixed number that was worked out; none where it did not fit.
+    fn worked_out(&mut self, value: Option<Fraction>) -> Reg {
+        if value.is_none() {
+            self.overflow();
+        }
+        self.constant(value.unwrap_or(Fraction::ZERO))
+    }
+
+    /// Notes that a number of the open line does not fit.
+    pub fn overflow(&mut self) {
+        self.too_large.get_or_insert(TooLarge { line: self.line });
+    }
+
+    /// The largest size that a register may have.
+    pub fn limit(&self, reg: Reg) -> u128 {
+        self.step(reg).limit
     }
 
     /// A fixed number.
@@ -243,7 +266,7 @@ impl Builder {
     /// The sum.
     pub fn add(&mut self, a: Reg, b: Reg) -> Reg {
         match (self.fixed(a), self.fixed(b)) {
-            (Some(x), Some(y)) => self.constant(x + y),
+            (Some(x), Some(y)) => self.worked_out(x.checked_add(y)),
             (Some(x), None) if x.is_zero() => b,
             (None, Some(y)) if y.is_zero() => a,
             _ => self.pair(Op::Add(a, b), a, b, u128::checked_add),
@@ -253,7 +276,7 @@ impl Builder {
     /// The difference.
     pub fn subtract(&mut self, a: Reg, b: Reg) -> Reg {
         match (self.fixed(a), self.fixed(b)) {
-            (Some(x), Some(y)) => self.constant(x - y),
+            (Some(x), Some(y)) => self.worked_out(x.checked_add(-y)),
             (None, Some(y)) if y.is_zero() => a,
             _ => self.pair(Op::Subtract(a, b), a, b, u128::checked_add),
         }
@@ -262,8 +285,8 @@ impl Builder {
     /// The product.
     pub fn multiply(&mut self, a: Reg, b: Reg) -> Reg {
         match (self.fixed(a), self.fixed(b)) {
-            (Some(x), _) => self.times(b, x),
-            (None, Some(y)) => self.times(a, y),
+            (Some(x), _) => self.times_fixed(b, x, a),
+            (None, Some(y)) => self.times_fixed(a, y, b),
             (None, None) => {
                 let (x, y) = (self.step(a), self.step(b));
                 let scale = (|| {
@@ -279,10 +302,20 @@ impl Builder {
         }
     }
 
+    /// The product with a fixed number that stands in a register.
+    fn times_fixed(&mut self, a: Reg, by: Fraction, factor: Reg) -> Reg {
+        let before = self.program.steps.len();
+        let reg = self.times(a, by);
+        if self.program.steps.len() > before && matches!(self.step(reg).op, Op::Times(..)) {
+            self.program.steps[reg].factor = Some(factor);
+        }
+        reg
+    }
+
     /// The product with a fixed number.
     pub fn times(&mut self, a: Reg, by: Fraction) -> Reg {
         if let Some(value) = self.fixed(a) {
-            return self.constant(value * by);
+            return self.worked_out(value.checked_mul(by));
         }
         if by == Fraction::ONE {
             return a;
@@ -340,16 +373,18 @@ impl Builder {
     /// The multiple of a unit.
     pub fn round(&mut self, of: Reg, unit: Fraction, direction: Direction, manner: Manner) -> Reg {
         if let Some(value) = self.fixed(of) {
-            let scaled = value / unit;
-            let whole = round_to(scaled.numerator(), scaled.denominator(), direction) / scaled.denominator();
-            return self.constant(Fraction::whole(whole) * unit);
+            let rounded = value.checked_mul(Fraction::ONE / unit).and_then(|scaled| {
+                let whole = divide_rounded(scaled.numerator(), scaled.denominator(), direction);
+                Fraction::whole(whole).checked_mul(unit)
+            });
+            return self.worked_out(rounded);
         }
         let step = self.step(of);
         let already = |scale: i128| {
             // Every value of this scale is a multiple of the unit.
             unit.numerator() == 1 && unit.denominator() % scale == 0
         };
-        if already(step.scale.exact) {
+        if !step.varies && already(step.scale.exact) {
             return of;
         }
         let smooth = match manner {
@@ -358,7 +393,14 @@ impl Builder {
             Manner::Minor | Manner::Slope => unit.denominator(),
         };
         let scale = Some(Scales { exact: unit.denominator(), smooth });
-        let limit = step.limit.checked_add(size(unit));
+        // What is rounded is first brought to the unit, and must fit there too.
+        let units = [step.scale.exact, step.scale.smooth].iter().all(|scale| {
+            let common = crate::num::gcd(unit.denominator(), *scale).unsigned_abs();
+            let by = unit.denominator().unsigned_abs() / common;
+            let below = (scale.unsigned_abs() / common).checked_mul(unit.numerator().unsigned_abs());
+            below.is_some_and(|b| b >> BITS == 0) && scaled(step.limit, *scale).and_then(|n| n.checked_mul(by)).is_some_and(|n| n >> BITS == 0)
+        });
+        let limit = step.limit.checked_add(size(unit)).filter(|_| units);
         let degree = if manner == Manner::Steps { 0 } else { step.degree };
         let varies = step.varies;
         self.push(Op::Round { of, unit, direction, manner }, scale, limit, degree, varies)
@@ -368,7 +410,16 @@ impl Builder {
     pub fn divide(&mut self, of: Reg, by: Reg, unit: Fraction, direction: Direction) -> Reg {
         let scale = Some(Scales { exact: unit.denominator(), smooth: unit.denominator() });
         // A divisor above zero is at least one of its smallest units.
-        let limit = self.step(of).limit.checked_mul(self.step(by).scale.exact.unsigned_abs()).and_then(|l| l.checked_add(size(unit)));
+        let (of_step, by_step) = (self.step(of), self.step(by));
+        let units = (|| {
+            let above = by_step.scale.exact.unsigned_abs().checked_mul(unit.denominator().unsigned_abs())?;
+            let below = of_step.scale.exact.unsigned_abs().checked_mul(unit.numerator().unsigned_abs())?;
+            let fits = |limit: u128, scale: i128, by: u128| scaled(limit, scale).and_then(|n| n.checked_mul(by)).filter(|n| n >> BITS == 0);
+            fits(of_step.limit, of_step.scale.exact, above)?;
+            fits(by_step.limit, by_step.scale.exact, below)
+        })();
+        let limit = of_step.limit.checked_mul(by_step.scale.exact.unsigned_abs()).and_then(|l| l.checked_add(size(unit)));
+        let limit = limit.filter(|_| units.is_some());
         let varies = self.varies(of);
         self.push(Op::Divide { of, by, unit, direction }, scale, limit, 0, varies)
     }

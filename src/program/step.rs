@@ -135,6 +135,8 @@ pub struct Step {
     pub varies: bool,
     /// The figure or item that it belongs to; none for shared constants and facts.
     pub line: Option<Id<Line>>,
+    /// The register of the fixed factor of a product, so that a working can say which amount it was.
+    pub factor: Option<Reg>,
 }
 
 /// A fact that fills a register.
@@ -146,6 +148,19 @@ pub struct Input {
     pub units: i64,
     /// The register.
     pub reg: Reg,
+}
+
+/// A named value that went into a line.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Entered {
+    /// Its name in the rule text.
+    pub name: String,
+    /// Its register.
+    pub reg: Reg,
+    /// What the value means: `money a month`, `rate` … for printing.
+    pub unit: String,
+    /// Words of a choice, in order; empty for other values.
+    pub words: Vec<String>,
 }
 
 /// A figure or item of one record.
@@ -165,8 +180,8 @@ pub struct Line {
     pub reg: Option<Reg>,
     /// Where it stands in the rule text.
     pub span: Span,
-    /// The lines, facts and amounts that went in, with their registers, as named in the rule text.
-    pub inputs: Vec<(String, Reg)>,
+    /// The lines, facts and amounts that went in, as named in the rule text.
+    pub inputs: Vec<Entered>,
     /// The amounts that went in.
     pub amounts: Vec<Id<Amount>>,
     /// What the value means: `money a month`, `rate` … for printing.

@@ -6,12 +6,13 @@ use crate::diag::Diagnostic;
 use crate::num::Fraction;
 use crate::source::{FileId, Span};
 use chrono::NaiveDate;
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 
 /// A day as year-month-day, in days since 1970-01-01.
 pub fn day(text: &str) -> Option<i64> {
+    let shaped = text.len() == 10 && text.bytes().enumerate().all(|(at, b)| if at == 4 || at == 7 { b == b'-' } else { b.is_ascii_digit() });
     let parsed = NaiveDate::parse_from_str(text, "%Y-%m-%d").ok()?;
-    (text.len() == 10).then(|| i64::from(parsed.to_epoch_days()))
+    shaped.then(|| i64::from(parsed.to_epoch_days()))
 }
 
 /// A day of 1970-01-01 and after as year-month-day.
@@ -80,6 +81,8 @@ fn records(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> Vec<(Span,
         match record {
             Ok(record) => {
                 let start = record.position().map_or(0, |p| p.byte() as usize) + skipped;
+                // The place of a record is before the blank lines that lead to it.
+                let start = text.len() - text[start..].trim_start_matches(['\r', '\n']).len();
                 let end = text[start..].find('\n').map_or(text.len(), |at| start + at);
                 let fields: Vec<String> = record.iter().map(|f| f.trim().to_owned()).collect();
                 if fields.iter().any(|f| !f.is_empty()) {
@@ -92,7 +95,27 @@ fn records(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> Vec<(Span,
     out
 }
 
-fn dated(span: Span, fields: &BTreeMap<&str, &str>, percent: bool, faults: &mut Vec<Diagnostic>) -> Option<Row> {
+/// A value of a type as a table writes it, or what was expected. A rate stands in percent.
+fn typed(text: &str, ty: Ty, words: &[String]) -> Result<Fraction, String> {
+    let found = match ty {
+        Ty::Money(_) | Ty::Hours | Ty::Number => decimal(text),
+        Ty::Rate => decimal(text).map(|value| value / Fraction::whole(100)),
+        Ty::Count => decimal(text).filter(|value| value.denominator() == 1),
+        Ty::YesNo => ["no", "yes"].iter().position(|w| *w == text).map(|at| Fraction::whole(at as i128)),
+        Ty::Date => day(text).map(|d| Fraction::whole(i128::from(d))),
+        Ty::Choice(_) => words.iter().position(|w| w == text).map(|at| Fraction::whole(at as i128)),
+    };
+    found.ok_or_else(|| match ty {
+        Ty::Money(_) | Ty::Hours | Ty::Number => "a number with a point, of at most 18 digits".to_owned(),
+        Ty::Rate => "a percentage as a number with a point, without its sign".to_owned(),
+        Ty::Count => "a whole number".to_owned(),
+        Ty::YesNo => "yes or no".to_owned(),
+        Ty::Date => "a day as year-month-day".to_owned(),
+        Ty::Choice(_) => format!("one of {}", words.join(", ")),
+    })
+}
+
+fn dated(span: Span, fields: &BTreeMap<&str, &str>, ty: Ty, words: &[String], faults: &mut Vec<Diagnostic>) -> Option<Row> {
     let get = |column: &str| fields.get(column).copied().unwrap_or("");
     let mut bad = |column: &str, expected: &str| {
         faults.push(Diagnostic::fault(span, format!("`{}` in column `{column}`", get(column))).expected(expected));
@@ -114,23 +137,23 @@ fn dated(span: Span, fields: &BTreeMap<&str, &str>, percent: bool, faults: &mut 
         }
     };
     let absent = get("status") == "absent";
-    let value = match (decimal(get("value")).or_else(|| day(get("value")).map(|d| Fraction::whole(i128::from(d)))), get("value")) {
-        (Some(value), _) if !absent => Some(if percent { value / Fraction::whole(100) } else { value }),
-        (None, "yes") if !absent => Some(Fraction::ONE),
-        (None, "no") if !absent => Some(Fraction::ZERO),
-        (None, "") if absent => None,
-        _ => {
-            bad("value", if absent { "nothing, as the status is absent" } else { "a number with a point" });
-            return None;
+    let value = if absent {
+        if !get("value").is_empty() {
+            bad("value", "nothing, as the status is absent");
         }
+        Some(None)
+    } else {
+        typed(get("value"), ty, words).map_err(|expected| bad("value", &expected)).ok().map(Some)
     };
     if get("source").is_empty() {
         bad("source", "where the figure was published");
     }
-    let (from, to, confirmed) = (from?, to?, confirmed?);
-    if from > to {
-        faults.push(Diagnostic::fault(span, "`to` is before `from`").expected("`from` first"));
+    if let (Some(from), Some(to)) = (from, to)
+        && from > to
+    {
+        bad("to", &format!("a day from {} on", day_text(from)));
     }
+    let (from, to, confirmed, value) = (from?, to?, confirmed?, value?);
     Some(Row {
         from,
         to,
@@ -144,19 +167,24 @@ fn dated(span: Span, fields: &BTreeMap<&str, &str>, percent: bool, faults: &mut 
 }
 
 /// Reports rows of one name whose days overlap.
-fn overlaps(what: &str, rows: &mut [Row], faults: &mut Vec<Diagnostic>) {
+pub(super) fn overlaps(what: &str, rows: &mut [Row], faults: &mut Vec<Diagnostic>) {
     rows.sort_by_key(|row| row.from);
-    for pair in rows.windows(2) {
-        if pair[1].from <= pair[0].to {
+    let mut last: Option<i64> = None;
+    for row in rows {
+        if last.is_some_and(|last| row.from <= last) {
             faults.push(
-                Diagnostic::fault(pair[1].span, format!("two rows of {what} hold on {}", day_text(pair[1].from)))
-                    .expected("days that do not overlap"),
+                Diagnostic::fault(row.span, format!("two rows of {what} hold on {}", day_text(row.from))).expected("days that do not overlap"),
             );
         }
+        last = last.max(Some(row.to));
     }
 }
 
 fn unit_type(currency: &str, unit: &str, period: &str) -> Option<Ty> {
+    let money = unit == currency;
+    if !money && !period.is_empty() {
+        return None;
+    }
     Some(match unit {
         "percent" => Ty::Rate,
         "hours" => Ty::Hours,
@@ -164,7 +192,7 @@ fn unit_type(currency: &str, unit: &str, period: &str) -> Option<Ty> {
         "number" => Ty::Number,
         "yesno" => Ty::YesNo,
         "date" => Ty::Date,
-        code if code == currency => match period {
+        _ if money => match period {
             "" => Ty::Money(None),
             word => Ty::Money(Some(Period::from_word(word)?)),
         },
@@ -172,8 +200,8 @@ fn unit_type(currency: &str, unit: &str, period: &str) -> Option<Ty> {
     })
 }
 
-/// Reads `amounts.csv`.
-pub(super) fn read(file: FileId, text: &str, currency: &str, faults: &mut Vec<Diagnostic>) -> Vec<AmountDecl> {
+/// Reads `amounts.csv`. Names whose rows all have faults go into `broken`.
+pub(super) fn read(file: FileId, text: &str, currency: &str, broken: &mut BTreeSet<String>, faults: &mut Vec<Diagnostic>) -> Vec<AmountDecl> {
     let mut records = records(file, text, faults).into_iter();
     let Some((span, header)) = records.next() else { return Vec::new() };
     if header != COLUMNS {
@@ -189,18 +217,29 @@ pub(super) fn read(file: FileId, text: &str, currency: &str, faults: &mut Vec<Di
         }
         let named: BTreeMap<&str, &str> = COLUMNS.iter().copied().zip(fields.iter().map(String::as_str)).collect();
         let (name, unit, period) = (named["name"], named["unit"], named["period"]);
-        if !name.bytes().all(|b| b.is_ascii_lowercase() || b.is_ascii_digit() || b == b'_') || !super::token::can_name(name) || name.is_empty() {
-            faults.push(Diagnostic::fault(span, format!("`{name}` cannot be a name")).expected("lower case letters, digits and `_`"));
+        let lower = name.bytes().all(|b| b.is_ascii_lowercase() || b.is_ascii_digit() || b == b'_');
+        if !lower || !name.starts_with(|c: char| c.is_ascii_lowercase()) {
+            faults.push(
+                Diagnostic::fault(span, format!("`{name}` in column `name`")).expected("lower case letters, digits and `_`, a letter first"),
+            );
+            continue;
+        }
+        if !super::token::can_name(name) {
+            faults.push(Diagnostic::fault(span, format!("`{name}` is a word of the language")).expected("another name for the amount"));
             continue;
         }
         let Some(ty) = unit_type(currency, unit, period) else {
             faults.push(
-                Diagnostic::fault(span, format!("unit `{unit}` with period `{period}`"))
-                    .expected(format!("{currency} with hour, day, week, month, year or nothing, or percent, hours, years, count, number, yesno, date")),
+                Diagnostic::fault(span, format!("`{unit}` in column `unit` with `{period}` in column `period`"))
+                    .expected(format!("{currency} with hour, day, week, month, year or nothing, or without a period percent, hours, years, count, number, yesno or date")),
             );
+            broken.insert(name.to_owned());
             continue;
         };
-        let Some(row) = dated(span, &named, ty == Ty::Rate, faults) else { continue };
+        let Some(row) = dated(span, &named, ty, &[], faults) else {
+            broken.insert(name.to_owned());
+            continue;
+        };
         match places.get(name) {
             Some(at) => {
                 let decl = &mut found[*at];
@@ -224,7 +263,7 @@ pub(super) fn read(file: FileId, text: &str, currency: &str, faults: &mut Vec<Di
 }
 
 /// Reads `tables/NAME.csv`, which has so many key columns first.
-pub(super) fn read_table(file: FileId, text: &str, keys: usize, percent: bool, faults: &mut Vec<Diagnostic>) -> Vec<TableRow> {
+pub(super) fn read_table(file: FileId, text: &str, keys: usize, ty: Ty, words: &[String], faults: &mut Vec<Diagnostic>) -> Vec<TableRow> {
     let mut records = records(file, text, faults).into_iter();
     let Some((span, header)) = records.next() else { return Vec::new() };
     let rest = ["from", "to", "value", "source", "locator", "status"];
@@ -239,16 +278,9 @@ pub(super) fn read_table(file: FileId, text: &str, keys: usize, percent: bool, f
             continue;
         }
         let named: BTreeMap<&str, &str> = rest.iter().copied().zip(fields[keys..].iter().map(String::as_str)).collect();
-        if let Some(row) = dated(span, &named, percent, faults) {
+        if let Some(row) = dated(span, &named, ty, words, faults) {
             out.push(TableRow { keys: fields[..keys].to_vec(), row });
         }
-    }
-    let mut by_key: BTreeMap<&[String], Vec<Row>> = BTreeMap::new();
-    for entry in &out {
-        by_key.entry(&entry.keys).or_default().push(entry.row.clone());
-    }
-    for (key, mut rows) in by_key {
-        overlaps(&format!("`{}`", key.join(", ")), &mut rows, faults);
     }
     out
 }

@@ -20,6 +20,8 @@ pub(super) struct Part {
     pub dated: Option<Ident>,
     pub law: String,
     pub statements: Vec<Statement>,
+    /// Names whose statements have faults: what uses them is not reported again.
+    pub broken: Vec<String>,
 }
 
 /// A statement with what it stands under.
@@ -36,7 +38,7 @@ pub(super) enum StatementKind {
     Record { name: Ident, owner: Ident },
     Choice { name: Ident, words: Vec<Ident> },
     Fact(Box<FactStatement>),
-    Conversion { name: Ident, from: Ident, to: Ident, times: Fraction, law: String },
+    Conversion { name: Ident, from: Ident, to: Ident, times: Fraction },
     Table { name: Ident, keys: Vec<Ident>, gives: TypeName },
     Bands { name: Ident, of: TypeName, bands: Vec<Band> },
     Scale { name: Ident, of: TypeName, gives: TypeName, steps: Vec<ScaleStep> },
@@ -91,6 +93,8 @@ pub(super) struct TypeName {
 pub(super) struct Expr {
     pub kind: ExprKind,
     pub span: Span,
+    /// How many expressions stand inside each other, itself included.
+    pub height: u16,
 }
 
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -157,4 +161,48 @@ pub(super) enum ExprKind {
     Not(Box<Expr>),
     Both(Box<Expr>, Box<Expr>),
     Either(Box<Expr>, Box<Expr>),
+}
+
+impl ExprKind {
+    /// Calls back for each expression right inside this one.
+    pub(super) fn inner<'a>(&'a self, call: &mut dyn FnMut(&'a Expr)) {
+        match self {
+            ExprKind::Number(_)
+            | ExprKind::Percent(_)
+            | ExprKind::HoursLiteral(_)
+            | ExprKind::Money(..)
+            | ExprKind::Day(_)
+            | ExprKind::YesNo(_)
+            | ExprKind::Name(_)
+            | ExprKind::Missing(_) => {}
+            ExprKind::Of { failing: one, .. } | ExprKind::CountOf { with: one, .. } | ExprKind::Place { with: one, .. } => {
+                one.iter().for_each(|e| call(e));
+            }
+            ExprKind::Lookup { keys: list, .. } | ExprKind::Extreme { list, .. } => list.iter().for_each(call),
+            ExprKind::Where { when, give, otherwise } => [when, give, otherwise].into_iter().for_each(|e| call(e)),
+            ExprKind::SumOver { with, body, .. } => {
+                with.iter().for_each(|e| call(e));
+                call(body);
+            }
+            ExprKind::First { with, give, failing, .. } => {
+                with.iter().for_each(|e| call(e));
+                call(give);
+                call(failing);
+            }
+            ExprKind::AnyEvery { with: of, .. }
+            | ExprKind::Round { of, .. }
+            | ExprKind::Convert { of, .. }
+            | ExprKind::Charge { of, .. }
+            | ExprKind::PlaceOn { of, .. }
+            | ExprKind::Not(of) => call(of),
+            ExprKind::Years { from: a, to: b }
+            | ExprKind::Binary { left: a, right: b, .. }
+            | ExprKind::Compare { left: a, right: b, .. }
+            | ExprKind::Both(a, b)
+            | ExprKind::Either(a, b) => {
+                call(a);
+                call(b);
+            }
+        }
+    }
 }

@@ -1,7 +1,7 @@
 //! Looks up the names of one expression and works out its type.
 
 use super::ast::{BinaryOp, CompareOp, Expr, ExprKind, Ident};
-use super::declare::kinds_of_word;
+use super::declare::{kinds_of_word, with_near};
 use super::pack::{ADULT, Pack};
 use super::tree::{Node, Over, Target, What};
 use super::types::{Period, Ty};
@@ -9,16 +9,18 @@ use crate::diag::{Diagnostic, nearest};
 use crate::num::{Direction, Fraction};
 use crate::program::Manner;
 use crate::source::Span;
-use std::collections::HashMap;
+use std::collections::{HashMap, HashSet};
 
 /// Every figure, item and fact by kind and name.
 pub(super) struct Names {
     by_kind: Vec<HashMap<String, (Target, Ty)>>,
     amounts: HashMap<String, usize>,
+    /// Names whose declarations have faults.
+    broken: HashSet<String>,
 }
 
 impl Names {
-    pub(super) fn new(pack: &Pack) -> Names {
+    pub(super) fn new(pack: &Pack, broken: HashSet<String>) -> Names {
         let mut by_kind: Vec<HashMap<String, (Target, Ty)>> = vec![HashMap::new(); pack.kinds.len()];
         for (kind, decl) in pack.kinds.iter().enumerate() {
             for (fact, f) in decl.facts.iter().enumerate() {
@@ -29,7 +31,7 @@ impl Names {
             by_kind[definition.kind].insert(definition.name.clone(), (Target::Figure(at), definition.ty));
         }
         let amounts = pack.amounts.iter().enumerate().map(|(at, a)| (a.name.clone(), at)).collect();
-        Names { by_kind, amounts }
+        Names { by_kind, amounts, broken }
     }
 }
 
@@ -39,18 +41,34 @@ pub(super) struct Context<'a> {
     /// Kinds of the records at hand, the innermost last.
     scopes: Vec<usize>,
     dated: Option<usize>,
+    /// Whether it stands in bands or a scale.
+    in_list: bool,
 }
 
 type Faults = Vec<Diagnostic>;
 
 impl<'a> Context<'a> {
     pub(super) fn new(pack: &'a Pack, names: &'a Names, kind: usize, dated: Option<usize>) -> Self {
-        Context { pack, names, scopes: vec![kind], dated }
+        Context { pack, names, scopes: vec![kind], dated, in_list: false }
+    }
+
+    /// The same for an expression of bands or a scale.
+    pub(super) fn in_list(self) -> Self {
+        Context { in_list: true, ..self }
     }
 
     /// The checked tree of an expression that must have a type.
     pub(super) fn wanted(&mut self, expr: &Expr, ty: Ty, faults: &mut Faults) -> Option<Node> {
         let node = self.node(expr, Some(ty), faults)?;
+        if let (Ty::Rate, What::Fixed(value), true) = (ty, &node.what, node.ty != Ty::Rate)
+            && *value > Fraction::ONE
+        {
+            let (whole, percent) = (value.decimal(0), (*value * Fraction::whole(100)).decimal(0));
+            faults.push(
+                Diagnostic::fault(expr.span, format!("as a rate this is {percent}%")).expected(format!("a percentage such as `{whole}%`")),
+            );
+            return None;
+        }
         if node.ty.fits(ty) || (node.is_zero() && ty.is_quantity()) {
             Some(Node { ty, ..node })
         } else {
@@ -170,10 +188,8 @@ impl<'a> Context<'a> {
             ExprKind::Missing(name) => match self.names.amounts.get(&name.text) {
                 Some(amount) => make(Ty::YesNo, What::Missing { amount: *amount, dated: self.picked(span, faults)? }),
                 None => {
-                    let near = nearest(&name.text, self.names.amounts.keys().map(String::as_str));
-                    let fault = Diagnostic::fault(name.span, format!("`{}` is not an amount", name.text)).expected("a name of `amounts.csv`");
-                    faults.push(with_near(fault, near));
-                    None
+                    let known = self.names.amounts.keys().map(String::as_str);
+                    self.absent(name, "is not an amount", "a name of `amounts.csv`", known, faults)
                 }
             },
             ExprKind::Binary { op, left, right } => self.binary(*op, left, right, span, faults),
@@ -196,9 +212,8 @@ impl<'a> Context<'a> {
             ExprKind::Convert { of, by } => {
                 let of = self.node(of, None, faults)?;
                 let Some(at) = self.pack.conversions.iter().position(|c| c.name == by.text) else {
-                    let near = nearest(&by.text, self.pack.conversions.iter().map(|c| c.name.as_str()));
-                    faults.push(with_near(Diagnostic::fault(by.span, format!("`{}` is not a conversion", by.text)).expected("the name of a `conversion`"), near));
-                    return None;
+                    let known = self.pack.conversions.iter().map(|c| c.name.as_str());
+                    return self.absent(by, "is not a conversion", "the name of a `conversion`", known, faults);
                 };
                 let conversion = &self.pack.conversions[at];
                 if of.ty != Ty::Money(Some(conversion.from)) {
@@ -209,12 +224,19 @@ impl<'a> Context<'a> {
                 }
                 make(Ty::Money(Some(conversion.to)), What::Convert { of: Box::new(of), conversion: at })
             }
+            ExprKind::Charge { by: name, .. } | ExprKind::PlaceOn { on: name, .. } if self.in_list => {
+                faults.push(
+                    Diagnostic::fault(name.span, "bands and scales do not stand inside others")
+                        .expected("a sum, facts, amounts and figures")
+                        .hint("give it a `figure` of its own"),
+                );
+                None
+            }
             ExprKind::Charge { of, by } => {
                 let of = self.node(of, None, faults)?;
                 let Some(at) = self.pack.bands.iter().position(|b| b.name == by.text) else {
-                    let near = nearest(&by.text, self.pack.bands.iter().map(|b| b.name.as_str()));
-                    faults.push(with_near(Diagnostic::fault(by.span, format!("`{}` are not bands", by.text)).expected("the name of `bands`"), near));
-                    return None;
+                    let known = self.pack.bands.iter().map(|b| b.name.as_str());
+                    return self.absent(by, "are not bands", "the name of `bands`", known, faults);
                 };
                 let (ty, kind) = (self.pack.bands[at].ty, self.pack.bands[at].kind);
                 let of = self.fit(of, ty, faults)?;
@@ -224,9 +246,8 @@ impl<'a> Context<'a> {
             ExprKind::PlaceOn { of, on } => {
                 let of = self.node(of, None, faults)?;
                 let Some(at) = self.pack.scales.iter().position(|s| s.name == on.text) else {
-                    let near = nearest(&on.text, self.pack.scales.iter().map(|s| s.name.as_str()));
-                    faults.push(with_near(Diagnostic::fault(on.span, format!("`{}` is not a scale", on.text)).expected("the name of a `scale`"), near));
-                    return None;
+                    let known = self.pack.scales.iter().map(|s| s.name.as_str());
+                    return self.absent(on, "is not a scale", "the name of a `scale`", known, faults);
                 };
                 let (ty, gives, kind) = (self.pack.scales[at].ty, self.pack.scales[at].gives, self.pack.scales[at].kind);
                 let of = self.fit(of, ty, faults)?;
@@ -264,6 +285,15 @@ impl<'a> Context<'a> {
                 make(Ty::YesNo, if both { What::Both(left, right) } else { What::Either(left, right) })
             }
         }
+    }
+
+    /// Reports a name of something that the pack does not declare.
+    fn absent<'n, T>(&self, name: &Ident, what: &str, expected: &str, known: impl Iterator<Item = &'n str>, faults: &mut Faults) -> Option<T> {
+        if !self.names.broken.contains(&name.text) {
+            let fault = Diagnostic::fault(name.span, format!("`{}` {what}", name.text)).expected(expected);
+            faults.push(with_near(fault, nearest(&name.text, known)));
+        }
+        None
     }
 
     fn mismatch(&self, node: &Node, wanted: Ty) -> Diagnostic {
@@ -342,6 +372,9 @@ impl<'a> Context<'a> {
     }
 
     fn unknown(&self, name: &Ident, hint: Option<Ty>, faults: &mut Faults) {
+        if self.names.broken.contains(&name.text) {
+            return;
+        }
         let mut known: Vec<&str> = Vec::new();
         let mut reachable = vec![false; self.pack.kinds.len()];
         for start in &self.scopes {
@@ -375,11 +408,16 @@ impl<'a> Context<'a> {
 
     fn of(&mut self, name: &Ident, whose: &Ident, failing: Option<&Expr>, span: Span, faults: &mut Faults) -> Option<Node> {
         let kind = if whose.text == "partner" { ADULT } else {
-            let found = kinds_of_word(&self.pack.kinds, &whose.text);
-            match found.as_slice() {
+            match kinds_of_word(&self.pack.kinds, &whose.text).as_slice() {
                 [one] => *one,
-                _ => {
-                    faults.push(Diagnostic::fault(whose.span, format!("`{}` is nobody's relation", whose.text)).expected("`partner`, or the kind of an owner"));
+                [] => {
+                    let known = self.pack.kinds.iter().map(|k| k.name.as_str()).chain(["partner"]);
+                    return self.absent(whose, "is not a kind", "`partner`, or the kind of an owner", known, faults);
+                }
+                [..] => {
+                    faults.push(
+                        Diagnostic::fault(whose.span, format!("`{}` stands for several kinds", whose.text)).expected("`partner`, or the kind of an owner"),
+                    );
                     return None;
                 }
             }
@@ -393,12 +431,22 @@ impl<'a> Context<'a> {
             return None;
         };
         let Some((target, ty)) = self.names.by_kind[kind].get(&name.text).copied() else {
+            if self.names.broken.contains(&name.text) {
+                return None;
+            }
             let near = nearest(&name.text, self.names.by_kind[kind].keys().map(String::as_str));
             let fault = Diagnostic::fault(name.span, format!("`{}` is not known of `{}`", name.text, self.pack.kinds[kind].name));
             faults.push(with_near(fault.expected("one of its figures or facts"), near));
             return None;
         };
         if whose.text != "partner" {
+            if let Some(failing) = failing {
+                faults.push(
+                    Diagnostic::fault(failing.span, format!("`failing` stands after `of {}`", whose.text))
+                        .expected("`failing` only after `of partner`, as an owner is always there"),
+                );
+                return None;
+            }
             return Some(Node { ty, span, what: What::Name { target, kind, level, text: name.text.clone() } });
         }
         let failing = match failing {
@@ -442,15 +490,14 @@ impl<'a> Context<'a> {
 
     fn lookup(&mut self, table: &Ident, keys: &[Expr], span: Span, faults: &mut Faults) -> Option<Node> {
         let Some(at) = self.pack.tables.iter().position(|t| t.name == table.text) else {
-            let near = nearest(&table.text, self.pack.tables.iter().map(|t| t.name.as_str()));
-            faults.push(with_near(Diagnostic::fault(table.span, format!("`{}` is not a table", table.text)).expected("the name of a `table`"), near));
-            return None;
+            let known = self.pack.tables.iter().map(|t| t.name.as_str());
+            return self.absent(table, "is not a table", "the name of a `table`", known, faults);
         };
         let dated = self.picked(span, faults)?;
         let decl = &self.pack.tables[at];
         if decl.keys.len() != keys.len() {
             faults.push(
-                Diagnostic::fault(span, format!("`{}` is looked up by {}", table.text, keys.len())).expected(format!("{} keys", decl.keys.len())),
+                Diagnostic::fault(span, format!("`{}` is looked up by {}", table.text, count_of(keys.len()))).expected(count_of(decl.keys.len())),
             );
             return None;
         }
@@ -462,11 +509,18 @@ impl<'a> Context<'a> {
 
     /// The kinds that a sum goes over, each with its own reading of condition and body.
     fn over(&mut self, kind: &Ident, with: Option<&Expr>, body: Option<(&Expr, Option<Ty>)>, by: Option<&Ident>, faults: &mut Faults) -> Option<Vec<Over>> {
+        if self.scopes.len() > MOST_LOOPS {
+            faults.push(
+                Diagnostic::fault(kind.span, "this goes over records inside records")
+                    .expected(format!("at most {MOST_LOOPS} inside each other"))
+                    .hint("give the inner part a `figure` of its own"),
+            );
+            return None;
+        }
         let kinds = kinds_of_word(&self.pack.kinds, &kind.text);
         if kinds.is_empty() {
-            let near = nearest(&kind.text, self.pack.kinds.iter().map(|k| k.name.as_str()));
-            faults.push(with_near(Diagnostic::fault(kind.span, format!("`{}` is not a kind", kind.text)).expected("a kind such as `child` or `job`"), near));
-            return None;
+            let known = self.pack.kinds.iter().map(|k| k.name.as_str());
+            return self.absent(kind, "is not a kind", "a kind such as `child` or `job`", known, faults);
         }
         let mut out = Vec::new();
         let mut whole = true;
@@ -571,20 +625,21 @@ impl<'a> Context<'a> {
             return None;
         }
         let ty = match (of.ty, by.ty) {
-            (a, b) if a.is_quantity() && b.is_scalar() => a,
+            (a, b) if a.is_quantity() && b.is_scalar() => if a.is_scalar() { Ty::Number } else { a },
             (a, b) if a == b && a.is_quantity() => Ty::Number,
             (_, _) => {
                 faults.push(self.mismatch(&by, of.ty));
                 return None;
             }
         };
+        let ty = if ty == Ty::Number && unit.denominator() == 1 { Ty::Count } else { ty };
         Some(Node { ty, span, what: What::DivideRounded { of: Box::new(of), by: Box::new(by), direction, unit, manner } })
     }
 }
 
-fn with_near(fault: Diagnostic, near: Option<&str>) -> Diagnostic {
-    match near {
-        Some(near) => fault.hint(format!("did you mean `{near}`?")),
-        None => fault,
-    }
+/// How many records inside records one expression goes over.
+const MOST_LOOPS: usize = 3;
+
+fn count_of(keys: usize) -> String {
+    if keys == 1 { "1 key".to_owned() } else { format!("{keys} keys") }
 }

@@ -11,7 +11,7 @@ use crate::diag::{Diagnostic, nearest};
 use crate::num::Fraction;
 use crate::program::ItemKind;
 use crate::source::{FileId, Sources, Span};
-use std::collections::{BTreeMap, HashMap};
+use std::collections::{BTreeMap, BTreeSet, HashMap, HashSet};
 
 /// The kinds that a `per` or `of` word stands for.
 pub(super) fn kinds_of_word(kinds: &[KindDecl], word: &str) -> Vec<usize> {
@@ -26,6 +26,8 @@ struct Declarer<'a> {
     pack: Pack,
     faults: &'a mut Vec<Diagnostic>,
     spans: HashMap<String, Span>,
+    /// Names whose declarations have faults: what uses them is not reported again.
+    broken: HashSet<String>,
 }
 
 /// Builds the pack. Definitions with faults keep an empty body.
@@ -35,9 +37,10 @@ pub(super) fn declare(
     amounts: Vec<AmountDecl>,
     labels: BTreeMap<String, BTreeMap<String, String>>,
     table_texts: &[(String, FileId, String)],
+    broken: BTreeSet<String>,
     faults: &mut Vec<Diagnostic>,
 ) -> Pack {
-    let kind = |name: &str, owner| KindDecl { name: name.to_owned(), owner, facts: Vec::new() };
+    let kind = |name: &str, owner| KindDecl { name: name.to_owned(), owner, facts: Vec::new(), span: None };
     let pack = Pack {
         manifest,
         kinds: vec![kind("household", None), kind("adult", Some(0)), kind("child", Some(0)), kind("other", Some(0)), kind("job", Some(ADULT))],
@@ -55,7 +58,8 @@ pub(super) fn declare(
         holds: Vec::new(),
         notes: Vec::new(),
     };
-    let mut declarer = Declarer { pack, faults, spans: HashMap::new() };
+    let broken = parts.iter().flat_map(|p| p.broken.iter().cloned()).chain(broken).collect();
+    let mut declarer = Declarer { pack, faults, spans: HashMap::new(), broken };
     declarer.built_in_facts();
     for part in &parts {
         declarer.kinds_and_choices(part);
@@ -80,6 +84,7 @@ impl Declarer<'_> {
             default: None,
             ask: ask.to_owned(),
             ty,
+            span: None,
         };
         for member in [ADULT, CHILD, OTHER] {
             self.pack.kinds[member].facts.push(fact("birth", FactKind::Date, (-40_000, 60_000), "What is the date of birth?", Ty::Date));
@@ -105,31 +110,52 @@ impl Declarer<'_> {
         }
         for statement in &part.statements {
             match &statement.what {
-                StatementKind::Record { name, owner } if self.fresh("kind", name) => match self.kind(owner) {
-                    Some(at) if self.pack.kinds.iter().all(|k| k.name != name.text) => {
-                        self.pack.kinds.push(KindDecl { name: name.text.clone(), owner: Some(at), facts: Vec::new() });
+                StatementKind::Record { name, owner } if self.fresh("kind", name) => {
+                    let taken = self.pack.kinds.iter().any(|k| k.name == name.text) || ["unit", "member"].contains(&name.text.as_str());
+                    if taken {
+                        self.faults.push(Diagnostic::fault(name.span, format!("`{}` is a kind already", name.text)).expected("a name of its own"));
+                    } else if let Some(at) = self.owner(owner) {
+                        self.pack.kinds.push(KindDecl { name: name.text.clone(), owner: Some(at), facts: Vec::new(), span: Some(name.span) });
+                    } else {
+                        self.broken.insert(name.text.clone());
                     }
-                    Some(_) => self.faults.push(Diagnostic::fault(name.span, format!("`{}` is a kind already", name.text))),
-                    None => {}
-                },
+                }
                 StatementKind::Choice { name, words } if self.fresh("choice", name) => {
+                    if Ty::WORDS.contains(&name.text.as_str()) {
+                        self.faults.push(Diagnostic::fault(name.span, format!("`{}` is a type already", name.text)).expected("a name of its own"));
+                    }
+                    for (at, word) in words.iter().enumerate() {
+                        if words[..at].iter().any(|before| before.text == word.text) {
+                            self.faults.push(Diagnostic::fault(word.span, format!("`{}` stands twice", word.text)).expected("each word once"));
+                        }
+                    }
                     let words = words.iter().map(|w| w.text.clone()).collect();
-                    self.pack.choices.push(ChoiceDecl { name: name.text.clone(), words });
+                    self.pack.choices.push(ChoiceDecl { name: name.text.clone(), span: name.span, words });
                 }
                 _ => {}
             }
         }
     }
 
-    fn kind(&mut self, word: &Ident) -> Option<usize> {
-        let found = self.pack.kinds.iter().position(|k| k.name == word.text);
-        if found.is_none() {
-            self.unknown_kind(word);
+    /// The one kind that a record belongs to.
+    fn owner(&mut self, word: &Ident) -> Option<usize> {
+        match kinds_of_word(&self.pack.kinds, &word.text).as_slice() {
+            [one] => Some(*one),
+            [] => {
+                self.unknown_kind(word);
+                None
+            }
+            [..] => {
+                self.faults.push(several(word, "one kind that it belongs to"));
+                None
+            }
         }
-        found
     }
 
     fn unknown_kind(&mut self, word: &Ident) {
+        if self.broken.contains(&word.text) {
+            return;
+        }
         let mut known: Vec<&str> = self.pack.kinds.iter().map(|k| k.name.as_str()).collect();
         known.extend(["unit", "member"]);
         let mut fault = Diagnostic::fault(word.span, format!("`{}` is not a kind", word.text)).expected(format!("one of {}", known.join(", ")));
@@ -160,6 +186,7 @@ impl Declarer<'_> {
             ("yesno", _) => Ty::YesNo,
             _ => match self.pack.choices.iter().position(|c| c.name == word) {
                 Some(at) => Ty::Choice(at),
+                None if self.broken.contains(word) => return None,
                 None => {
                     let mut known: Vec<&str> = Ty::WORDS.to_vec();
                     known.extend(self.pack.choices.iter().map(|c| c.name.as_str()));
@@ -179,7 +206,7 @@ impl Declarer<'_> {
         for statement in &part.statements {
             match &statement.what {
                 StatementKind::Fact(fact) => self.fact(fact),
-                StatementKind::Conversion { name, from, to, times, law } if self.fresh("conversion", name) => {
+                StatementKind::Conversion { name, from, to, times } if self.fresh("conversion", name) => {
                     let periods = [from, to].map(|word| {
                         let found = Period::from_word(&word.text);
                         if found.is_none() {
@@ -190,25 +217,37 @@ impl Declarer<'_> {
                         found
                     });
                     if let [Some(from), Some(to)] = periods {
-                        self.pack.conversions.push(ConversionDecl { name: name.text.clone(), from, to, times: *times, law: law.clone() });
+                        self.pack.conversions.push(ConversionDecl { name: name.text.clone(), span: name.span, from, to, times: *times });
+                    } else {
+                        self.broken.insert(name.text.clone());
                     }
                 }
                 StatementKind::Table { name, keys, gives } if self.fresh("table", name) => {
+                    self.broken.insert(name.text.clone());
                     let Some(gives) = self.ty(gives) else { continue };
                     let mut found = Vec::new();
                     for key in keys {
                         match self.pack.choices.iter().position(|c| c.name == key.text) {
                             Some(at) => found.push(Some(at)),
                             None if key.text == "count" => found.push(None),
-                            None => self.faults.push(
-                                Diagnostic::fault(key.span, format!("`{}` cannot be a key", key.text)).expected("the name of a choice, or `count`"),
-                            ),
+                            None if self.broken.contains(&key.text) => {}
+                            None => {
+                                let near = nearest(&key.text, self.pack.choices.iter().map(|c| c.name.as_str()));
+                                let fault = Diagnostic::fault(key.span, format!("`{}` cannot be a key", key.text));
+                                self.faults.push(with_near(fault.expected("the name of a choice, or `count`"), near));
+                            }
                         }
                     }
                     match table_texts.iter().find(|(table, ..)| *table == name.text) {
                         Some((_, file, text)) if found.len() == keys.len() => {
-                            let rows = super::amounts::read_table(*file, text, keys.len(), gives == Ty::Rate, self.faults);
-                            self.pack.tables.push(TableDecl { name: name.text.clone(), keys: found, gives, rows });
+                            let words = match gives {
+                                Ty::Choice(at) => self.pack.choices[at].words.clone(),
+                                _ => Vec::new(),
+                            };
+                            let rows = super::amounts::read_table(*file, text, keys.len(), gives, &words, self.faults);
+                            self.broken.remove(&name.text);
+                            let header = text.lines().next().map_or(0, str::len) as u32;
+                            self.pack.tables.push(TableDecl { name: name.text.clone(), span: name.span, file: *file, header, keys: found, gives, rows });
                         }
                         Some(_) => {}
                         None => self.faults.push(
@@ -222,7 +261,14 @@ impl Declarer<'_> {
     }
 
     fn fact(&mut self, fact: &FactStatement) {
-        let Some(ty) = self.ty(&fact.ty) else { return };
+        let before = self.faults.len();
+        if self.fact_of(fact, before).is_none() {
+            self.broken.insert(fact.name.text.clone());
+        }
+    }
+
+    fn fact_of(&mut self, fact: &FactStatement, before: usize) -> Option<()> {
+        let ty = self.ty(&fact.ty)?;
         let kinds = kinds_of_word(&self.pack.kinds, &fact.of.text);
         if kinds.is_empty() {
             self.unknown_kind(&fact.of);
@@ -243,11 +289,13 @@ impl Declarer<'_> {
         };
         let range = match fact.range {
             Some((low, high, span)) if low > high => {
-                self.faults.push(Diagnostic::fault(span, "the range ends before it starts").expected("the smaller number first"));
+                self.faults.push(
+                    Diagnostic::fault(span, format!("the range goes from {} to {}", shown(low, ty), shown(high, ty))).expected("the smaller number first"),
+                );
                 widest
             }
             Some((_, _, span)) if !ty.is_quantity() => {
-                self.faults.push(Diagnostic::fault(span, format!("a {ty} has no range")).expected("a range only for numbers"));
+                self.faults.push(Diagnostic::fault(span, format!("a {ty} has no range")).expected("`from … to …` only for numbers"));
                 widest
             }
             Some((low, high, _)) => (low, high),
@@ -257,26 +305,72 @@ impl Declarer<'_> {
             None => None,
             Some(expr) => match self.default_value(expr, ty) {
                 Some(value) if ty.is_quantity() && (value < range.0 || value > range.1) => {
-                    self.faults.push(Diagnostic::fault(expr.span, "the default is outside the range").expected("a value inside the range"));
-                    return;
+                    self.faults.push(
+                        Diagnostic::fault(expr.span, format!("the default {} is outside the range", shown(value, ty)))
+                            .expected(format!("a value from {} to {}", shown(range.0, ty), shown(range.1, ty))),
+                    );
+                    Some(value)
                 }
                 Some(value) => Some(value),
                 None => {
-                    self.faults.push(Diagnostic::fault(expr.span, "this cannot be the default").expected(format!("a {ty}")));
-                    return;
+                    self.faults.push(Diagnostic::fault(expr.span, "this cannot be the default").expected(self.shown(ty)));
+                    None
                 }
             },
         };
-        for of in kinds {
-            let space = format!("{of}");
-            let name = &fact.name;
-            if self.pack.kinds[of].facts.iter().any(|f| f.name == name.text) || !self.fresh(&space, name) {
-                if self.pack.kinds[of].facts.iter().any(|f| f.name == name.text) {
-                    self.faults.push(Diagnostic::fault(name.span, format!("`{}` is a fact of {} already", name.text, self.pack.kinds[of].name)));
-                }
-                continue;
+        let finest = kind.units();
+        for (value, span) in [(Some(range.0), fact.range), (Some(range.1), fact.range), (default, None)] {
+            let span = span.map(|(.., span)| span).or(fact.default.as_ref().map(|e| e.span));
+            if let (Some(value), Some(span)) = (value, span)
+                && (value * Fraction::whole(i128::from(finest))).denominator() != 1
+            {
+                self.faults.push(
+                    Diagnostic::fault(span, format!("a list cannot hold {}", shown(value, ty))).expected(decimals(&kind)),
+                );
+                break;
             }
-            self.pack.kinds[of].facts.push(FactDecl { name: name.text.clone(), kind: kind.clone(), range, default, ask: fact.ask.clone(), ty });
+        }
+        let name = &fact.name;
+        self.clash(name, "fact");
+        if self.faults.len() > before || kinds.is_empty() {
+            return None;
+        }
+        for of in kinds {
+            if self.pack.kinds[of].facts.iter().any(|f| f.name == name.text) {
+                self.faults.push(
+                    Diagnostic::fault(name.span, format!("`{}` is a fact of `{}` already", name.text, self.pack.kinds[of].name)).expected("a name of its own"),
+                );
+            } else if self.fresh(&format!("{of}"), name) {
+                self.pack.kinds[of].facts.push(FactDecl {
+                    name: name.text.clone(),
+                    kind: kind.clone(),
+                    range,
+                    default,
+                    ask: fact.ask.clone(),
+                    ty,
+                    span: Some(name.span),
+                });
+            }
+        }
+        Some(())
+    }
+
+    /// Reports a name that an amount or a date has: the two could not be told apart.
+    fn clash(&mut self, name: &Ident, what: &str) {
+        let taken = if self.pack.amounts.iter().any(|a| a.name == name.text) {
+            "an amount"
+        } else if name.text == "date" || self.pack.manifest.dates.iter().any(|(date, _)| *date == name.text) {
+            "a date of the list"
+        } else {
+            return;
+        };
+        self.faults.push(Diagnostic::fault(name.span, format!("`{}` is {taken} already", name.text)).expected(format!("a name of its own for the {what}")));
+    }
+
+    fn shown(&self, ty: Ty) -> String {
+        match ty {
+            Ty::Choice(at) => format!("one of {}", self.pack.choices[at].words.join(", ")),
+            other => format!("a value of type {other}"),
         }
     }
 
@@ -304,24 +398,32 @@ impl Declarer<'_> {
             let place = (at, position);
             match &statement.what {
                 StatementKind::Figure { name, ty, law, .. } => {
-                    let Some(ty) = self.ty(ty) else { continue };
-                    self.definition(name, &kinds, per, ty, law.as_deref().unwrap_or(""), None, place, bodies, statement.span);
+                    let Some(ty) = self.ty(ty) else {
+                        self.broken.insert(name.text.clone());
+                        continue;
+                    };
+                    let law = law.as_deref().map_or_else(String::new, |law| in_law(part, law));
+                    self.definition(name, &kinds, per, ty, &law, None, place, bodies, statement.span);
                 }
                 StatementKind::Item { name, kind, law, .. } => {
                     let ty = if *kind == ItemKind::Passport { Ty::YesNo } else { Ty::Money(Some(self.pack.manifest.period)) };
-                    let law = if part.law.is_empty() { law.clone() } else { format!("{}, {law}", part.law) };
+                    let law = in_law(part, law);
                     self.definition(name, &kinds, per, ty, &law, Some(*kind), place, bodies, statement.span);
                 }
                 StatementKind::Bands { name, of, .. } if self.fresh("bands", name) => {
-                    if let (Some(ty), Some(kind)) = (self.ty(of), kinds.first()) {
+                    if let (Some(ty), Some(kind)) = (self.ty(of), self.one_kind(per, &kinds)) {
                         bodies.push(Body { place, what: BodyOf::Bands(self.pack.bands.len()) });
-                        self.pack.bands.push(BandsDecl { name: name.text.clone(), kind: *kind, ty, bands: Vec::new() });
+                        self.pack.bands.push(BandsDecl { name: name.text.clone(), span: name.span, kind, ty, bands: Vec::new() });
+                    } else {
+                        self.broken.insert(name.text.clone());
                     }
                 }
                 StatementKind::Scale { name, of, gives, .. } if self.fresh("scale", name) => {
-                    if let (Some(ty), Some(gives), Some(kind)) = (self.ty(of), self.ty(gives), kinds.first()) {
+                    if let (Some(ty), Some(gives), Some(kind)) = (self.ty(of), self.ty(gives), self.one_kind(per, &kinds)) {
                         bodies.push(Body { place, what: BodyOf::Scale(self.pack.scales.len()) });
-                        self.pack.scales.push(ScaleDecl { name: name.text.clone(), kind: *kind, ty, gives, steps: Vec::new() });
+                        self.pack.scales.push(ScaleDecl { name: name.text.clone(), span: name.span, kind, ty, gives, steps: Vec::new() });
+                    } else {
+                        self.broken.insert(name.text.clone());
                     }
                 }
                 StatementKind::Hold { .. } | StatementKind::Note { .. } => {
@@ -333,6 +435,21 @@ impl Declarer<'_> {
                     }
                 }
                 _ => {}
+            }
+        }
+    }
+
+    /// The kind that bands or a scale are worked out per.
+    fn one_kind(&mut self, per: &Ident, kinds: &[usize]) -> Option<usize> {
+        match kinds {
+            [one] => Some(*one),
+            [] => {
+                self.unknown_kind(per);
+                None
+            }
+            [..] => {
+                self.faults.push(several(per, "one kind to work bands and scales out for"));
+                None
             }
         }
     }
@@ -352,7 +469,9 @@ impl Declarer<'_> {
     ) {
         if kinds.is_empty() {
             self.unknown_kind(per);
+            self.broken.insert(name.text.clone());
         }
+        self.clash(name, if item.is_some() { "item" } else { "figure" });
         for kind in kinds {
             let is_fact = self.pack.kinds[*kind].facts.iter().any(|f| f.name == name.text);
             if is_fact {
@@ -377,7 +496,7 @@ impl Declarer<'_> {
     /// Looks up and types every expression.
     fn bodies(&mut self, parts: &[Part], bodies: Vec<Body>) {
         let dated: Vec<Option<usize>> = parts.iter().map(|part| self.dated(part)).collect();
-        let names = Names::new(&self.pack);
+        let names = Names::new(&self.pack, std::mem::take(&mut self.broken));
         let mut done = Vec::new();
         for body in bodies {
             let (part, position) = body.place;
@@ -394,9 +513,9 @@ impl Declarer<'_> {
                     let decl = &self.pack.bands[at];
                     let mut out = Vec::new();
                     for band in bands {
-                        let rate = context(decl.kind).wanted(&band.rate, Ty::Rate, &mut faults);
+                        let rate = context(decl.kind).in_list().wanted(&band.rate, Ty::Rate, &mut faults);
                         let limit = match &band.up_to {
-                            Some(limit) => context(decl.kind).wanted(limit, decl.ty, &mut faults).map(Some),
+                            Some(limit) => context(decl.kind).in_list().wanted(limit, decl.ty, &mut faults).map(Some),
                             None => Some(None),
                         };
                         if let (Some(rate), Some(limit)) = (rate, limit) {
@@ -410,10 +529,10 @@ impl Declarer<'_> {
                     let decl = &self.pack.scales[at];
                     let mut out = Vec::new();
                     for step in steps {
-                        let value = context(decl.kind).wanted(&step.value, decl.gives, &mut faults);
+                        let value = context(decl.kind).in_list().wanted(&step.value, decl.gives, &mut faults);
                         let limit = match &step.limit {
-                            StepLimit::UpTo(limit) => context(decl.kind).wanted(limit, decl.ty, &mut faults).map(Limit::UpTo),
-                            StepLimit::Below(limit) => context(decl.kind).wanted(limit, decl.ty, &mut faults).map(Limit::Below),
+                            StepLimit::UpTo(limit) => context(decl.kind).in_list().wanted(limit, decl.ty, &mut faults).map(Limit::UpTo),
+                            StepLimit::Below(limit) => context(decl.kind).in_list().wanted(limit, decl.ty, &mut faults).map(Limit::Below),
                             StepLimit::Beyond => Some(Limit::Beyond),
                         };
                         if let (Some(value), Some(limit)) = (value, limit) {
@@ -494,5 +613,37 @@ fn ends_beyond(name: &Ident, lines: impl Iterator<Item = (bool, Span)>, faults: 
         if *beyond {
             faults.push(Diagnostic::fault(*span, "this line overlaps the ones after it").expected("`beyond` only in the last line"));
         }
+    }
+}
+
+/// The law of a file before a reference to it.
+fn in_law(part: &Part, see: &str) -> String {
+    if part.law.is_empty() { see.to_owned() } else { format!("{}, {see}", part.law) }
+}
+
+fn several(word: &Ident, expected: &str) -> Diagnostic {
+    Diagnostic::fault(word.span, format!("`{}` stands for several kinds", word.text)).expected(expected)
+}
+
+pub(super) fn with_near(fault: Diagnostic, near: Option<&str>) -> Diagnostic {
+    match near {
+        Some(near) => fault.hint(format!("did you mean `{near}`?")),
+        None => fault,
+    }
+}
+
+fn shown(value: Fraction, ty: Ty) -> String {
+    let (value, sign) = if ty == Ty::Rate { (value * Fraction::whole(100), "%") } else { (value, "") };
+    let text = value.decimal(6);
+    format!("{}{sign}", text.trim_end_matches('0').trim_end_matches('.'))
+}
+
+/// How finely a list writes a fact.
+fn decimals(kind: &FactKind) -> &'static str {
+    match kind {
+        FactKind::Money(Some(Period::Hour)) => "at most 4 decimals",
+        FactKind::Money(_) | FactKind::Hours | FactKind::Number => "at most 2 decimals",
+        FactKind::Rate => "a percentage with at most 2 decimals",
+        FactKind::Count | FactKind::Date | FactKind::YesNo | FactKind::Choice(_) => "a whole number",
     }
 }

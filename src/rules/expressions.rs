@@ -6,25 +6,32 @@ use super::token::TokenKind;
 use crate::diag::Diagnostic;
 use crate::num::{Direction, Fraction};
 use crate::program::Manner;
+use crate::source::Span;
 
-/// How deeply expressions may nest.
+/// How many values may be open inside each other.
 const DEEPEST: usize = 60;
+/// How many expressions may stand inside each other, those that follow each other without brackets included.
+const HIGHEST: u16 = 100;
 
 impl Parser<'_> {
     /// `expr` of the grammar.
     pub(super) fn expression(&mut self) -> Parsed<Expr> {
-        self.depth += 1;
-        if self.depth > DEEPEST {
-            let span = self.peek().span;
+        self.either()
+    }
+
+    /// The expression, unless it is too high for whoever walks over it.
+    pub(super) fn made(&mut self, kind: ExprKind, span: Span) -> Parsed<Expr> {
+        let mut height = 0;
+        kind.inner(&mut |inner| height = height.max(inner.height));
+        if height >= HIGHEST {
             self.faults.push(
-                Diagnostic::fault(span, format!("this nests more than {DEEPEST} deep")).hint("give the inner part a `figure` of its own"),
+                Diagnostic::fault(span, "this has too many parts")
+                    .expected(format!("at most {HIGHEST} operators that follow or hold each other"))
+                    .hint("give a part a `figure` of its own"),
             );
-            self.depth -= 1;
             return Err(GaveUp);
         }
-        let result = self.either();
-        self.depth -= 1;
-        result
+        Ok(Expr { kind, span, height: height + 1 })
     }
 
     fn either(&mut self) -> Parsed<Expr> {
@@ -32,7 +39,7 @@ impl Parser<'_> {
         while self.take_word("or") {
             let right = self.both()?;
             let span = left.span.to(right.span);
-            left = Expr { kind: ExprKind::Either(Box::new(left), Box::new(right)), span };
+            left = self.made(ExprKind::Either(Box::new(left), Box::new(right)), span)?;
         }
         Ok(left)
     }
@@ -42,7 +49,7 @@ impl Parser<'_> {
         while self.take_word("and") {
             let right = self.denial()?;
             let span = left.span.to(right.span);
-            left = Expr { kind: ExprKind::Both(Box::new(left), Box::new(right)), span };
+            left = self.made(ExprKind::Both(Box::new(left), Box::new(right)), span)?;
         }
         Ok(left)
     }
@@ -55,7 +62,7 @@ impl Parser<'_> {
         let mut inner = self.compared()?;
         for start in starts.into_iter().rev() {
             let span = start.to(inner.span);
-            inner = Expr { kind: ExprKind::Not(Box::new(inner)), span };
+            inner = self.made(ExprKind::Not(Box::new(inner)), span)?;
         }
         Ok(inner)
     }
@@ -81,7 +88,7 @@ impl Parser<'_> {
         };
         let right = self.shaped()?;
         let span = left.span.to(right.span);
-        Ok(Expr { kind: ExprKind::Compare { op, left: Box::new(left), right: Box::new(right) }, span })
+        self.made(ExprKind::Compare { op, left: Box::new(left), right: Box::new(right) }, span)
     }
 
     fn shaped(&mut self) -> Parsed<Expr> {
@@ -102,7 +109,7 @@ impl Parser<'_> {
                     let by = self.any_word(if convert { "the name of a conversion" } else { "the name of bands" })?;
                     let span = left.span.to(by.span);
                     let of = Box::new(left);
-                    left = Expr { kind: if convert { ExprKind::Convert { of, by } } else { ExprKind::Charge { of, by } }, span };
+                    left = self.made(if convert { ExprKind::Convert { of, by } } else { ExprKind::Charge { of, by } }, span)?;
                     continue;
                 }
                 Some("placed") => {
@@ -110,7 +117,7 @@ impl Parser<'_> {
                     self.word("on")?;
                     let on = self.any_word("the name of a scale")?;
                     let span = left.span.to(on.span);
-                    left = Expr { kind: ExprKind::PlaceOn { of: Box::new(left), on }, span };
+                    left = self.made(ExprKind::PlaceOn { of: Box::new(left), on }, span)?;
                     continue;
                 }
                 _ => return Ok(left),
@@ -120,7 +127,7 @@ impl Parser<'_> {
                 self.word("to")?;
             }
             let right = self.sum_expression()?;
-            left = binary(op, left, right);
+            left = self.binary(op, left, right)?;
         }
     }
 
@@ -168,7 +175,7 @@ impl Parser<'_> {
             None
         };
         let span = of.span.to(end);
-        Ok(Expr { kind: ExprKind::Round { of: Box::new(of), direction, unit, manner }, span })
+        self.made(ExprKind::Round { of: Box::new(of), direction, unit, manner }, span)
     }
 
     pub(super) fn sum_expression(&mut self) -> Parsed<Expr> {
@@ -181,7 +188,7 @@ impl Parser<'_> {
             };
             self.next();
             let right = self.product()?;
-            left = binary(op, left, right);
+            left = self.binary(op, left, right)?;
         }
     }
 
@@ -195,11 +202,24 @@ impl Parser<'_> {
             };
             self.next();
             let right = self.value()?;
-            left = binary(op, left, right);
+            left = self.binary(op, left, right)?;
         }
     }
 
-    fn value(&mut self) -> Parsed<Expr> {
+    pub(super) fn value(&mut self) -> Parsed<Expr> {
+        self.depth += 1;
+        let result = if self.depth > DEEPEST {
+            let fault = Diagnostic::fault(self.peek().span, "this is nested too deep").expected(format!("at most {DEEPEST} values inside each other"));
+            self.faults.push(fault.hint("give the inner part a `figure` of its own"));
+            Err(GaveUp)
+        } else {
+            self.inner_value()
+        };
+        self.depth -= 1;
+        result
+    }
+
+    fn inner_value(&mut self) -> Parsed<Expr> {
         let token = self.peek().clone();
         let span = token.span;
         let kind = match token.kind {
@@ -221,12 +241,12 @@ impl Parser<'_> {
                 self.next();
                 let inner = self.expression()?;
                 let end = self.sign(')')?;
-                return Ok(Expr { kind: inner.kind, span: span.to(end) });
+                return Ok(Expr { span: span.to(end), ..inner });
             }
             TokenKind::Word(word) => return self.word_value(&word),
             TokenKind::Text(_) | TokenKind::Sign(_) | TokenKind::End => return self.unexpected("a value"),
         };
-        Ok(Expr { kind, span })
+        self.made(kind, span)
     }
 
     fn word_value(&mut self, word: &str) -> Parsed<Expr> {
@@ -253,7 +273,7 @@ impl Parser<'_> {
                 self.word("otherwise")?;
                 let otherwise = Box::new(self.expression()?);
                 let span = start.to(otherwise.span);
-                return Ok(Expr { kind: ExprKind::Where { when, give, otherwise }, span });
+                return self.made(ExprKind::Where { when, give, otherwise }, span);
             }
             "larger" | "smaller" => {
                 self.next();
@@ -264,7 +284,7 @@ impl Parser<'_> {
                     list.push(self.expression()?);
                 }
                 let end = self.sign(')')?;
-                return Ok(Expr { kind: ExprKind::Extreme { larger: word == "larger", list }, span: start.to(end) });
+                return self.made(ExprKind::Extreme { larger: word == "larger", list }, start.to(end));
             }
             "sum" => {
                 self.next();
@@ -274,7 +294,7 @@ impl Parser<'_> {
                 self.word("of")?;
                 let body = self.value()?;
                 let span = start.to(body.span);
-                return Ok(Expr { kind: ExprKind::SumOver { kind, with, body: Box::new(body) }, span });
+                return self.made(ExprKind::SumOver { kind, with, body: Box::new(body) }, span);
             }
             "count" => {
                 self.next();
@@ -320,7 +340,7 @@ impl Parser<'_> {
             _ => return self.named(),
         };
         let end = self.previous_span();
-        Ok(Expr { kind, span: start.to(end) })
+        self.made(kind, start.to(end))
     }
 
     /// A name, with `of …` or `[…]` behind it.
@@ -346,7 +366,7 @@ impl Parser<'_> {
             ExprKind::Name(name)
         };
         let end = self.previous_span();
-        Ok(Expr { kind, span: start.to(end) })
+        self.made(kind, start.to(end))
     }
 
     fn with(&mut self) -> Parsed<Option<Box<Expr>>> {
@@ -364,9 +384,9 @@ impl Parser<'_> {
         let by = self.any_word("the figure or fact to order by")?;
         Ok((by, self.take_word("down")))
     }
-}
 
-fn binary(op: BinaryOp, left: Expr, right: Expr) -> Expr {
-    let span = left.span.to(right.span);
-    Expr { kind: ExprKind::Binary { op, left: Box::new(left), right: Box::new(right) }, span }
+    fn binary(&mut self, op: BinaryOp, left: Expr, right: Expr) -> Parsed<Expr> {
+        let span = left.span.to(right.span);
+        self.made(ExprKind::Binary { op, left: Box::new(left), right: Box::new(right) }, span)
+    }
 }

@@ -1,6 +1,5 @@
-//! Checks that need the whole pack: circles, unused names, what varies with hours, dates without an amount.
+//! Checks that need the whole pack: circles, depth, and what varies with hours.
 
-use super::amounts::{AmountDecl, day_text};
 use super::ast::BinaryOp;
 use super::pack::{JOB, Pack};
 use super::tree::{Limit, Node, Over, Target, What};
@@ -26,71 +25,184 @@ impl Course {
 struct Graph<'a> {
     pack: &'a Pack,
     faults: &'a mut Vec<Diagnostic>,
-    courses: Vec<Option<Course>>,
-    /// Definitions being worked out, the innermost last.
-    path: Vec<usize>,
-    in_circle: HashSet<usize>,
+    /// By definition; those that come later in the order are not known yet.
+    courses: Vec<Course>,
     bands: Vec<Option<Course>>,
     scales: Vec<Option<Course>>,
 }
 
+/// How many expressions may stand inside each other from an item down to the facts, so that no pack can exhaust the stack.
+const DEEPEST: usize = 1_000;
+
 pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
+    let order = Order::new(pack).run(faults);
+    depths(pack, &order, faults);
     let mut graph = Graph {
         pack,
         faults,
-        courses: vec![None; pack.definitions.len()],
-        path: Vec::new(),
-        in_circle: HashSet::new(),
+        courses: vec![Course::default(); pack.definitions.len()],
         bands: vec![None; pack.bands.len()],
         scales: vec![None; pack.scales.len()],
     };
-    for at in 0..pack.definitions.len() {
+    for at in order {
         graph.definition(at);
     }
     for condition in pack.holds.iter().chain(&pack.notes) {
         graph.course(&condition.when);
     }
-    unused(pack, graph.faults);
+    // Whatever is used was worked out by now; a fault of what is not used counts as well.
+    for at in 0..pack.bands.len() {
+        graph.bands_course(at);
+    }
+    for at in 0..pack.scales.len() {
+        graph.scale_course(at);
+    }
+}
+
+/// The definitions that a node needs, each once, in the order of the text.
+fn needs(pack: &Pack, node: &Node) -> Vec<usize> {
+    let mut out = Vec::new();
+    let mut lists = Vec::new();
+    node.visit(&mut |node| match &node.what {
+        What::Name { target: Target::Figure(at), .. } | What::Partner { target: Target::Figure(at), .. } => out.push(*at),
+        What::Charge { bands, .. } => lists.extend(pack.bands[*bands].nodes()),
+        What::PlaceOn { scale, .. } => lists.extend(pack.scales[*scale].nodes()),
+        _ => {}
+    });
+    // Bands and scales hold no further bands and scales.
+    for node in lists {
+        node.visit(&mut |node| {
+            if let What::Name { target: Target::Figure(at), .. } | What::Partner { target: Target::Figure(at), .. } = &node.what {
+                out.push(*at);
+            }
+        });
+    }
+    let mut seen = HashSet::new();
+    out.retain(|at| seen.insert(*at));
+    out
+}
+
+/// Puts definitions into an order in which each comes after what it needs, and finds circles. Keeps its own stack, so that
+/// a long chain is no danger.
+struct Order<'a> {
+    pack: &'a Pack,
+    needs: Vec<Vec<usize>>,
+}
+
+impl<'a> Order<'a> {
+    fn new(pack: &'a Pack) -> Self {
+        let needs = pack.definitions.iter().map(|d| d.body.as_ref().map_or_else(Vec::new, |body| needs(pack, body))).collect();
+        Order { pack, needs }
+    }
+
+    fn run(&self, faults: &mut Vec<Diagnostic>) -> Vec<usize> {
+        #[derive(Clone, Copy, PartialEq)]
+        enum State {
+            New,
+            Open,
+            Done,
+        }
+        let mut state = vec![State::New; self.needs.len()];
+        let mut in_circle = HashSet::new();
+        let mut out = Vec::new();
+        for start in 0..self.needs.len() {
+            if state[start] != State::New {
+                continue;
+            }
+            state[start] = State::Open;
+            let mut path = vec![(start, 0)];
+            while let Some((at, next)) = path.last_mut() {
+                let at = *at;
+                let Some(need) = self.needs[at].get(*next).copied() else {
+                    state[at] = State::Done;
+                    out.push(at);
+                    path.pop();
+                    continue;
+                };
+                *next += 1;
+                match state[need] {
+                    State::New => {
+                        state[need] = State::Open;
+                        path.push((need, 0));
+                    }
+                    State::Open => {
+                        let from = path.iter().position(|(d, _)| *d == need).expect("an open definition is on the path");
+                        let circle: Vec<usize> = path[from..].iter().map(|(d, _)| *d).collect();
+                        // Figures that already stand in a reported circle would only repeat it.
+                        if circle.iter().all(|d| !in_circle.contains(d)) {
+                            self.report(&circle, faults);
+                        }
+                        in_circle.extend(circle);
+                    }
+                    State::Done => {}
+                }
+            }
+        }
+        out
+    }
+
+    fn report(&self, circle: &[usize], faults: &mut Vec<Diagnostic>) {
+        let start = (0..circle.len()).min_by_key(|at| circle[*at]).unwrap_or(0);
+        let mut names: Vec<&str> = circle.iter().cycle().skip(start).take(circle.len()).map(|d| self.pack.definitions[*d].name.as_str()).collect();
+        names.push(names[0]);
+        if names.len() > 8 {
+            names.splice(5..names.len() - 2, ["…"]);
+        }
+        let first = &self.pack.definitions[circle[start]];
+        faults.push(
+            Diagnostic::fault(first.name_span, format!("`{}` needs itself: {}", first.name, names.join(" needs ")))
+                .expected("figures that do not need each other")
+                .hint("split one of them so that one part does not need the other, or work it out `as if` a fact were settled"),
+        );
+    }
+}
+
+/// Reports a definition that would take too deep a stack to work out.
+fn depths(pack: &Pack, order: &[usize], faults: &mut Vec<Diagnostic>) {
+    let mut depths = vec![0usize; pack.definitions.len()];
+    for at in order {
+        let definition = &pack.definitions[*at];
+        let Some(body) = &definition.body else { continue };
+        let deepest = needs(pack, body).into_iter().map(|need| depths[need]).max().unwrap_or(0);
+        let mut own = 0;
+        body.visit(&mut |node| {
+            own = own.max(match &node.what {
+                What::Charge { bands, .. } => pack.bands[*bands].nodes().iter().map(|n| n.height()).max().unwrap_or(0),
+                What::PlaceOn { scale, .. } => pack.scales[*scale].nodes().iter().map(|n| n.height()).max().unwrap_or(0),
+                _ => 0,
+            });
+        });
+        depths[*at] = deepest + own + body.height();
+        if depths[*at] > DEEPEST {
+            faults.push(
+                Diagnostic::fault(definition.name_span, format!("`{}` needs figures that need figures, {} operators deep", definition.name, depths[*at]))
+                    .expected(format!("at most {DEEPEST}"))
+                    .hint("let some figures use facts and amounts in place of other figures"),
+            );
+            // What needs it is not reported again.
+            depths[*at] = 0;
+        }
+    }
 }
 
 impl Graph<'_> {
-    fn definition(&mut self, at: usize) -> Course {
-        if let Some(course) = self.courses[at] {
-            return course;
-        }
-        if let Some(start) = self.path.iter().position(|d| *d == at) {
-            let circle: Vec<usize> = self.path[start..].to_vec();
-            if circle.iter().all(|d| self.in_circle.insert(*d)) {
-                let mut names: Vec<&str> = circle.iter().map(|d| self.pack.definitions[*d].name.as_str()).collect();
-                names.push(names[0]);
-                let first = &self.pack.definitions[circle[0]];
-                self.faults.push(
-                    Diagnostic::fault(first.name_span, format!("`{}` needs itself: {}", first.name, names.join(" needs ")))
-                        .expected("figures that do not need each other")
-                        .hint("split one of them so that one part does not need the other, or work it out `as if` a fact were settled"),
-                );
-            }
-            return Course::default();
-        }
-        self.path.push(at);
-        let course = self.pack.definitions[at].body.as_ref().map_or(Course::default(), |body| self.course(body));
-        self.path.pop();
+    fn definition(&mut self, at: usize) {
+        let definition = &self.pack.definitions[at];
+        let course = definition.body.as_ref().map_or(Course::default(), |body| self.course(body));
         if course.degree > 2 {
-            let definition = &self.pack.definitions[at];
             self.faults.push(
                 Diagnostic::fault(definition.name_span, format!("`{}` is of degree {} in hours", definition.name, course.degree))
-                    .expected("degree two at the most"),
+                    .expected("degree two at the most")
+                    .hint("multiply what varies with hours at most once"),
             );
         }
         // The degree is reported once, not again for everything that uses it.
-        let course = Course { degree: course.degree.min(2), ..course };
-        self.courses[at] = Some(course);
-        course
+        self.courses[at] = Course { degree: course.degree.min(2), ..course };
     }
 
     fn target(&mut self, target: Target) -> Course {
         match target {
-            Target::Figure(at) => self.definition(at),
+            Target::Figure(at) => self.courses[at],
             Target::Fact { kind: JOB, fact: 0 } => Course { degree: 1, varies: true },
             Target::Fact { .. } => Course::default(),
         }
@@ -100,11 +212,10 @@ impl Graph<'_> {
         [&over.with, &over.body, &over.by].into_iter().flatten().fold(Course::default(), |c, node| c.with(self.course(node)))
     }
 
-    fn fixed(&mut self, node: &Node, why: &str) {
+    fn fixed(&mut self, node: &Node, why: &str, hint: &str) {
         if self.course(node).varies {
-            self.faults.push(
-                Diagnostic::fault(node.span, "this varies with hours").expected(format!("something that does not, as {why}")).hint("multiply out"),
-            );
+            let fault = Diagnostic::fault(node.span, "this varies with hours").expected(format!("something that does not, as {why}"));
+            self.faults.push(fault.hint(hint));
         }
     }
 
@@ -118,7 +229,7 @@ impl Graph<'_> {
             }
             What::Lookup { keys, .. } => {
                 for key in keys {
-                    self.fixed(key, "it is the key of a table");
+                    self.fixed(key, "it is the key of a table", "place what varies on a `scale`");
                 }
                 Course::default()
             }
@@ -136,8 +247,8 @@ impl Graph<'_> {
             What::First { over, failing, .. } => self.over(over).with(self.course(failing)),
             What::Place { over, .. } => Course { degree: 0, varies: self.over(over).varies },
             What::Years { from, to } => {
-                self.fixed(from, "it is a day");
-                self.fixed(to, "it is a day");
+                self.fixed(from, "it is a day", "let the day come from a fact");
+                self.fixed(to, "it is a day", "let the day come from a fact");
                 Course::default()
             }
             What::Binary { op, left, right } => {
@@ -161,7 +272,7 @@ impl Graph<'_> {
                 Course { degree: if steps { 0 } else { course.degree }, varies: course.varies }
             }
             What::DivideRounded { of, by, manner, .. } => {
-                self.fixed(by, "it divides");
+                self.fixed(by, "it divides", "multiply out");
                 let course = self.course(of);
                 if course.varies && *manner != Some(Manner::Steps) {
                     self.faults.push(
@@ -197,7 +308,7 @@ impl Graph<'_> {
         self.bands[at] = Some(Course::default());
         let mut course = Course::default();
         for (rate, limit) in &self.pack.bands[at].bands {
-            self.fixed(rate, "it is the rate of a band");
+            self.fixed(rate, "it is the rate of a band", "use a figure of its own for each rate");
             if let Some(limit) = limit {
                 course = course.with(self.course(limit));
             }
@@ -221,156 +332,5 @@ impl Graph<'_> {
         }
         self.scales[at] = Some(course);
         course
-    }
-}
-
-#[derive(Default)]
-struct Used {
-    figures: HashSet<usize>,
-    facts: HashSet<(usize, usize)>,
-    amounts: HashSet<usize>,
-    guarded: HashSet<usize>,
-    tables: HashSet<usize>,
-    conversions: HashSet<usize>,
-    bands: HashSet<usize>,
-    scales: HashSet<usize>,
-}
-
-fn unused(pack: &Pack, faults: &mut Vec<Diagnostic>) {
-    let mut used = Used::default();
-    {
-        let mut note = |node: &Node| match &node.what {
-            What::Name { target, .. } | What::Partner { target, .. } => match target {
-                Target::Figure(at) => {
-                    used.figures.insert(*at);
-                }
-                Target::Fact { kind, fact } => {
-                    used.facts.insert((*kind, *fact));
-                }
-            },
-            What::Amount { amount, .. } => {
-                used.amounts.insert(*amount);
-            }
-            What::Missing { amount, .. } => {
-                used.guarded.insert(*amount);
-            }
-            What::Lookup { table, .. } => {
-                used.tables.insert(*table);
-            }
-            What::Convert { conversion, .. } => {
-                used.conversions.insert(*conversion);
-            }
-            What::Charge { bands, .. } => {
-                used.bands.insert(*bands);
-            }
-            What::PlaceOn { scale, .. } => {
-                used.scales.insert(*scale);
-            }
-            _ => {}
-        };
-        for definition in &pack.definitions {
-            if let Some(body) = &definition.body {
-                body.visit(&mut note);
-            }
-        }
-        for condition in pack.holds.iter().chain(&pack.notes) {
-            condition.when.visit(&mut note);
-        }
-        for bands in &pack.bands {
-            for (rate, limit) in &bands.bands {
-                rate.visit(&mut note);
-                if let Some(limit) = limit {
-                    limit.visit(&mut note);
-                }
-            }
-        }
-        for scale in &pack.scales {
-            for (value, limit) in &scale.steps {
-                value.visit(&mut note);
-                if let Limit::UpTo(limit) | Limit::Below(limit) = limit {
-                    limit.visit(&mut note);
-                }
-            }
-        }
-    }
-    let unused = |what: &str, name: &str| {
-        Diagnostic::general(format!("the {what} `{name}` is not used")).hint(format!("remove the {what}, or use it in an item"))
-    };
-    for (at, definition) in pack.definitions.iter().enumerate() {
-        let same_name_used = pack.definitions.iter().enumerate().any(|(other, d)| {
-            d.name == definition.name && d.span == definition.span && used.figures.contains(&other)
-        });
-        if definition.item.is_none() && !used.figures.contains(&at) && !same_name_used {
-            faults.push(
-                Diagnostic::fault(definition.name_span, format!("the figure `{}` is not used", definition.name)).expected("a figure that an item needs"),
-            );
-        }
-    }
-    for (kind, decl) in pack.kinds.iter().enumerate() {
-        for (fact, f) in decl.facts.iter().enumerate() {
-            let built_in = ["birth", "hours", "wage"].contains(&f.name.as_str());
-            let elsewhere = pack.kinds.iter().enumerate().any(|(k, d)| d.facts.iter().enumerate().any(|(i, other)| other.name == f.name && used.facts.contains(&(k, i))));
-            if !built_in && !used.facts.contains(&(kind, fact)) && !elsewhere {
-                faults.push(unused("fact", &f.name));
-            }
-        }
-    }
-    for (at, amount) in pack.amounts.iter().enumerate() {
-        if !used.amounts.contains(&at) && !used.guarded.contains(&at) {
-            faults.push(Diagnostic { span: Some(amount.rows[0].span), ..unused("amount", &amount.name) });
-        }
-        if used.amounts.contains(&at) {
-            dates(pack, amount, used.guarded.contains(&at), faults);
-        }
-    }
-    for (at, table) in pack.tables.iter().enumerate() {
-        if !used.tables.contains(&at) {
-            faults.push(unused("table", &table.name));
-        }
-    }
-    for (at, conversion) in pack.conversions.iter().enumerate() {
-        if !used.conversions.contains(&at) {
-            faults.push(unused("conversion", &conversion.name));
-        }
-    }
-    for (at, bands) in pack.bands.iter().enumerate() {
-        if !used.bands.contains(&at) {
-            faults.push(unused("bands", &bands.name));
-        }
-    }
-    for (at, scale) in pack.scales.iter().enumerate() {
-        if !used.scales.contains(&at) {
-            faults.push(unused("scale", &scale.name));
-        }
-    }
-}
-
-/// Every day that the pack covers has a row; an absent one is asked for with `missing`.
-fn dates(pack: &Pack, amount: &AmountDecl, guarded: bool, faults: &mut Vec<Diagnostic>) {
-    let mut next = pack.manifest.from;
-    for row in &amount.rows {
-        if row.to < next {
-            continue;
-        }
-        if row.from > next {
-            break;
-        }
-        if row.value.is_none() && !guarded {
-            faults.push(
-                Diagnostic::fault(row.span, format!("`{}` is absent from {}", amount.name, day_text(row.from)))
-                    .expected(format!("a `hold where … missing {}`", amount.name)),
-            );
-        }
-        next = row.to.saturating_add(1);
-        if next > pack.manifest.to {
-            return;
-        }
-    }
-    if next <= pack.manifest.to {
-        let place = amount.rows.iter().rev().find(|row| row.from <= next).unwrap_or(&amount.rows[0]);
-        faults.push(
-            Diagnostic::fault(place.span, format!("`{}` has no value on {}", amount.name, day_text(next)))
-                .expected(format!("a value for every day from {} to {}", day_text(pack.manifest.from), day_text(pack.manifest.to))),
-        );
     }
 }

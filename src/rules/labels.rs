@@ -1,12 +1,17 @@
-//! `labels.<language>.csv`: the words that statements use for a pack's names.
+//! `labels.<language>.csv`: the words that statements use for a pack's names. In: a text. Out: texts by key; faults for
+//! keys that name nothing, and for items and notes without a text.
 
-use crate::diag::Diagnostic;
-use crate::source::{FileId, Span};
+use super::pack::Pack;
+use crate::diag::{Diagnostic, nearest};
+use crate::program::ItemKind;
+use crate::source::{FileId, Sources, Span};
 use std::collections::BTreeMap;
 
 /// Reads one language's labels: `key,text` and any further columns, which are for the pack's authors.
 pub(super) fn read(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> BTreeMap<String, String> {
-    let mut reader = csv::ReaderBuilder::new().flexible(true).from_reader(text.trim_start_matches('\u{feff}').as_bytes());
+    let inside = text.trim_start_matches('\u{feff}');
+    let skipped = text.len() - inside.len();
+    let mut reader = csv::ReaderBuilder::new().flexible(true).from_reader(inside.as_bytes());
     let whole = Span { file, start: 0, end: 0 };
     let mut out = BTreeMap::new();
     let header_is_right = reader.headers().is_ok_and(|h| h.get(0) == Some("key") && h.get(1) == Some("text"));
@@ -19,8 +24,9 @@ pub(super) fn read(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> BT
             faults.push(Diagnostic::fault(whole, "not a readable table"));
             continue;
         };
-        let start = record.position().map_or(0, |p| p.byte() as usize);
-        let end = text[start.min(text.len())..].find('\n').map_or(text.len(), |at| start + at);
+        let start = record.position().map_or(0, |p| p.byte() as usize) + skipped;
+        let start = text.len() - text[start..].trim_start_matches(['\r', '\n']).len();
+        let end = text[start..].find('\n').map_or(text.len(), |at| start + at);
         let span = Span { file, start: start as u32, end: end as u32 };
         match (record.get(0).map(str::trim), record.get(1).map(str::trim)) {
             (Some(key), Some(words)) if !key.is_empty() && !words.is_empty() => {
@@ -33,4 +39,46 @@ pub(super) fn read(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> BT
         }
     }
     out
+}
+
+/// Groups of keys whose second half is a name of the pack.
+fn names<'p>(pack: &'p Pack, group: &str) -> Option<Vec<&'p str>> {
+    let figures = || pack.definitions.iter().map(|d| d.name.as_str());
+    Some(match group {
+        "item" | "what" => pack.definitions.iter().filter(|d| d.item.is_some()).map(|d| d.name.as_str()).collect(),
+        "turn" => figures().collect(),
+        "note" => pack.notes.iter().map(|n| n.text.as_str()).collect(),
+        "fact" => pack.kinds.iter().flat_map(|k| &k.facts).map(|f| f.name.as_str()).collect(),
+        "amount" => pack.amounts.iter().map(|a| a.name.as_str()).collect(),
+        "record" => pack.kinds.iter().map(|k| k.name.as_str()).collect(),
+        "kind" => ItemKind::WORDS.to_vec(),
+        _ => return None,
+    })
+}
+
+/// Reports keys that name nothing in the pack, and items and notes without a text.
+pub(super) fn check(pack: &Pack, files: &[(String, FileId)], sources: &Sources, faults: &mut Vec<Diagnostic>) {
+    for (language, file) in files {
+        let Some(labels) = pack.labels.get(language) else { continue };
+        let text = &sources.get(*file).text;
+        for key in labels.keys() {
+            let Some((group, name)) = key.split_once('.') else { continue };
+            let Some(known) = names(pack, group) else { continue };
+            if !known.contains(&name) {
+                let start = text.find(&format!("\n{key},")).map_or(0, |at| at + 1);
+                let end = if start == 0 { 0 } else { start + key.len() };
+                let span = Span { file: *file, start: start as u32, end: end as u32 };
+                let fault = Diagnostic::fault(span, format!("`{key}` names nothing")).expected(format!("`{group}.` and a name of the pack"));
+                faults.push(super::declare::with_near(fault, nearest(name, known)));
+            }
+        }
+        let missing = |key: String, span: Span| {
+            (!labels.contains_key(&key)).then(|| {
+                Diagnostic::fault(span, format!("`labels.{language}.csv` has no text for it")).expected(format!("a row with the key `{key}`"))
+            })
+        };
+        let items = pack.definitions.iter().filter(|d| d.item.is_some()).filter_map(|d| missing(format!("item.{}", d.name), d.name_span));
+        let notes = pack.notes.iter().filter_map(|n| missing(format!("note.{}", n.text), n.when.span));
+        faults.extend(items.chain(notes));
+    }
 }

@@ -89,9 +89,13 @@ impl Lexer<'_> {
             let words = &self.text[start..self.at];
             match super::amounts::day(words) {
                 Some(day) => self.push(TokenKind::Day(day), start),
-                None => faults.push(
-                    Diagnostic::fault(self.span(start), format!("`{words}` is not a day")).expected("a day as year-month-day, such as 2026-04-06"),
-                ),
+                None => {
+                    faults.push(
+                        Diagnostic::fault(self.span(start), format!("`{words}` is not a day"))
+                            .expected("a day as year-month-day, such as 2026-04-06, or a blank before a minus"),
+                    );
+                    self.push(TokenKind::Day(0), start);
+                }
             }
             return;
         }

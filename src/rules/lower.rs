@@ -3,8 +3,8 @@
 //! Sums and searches are unrolled; a figure that no item needs is left out. `lower_expr` holds the expressions.
 
 use super::amounts::day_text;
-use super::pack::{ADULT, Change, FactDecl, FactKind, HOUSEHOLD, JOB, Pack};
-use super::types::{Period, Ty};
+use super::pack::{ADULT, Change, HOUSEHOLD, JOB, Pack};
+use super::types::Ty;
 use crate::diag::{Diagnostic, nearest};
 use crate::index::Id;
 use crate::num::{Direction, Fraction};
@@ -24,6 +24,9 @@ pub(super) struct Lowering<'a> {
     /// Expressions being unrolled; bounded by the parser and by the absence of circles.
     pub part: usize,
 }
+
+/// The largest item, in currency units: sums of many items still fit into 64 bits of minor units.
+const LARGEST_ITEM: u128 = 1_000_000_000_000;
 
 /// Checks dates and changed amounts of a list.
 pub(super) fn accepts(pack: &Pack, dates: &[i64], changes: &[Change]) -> Result<(), Vec<Diagnostic>> {
@@ -77,25 +80,24 @@ pub(super) fn program(pack: &Pack, dates: &[i64], changes: &[Change], shape: &Sh
                 Some(line) => {
                     let (name, span) = &lines[line.position()];
                     Diagnostic::fault(*span, format!("`{name}` could hold a number that is too large"))
-                        .expected("numbers that fit into 112 bits at their scale")
+                        .expected(format!("at most 33 digits, those behind the point included, and at most {LARGEST_ITEM} for an item"))
                         .hint("round an intermediate figure, or narrow the range of a fact")
                 }
-                None => Diagnostic::general("a number of the pack is too large").expected("numbers that fit into 112 bits"),
+                None => Diagnostic::general("a number of the pack is too large").expected("at most 33 digits, those behind the point included"),
             });
             Err(faults)
         }
     }
 }
 
-/// Lowers a large and a small household at every date at which an amount or table changes, to find what only shows then.
+/// Lowers a large and a small household at every date at which an amount changes, to find what only shows then.
 pub(super) fn probe(pack: &Pack, faults: &mut Vec<Diagnostic>) {
     let mut days: Vec<i64> = vec![pack.manifest.from, pack.manifest.to];
-    let amounts = pack.amounts.iter().flat_map(|amount| &amount.rows);
-    let tables = pack.tables.iter().flat_map(|table| table.rows.iter().map(|entry| &entry.row));
-    for row in amounts.chain(tables) {
-        // A row that ends may leave a gap on the day after.
-        let changes = [row.from, row.to.saturating_add(1)];
-        days.extend(changes.into_iter().filter(|day| *day > pack.manifest.from && *day <= pack.manifest.to));
+    for amount in &pack.amounts {
+        days.extend(amount.rows.iter().map(|row| row.from).filter(|day| *day > pack.manifest.from && *day <= pack.manifest.to));
+    }
+    for table in &pack.tables {
+        days.extend(super::tables::days(pack, table));
     }
     days.sort_unstable();
     days.dedup();
@@ -103,8 +105,8 @@ pub(super) fn probe(pack: &Pack, faults: &mut Vec<Diagnostic>) {
         for shape in [small(pack), large(pack)] {
             let dates = vec![day; pack.manifest.dates.len()];
             if let Err(found) = program(pack, &dates, &[], &shape) {
-                faults.extend(found);
-                return;
+                let new: Vec<_> = found.into_iter().filter(|fault| !faults.contains(fault)).collect();
+                faults.extend(new);
             }
         }
     }
@@ -213,6 +215,9 @@ impl Lowering<'_> {
         if definition.item.is_some_and(|kind| kind != ItemKind::Passport) {
             reg = self.builder.round(reg, Fraction::new(1, 100), Direction::HalfUp, Manner::Minor);
         }
+        if definition.item.is_some() && self.builder.limit(reg) > LARGEST_ITEM {
+            self.builder.overflow();
+        }
         self.builder.close(line, reg, before);
         self.part = before_part;
         self.done.insert((at, instance), reg);
@@ -228,7 +233,7 @@ impl Lowering<'_> {
         let largest = |value: Fraction| value.numerator().unsigned_abs().div_ceil(value.denominator().unsigned_abs());
         let limit = largest(decl.range.0).max(largest(decl.range.1));
         let place = FactRef { kind: kind as u32, instance: instance as u32, fact: fact as u32 };
-        self.builder.fact(place, units(decl), limit)
+        self.builder.fact(place, decl.kind.units(), limit)
     }
 
     /// Value of an amount on its date: its register, and the amount for the working.
@@ -271,64 +276,17 @@ impl Lowering<'_> {
         !changed && decl.on(self.dates[dated]).is_none_or(|row| row.value.is_none())
     }
 
-    /// A keyed table on its date, dense in its keys.
-    pub(super) fn table(&mut self, at: usize, dated: usize, span: crate::source::Span) -> Id<Table> {
+    /// A keyed table on its date. The check of the pack found a value for every key.
+    pub(super) fn table(&mut self, at: usize, dated: usize) -> Id<Table> {
         if let Some(id) = self.tables.get(&(at, dated)) {
             return *id;
         }
         let decl = &self.pack.tables[at];
-        let day = self.dates[dated];
-        let rows: Vec<_> = decl.rows.iter().filter(|r| r.row.from <= day && day <= r.row.to).collect();
-        let mut keys = Vec::new();
-        let mut places: Vec<Vec<Option<i64>>> = Vec::new();
-        for (position, key) in decl.keys.iter().enumerate() {
-            let column: Vec<Option<i64>> = rows
-                .iter()
-                .map(|r| match key {
-                    Some(choice) => self.pack.choices[*choice].words.iter().position(|w| *w == r.keys[position]).map(|p| p as i64),
-                    None => r.keys[position].parse().ok(),
-                })
-                .collect();
-            for (row, found) in rows.iter().zip(&column) {
-                if found.is_none() {
-                    self.faults.push(Diagnostic::fault(row.row.span, format!("`{}` is not a key of this table", row.keys[position])));
-                }
-            }
-            let (low, high) = match key {
-                Some(choice) => (0, self.pack.choices[*choice].words.len() as i64 - 1),
-                None => (column.iter().flatten().min().copied().unwrap_or(0), column.iter().flatten().max().copied().unwrap_or(0)),
-            };
-            keys.push((low, usize::try_from(high - low + 1).unwrap_or(1).min(10_000)));
-            places.push(column);
-        }
-        let size: usize = keys.iter().map(|(_, n)| n).product();
-        let mut values: Vec<Option<Fraction>> = vec![None; size.min(100_000)];
-        for (row_at, row) in rows.iter().enumerate() {
-            let index = places.iter().zip(&keys).try_fold(0usize, |index, (column, (low, n))| {
-                column[row_at].and_then(|k| usize::try_from(k - low).ok()).filter(|k| k < n).map(|k| index * n + k)
-            });
-            if let Some(slot) = index.and_then(|i| values.get_mut(i)) {
-                *slot = row.row.value;
-            }
-        }
-        if values.iter().any(Option::is_none) {
-            self.faults.push(
-                Diagnostic::fault(span, format!("the table `{}` has gaps on {}", decl.name, day_text(day))).expected("a value for every key"),
-            );
-        }
-        let values = values.into_iter().map(|v| v.unwrap_or(Fraction::ZERO)).collect();
-        let id = self.builder.table(Table { name: decl.name.clone(), keys, values });
+        let dense = super::tables::dense(self.pack, decl, self.dates[dated]).expect("a checked table has rows on every day covered");
+        let values = dense.values.into_iter().map(|v| v.unwrap_or(Fraction::ZERO)).collect();
+        let id = self.builder.table(Table { name: decl.name.clone(), keys: dense.keys, values });
         self.tables.insert((at, dated), id);
         id
-    }
-}
-
-/// Units to one of a fact as lists hold it.
-fn units(decl: &FactDecl) -> i64 {
-    match &decl.kind {
-        FactKind::Money(Some(Period::Hour)) | FactKind::Rate => 10_000,
-        FactKind::Money(_) | FactKind::Hours | FactKind::Number => 100,
-        FactKind::Count | FactKind::Date | FactKind::YesNo | FactKind::Choice(_) => 1,
     }
 }
 

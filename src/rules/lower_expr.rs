@@ -7,7 +7,8 @@ use super::tree::{Limit, Node, Over, Target, What};
 use super::types::Ty;
 use crate::diag::Diagnostic;
 use crate::num::Fraction;
-use crate::program::{Manner, Reg};
+use crate::program::{Entered, Manner, Reg};
+use crate::source::Span;
 
 /// The records at hand: kind and position, the innermost last.
 type Scopes = Vec<(usize, usize)>;
@@ -20,7 +21,7 @@ impl Lowering<'_> {
             What::Amount { amount, dated } => {
                 let reg = self.amount(*amount, *dated);
                 let name = self.pack.amounts[*amount].name.clone();
-                self.builder.went_in(&name, reg);
+                self.went_in(name, reg, node.ty);
                 reg
             }
             What::Missing { amount, dated } => {
@@ -32,7 +33,7 @@ impl Lowering<'_> {
                 let (from, instance) = scopes[*level];
                 let instance = self.climb(from, instance, *kind).expect("a checked name can be reached");
                 let reg = self.target(*target, *kind, instance);
-                self.builder.went_in(text, reg);
+                self.went_in(text.clone(), reg, node.ty);
                 reg
             }
             What::Partner { target, level, failing, text } => {
@@ -44,12 +45,12 @@ impl Lowering<'_> {
                     (None, Some(failing)) => self.node(failing, scopes),
                     (None, None) => self.builder.constant(Fraction::ZERO),
                 };
-                self.builder.went_in(&format!("{text} of partner"), reg);
+                self.went_in(format!("{text} of partner"), reg, node.ty);
                 reg
             }
             What::Lookup { table, dated, keys } => {
                 let keys = keys.iter().map(|key| self.node(key, scopes)).collect();
-                let id = self.table(*table, *dated, node.span);
+                let id = self.table(*table, *dated);
                 self.builder.lookup(id, keys)
             }
             What::Where { when, give, otherwise } => {
@@ -139,8 +140,8 @@ impl Lowering<'_> {
                 let (of, by) = (self.node(of, scopes), self.node(by, scopes));
                 self.builder.divide(of, by, *unit, *direction)
             }
-            What::Charge { of, bands } => self.charge(of, *bands, node, scopes),
-            What::PlaceOn { of, scale } => self.place_on(of, *scale, node, scopes),
+            What::Charge { of, bands } => self.charge(of, *bands, scopes),
+            What::PlaceOn { of, scale } => self.place_on(of, *scale, scopes),
             What::Compare { op, left, right } => {
                 let (left, right) = (self.node(left, scopes), self.node(right, scopes));
                 match op {
@@ -168,6 +169,14 @@ impl Lowering<'_> {
                 self.builder.either(left, right)
             }
         }
+    }
+
+    fn went_in(&mut self, name: String, reg: Reg, ty: Ty) {
+        let words = match ty {
+            Ty::Choice(choice) => self.pack.choices[choice].words.clone(),
+            _ => Vec::new(),
+        };
+        self.builder.went_in(Entered { name, reg, unit: ty.to_string(), words });
     }
 
     fn target(&mut self, target: Target, kind: usize, instance: usize) -> Reg {
@@ -278,7 +287,7 @@ impl Lowering<'_> {
     }
 
     /// Each band's rate on what lies inside it.
-    fn charge(&mut self, of: &Node, bands: usize, node: &Node, scopes: &mut Scopes) -> Reg {
+    fn charge(&mut self, of: &Node, bands: usize, scopes: &mut Scopes) -> Reg {
         let pack = self.pack;
         let decl = &pack.bands[bands];
         let none = self.builder.constant(Fraction::ZERO);
@@ -291,18 +300,20 @@ impl Lowering<'_> {
         let mut total = none;
         for (rate, limit) in &decl.bands {
             let rate = self.node(rate, &mut inner);
-            // A limit below nothing, or below the one before it, leaves an empty band.
-            let limit = limit.as_ref().map(|limit| {
-                let limit = self.node(limit, &mut inner);
-                let both_fixed = self.builder.is_fixed(limit) && low.is_some_and(|low| self.builder.is_fixed(low));
-                if both_fixed { limit } else { self.builder.larger(limit, low.unwrap_or(none)) }
-            });
-            if let (Some(low), Some(high)) = (low, limit)
-                && let (Some(low), Some(high)) = (self.builder.fixed_value(low), self.builder.fixed_value(high))
-                && high <= low
+            let span = limit.as_ref().map(|limit| limit.span);
+            let limit = limit.as_ref().map(|limit| self.node(limit, &mut inner));
+            let before = low.map_or(Some(Fraction::ZERO), |low| self.builder.fixed_value(low));
+            if let (Some(before), Some(limit), Some(span)) = (before, limit, span)
+                && let Some(high) = self.builder.fixed_value(limit)
+                && (high < before || high == before && low.is_some())
             {
-                self.faults.push(Diagnostic::fault(node.span, format!("the limits of `{}` do not rise", decl.name)).expected("each limit above the one before"));
+                self.faults.push(falls(span, &decl.name));
             }
+            // A limit that is no fixed number may lie below nothing, or below the one before it: that leaves an empty band.
+            let limit = limit.map(|limit| {
+                let sure = self.builder.is_fixed(limit) && before.is_some();
+                if sure { limit } else { self.builder.larger(limit, low.unwrap_or(none)) }
+            });
             let upper = limit.map_or(of, |limit| self.builder.smaller(of, limit));
             let inside = match low {
                 None => upper,
@@ -319,7 +330,7 @@ impl Lowering<'_> {
     }
 
     /// The value of the first step whose limit holds.
-    fn place_on(&mut self, of: &Node, scale: usize, node: &Node, scopes: &mut Scopes) -> Reg {
+    fn place_on(&mut self, of: &Node, scale: usize, scopes: &mut Scopes) -> Reg {
         let pack = self.pack;
         let decl = &pack.scales[scale];
         let of = self.node(of, scopes);
@@ -327,33 +338,40 @@ impl Lowering<'_> {
         let own = self.climb(from, at, decl.kind).expect("a checked scale can be reached");
         let mut inner = vec![(decl.kind, own)];
         let mut result: Option<Reg> = None;
-        let mut above: Option<Fraction> = None;
+        // The limit after the one at hand, whether it is included, and where it stands.
+        let mut above: Option<(Fraction, bool, Span)> = None;
         for (value, limit) in decl.steps.iter().rev() {
             let value = self.node(value, &mut inner);
-            let (limit, holds) = match limit {
+            let (limit, holds, included, span) = match limit {
                 Limit::Beyond => {
                     result = Some(value);
                     continue;
                 }
-                Limit::UpTo(limit) => {
-                    let limit = self.node(limit, &mut inner);
-                    (limit, self.builder.at_least(limit, of))
+                Limit::UpTo(node) => {
+                    let limit = self.node(node, &mut inner);
+                    (limit, self.builder.at_least(limit, of), true, node.span)
                 }
-                Limit::Below(limit) => {
-                    let limit = self.node(limit, &mut inner);
-                    (limit, self.builder.above(limit, of))
+                Limit::Below(node) => {
+                    let limit = self.node(node, &mut inner);
+                    (limit, self.builder.above(limit, of), false, node.span)
                 }
             };
             if let Some(fixed) = self.builder.fixed_value(limit) {
-                if above.is_some_and(|next| fixed > next) {
-                    self.faults.push(
-                        Diagnostic::fault(node.span, format!("the limits of `{}` do not rise", decl.name)).expected("each limit above the one before"),
-                    );
+                if let Some((next, next_included, place)) = above {
+                    // `below 80` and then `up to 80` leaves 80 itself to the second.
+                    let rises = fixed < next || fixed == next && !included && next_included;
+                    if !rises {
+                        self.faults.push(falls(place, &decl.name));
+                    }
                 }
-                above = Some(fixed);
+                above = Some((fixed, included, span));
             }
             result = Some(result.map_or(value, |rest| self.builder.choose(holds, value, rest)));
         }
         result.expect("a checked scale has a last step")
     }
+}
+
+fn falls(span: Span, name: &str) -> Diagnostic {
+    Diagnostic::fault(span, format!("this limit of `{name}` is not above the one before")).expected("limits that rise, so that nothing lies in two lines")
 }

@@ -3,8 +3,11 @@
 use super::types::Period;
 use crate::diag::Diagnostic;
 use crate::source::{FileId, Span};
+use crate::diag::nearest;
 use serde::Deserialize;
 use std::collections::BTreeMap;
+use toml::Spanned;
+use toml::value::Datetime;
 
 /// What a pack says of itself.
 #[derive(Clone, Debug)]
@@ -23,66 +26,97 @@ pub struct Manifest {
     pub to: i64,
     /// Names and meanings of the dates that a list gives; the first is the list's `date`.
     pub dates: Vec<(String, String)>,
+    /// Where each date is named.
+    pub(super) date_spans: Vec<Span>,
 }
 
 #[derive(Deserialize)]
 #[serde(deny_unknown_fields)]
 struct Written {
-    title: String,
-    area: String,
-    currency: String,
-    period: String,
+    title: Spanned<String>,
+    area: Spanned<String>,
+    currency: Spanned<String>,
+    period: Spanned<String>,
     covers: Covers,
-    dates: BTreeMap<String, String>,
+    dates: Spanned<BTreeMap<Spanned<String>, Spanned<String>>>,
 }
 
 #[derive(Deserialize)]
 #[serde(deny_unknown_fields)]
 struct Covers {
-    from: toml::value::Datetime,
-    to: toml::value::Datetime,
+    from: Spanned<Datetime>,
+    to: Spanned<Datetime>,
 }
 
+/// Reads it. None where it is no TOML, lacks a key or has no dates; other faults leave something to go on with.
 pub(super) fn read(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> Option<Manifest> {
-    let whole = Span { file, start: 0, end: 0 };
+    let place = |range: std::ops::Range<usize>| Span { file, start: range.start as u32, end: range.end as u32 };
     let written: Written = match toml::from_str(text) {
         Ok(written) => written,
         Err(error) => {
-            let span = error.span().map_or(whole, |s| Span { file, start: s.start as u32, end: s.end as u32 });
-            faults.push(Diagnostic::fault(span, error.message().trim().replace('\n', ", ")).expected("a `pack.toml` as `rules/README.md` shows it"));
+            let span = place(error.span().unwrap_or(0..0));
+            let message = error.message().trim().replace('\n', ", ");
+            faults.push(Diagnostic::fault(span, message).expected("title, area, currency, period, covers and dates, as `rules/README.md` shows them"));
             return None;
         }
     };
-    let before = faults.len();
-    let Some(period) = Period::from_word(&written.period) else {
-        faults.push(Diagnostic::fault(whole, format!("the period is `{}`", written.period)).expected("one of day, week, month, year"));
-        return None;
-    };
-    if written.currency.len() != 3 || !written.currency.bytes().all(|b| b.is_ascii_uppercase()) {
-        faults.push(Diagnostic::fault(whole, format!("the currency is `{}`", written.currency)).expected("an ISO 4217 code such as GBP"));
+    for (what, text) in [("title", &written.title), ("area", &written.area)] {
+        if text.get_ref().trim().is_empty() {
+            faults.push(Diagnostic::fault(place(text.span()), format!("the {what} is empty")).expected(format!("the pack's {what} as statements print it")));
+        }
     }
-    let day = |d: &toml::value::Datetime| super::amounts::day(&d.to_string());
-    let (from, to) = (day(&written.covers.from), day(&written.covers.to));
-    let (Some(from), Some(to)) = (from, to) else {
-        faults.push(Diagnostic::fault(whole, "`covers` does not hold two days").expected("from and to as days, such as 2024-04-08"));
-        return None;
+    let period = Period::from_word(written.period.get_ref()).filter(|p| *p != Period::Hour).unwrap_or_else(|| {
+        let fault = Diagnostic::fault(place(written.period.span()), format!("the period is `{}`", written.period.get_ref()));
+        let words = &Period::WORDS[1..];
+        let fault = fault.expected(format!("one of {}", words.join(", ")));
+        faults.push(super::declare::with_near(fault, nearest(written.period.get_ref(), words.iter().copied())));
+        Period::Month
+    });
+    let currency = written.currency.get_ref();
+    if currency.len() != 3 || !currency.bytes().all(|b| b.is_ascii_uppercase()) {
+        faults.push(Diagnostic::fault(place(written.currency.span()), format!("the currency is `{currency}`")).expected("an ISO 4217 code such as GBP"));
+    }
+    let mut day = |d: &Spanned<Datetime>| {
+        let found = super::amounts::day(&d.get_ref().to_string());
+        if found.is_none() {
+            faults.push(Diagnostic::fault(place(d.span()), format!("`{}` is not a whole day", d.get_ref())).expected("a day such as 2024-04-08"));
+        }
+        found.unwrap_or(0)
     };
+    let (from, to) = (day(&written.covers.from), day(&written.covers.to));
     if from > to {
-        faults.push(Diagnostic::fault(whole, "`covers` ends before it starts").expected("`from` before `to`"));
+        faults.push(Diagnostic::fault(place(written.covers.to.span()), "`covers` ends before it starts").expected("`to` on or after `from`"));
     }
     // TOML tables come sorted by name; the order of the text decides which date is the first.
-    let mut dates: Vec<(String, String)> = written.dates.into_iter().collect();
-    dates.sort_by_key(|(name, _)| text.find(&format!("\n{name} ")).or_else(|| text.find(&format!("\n{name}="))));
+    let whole = written.dates.span();
+    let mut dates: Vec<_> = written.dates.into_inner().into_iter().collect();
+    dates.sort_by_key(|(name, _)| name.span().start);
     if dates.is_empty() {
-        faults.push(Diagnostic::fault(whole, "`dates` is empty").expected("at least one date, such as `assessment = \"first day of the period\"`"));
+        faults.push(Diagnostic::fault(place(whole), "`dates` is empty").expected("at least one date, such as `assessment = \"first day of the period\"`"));
+        return None;
     }
-    (faults.len() == before).then_some(Manifest {
-        title: written.title,
-        area: written.area,
-        currency: written.currency,
+    for (name, meaning) in &dates {
+        let word = name.get_ref();
+        let lower = word.bytes().all(|b| b.is_ascii_lowercase() || b.is_ascii_digit() || b == b'_');
+        let letter = word.starts_with(|c: char| c.is_ascii_lowercase());
+        if !lower || !letter || !super::token::can_name(word) {
+            faults.push(
+                Diagnostic::fault(place(name.span()), format!("`{word}` cannot name a date"))
+                    .expected("lower case letters, digits and `_`, a letter first, and no word of the language"),
+            );
+        }
+        if meaning.get_ref().trim().is_empty() {
+            faults.push(Diagnostic::fault(place(meaning.span()), format!("the date `{word}` has no meaning")).expected("what the date is, in a few words"));
+        }
+    }
+    Some(Manifest {
+        title: written.title.into_inner(),
+        area: written.area.into_inner(),
+        currency: written.currency.into_inner(),
         period,
         from,
         to,
-        dates,
+        date_spans: dates.iter().map(|(name, _)| place(name.span())).collect(),
+        dates: dates.into_iter().map(|(name, meaning)| (name.into_inner(), meaning.into_inner())).collect(),
     })
 }

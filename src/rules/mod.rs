@@ -18,9 +18,11 @@ mod lower_expr;
 mod manifest;
 mod pack;
 mod parser;
+mod tables;
 mod token;
 mod tree;
 mod types;
+mod used;
 
 pub use amounts::{day, day_text, decimal};
 pub use manifest::Manifest;

@@ -8,8 +8,8 @@ use super::types::{Period, Ty};
 use crate::diag::{Diagnostic, Severity};
 use crate::num::Fraction;
 use crate::program::{ItemKind, Program, Shape};
-use crate::source::{FileId, Sources};
-use std::collections::BTreeMap;
+use crate::source::{FileId, Sources, Span};
+use std::collections::{BTreeMap, BTreeSet};
 
 /// The texts of a pack, read by somebody else.
 #[derive(Clone, Debug)]
@@ -60,6 +60,17 @@ pub enum FactKind {
     Choice(Vec<String>),
 }
 
+impl FactKind {
+    /// Units to one of a value as lists hold it.
+    pub(super) fn units(&self) -> i64 {
+        match self {
+            FactKind::Money(Some(Period::Hour)) | FactKind::Rate => 10_000,
+            FactKind::Money(_) | FactKind::Hours | FactKind::Number => 100,
+            FactKind::Count | FactKind::Date | FactKind::YesNo | FactKind::Choice(_) => 1,
+        }
+    }
+}
+
 /// A fact that a list may hold.
 #[derive(Clone, Debug)]
 pub struct FactDecl {
@@ -74,6 +85,8 @@ pub struct FactDecl {
     /// The question that asks for it.
     pub ask: String,
     pub(super) ty: Ty,
+    /// Where it is declared; none for those that are always there.
+    pub(super) span: Option<Span>,
 }
 
 /// A kind of record.
@@ -85,6 +98,8 @@ pub struct KindDecl {
     pub owner: Option<usize>,
     /// Its facts.
     pub facts: Vec<FactDecl>,
+    /// Where it is declared; none for those that are always there.
+    pub(super) span: Option<Span>,
 }
 
 /// Position of the household among the kinds.
@@ -101,21 +116,27 @@ pub(super) const JOB: usize = 4;
 #[derive(Clone, Debug)]
 pub(super) struct ChoiceDecl {
     pub name: String,
+    pub span: Span,
     pub words: Vec<String>,
 }
 
 #[derive(Clone, Debug)]
 pub(super) struct ConversionDecl {
     pub name: String,
+    pub span: Span,
     pub from: Period,
     pub to: Period,
     pub times: Fraction,
-    pub law: String,
 }
 
 #[derive(Clone, Debug)]
 pub(super) struct TableDecl {
     pub name: String,
+    pub span: Span,
+    /// Its file.
+    pub file: FileId,
+    /// Where the first line of the file ends.
+    pub header: u32,
     /// None for a count.
     pub keys: Vec<Option<usize>>,
     pub gives: Ty,
@@ -158,9 +179,10 @@ pub fn check(texts: PackTexts) -> Result<Pack, (Sources, Vec<Diagnostic>)> {
     let parts: Vec<Part> =
         texts.rules.iter().map(|file| super::parser::parse(*file, &sources.get(*file).text, &mut faults)).collect();
     let Some(manifest) = manifest else { return Err((sources, faults)) };
+    let mut broken = BTreeSet::new();
     let amounts = texts
         .amounts
-        .map(|file| super::amounts::read(file, &sources.get(file).text, &manifest.currency, &mut faults))
+        .map(|file| super::amounts::read(file, &sources.get(file).text, &manifest.currency, &mut broken, &mut faults))
         .unwrap_or_default();
     let mut labels = BTreeMap::new();
     for (language, file) in &texts.labels {
@@ -169,10 +191,12 @@ pub fn check(texts: PackTexts) -> Result<Pack, (Sources, Vec<Diagnostic>)> {
     let table_texts: Vec<(String, FileId, String)> =
         texts.tables.iter().map(|(name, file)| (name.clone(), *file, sources.get(*file).text.clone())).collect();
     let clean_syntax = faults.is_empty();
-    let pack = super::declare::declare(manifest, parts, amounts, labels, &table_texts, &mut faults);
+    let pack = super::declare::declare(manifest, parts, amounts, labels, &table_texts, broken, &mut faults);
     // Unused names and circles would only echo earlier faults.
     if clean_syntax && faults.is_empty() {
         super::graph::check(&pack, &mut faults);
+        super::used::check(&pack, &mut faults);
+        super::labels::check(&pack, &texts.labels, &sources, &mut faults);
     }
     if faults.is_empty() {
         super::lower::probe(&pack, &mut faults);

@@ -1,7 +1,7 @@
 //! Tokens to statements. One token of lookahead; after a fault it goes on at the next statement, so
 //! that one reading reports every fault. Expressions are in `expressions`.
 
-use super::ast::{Band, FactStatement, Ident, Part, ScaleStep, Statement, StatementKind, StepLimit, TypeName};
+use super::ast::{Band, ExprKind, FactStatement, Ident, Part, ScaleStep, Statement, StatementKind, StepLimit, TypeName};
 use super::token::{STATEMENTS, Token, TokenKind, can_name};
 use crate::diag::{Diagnostic, nearest};
 use crate::num::Fraction;
@@ -17,7 +17,7 @@ pub(super) struct Parser<'a> {
     tokens: Vec<Token>,
     at: usize,
     pub(super) faults: &'a mut Vec<Diagnostic>,
-    /// Nesting of expressions, bounded so that no text can exhaust the stack.
+    /// How many values are open inside each other, bounded so that no text can exhaust the stack.
     pub(super) depth: usize,
 }
 
@@ -119,7 +119,10 @@ impl Parser<'_> {
         match &self.peek().kind {
             TokenKind::Text(text) => {
                 let text = text.clone();
-                self.next();
+                let span = self.next().span;
+                if text.trim().is_empty() {
+                    self.faults.push(Diagnostic::fault(span, "this text is empty").expected(what));
+                }
                 Ok(text)
             }
             _ => self.unexpected(what),
@@ -158,7 +161,7 @@ impl Parser<'_> {
     fn part(mut self, file: FileId) -> Part {
         let start = Span { file, start: 0, end: 0 };
         let mut part =
-            Part { title: String::new(), title_span: start, dated: None, law: String::new(), statements: Vec::new() };
+            Part { title: String::new(), title_span: start, dated: None, law: String::new(), statements: Vec::new(), broken: Vec::new() };
         let mut per = None;
         while self.peek().kind != TokenKind::End {
             let token = self.peek().clone();
@@ -188,7 +191,11 @@ impl Parser<'_> {
                 );
             }
             self.next();
+            let named = self.peek_word().map(str::to_owned);
             if self.statement(&keyword, token.span, &mut per, &mut part).is_err() {
+                if !["part", "law", "per", "band", "step", "hold"].contains(&keyword.as_str()) {
+                    part.broken.extend(named);
+                }
                 self.recover();
             }
         }
@@ -198,6 +205,9 @@ impl Parser<'_> {
     fn statement(&mut self, keyword: &str, start: Span, per: &mut Option<Ident>, part: &mut Part) -> Parsed<()> {
         let what = match keyword {
             "part" => {
+                if !part.title.is_empty() {
+                    self.twice(start, "part", "instrument");
+                }
                 part.title_span = self.peek().span;
                 part.title = self.text("the instrument's title as a text")?;
                 self.word("dated")?;
@@ -206,6 +216,9 @@ impl Parser<'_> {
                 return Ok(());
             }
             "law" => {
+                if !part.law.is_empty() {
+                    self.twice(start, "law", "law");
+                }
                 part.law = self.text("the law's name as a text")?;
                 return Ok(());
             }
@@ -279,6 +292,14 @@ impl Parser<'_> {
         Ok(())
     }
 
+    fn twice(&mut self, start: Span, keyword: &str, what: &str) {
+        self.faults.push(
+            Diagnostic::fault(start, format!("this file names its {what} already"))
+                .expected(format!("one `{keyword}` in a file"))
+                .hint("begin another file, and name it in `order.txt`"),
+        );
+    }
+
     fn fact(&mut self) -> Parsed<StatementKind> {
         let name = self.name("a name for the fact")?;
         self.word("of")?;
@@ -297,13 +318,26 @@ impl Parser<'_> {
         let default = if self.take_word("required") {
             None
         } else if self.take_word("default") {
-            Some(self.sum_expression()?)
+            Some(self.default()?)
         } else {
             return self.unexpected("`required` or `default`");
         };
         self.word("ask")?;
         let ask = self.text("the question as a text")?;
         Ok(StatementKind::Fact(Box::new(FactStatement { name, of, ty, range, default, ask })))
+    }
+
+    /// A literal, which may be below zero, or a word of a choice.
+    fn default(&mut self) -> Parsed<super::ast::Expr> {
+        if !self.at_sign('-') {
+            return self.value();
+        }
+        let start = self.next().span;
+        let value = -self.number()?;
+        let percent = self.take_sign('%');
+        let kind = if percent { ExprKind::Percent(value / Fraction::whole(100)) } else { ExprKind::Number(value) };
+        let span = start.to(self.previous_span());
+        self.made(kind, span)
     }
 
     fn conversion(&mut self) -> Parsed<StatementKind> {
@@ -324,8 +358,9 @@ impl Parser<'_> {
             times = times / by;
         }
         self.word("see")?;
-        let law = self.text("a law reference as a text")?;
-        Ok(StatementKind::Conversion { name, from, to, times, law })
+        // The reference is for whoever reads the pack.
+        self.text("a law reference as a text")?;
+        Ok(StatementKind::Conversion { name, from, to, times })
     }
 
     fn item(&mut self) -> Parsed<StatementKind> {
@@ -398,5 +433,4 @@ impl Parser<'_> {
         };
         Ok(TypeName { word, period })
     }
-
 }

@@ -45,7 +45,7 @@ pub(super) enum What {
     Name { target: Target, kind: usize, level: usize, text: String },
     /// The same of the partner; `failing` where there is none.
     Partner { target: Target, level: usize, failing: Option<Box<Node>>, text: String },
-    /// A value of a table, whose rows are picked by a date of the pack.
+    /// A value of a table on a date of the pack.
     Lookup { table: usize, dated: usize, keys: Vec<Node> },
     Where { when: Box<Node>, give: Box<Node>, otherwise: Box<Node> },
     Extreme { larger: bool, list: Vec<Node> },
@@ -104,6 +104,7 @@ pub(super) struct Definition {
 #[derive(Clone, Debug)]
 pub(super) struct BandsDecl {
     pub name: String,
+    pub span: Span,
     pub kind: usize,
     pub ty: Ty,
     pub bands: Vec<(Node, Option<Node>)>,
@@ -119,6 +120,7 @@ pub(super) enum Limit {
 #[derive(Clone, Debug)]
 pub(super) struct ScaleDecl {
     pub name: String,
+    pub span: Span,
     pub kind: usize,
     pub ty: Ty,
     pub gives: Ty,
@@ -136,44 +138,77 @@ pub(super) struct Condition {
 }
 
 impl Node {
+    /// How many expressions stand inside each other, itself included.
+    pub(super) fn height(&self) -> usize {
+        let mut below = 0;
+        self.inner(&mut |node| below = below.max(node.height()));
+        below + 1
+    }
+
     /// Calls back for this node and every node below it.
     pub(super) fn visit<'a>(&'a self, call: &mut dyn FnMut(&'a Node)) {
         call(self);
+        self.inner(&mut |node| node.visit(call));
+    }
+
+    /// Calls back for every node right below this one.
+    fn inner<'a>(&'a self, call: &mut dyn FnMut(&'a Node)) {
         match &self.what {
             What::Fixed(_) | What::Amount { .. } | What::Missing { .. } | What::Dated(_) | What::Name { .. } => {}
             What::Partner { failing, .. } => {
                 if let Some(failing) = failing {
-                    failing.visit(call);
+                    call(failing);
                 }
             }
-            What::Lookup { keys: list, .. } | What::Extreme { list, .. } => list.iter().for_each(|n| n.visit(call)),
-            What::Where { when, give, otherwise } => [when, give, otherwise].iter().for_each(|n| n.visit(call)),
-            What::Sum(over) | What::Count(over) | What::Any { over, .. } => over.iter().for_each(|o| o.visit(call)),
+            What::Lookup { keys: list, .. } | What::Extreme { list, .. } => list.iter().for_each(call),
+            What::Where { when, give, otherwise } => [when, give, otherwise].into_iter().for_each(|n| call(n)),
+            What::Sum(over) | What::Count(over) | What::Any { over, .. } => over.iter().flat_map(Over::nodes).for_each(call),
             What::First { over, failing, .. } => {
-                over.visit(call);
-                failing.visit(call);
+                over.nodes().for_each(&mut *call);
+                call(failing);
             }
-            What::Place { over, .. } => over.visit(call),
+            What::Place { over, .. } => over.nodes().for_each(call),
             What::Years { from: a, to: b }
             | What::Binary { left: a, right: b, .. }
             | What::DivideRounded { of: a, by: b, .. }
             | What::Compare { left: a, right: b, .. }
             | What::Both(a, b)
             | What::Either(a, b) => {
-                a.visit(call);
-                b.visit(call);
+                call(a);
+                call(b);
             }
             What::Convert { of, .. } | What::Round { of, .. } | What::Charge { of, .. } | What::PlaceOn { of, .. } | What::Not(of) => {
-                of.visit(call);
+                call(of);
             }
         }
     }
 }
 
 impl Over {
-    fn visit<'a>(&'a self, call: &mut dyn FnMut(&'a Node)) {
-        for node in [&self.with, &self.body, &self.by].into_iter().flatten() {
-            node.visit(call);
-        }
+    fn nodes(&self) -> impl Iterator<Item = &Node> {
+        [&self.with, &self.body, &self.by].into_iter().flatten()
+    }
+}
+
+impl BandsDecl {
+    /// Every expression of its bands.
+    pub(super) fn nodes(&self) -> Vec<&Node> {
+        self.bands.iter().flat_map(|(rate, limit)| std::iter::once(rate).chain(limit)).collect()
+    }
+}
+
+impl ScaleDecl {
+    /// Every expression of its steps.
+    pub(super) fn nodes(&self) -> Vec<&Node> {
+        self.steps
+            .iter()
+            .flat_map(|(value, limit)| {
+                let limit = match limit {
+                    Limit::UpTo(limit) | Limit::Below(limit) => Some(limit),
+                    Limit::Beyond => None,
+                };
+                std::iter::once(value).chain(limit)
+            })
+            .collect()
     }
 }

@@ -4,7 +4,7 @@
 
 use super::fonts::{Weight, width};
 use super::money::Currency;
-use super::place::{Placer, Rect};
+use super::place::{Ask, Place, Placer, Rect, place_all};
 use crate::num::Money;
 use serde::Serialize;
 
@@ -21,6 +21,8 @@ pub struct Chart {
     pub height: i64,
     /// Left, top, right and bottom of the plot.
     pub plot: [i64; 4],
+    /// How far the words of a tick of the sums stand above it: half a line.
+    pub lift: i64,
     /// Where zero lies, if inside the plot and not its bottom.
     pub zero: Vec<i64>,
     /// Ticks of the hours, from left to right.
@@ -48,7 +50,7 @@ pub struct Chart {
 pub struct Tick {
     /// Place along the axis.
     pub at: i64,
-    /// Left edge of the words (hours) or right edge (sums).
+    /// Left edge of the words.
     pub edge: i64,
     /// The words.
     pub text: String,
@@ -155,6 +157,9 @@ pub(super) struct Plot<'a> {
     pub size: f64,
 }
 
+/// Height of a line of words, in sizes of print.
+const LINE: f64 = 1.25;
+
 /// A place on paper in hundredths of a point.
 pub(super) fn hundredths(points: f64) -> i64 {
     (points * 100.0).round() as i64
@@ -224,7 +229,7 @@ fn hours_step(last: f64) -> f64 {
 
 /// Draws the plot.
 pub(super) fn draw(plot: &Plot<'_>) -> Chart {
-    let (size, line) = (plot.size, plot.size * 1.25);
+    let (size, line) = (plot.size, plot.size * LINE);
     let (bottom_sum, top_sum, step) = sum_range(plot);
     let last = plot
         .lines
@@ -247,7 +252,7 @@ pub(super) fn draw(plot: &Plot<'_>) -> Chart {
         .iter()
         .map(|(_, text)| width(text, Weight::Regular, size))
         .fold(0.0, f64::max);
-    let height = 130.0 + size * 6.0;
+    let height = 62.0 + size * 11.6;
     let scale = Scale {
         hours: (0.0, last),
         sums: (bottom_sum, top_sum),
@@ -264,12 +269,13 @@ pub(super) fn draw(plot: &Plot<'_>) -> Chart {
         alt: plot.alt.clone(),
         width: hundredths(plot.width),
         height: hundredths(height),
+        lift: hundredths(size * LINE / 2.0),
         plot: [area.left, area.top, area.right, area.bottom].map(hundredths),
         ..Chart::default()
     };
     for (sum, text) in sum_words {
         let at = scale.y(sum);
-        let edge = hundredths(margin);
+        let edge = hundredths(margin - width(&text, Weight::Regular, size));
         chart.sum_ticks.push(Tick {
             at: hundredths(at),
             edge,
@@ -365,66 +371,92 @@ fn draw_marks(plot: &Plot<'_>, scale: &Scale, chart: &mut Chart, placer: &mut Pl
             },
         });
     }
-    for mark in &plot.marks {
+    let mut wanted: Vec<Wanted> = vec![];
+    for mark in plot.marks.iter().filter(|mark| !mark.label.is_empty()) {
         let target = (scale.x(mark.hours), scale.y(mark.sum));
-        write(&mark.label, Weight::Bold, target, plot.size, chart, placer);
+        wanted.push(Wanted::new(
+            mark.label.clone(),
+            Weight::Bold,
+            target,
+            plot.size,
+        ));
     }
     for drop in &plot.drops {
-        let middle = (scale.y(drop.sums.0) + scale.y(drop.sums.1)) / 2.0;
+        let middle = f64::midpoint(scale.y(drop.sums.0), scale.y(drop.sums.1));
         let target = (scale.x(drop.hours), middle);
-        let label = [drop.label.clone()];
-        write(&label, Weight::Regular, target, plot.size, chart, placer);
+        let label = vec![drop.label.clone()];
+        wanted.push(Wanted::new(label, Weight::Regular, target, plot.size));
     }
     for band in plot.bands.iter().filter(|band| !band.label.is_empty()) {
-        let middle = scale.x((band.hours.0 + band.hours.1) / 2.0);
-        let target = (middle, scale.plot.bottom - plot.size);
-        let label = [band.label.clone()];
-        write(&label, Weight::Regular, target, plot.size, chart, placer);
+        let (left, right) = (scale.x(band.hours.0), scale.x(band.hours.1));
+        let target = (f64::midpoint(left, right), scale.plot.bottom - plot.size);
+        let label = vec![band.label.clone()];
+        let label = Wanted::new(label, Weight::Regular, target, plot.size);
+        if label.size.0 < right - left {
+            wanted.push(label);
+        }
+    }
+    let sizes: Vec<Ask> = wanted
+        .iter()
+        .map(|label| Ask {
+            target: label.target,
+            size: label.size,
+        })
+        .collect();
+    for (label, place) in wanted.iter().zip(place_all(placer, &sizes)) {
+        write(label, &place, plot.size, chart);
     }
 }
 
-/// Places one label and its leader.
-fn write(
-    lines: &[String],
+/// A label that wants a place.
+struct Wanted {
+    lines: Vec<String>,
     first: Weight,
     target: (f64, f64),
-    size: f64,
-    chart: &mut Chart,
-    placer: &mut Placer,
-) {
-    if lines.is_empty() {
-        return;
+    size: (f64, f64),
+}
+
+impl Wanted {
+    fn new(lines: Vec<String>, first: Weight, target: (f64, f64), size: f64) -> Wanted {
+        let mut label = Wanted {
+            lines,
+            first,
+            target,
+            size: (0.0, 0.0),
+        };
+        let widths = label.lines.iter().enumerate();
+        let widest = widths
+            .map(|(position, text)| width(text, label.weight(position), size))
+            .fold(0.0, f64::max);
+        label.size = (widest, size * LINE * label.lines.len() as f64);
+        label
     }
-    let line = size * 1.25;
-    let weight = |position: usize| {
+
+    fn weight(&self, position: usize) -> Weight {
         if position == 0 {
-            first
+            self.first
         } else {
             Weight::Regular
         }
-    };
-    let widest = lines
-        .iter()
-        .enumerate()
-        .map(|(position, text)| width(text, weight(position), size))
-        .fold(0.0, f64::max);
-    let Some((at, leader)) = placer.place(target, widest, line * lines.len() as f64) else {
-        return;
-    };
-    if let Some((from, to)) = leader {
-        placer.avoid_stroke(from, to);
+    }
+}
+
+/// Draws one label and its leader.
+fn write(label: &Wanted, place: &Place, size: f64, chart: &mut Chart) {
+    if let Some((from, to)) = place.leader {
         chart
             .leaders
             .push([from.0, from.1, to.0, to.1].map(hundredths));
     }
-    let ground = [at.left - 1.5, at.top, widest + 3.0, at.bottom - at.top];
+    let at = place.rect;
+    let ground = [at.left - 1.5, at.top, label.size.0 + 3.0, label.size.1];
     chart.grounds.push(ground.map(hundredths));
-    for (position, text) in lines.iter().enumerate() {
+    for (position, text) in label.lines.iter().enumerate() {
         chart.labels.push(Label {
             x: hundredths(at.left),
-            y: hundredths(at.top + position as f64 * line),
+            y: hundredths(at.top + position as f64 * size * LINE),
             text: text.clone(),
-            weight: u8::from(weight(position) == Weight::Bold),
+            weight: u8::from(label.weight(position) == Weight::Bold),
         });
     }
 }

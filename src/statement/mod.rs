@@ -6,6 +6,8 @@
 //! characters that the fonts cannot set, undefined names, and values where no text can stand.
 //! Reads no file, clock or environment. Imports `measures`, `diag`, `num`.
 
+#![expect(clippy::float_arithmetic, reason = "places on a page are floats; sums of money never are")]
+
 mod bars;
 mod build;
 mod chart;
@@ -21,7 +23,7 @@ mod view;
 mod world;
 
 pub use bars::{BarPart, Bars};
-pub use build::letter_view;
+pub use build::{Detail, letter_view};
 pub use chart::{Chart, Dot, Label, Run, Tick};
 pub use context::{LetterContext, LetterDelivery, Office, missing_labels};
 pub use error::StatementError;

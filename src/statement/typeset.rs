@@ -1,5 +1,6 @@
 //! From a view to PDF bytes. A [`Typesetter`] is made once and used for many letters.
 
+use super::build::Detail;
 use super::context::LetterContext;
 use super::error::StatementError;
 use super::templates::{Filler, TemplateSet, check_glyphs};
@@ -8,6 +9,7 @@ use super::view::LetterView;
 use super::world::Desk;
 use chrono::NaiveDate;
 use std::sync::Arc;
+use typst::layout::{Frame, FrameItem};
 
 /// The template of the client letter.
 const CLIENT: &str = "client/letter.typ";
@@ -78,9 +80,55 @@ impl Typesetter {
     /// As for [`Typesetter::letter`].
     pub fn source(&self, view: &LetterView, texts: &Arc<Texts>) -> Result<String, StatementError> {
         let value = minijinja::Value::from(minijinja::value::Serde(view));
-        check_glyphs(&value)?;
-        let source = self.filler.fill(CLIENT, &value, texts)?;
+        self.source_of(CLIENT, &value, texts)
+    }
+
+    /// The Typst source of any filled template.
+    ///
+    /// # Errors
+    /// As for [`Typesetter::any`].
+    pub fn source_of(
+        &self,
+        template: &str,
+        view: &minijinja::Value,
+        texts: &Arc<Texts>,
+    ) -> Result<String, StatementError> {
+        check_glyphs(view)?;
+        let source = self.filler.fill(template, view, texts)?;
         Ok(source.text().to_owned())
+    }
+
+    /// The words of a client letter as they are set, one text a page, in reading order.
+    ///
+    /// # Errors
+    /// As for [`Typesetter::letter`].
+    pub fn words(
+        &self,
+        view: &LetterView,
+        texts: &Arc<Texts>,
+    ) -> Result<Vec<String>, StatementError> {
+        let value = minijinja::Value::from(minijinja::value::Serde(view));
+        self.words_of(CLIENT, &value, texts)
+    }
+
+    /// The words of any filled template, one text a page.
+    ///
+    /// # Errors
+    /// As for [`Typesetter::any`].
+    pub fn words_of(
+        &self,
+        template: &str,
+        view: &minijinja::Value,
+        texts: &Arc<Texts>,
+    ) -> Result<Vec<String>, StatementError> {
+        check_glyphs(view)?;
+        let source = self.filler.fill(template, view, texts)?;
+        let document = self.desk.pages(source)?;
+        Ok(document
+            .pages()
+            .iter()
+            .map(|page| frame_text(&page.frame))
+            .collect())
     }
 
     /// Fills one template with any view and typesets it.
@@ -124,7 +172,27 @@ impl Typesetter {
     }
 }
 
-/// Builds and typesets one client letter.
+/// All text of a frame, a space between its pieces.
+fn frame_text(frame: &Frame) -> String {
+    let mut out = String::new();
+    for (_, item) in frame.items() {
+        let piece = match item {
+            FrameItem::Group(group) => frame_text(&group.frame),
+            FrameItem::Text(text) => text.text.to_string(),
+            FrameItem::Shape(..)
+            | FrameItem::Image(..)
+            | FrameItem::Link(..)
+            | FrameItem::Tag(..) => continue,
+        };
+        if !out.is_empty() {
+            out.push(' ');
+        }
+        out.push_str(&piece);
+    }
+    out
+}
+
+/// Builds and typesets one client letter; where it would be longer than [`PAGE_LIMIT`] pages, with less detail.
 ///
 /// # Errors
 /// As for [`super::letter_view`] and [`Typesetter::letter`].
@@ -133,6 +201,12 @@ pub fn typeset(
     assessment: &crate::measures::Assessment,
     context: &LetterContext,
 ) -> Result<Typeset, StatementError> {
-    let view = super::letter_view(assessment, context)?;
-    typesetter.letter(&view, &context.texts, context.issued)
+    let view = super::letter_view(assessment, context, Detail::Full)?;
+    match typesetter.letter(&view, &context.texts, context.issued) {
+        Err(StatementError::TooLong { .. }) => {
+            let view = super::letter_view(assessment, context, Detail::Brief)?;
+            typesetter.letter(&view, &context.texts, context.issued)
+        }
+        other => other,
+    }
 }

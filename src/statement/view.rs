@@ -60,6 +60,22 @@ pub struct Part {
     pub kind: PartKind,
     /// Paragraphs or points of a list.
     pub lines: Vec<String>,
+    /// 1 where the part is short enough to stay on one page, else 0.
+    pub keep: u8,
+}
+
+impl Part {
+    /// A part; it stays on one page where its words are few for their size of print.
+    pub(super) fn new(heading: String, kind: PartKind, lines: Vec<String>, print_size: u8) -> Part {
+        let letters: usize = lines.iter().map(|line| line.chars().count() + 20).sum();
+        let keep = u8::from(letters * usize::from(print_size).pow(2) < 110_000);
+        Part {
+            heading,
+            kind,
+            lines,
+            keep,
+        }
+    }
 }
 
 /// How the lines of a part are set.
@@ -91,7 +107,9 @@ pub struct Section {
     pub turns_heading: String,
     /// Turning points in words, at most five.
     pub turns: Vec<TurnText>,
-    /// That there are more, or that there is none; may be empty.
+    /// That nothing turns between today and the steps; may be empty.
+    pub turns_lead: String,
+    /// That there are more; may be empty.
     pub turns_note: String,
     /// Heading of the table.
     pub table_heading: String,

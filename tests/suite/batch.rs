@@ -62,6 +62,10 @@ impl Assessor for Pretend {
 
 /// In a worker process: serves, and ends the process. Otherwise: one household goes through such a process.
 #[test]
+#[expect(
+    clippy::disallowed_methods,
+    reason = "the environment tells the worker's process from the test's"
+)]
 fn pretend_worker() {
     if let Ok(role) = std::env::var(ROLE) {
         let code = serve(|payload: &[u8]| {

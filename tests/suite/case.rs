@@ -1,5 +1,6 @@
 //! Case lists against a small made-up schema: what spreadsheets write, every fault's own message, order, single households, blank forms.
 
+mod demo;
 mod faults;
 mod forms;
 mod properties;

@@ -1,5 +1,6 @@
 //! The closing parts: what is in the sum, the facts, unconfirmed amounts, what to report, next steps.
 
+use super::Detail;
 use super::words::{Words, listed};
 use crate::measures::{FactUse, ItemKind};
 use crate::statement::error::StatementError;
@@ -84,11 +85,7 @@ fn add(
     lines: Vec<String>,
 ) -> Result<(), StatementError> {
     if !lines.is_empty() {
-        parts.push(Part {
-            heading: words.plain(heading)?,
-            kind,
-            lines,
-        });
+        parts.push(words.part(heading, kind, lines)?);
     }
     Ok(())
 }
@@ -176,8 +173,15 @@ fn facts(words: &Words<'_>) -> Result<Vec<String>, StatementError> {
             names.push(name);
         }
     }
-    if !names.is_empty() {
-        lines.push(words.say("facts.assumed_none", &[("list", &listed(&names))])?);
+    match words.detail {
+        _ if names.is_empty() => {}
+        Detail::Full => {
+            lines.push(words.say("facts.assumed_none", &[("list", &listed(&names))])?);
+        }
+        Detail::Brief => {
+            let count = names.len().to_string();
+            lines.push(words.say("facts.assumed_count", &[("count", &count)])?);
+        }
     }
     let missing: Vec<&FactUse> = shown()
         .filter(|fact| !matches!(fact.known, 's' | 't' | 'a'))

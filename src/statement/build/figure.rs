@@ -3,7 +3,7 @@
 use super::section::Step;
 use super::turns::{in_range, jump};
 use super::words::{Measure, Words, hours_text};
-use crate::measures::{BudgetLine, EarnerResult, ItemKind, Segment, Trap, Turn, TurnKind};
+use crate::measures::{BudgetLine, EarnerResult, ItemKind, Segment, Turn, TurnKind};
 use crate::num::{Direction, Fraction, Hours, Money, divide_rounded};
 use crate::statement::bars::{self, Bar, Bars, Goes};
 use crate::statement::chart::{self, Band, Chart, Drop, Mark, MarkKind, Plot, Stretch, wrapped};
@@ -59,7 +59,6 @@ pub(super) fn chart(
         }
     }
     let drops = named_jumps(main, steps, earner, measure);
-    let shaded: Vec<&Trap> = main.traps.iter().collect();
     let mut named = vec![];
     for turn in &drops {
         let size = words.currency.whole(jump(turn, measure));
@@ -71,16 +70,11 @@ pub(super) fn chart(
         });
     }
     let mut bands = vec![];
-    for trap in &shaded {
+    for trap in &main.traps {
         let to = trap.to.map_or(place(main.up_to.as_fraction()), place);
         bands.push(Band {
             hours: (place(trap.from), to),
-            label: if bands.len() < 2 {
-                let at = hours_text(hours(trap.from));
-                words.say("chart.band", &[("hours", &at)])?
-            } else {
-                String::new()
-            },
+            label: words.say("chart.band", &[("hours", &hours_text(hours(trap.from)))])?,
         });
     }
     let plot = Plot {
@@ -132,6 +126,7 @@ fn marks(
     size: f64,
 ) -> Result<Vec<Mark>, StatementError> {
     let today = Words::today(earner);
+    let main_wage = earner.lines.first().map(|line| line.terms.wage);
     let said = |at: Hours, sum: Money| {
         let values = [
             ("hours", hours_text(at)),
@@ -146,14 +141,17 @@ fn marks(
         kind: MarkKind::NoWork,
         label: vec![],
     }];
+    let sum = words.currency.whole(measure.at(today));
+    let today_words = if earner.has_job {
+        said(today.hours, measure.at(today))?
+    } else {
+        words.say("chart.today_no_work", &[("sum", &sum)])?
+    };
     let today_mark = Mark {
         hours: place(today.hours.as_fraction()),
         sum: units(measure.at(today)),
         kind: MarkKind::Today,
-        label: vec![
-            words.plain("chart.today")?,
-            said(today.hours, measure.at(today))?,
-        ],
+        label: vec![words.plain("chart.today")?, today_words],
     };
     if earner.has_job {
         marks.push(today_mark);
@@ -163,7 +161,18 @@ fn marks(
     for step in steps {
         let mut label = wrapped(&step.name, Weight::Bold, size, size * 13.0);
         label.truncate(2);
-        label.push(said(step.to.hours, measure.at(step.to))?);
+        let other_wage = main_wage.is_some_and(|wage| wage != step.line.terms.wage);
+        label.push(if other_wage {
+            let (at, wage) = (
+                hours_text(step.to.hours),
+                words.currency.wage(step.line.terms.wage),
+            );
+            let sum = words.currency.whole(measure.at(step.to));
+            let values = [("hours", at.as_str()), ("wage", &wage), ("sum", &sum)];
+            words.say("chart.hours_wage_sum", &values)?
+        } else {
+            said(step.to.hours, measure.at(step.to))?
+        });
         marks.push(Mark {
             hours: place(step.to.hours.as_fraction()),
             sum: units(measure.at(step.to)),
@@ -227,8 +236,13 @@ fn title(
     match measure.rate_at(today) {
         Some(rate) if rate < Fraction::ONE => {
             let at = hours_text(today.hours);
-            let ten = words.currency.exact(kept_of_ten(rate));
-            words.say("chart.title_slope", &[("hours", &at), ("ten", &ten)])
+            let ten = words.currency.short(kept_of_ten(rate));
+            let key = if earner.has_job {
+                "chart.title_slope"
+            } else {
+                "chart.title_slope_start"
+            };
+            words.say(key, &[("hours", &at), ("ten", &ten)])
         }
         Some(_) | None => words.plain("chart.title_plain"),
     }
@@ -340,7 +354,7 @@ pub(super) fn bars(
         position == 1 || *to - *from >= LEAST_BAR
     });
     found.truncate(BARS);
-    if found.is_empty() {
+    if found.iter().all(|(_, _, parts)| parts.len() < 2) {
         return Ok(Bars::default());
     }
     let mut bars = vec![];

@@ -15,6 +15,16 @@ use super::view::{LetterView, Particular};
 use crate::measures::{Assessment, EarnerResult};
 use words::Words;
 
+/// How much a letter says.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Detail {
+    /// Everything.
+    Full,
+    /// For letters that would be too long: the chart of the leading person alone, no bars, three turning points
+    /// a person, and of the facts that were assumed to be none only how many they are.
+    Brief,
+}
+
 /// Builds the view of a client letter.
 ///
 /// # Errors
@@ -22,12 +32,13 @@ use words::Words;
 pub fn letter_view(
     assessment: &Assessment,
     context: &LetterContext,
+    detail: Detail,
 ) -> Result<LetterView, StatementError> {
-    let words = Words::new(assessment, context)?;
+    let words = Words::new(assessment, context, detail)?;
     let earners = leading_first(assessment, context);
     let mut sections = vec![];
-    for earner in &earners {
-        sections.push(section::section(&words, earner)?);
+    for (place, earner) in earners.iter().enumerate() {
+        sections.push(section::section(&words, earner, place)?);
     }
     let until = words.day(context.rules_until);
     let assessed = words.day(context.assessed);

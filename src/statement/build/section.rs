@@ -1,14 +1,17 @@
 //! One earner's section: first answers, chart, bars, turning points, table, passported help, the way back.
 
+use super::Detail;
 use super::figure;
 use super::table;
 use super::turns;
 use super::words::{Measure, Words, hours_text, listed};
 use crate::measures::{BudgetLine, EarnerResult, ItemKind, OfferMeasures, Point};
 use crate::num::{Fraction, Hours, Money};
+use crate::statement::bars::Bars;
+use crate::statement::chart::Chart;
 use crate::statement::error::StatementError;
 use crate::statement::money::{kept_of_ten, readable};
-use crate::statement::view::{Answer, Part, PartKind, Section};
+use crate::statement::view::{Answer, PartKind, Section};
 
 /// A named step: from today to a point of a line.
 pub(super) struct Step<'a> {
@@ -60,8 +63,12 @@ pub(super) fn steps<'a>(
     Ok(steps)
 }
 
-/// Builds the section.
-pub(super) fn section(words: &Words<'_>, earner: &EarnerResult) -> Result<Section, StatementError> {
+/// Builds the section that has this place in the letter, counted from 0.
+pub(super) fn section(
+    words: &Words<'_>,
+    earner: &EarnerResult,
+    place: usize,
+) -> Result<Section, StatementError> {
     let measure = words.measure(earner);
     let steps = steps(words, earner)?;
     let mut answers = vec![];
@@ -75,17 +82,10 @@ pub(super) fn section(words: &Words<'_>, earner: &EarnerResult) -> Result<Sectio
     let mut parts = vec![];
     let help = passported(words, earner, &steps)?;
     if !help.is_empty() {
-        parts.push(Part {
-            heading: words.plain("passport.heading")?,
-            kind: PartKind::Paragraphs,
-            lines: help,
-        });
+        parts.push(words.part("passport.heading", PartKind::Paragraphs, help)?);
     }
-    parts.push(Part {
-        heading: words.plain("back.heading")?,
-        kind: PartKind::Paragraphs,
-        lines: way_back(words, earner, measure)?,
-    });
+    let back = way_back(words, earner, measure)?;
+    parts.push(words.part("back.heading", PartKind::Paragraphs, back)?);
     Ok(Section {
         heading: if words.by_name(earner) {
             words.say("section.named", &[("name", &earner.name)])?
@@ -97,10 +97,19 @@ pub(super) fn section(words: &Words<'_>, earner: &EarnerResult) -> Result<Sectio
             Measure::Net => String::new(),
             Measure::AfterCosts => words.plain("measure.after_costs")?,
         },
-        chart: figure::chart(words, earner, &steps, measure)?,
-        bars: figure::bars(words, earner, &steps, measure)?,
+        chart: match (words.detail, place) {
+            (Detail::Full, _) | (Detail::Brief, 0) => {
+                figure::chart(words, earner, &steps, measure)?
+            }
+            (Detail::Brief, _) => Chart::default(),
+        },
+        bars: match words.detail {
+            Detail::Full => figure::bars(words, earner, &steps, measure)?,
+            Detail::Brief => Bars::default(),
+        },
         turns_heading: words.plain("turns.heading")?,
         turns: turns.texts,
+        turns_lead: turns.lead,
         turns_note: turns.note,
         table_heading: words.plain("table.heading")?,
         tables: table::tables(words, earner, &steps)?,
@@ -149,7 +158,7 @@ fn detail(
     } else {
         measure.rate_at(step.to).map(kept_of_ten)
     };
-    let ten = ten.map(|sum| words.currency.exact(sum)).unwrap_or_default();
+    let ten = ten.map(|sum| words.currency.short(sum)).unwrap_or_default();
     let key = match (earner.has_job, step.offer.is_some(), rise.0) {
         (false, _, _) if ten.is_empty() => "detail_start_plain".to_owned(),
         (false, _, _) => format!("detail_start{named}"),

@@ -1,5 +1,6 @@
 //! Turning points in words: at most five, falls and traps between today and the steps first.
 
+use super::Detail;
 use super::section::Step;
 use super::words::{Measure, Words, hours_text, listed};
 use crate::measures::{BudgetLine, EarnerResult, ItemKind, NoGain, Segment, Trap, Turn, TurnKind};
@@ -10,6 +11,8 @@ use crate::statement::view::TurnText;
 
 /// Turning points that a letter prints at most.
 const MOST: usize = 5;
+/// Turning points of least weight are printed up to this many.
+const FILL: usize = 3;
 /// Effects named at one turning point at most.
 const EFFECTS: usize = 3;
 /// The least jump that is worth a line, in minor units.
@@ -21,7 +24,9 @@ const LEAST_SLOPE: i64 = 5;
 pub(super) struct Turns {
     /// The chosen ones, by hours.
     pub texts: Vec<TurnText>,
-    /// That there are more, or none; may be empty.
+    /// That nothing turns between today and the steps; may be empty.
+    pub lead: String,
+    /// That there are more; may be empty.
     pub note: String,
 }
 
@@ -75,6 +80,7 @@ pub(super) fn turns(
     let Some(main) = earner.lines.first() else {
         return Ok(Turns {
             texts: vec![],
+            lead: String::new(),
             note: String::new(),
         });
     };
@@ -96,19 +102,32 @@ pub(super) fn turns(
     on_offers(words, main, steps, range, measure, &mut candidates)?;
     let all = candidates.len();
     candidates.sort_by(|a, b| (a.rank, a.away, a.at).cmp(&(b.rank, b.away, b.at)));
-    candidates.truncate(MOST);
+    candidates.truncate(match words.detail {
+        Detail::Full => MOST,
+        Detail::Brief => FILL,
+    });
+    let mut position = 0;
+    candidates.retain(|found| {
+        position += 1;
+        found.rank < Rank::Beyond || position <= FILL
+    });
     let on_the_way = candidates
         .iter()
         .any(|found| found.rank <= Rank::SlopeOnTheWay);
     candidates.sort_by(|a, b| a.at.cmp(&b.at));
+    let lead = if on_the_way {
+        String::new()
+    } else {
+        words.plain("turns.none")?
+    };
     let note = match all - candidates.len() {
-        0 if !on_the_way => words.plain("turns.none")?,
         0 => String::new(),
         1 => words.plain("turns.more_one")?,
         more => words.say("turns.more", &[("count", &more.to_string())])?,
     };
     Ok(Turns {
         texts: candidates.into_iter().map(|found| found.text).collect(),
+        lead,
         note,
     })
 }
@@ -207,7 +226,7 @@ fn slope(
     words: &Words<'_>,
     slopes: (Option<Money>, Option<Money>),
 ) -> Result<String, StatementError> {
-    let exact = |sum: Money| words.currency.exact(sum);
+    let exact = |sum: Money| words.currency.short(sum);
     match slopes {
         (Some(before), Some(after)) if after.0 < 0 => words.say(
             "turns.slope_loses",
@@ -411,9 +430,10 @@ fn on_offers(
             jump(turn, measure).0 <= -LEAST_JUMP
                 && turn.hours >= range.0
                 && turn.hours <= step.to.hours
-                && !main.turns.iter().any(|known| {
-                    known.hours == turn.hours && jump(known, measure).0 <= -LEAST_JUMP
-                })
+                && !main
+                    .turns
+                    .iter()
+                    .any(|known| known.hours == turn.hours && jump(known, measure).0 <= -LEAST_JUMP)
         });
         for turn in falls {
             let sum = words.currency.short(-jump(turn, measure));

@@ -1,10 +1,12 @@
 //! Names and numbers as a letter says them.
 
+use super::Detail;
 use crate::measures::{Assessment, EarnerResult, ItemKind, Point, Segment};
 use crate::num::{Fraction, Hours, Money};
 use crate::statement::context::LetterContext;
 use crate::statement::error::StatementError;
 use crate::statement::money::{Currency, day, readable};
+use crate::statement::view::{Part, PartKind};
 use chrono::NaiveDate;
 
 /// Which income a section speaks of.
@@ -56,6 +58,8 @@ pub(super) struct Words<'a> {
     pub assessment: &'a Assessment,
     /// The run, the pack and the delivery.
     pub context: &'a LetterContext,
+    /// How much is said.
+    pub detail: Detail,
     /// How sums are written.
     pub currency: Currency,
     /// The word for the statement period.
@@ -68,6 +72,7 @@ impl<'a> Words<'a> {
     pub fn new(
         assessment: &'a Assessment,
         context: &'a LetterContext,
+        detail: Detail,
     ) -> Result<Words<'a>, StatementError> {
         let texts = &context.texts;
         let key = format!("period.{}", context.period);
@@ -77,6 +82,7 @@ impl<'a> Words<'a> {
         Ok(Words {
             assessment,
             context,
+            detail,
             currency: Currency::of(&context.currency),
             period: texts.say(&key, &[])?,
             months,
@@ -93,6 +99,17 @@ impl<'a> Words<'a> {
     /// A fixed text without values.
     pub fn plain(&self, key: &str) -> Result<String, StatementError> {
         self.say(key, &[])
+    }
+
+    /// A part with a fixed heading.
+    pub fn part(
+        &self,
+        heading: &str,
+        kind: PartKind,
+        lines: Vec<String>,
+    ) -> Result<Part, StatementError> {
+        let size = self.context.delivery.print_size.max(12);
+        Ok(Part::new(self.plain(heading)?, kind, lines, size))
     }
 
     /// A label of the pack, if it has one.

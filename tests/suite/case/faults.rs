@@ -55,11 +55,11 @@ fn values() {
     );
     h(
         "A1,0,1,privat,",
-        "column tenure: found `privat`, an unknown choice; expected `none`, `private` or `social`; did you mean `private`?",
+        "column tenure: found `privat`, an unknown tenure; expected `none`, `private` or `social`; did you mean `private`?",
     );
     h(
         "A1,0,1,castle,",
-        "column tenure: found `castle`, an unknown choice; expected `none`, `private` or `social`",
+        "column tenure: found `castle`, an unknown tenure; expected `none`, `private` or `social`",
     );
     h(
         "A1,0,£650,none,",
@@ -418,9 +418,7 @@ fn records_and_their_owners() {
     t(
         "loans.csv",
         "household,member,plan\nA1,a,three\n",
-        &[
-            "loans.csv row 2, column plan: found `three`, an unknown choice; expected `one` or `two`",
-        ],
+        &["loans.csv row 2, column plan: found `three`, an unknown plan; expected `one` or `two`"],
     );
     t(
         "loans.csv",

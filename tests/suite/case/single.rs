@@ -200,7 +200,7 @@ fn faults_have_line_and_column() {
         "reference = \"A1\"",
         "reference = \"A 1\"",
         &[
-            "A1.toml line 3, column 13, key household: found `A 1`, a malformed reference; expected letters A to Z, digits, `_` and `-`",
+            "A1.toml line 3, column 13, key reference: found `A 1`, a malformed reference; expected letters A to Z, digits, `_` and `-`",
         ],
     );
     t(

@@ -22,7 +22,11 @@ pub fn w(n: i128) -> Fraction {
 
 /// Currency units as money, rounded half up.
 pub fn money(units: Fraction) -> Money {
-    let pence = divide_rounded(units.numerator() * 100, units.denominator(), Direction::HalfUp);
+    let pence = divide_rounded(
+        units.numerator() * 100,
+        units.denominator(),
+        Direction::HalfUp,
+    );
     Money(i64::try_from(pence).expect("a small sum"))
 }
 
@@ -45,7 +49,12 @@ impl Pieces {
     }
 
     fn piece(&self, at: Fraction) -> (Fraction, Fraction, Fraction) {
-        *self.0.iter().rev().find(|piece| piece.0 <= at).expect("pieces start at zero")
+        *self
+            .0
+            .iter()
+            .rev()
+            .find(|piece| piece.0 <= at)
+            .expect("pieces start at zero")
     }
 
     /// The value at some hours; at a jump the one after it.
@@ -56,7 +65,12 @@ impl Pieces {
 
     /// The value just before some hours.
     pub fn before(&self, hours: Fraction) -> Fraction {
-        let (from, value, slope) = *self.0.iter().rev().find(|piece| piece.0 < hours).unwrap_or(&self.0[0]);
+        let (from, value, slope) = *self
+            .0
+            .iter()
+            .rev()
+            .find(|piece| piece.0 < hours)
+            .unwrap_or(&self.0[0]);
         value + slope * (hours - from)
     }
 
@@ -65,12 +79,17 @@ impl Pieces {
     }
 
     fn join(&self, other: &Pieces, with: impl Fn(Fraction, Fraction) -> Fraction) -> Pieces {
-        let mut places: Vec<Fraction> = self.0.iter().chain(&other.0).map(|piece| piece.0).collect();
+        let mut places: Vec<Fraction> =
+            self.0.iter().chain(&other.0).map(|piece| piece.0).collect();
         places.sort();
         places.dedup();
-        let pieces = places
-            .into_iter()
-            .map(|at| (at, with(self.at(at), other.at(at)), with(self.slope(at), other.slope(at))));
+        let pieces = places.into_iter().map(|at| {
+            (
+                at,
+                with(self.at(at), other.at(at)),
+                with(self.slope(at), other.slope(at)),
+            )
+        });
         Pieces(pieces.collect())
     }
 
@@ -83,7 +102,12 @@ impl Pieces {
     }
 
     pub fn times(&self, factor: Fraction) -> Pieces {
-        Pieces(self.0.iter().map(|p| (p.0, p.1 * factor, p.2 * factor)).collect())
+        Pieces(
+            self.0
+                .iter()
+                .map(|p| (p.0, p.1 * factor, p.2 * factor))
+                .collect(),
+        )
     }
 
     /// Never below nothing.
@@ -95,9 +119,17 @@ impl Pieces {
             let crossing = (slope != zero).then(|| from - value / slope);
             let inside = crossing.filter(|at| *at > from && end.is_none_or(|end| *at < end));
             let starts_above = value > zero || (value == zero && slope > zero);
-            out.push(if starts_above { (from, value, slope) } else { (from, zero, zero) });
+            out.push(if starts_above {
+                (from, value, slope)
+            } else {
+                (from, zero, zero)
+            });
             if let Some(at) = inside {
-                out.push(if starts_above { (at, zero, zero) } else { (at, zero, slope) });
+                out.push(if starts_above {
+                    (at, zero, zero)
+                } else {
+                    (at, zero, slope)
+                });
             }
         }
         Pieces(out)
@@ -126,12 +158,26 @@ fn hours_up(at: Fraction) -> Hours {
 }
 
 /// The budget line of items up to so many hours.
-pub fn budget_line(items: &[Line], terms: JobTerms, earner: usize, step_to: Hours, up_to: i64) -> BudgetLine {
+pub fn budget_line(
+    items: &[Line],
+    terms: JobTerms,
+    earner: usize,
+    step_to: Hours,
+    up_to: i64,
+) -> BudgetLine {
     let total = |filter: &dyn Fn(ItemKind) -> Fraction| {
-        items.iter().fold(Pieces::flat(w(0)), |sum, item| sum.plus(&item.sums.times(filter(item.kind))))
+        items.iter().fold(Pieces::flat(w(0)), |sum, item| {
+            sum.plus(&item.sums.times(filter(item.kind)))
+        })
     };
     let net = total(&sign);
-    let after = total(&|kind| if kind == ItemKind::Cost { w(-1) } else { sign(kind) });
+    let after = total(&|kind| {
+        if kind == ItemKind::Cost {
+            w(-1)
+        } else {
+            sign(kind)
+        }
+    });
     let pay = items
         .iter()
         .filter(|item| item.kind == ItemKind::Pay && item.adult == Some(earner))
@@ -141,7 +187,10 @@ pub fn budget_line(items: &[Line], terms: JobTerms, earner: usize, step_to: Hour
         let slope = pay.slope(at);
         (!slope.is_zero()).then(|| w(1) - line.slope(at) / slope)
     };
-    let mut places: Vec<Fraction> = items.iter().flat_map(|item| item.sums.0.iter().map(|piece| piece.0)).collect();
+    let mut places: Vec<Fraction> = items
+        .iter()
+        .flat_map(|item| item.sums.0.iter().map(|piece| piece.0))
+        .collect();
     places.push(w(0));
     places.sort();
     places.dedup();
@@ -164,7 +213,13 @@ pub fn budget_line(items: &[Line], terms: JobTerms, earner: usize, step_to: Hour
             pension_share: w(0),
             shares: items
                 .iter()
-                .map(|item| if slope.is_zero() { w(0) } else { sign(item.kind) * item.sums.slope(from) / slope })
+                .map(|item| {
+                    if slope.is_zero() {
+                        w(0)
+                    } else {
+                        sign(item.kind) * item.sums.slope(from) / slope
+                    }
+                })
                 .collect(),
             virtual_income: net.at(from) - net.slope(from) * from,
         });
@@ -178,7 +233,11 @@ pub fn budget_line(items: &[Line], terms: JobTerms, earner: usize, step_to: Hour
             if !item.sums.0.iter().any(|piece| piece.0 == at) {
                 continue;
             }
-            let factor = if item.kind == ItemKind::Passport { w(1) } else { sign(item.kind) };
+            let factor = if item.kind == ItemKind::Passport {
+                w(1)
+            } else {
+                sign(item.kind)
+            };
             let size = factor * (item.sums.at(at) - item.sums.before(at));
             let jump = if item.kind == ItemKind::Passport {
                 passport |= !size.is_zero();
@@ -186,8 +245,15 @@ pub fn budget_line(items: &[Line], terms: JobTerms, earner: usize, step_to: Hour
             } else {
                 money(size)
             };
-            causes.push(Cause { part: item.part.to_owned(), line: item.name.to_owned() });
-            effects.push(Effect { item: position, jump, slope: w(0) });
+            causes.push(Cause {
+                part: item.part.to_owned(),
+                line: item.name.to_owned(),
+            });
+            effects.push(Effect {
+                item: position,
+                jump,
+                slope: w(0),
+            });
         }
         if causes.len() > 1 {
             causes.retain(|cause| cause.line != "support");
@@ -222,8 +288,15 @@ pub fn budget_line(items: &[Line], terms: JobTerms, earner: usize, step_to: Hour
     wanted.retain(|hours| hours.0 >= 0);
     wanted.sort();
     wanted.dedup();
-    let grid: Vec<Point> = wanted.iter().map(|hours| point(items, *hours, earner)).collect();
-    let find = |hours: Hours| grid.iter().position(|point| point.hours == hours).expect("on the grid");
+    let grid: Vec<Point> = wanted
+        .iter()
+        .map(|hours| point(items, *hours, earner))
+        .collect();
+    let find = |hours: Hours| {
+        grid.iter()
+            .position(|point| point.hours == hours)
+            .expect("on the grid")
+    };
     let (own, step_to) = (find(terms.hours), find(step_to));
     let measured = if after.0 == net.0 { &net } else { &after };
     BudgetLine {
@@ -234,7 +307,10 @@ pub fn budget_line(items: &[Line], terms: JobTerms, earner: usize, step_to: Hour
         no_gain: segments
             .iter()
             .filter(|segment| net.slope(segment.from).is_zero())
-            .map(|segment| NoGain { from: segment.from, to: segment.to })
+            .map(|segment| NoGain {
+                from: segment.from,
+                to: segment.to,
+            })
             .collect(),
         terms,
         grid,
@@ -262,7 +338,12 @@ fn traps(sum: &Pieces, places: &[Fraction], last: Fraction) -> Vec<Trap> {
                 (peak, peak_at) = (value, at);
             } else if peak - value > w(1) {
                 let loss = money(peak - value);
-                let trap = open.get_or_insert(Trap { from: peak_at, to: None, peak: money(peak), depth: loss });
+                let trap = open.get_or_insert(Trap {
+                    from: peak_at,
+                    to: None,
+                    peak: money(peak),
+                    depth: loss,
+                });
                 trap.depth = trap.depth.max(loss);
             }
         }
@@ -285,9 +366,19 @@ fn point(items: &[Line], hours: Hours, earner: usize) -> Point {
         })
         .collect();
     let sum = |kinds: &[ItemKind]| -> Money {
-        items.iter().zip(&sums).filter(|(item, _)| kinds.contains(&item.kind)).map(|(_, sum)| *sum).sum()
+        items
+            .iter()
+            .zip(&sums)
+            .filter(|(item, _)| kinds.contains(&item.kind))
+            .map(|(_, sum)| *sum)
+            .sum()
     };
-    let comes_off = sum(&[ItemKind::Tax, ItemKind::Contribution, ItemKind::Pension, ItemKind::Loan]);
+    let comes_off = sum(&[
+        ItemKind::Tax,
+        ItemKind::Contribution,
+        ItemKind::Pension,
+        ItemKind::Loan,
+    ]);
     let net = sum(&[ItemKind::Pay, ItemKind::Income, ItemKind::Benefit]) - comes_off;
     let after_costs = net - sum(&[ItemKind::Cost]);
     let slope = |cost: bool| {
@@ -296,7 +387,11 @@ fn point(items: &[Line], hours: Hours, earner: usize) -> Point {
             .filter(|item| item.kind == ItemKind::Pay && item.adult == Some(earner))
             .fold(w(0), |sum, item| sum + item.sums.slope(at));
         let income = items.iter().fold(w(0), |sum, item| {
-            let factor = if cost && item.kind == ItemKind::Cost { w(-1) } else { sign(item.kind) };
+            let factor = if cost && item.kind == ItemKind::Cost {
+                w(-1)
+            } else {
+                sign(item.kind)
+            };
             sum + factor * item.sums.slope(at)
         });
         (!pay.is_zero()).then(|| w(1) - income / pay)
@@ -341,46 +436,134 @@ pub struct Home {
     pub meals: Option<i128>,
 }
 
-pub const TENANT: Home = Home { award: 940, allowance: 0, rent: 690, partner: 0, childcare: 0, cliff: None, meals: None };
-pub const LONE_PARENT: Home =
-    Home { award: 1480, allowance: 404, rent: 780, partner: 0, childcare: 18, cliff: Some((23, 94)), meals: Some(14) };
-pub const COUPLE: Home = Home { award: 1690, allowance: 404, rent: 860, partner: 1250, childcare: 0, cliff: None, meals: None };
+pub const TENANT: Home = Home {
+    award: 940,
+    allowance: 0,
+    rent: 690,
+    partner: 0,
+    childcare: 0,
+    cliff: None,
+    meals: None,
+};
+pub const LONE_PARENT: Home = Home {
+    award: 1480,
+    allowance: 404,
+    rent: 780,
+    partner: 0,
+    childcare: 18,
+    cliff: Some((23, 94)),
+    meals: Some(14),
+};
+pub const COUPLE: Home = Home {
+    award: 1690,
+    allowance: 404,
+    rent: 860,
+    partner: 1250,
+    childcare: 0,
+    cliff: None,
+    meals: None,
+};
 
 /// The items of a home at a wage in ten-thousandths an hour.
 pub fn items(home: &Home, wage: i64, adult: usize) -> Vec<Line> {
     let pay = Pieces::line(f(i128::from(wage) * 52, 10_000 * 12));
     let pension = pay.less(&Pieces::flat(w(520))).floored().times(f(5, 100));
-    let tax = pay.less(&pension).less(&Pieces::flat(f(104_750, 100))).floored().times(f(20, 100));
+    let tax = pay
+        .less(&pension)
+        .less(&Pieces::flat(f(104_750, 100)))
+        .floored()
+        .times(f(20, 100));
     let contribution = pay.less(&Pieces::flat(w(1048))).floored().times(f(8, 100));
     let in_hand = pay.less(&tax).less(&contribution).less(&pension);
     let partner = Pieces::flat(w(home.partner));
     let childcare = Pieces::line(w(home.childcare));
-    let counted = in_hand.plus(&partner).less(&Pieces::flat(w(home.allowance))).floored().times(f(55, 100));
-    let award = Pieces::flat(w(home.award)).plus(&childcare.times(f(85, 100))).less(&counted).floored();
-    let line = |name, kind, own: bool, part, sums| Line { name, kind, adult: own.then_some(adult), part, sums };
+    let counted = in_hand
+        .plus(&partner)
+        .less(&Pieces::flat(w(home.allowance)))
+        .floored()
+        .times(f(55, 100));
+    let award = Pieces::flat(w(home.award))
+        .plus(&childcare.times(f(85, 100)))
+        .less(&counted)
+        .floored();
+    let line = |name, kind, own: bool, part, sums| Line {
+        name,
+        kind,
+        adult: own.then_some(adult),
+        part,
+        sums,
+    };
     let mut all = vec![
         line("pay", ItemKind::Pay, true, "Pay", pay),
         line("income_tax", ItemKind::Tax, true, "Income Tax", tax),
-        line("contribution", ItemKind::Contribution, true, "National Insurance", contribution),
-        line("pension_payment", ItemKind::Pension, true, "Pension", pension),
-        line("support", ItemKind::Benefit, false, "Household Support", award),
+        line(
+            "contribution",
+            ItemKind::Contribution,
+            true,
+            "National Insurance",
+            contribution,
+        ),
+        line(
+            "pension_payment",
+            ItemKind::Pension,
+            true,
+            "Pension",
+            pension,
+        ),
+        line(
+            "support",
+            ItemKind::Benefit,
+            false,
+            "Household Support",
+            award,
+        ),
     ];
     if home.partner > 0 {
-        all.push(Line { name: "pay", kind: ItemKind::Pay, adult: Some(1 - adult), part: "Pay", sums: partner });
+        all.push(Line {
+            name: "pay",
+            kind: ItemKind::Pay,
+            adult: Some(1 - adult),
+            part: "Pay",
+            sums: partner,
+        });
     }
     if let Some((hours, help)) = home.cliff {
         let help = Pieces::step(w(hours), w(help), w(0));
-        all.push(line("local_tax_help", ItemKind::Benefit, false, "Local Tax Help", help));
+        all.push(line(
+            "local_tax_help",
+            ItemKind::Benefit,
+            false,
+            "Local Tax Help",
+            help,
+        ));
     }
     if let Some(hours) = home.meals {
         let meals = Pieces::step(w(hours), w(1), w(0));
-        all.push(line("school_meals", ItemKind::Passport, false, "School meals", meals));
+        all.push(line(
+            "school_meals",
+            ItemKind::Passport,
+            false,
+            "School meals",
+            meals,
+        ));
     }
     if home.childcare > 0 {
-        all.push(line("childcare", ItemKind::Cost, false, "Childcare", childcare));
+        all.push(line(
+            "childcare",
+            ItemKind::Cost,
+            false,
+            "Childcare",
+            childcare,
+        ));
     }
     if home.rent > 0 {
-        all.push(line("rent", ItemKind::Housing, false, "Housing", Pieces::flat(w(home.rent))));
+        all.push(line(
+            "rent",
+            ItemKind::Housing,
+            false,
+            "Housing",
+            Pieces::flat(w(home.rent)),
+        ));
     }
     all
 }
@@ -389,11 +572,28 @@ pub fn items(home: &Home, wage: i64, adult: usize) -> Vec<Line> {
 pub type Offer = (&'static str, i64, i64);
 
 /// One earner with today's job (hours in hundredths, wage) and offers.
-pub fn earner(home: &Home, adult: usize, name: &str, job: Option<(i64, i64)>, offers: &[Offer]) -> EarnerResult {
+pub fn earner(
+    home: &Home,
+    adult: usize,
+    name: &str,
+    job: Option<(i64, i64)>,
+    offers: &[Offer],
+) -> EarnerResult {
     let mut lines = vec![];
     if let Some((hours, wage)) = job {
-        let terms = JobTerms { offer: String::new(), reference: String::new(), wage, hours: Hours(hours) };
-        lines.push(budget_line(&items(home, wage, adult), terms, adult, Hours(hours + 400), 48));
+        let terms = JobTerms {
+            offer: String::new(),
+            reference: String::new(),
+            wage,
+            hours: Hours(hours),
+        };
+        lines.push(budget_line(
+            &items(home, wage, adult),
+            terms,
+            adult,
+            Hours(hours + 400),
+            48,
+        ));
     }
     let mut measures = vec![];
     for (position, (words, hours, wage)) in offers.iter().enumerate() {
@@ -405,11 +605,23 @@ pub fn earner(home: &Home, adult: usize, name: &str, job: Option<(i64, i64)>, of
         };
         let line = budget_line(&items(home, *wage, adult), terms, adult, Hours(*hours), 48);
         let today = job.map(|_| lines[0].grid[lines[0].own].net);
-        let holding = today.and_then(|today| line.grid.iter().find(|point| point.net >= today).map(|point| point.hours));
-        measures.push(OfferMeasures { line: lines.len(), holding, rise: None });
+        let holding = today.and_then(|today| {
+            line.grid
+                .iter()
+                .find(|point| point.net >= today)
+                .map(|point| point.hours)
+        });
+        measures.push(OfferMeasures {
+            line: lines.len(),
+            holding,
+            rise: None,
+        });
         lines.push(line);
     }
-    let wage = job.map(|job| job.1).or(offers.first().map(|offer| offer.2)).unwrap_or(120_000);
+    let wage = job
+        .map(|job| job.1)
+        .or(offers.first().map(|offer| offer.2))
+        .unwrap_or(120_000);
     EarnerResult {
         adult,
         name: name.to_owned(),
@@ -422,7 +634,13 @@ pub fn earner(home: &Home, adult: usize, name: &str, job: Option<(i64, i64)>, of
 }
 
 fn fact(of: &str, name: &str, value: &str, known: char) -> FactUse {
-    FactUse { kind: "household".into(), of: of.into(), name: name.into(), value: value.into(), known }
+    FactUse {
+        kind: "household".into(),
+        of: of.into(),
+        name: name.into(),
+        value: value.into(),
+        known,
+    }
 }
 
 /// A household of these earners.
@@ -441,6 +659,7 @@ pub fn assessment(home: &Home, earners: Vec<EarnerResult>) -> Assessment {
             })
             .collect(),
         earners,
+        couple: None,
         notes: vec![],
         facts: vec![
             fact("", "rent", &format!("£{}.00 a month", home.rent), 's'),
@@ -460,6 +679,7 @@ pub fn assessment(home: &Home, earners: Vec<EarnerResult>) -> Assessment {
             locator: "p. 1".into(),
             confirmed: true,
             changed_because: String::new(),
+            part: "Invented part".to_owned(),
         }],
     }
 }
@@ -490,10 +710,22 @@ pub fn context() -> LetterContext {
         ("fact.savings", "savings"),
         ("fact.student", "student"),
         ("fact.carer", "carer"),
-        ("office.support", "Household Support: the Support Office, in your online account or by telephone."),
-        ("office.tax", "Income Tax and National Insurance: the Tax Office."),
-        ("report.support", "Pay, hours and childcare: to the Support Office, by the end of the month in which they change."),
-        ("left_out", "travel to work, help in kind, one-off payments."),
+        (
+            "office.support",
+            "Household Support: the Support Office, in your online account or by telephone.",
+        ),
+        (
+            "office.tax",
+            "Income Tax and National Insurance: the Tax Office.",
+        ),
+        (
+            "report.support",
+            "Pay, hours and childcare: to the Support Office, by the end of the month in which they change.",
+        ),
+        (
+            "left_out",
+            "travel to work, help in kind, one-off payments.",
+        ),
     ];
     let day = |year, month, day| NaiveDate::from_ymd_opt(year, month, day).expect("a day");
     LetterContext {
@@ -507,13 +739,27 @@ pub fn context() -> LetterContext {
         period: "month".into(),
         office: Office {
             name: "Harrowmere Advice Rooms".into(),
-            lines: vec!["3 Linden Passage, Harrowmere".into(), "Telephone 01632 960 112".into()],
+            lines: vec![
+                "3 Linden Passage, Harrowmere".into(),
+                "Telephone 01632 960 112".into(),
+            ],
             next_steps: vec![],
         },
-        labels: labels.iter().map(|(key, text)| ((*key).to_owned(), (*text).to_owned())).collect::<BTreeMap<_, _>>(),
-        texts: TemplateSet::built_in().texts("en").expect("the texts are sound"),
+        labels: labels
+            .iter()
+            .map(|(key, text)| ((*key).to_owned(), (*text).to_owned()))
+            .collect::<BTreeMap<_, _>>(),
+        texts: TemplateSet::built_in()
+            .texts("en")
+            .expect("the texts are sound"),
         delivery: LetterDelivery {
-            address: vec!["Ana Petrescu-Hale".into(), "Flat 2".into(), "18 Tanners Row".into(), "Harrowmere".into(), "HX0 4ZZ".into()],
+            address: vec![
+                "Ana Petrescu-Hale".into(),
+                "Flat 2".into(),
+                "18 Tanners Row".into(),
+                "Harrowmere".into(),
+                "HX0 4ZZ".into(),
+            ],
             ..LetterDelivery::default()
         },
     }
@@ -521,20 +767,39 @@ pub fn context() -> LetterContext {
 
 /// A single tenant at 16 hours.
 pub fn tenant() -> Assessment {
-    assessment(&TENANT, vec![earner(&TENANT, 0, "Ana", Some((1600, 127_100)), &[])])
+    assessment(
+        &TENANT,
+        vec![earner(&TENANT, 0, "Ana", Some((1600, 127_100)), &[])],
+    )
 }
 
 /// A lone parent with childcare, a fall and a trap, and an offer.
 pub fn lone_parent() -> Assessment {
     let offers = [("School kitchen, term time", 2400, 134_500)];
-    assessment(&LONE_PARENT, vec![earner(&LONE_PARENT, 0, "Ana", Some((1600, 127_100)), &offers)])
+    assessment(
+        &LONE_PARENT,
+        vec![earner(
+            &LONE_PARENT,
+            0,
+            "Ana",
+            Some((1600, 127_100)),
+            &offers,
+        )],
+    )
 }
 
 /// A couple: one with two offers, one with a job.
 pub fn couple() -> Assessment {
-    let offers = [("Bakery, mornings", 2000, 128_000), ("Care home, nights", 3000, 141_250)];
+    let offers = [
+        ("Bakery, mornings", 2000, 128_000),
+        ("Care home, nights", 3000, 141_250),
+    ];
     let first = earner(&COUPLE, 0, "Ana", None, &offers);
-    let other = Home { partner: 0, award: COUPLE.award, ..COUPLE };
+    let other = Home {
+        partner: 0,
+        award: COUPLE.award,
+        ..COUPLE
+    };
     let mut second = earner(&other, 1, "Ben", Some((3000, 127_100)), &[]);
     // The second earner's lines have one item fewer: the other adult's pay, which is nothing.
     for line in &mut second.lines {
@@ -555,9 +820,20 @@ pub fn couple() -> Assessment {
 /// One adult, no benefit, one straight line.
 pub fn minimal() -> Assessment {
     let pay = || {
-        vec![Line { name: "pay", kind: ItemKind::Pay, adult: Some(0), part: "Pay", sums: Pieces::line(w(50)) }]
+        vec![Line {
+            name: "pay",
+            kind: ItemKind::Pay,
+            adult: Some(0),
+            part: "Pay",
+            sums: Pieces::line(w(50)),
+        }]
     };
-    let terms = JobTerms { offer: String::new(), reference: String::new(), wage: 115_385, hours: Hours(800) };
+    let terms = JobTerms {
+        offer: String::new(),
+        reference: String::new(),
+        wage: 115_385,
+        hours: Hours(800),
+    };
     let line = budget_line(&pay(), terms, 0, Hours(1200), 48);
     let earner = EarnerResult {
         adult: 0,

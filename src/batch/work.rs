@@ -1,0 +1,338 @@
+//! What a worker does in earnest: rebuilds pack, templates and office from its setup, then assesses and typesets one
+//! household after another. In: bytes and households. Out: [`Outcome`]s. Reads no file and no clock.
+
+use super::prepare::checked;
+use super::{
+    Assessor, Books, GridRows, Outcome, Prepared, Product, StatementFile, results,
+    statement_number, turning_points,
+};
+use crate::case::{ADULT, Household, Known, Schema, day_of};
+use crate::load::{Files, HoldRules, Office, PackFiles, Terms};
+use crate::measures::{Assessment, TurnKind, Verdict};
+use crate::num::{Fraction, Hours};
+use crate::rules::{Change, Pack};
+use crate::statement::{
+    LetterContext, LetterDelivery, StatementError, TemplateSet, Texts, Typesetter, typeset,
+};
+use chrono::NaiveDate;
+use serde::{Deserialize, Serialize};
+use std::collections::BTreeMap;
+use std::sync::Arc;
+
+/// Whether statements are typeset.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
+pub enum Statements {
+    /// One a household.
+    Made,
+    /// None: tables only.
+    LeftOut,
+}
+
+/// What a run asks of each household.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize, Deserialize)]
+pub struct Orders {
+    /// The run's id, in each statement's number.
+    pub run_id: String,
+    /// Issue date of the statements.
+    pub issued: NaiveDate,
+    /// Which points become rows.
+    pub rows: GridRows,
+    /// Whether statements are typeset.
+    pub statements: Statements,
+}
+
+/// What crosses to a worker.
+#[derive(Serialize, Deserialize)]
+struct Setup {
+    pack_name: String,
+    pack: Files,
+    dates: Vec<i64>,
+    changes: Vec<(String, Fraction, String)>,
+    grid: (Option<Hours>, Option<Hours>),
+    templates: Files,
+    office: Option<Office>,
+    orders: Orders,
+}
+
+/// The bytes that a worker is set up with.
+pub fn setup(prepared: &Prepared, orders: &Orders) -> Vec<u8> {
+    let mut pack = prepared.pack_files.files.clone();
+    // Examples are for `prove` alone.
+    pack.0.retain(|file| !file.name.starts_with("examples/"));
+    let changes = prepared.terms.changes.iter();
+    let setup = Setup {
+        pack_name: prepared.pack_files.name.clone(),
+        pack,
+        dates: prepared.terms.dates.clone(),
+        changes: changes
+            .map(|c| (c.amount.clone(), c.value, c.because.clone()))
+            .collect(),
+        grid: (prepared.terms.grid_to, prepared.terms.grid_step),
+        templates: prepared.templates.clone(),
+        office: prepared.office.as_ref().map(|file| file.office.clone()),
+        orders: orders.clone(),
+    };
+    postcard::to_allocvec(&setup).unwrap_or_default()
+}
+
+/// A worker's assessor.
+pub struct Work {
+    books: Books,
+    orders: Orders,
+    items: Vec<String>,
+    hold: HoldRules,
+    press: Option<Press>,
+}
+
+/// Builds a worker's assessor.
+///
+/// # Errors
+/// What is wrong with the setup.
+pub fn work(payload: &[u8]) -> Result<Work, String> {
+    let setup: Setup = postcard::from_bytes(payload).map_err(|error| error.to_string())?;
+    let pack = checked(&PackFiles {
+        name: setup.pack_name,
+        files: setup.pack,
+    })
+    .map_err(|error| error.to_string())?;
+    let terms = Terms {
+        dates: setup.dates,
+        changes: setup
+            .changes
+            .into_iter()
+            .map(|(amount, value, because)| Change {
+                amount,
+                value,
+                because,
+            })
+            .collect(),
+        grid_to: setup.grid.0,
+        grid_step: setup.grid.1,
+    };
+    let office = setup.office.unwrap_or_default();
+    let press = match setup.orders.statements {
+        Statements::LeftOut => None,
+        Statements::Made => Some(
+            Press::new(&setup.templates, &office, &pack, &terms, &setup.orders)
+                .map_err(|error| error.to_string())?,
+        ),
+    };
+    Ok(Work {
+        items: item_columns(&pack),
+        books: Books::new(pack, terms),
+        orders: setup.orders,
+        hold: office.hold,
+        press,
+    })
+}
+
+/// The columns of `results.csv` for a pack: its items' names, each once.
+pub fn item_columns(pack: &Pack) -> Vec<String> {
+    pack.item_names()
+        .into_iter()
+        .map(|(name, _)| name)
+        .collect()
+}
+
+impl Assessor for Work {
+    fn assess(&mut self, household: &Household) -> Outcome {
+        let mut reasons = own_reasons(household, &self.hold, self.books.schema());
+        let assessment = match self.books.assess(household) {
+            Ok(Verdict::Assessed(assessment)) => assessment,
+            Ok(Verdict::Held(more)) => {
+                reasons.extend(more);
+                return Outcome::Held { reasons };
+            }
+            Err(cause) => return Outcome::Failed { cause },
+        };
+        if !reasons.is_empty() {
+            return Outcome::Held { reasons };
+        }
+        let mut product = tables(&assessment, &self.items, self.orders.rows);
+        if let Some(press) = &mut self.press {
+            match press.letter(household, &assessment) {
+                Ok(statement) => product.statements.push(statement),
+                Err(error @ StatementError::Glyph { .. }) => {
+                    return Outcome::Held {
+                        reasons: vec![error.to_string()],
+                    };
+                }
+                Err(error) => {
+                    return Outcome::Failed {
+                        cause: error.to_string(),
+                    };
+                }
+            }
+        }
+        Outcome::Printed(Box::new(product))
+    }
+}
+
+/// The rows of an assessment.
+fn tables(assessment: &Assessment, items: &[String], rows: GridRows) -> Product {
+    let turns = || {
+        assessment
+            .earners
+            .iter()
+            .flat_map(|earner| &earner.lines)
+            .flat_map(|line| &line.turns)
+    };
+    Product {
+        results: results(assessment, items, rows),
+        turns: turning_points(assessment),
+        statements: vec![],
+        kinks: turns().filter(|turn| turn.kind == TurnKind::Kink).count() as u64,
+        cliffs: turns().filter(|turn| turn.kind == TurnKind::Cliff).count() as u64,
+    }
+}
+
+/// Why the list or the office holds a household, whatever its figures.
+fn own_reasons(household: &Household, hold: &HoldRules, schema: &Schema) -> Vec<String> {
+    let mut reasons = vec![];
+    if !household.delivery.hold.is_empty() {
+        reasons.push(household.delivery.hold.clone());
+    }
+    if hold.without_address && household.delivery.address.is_empty() {
+        reasons.push("no address is given".to_owned());
+    }
+    for wanted in &hold.must_be_seen {
+        let mut unseen = vec![];
+        for (kind, instances) in schema.kinds.iter().zip(&household.instances) {
+            let Some(fact) = kind.facts.iter().position(|fact| fact.name == *wanted) else {
+                continue;
+            };
+            for instance in instances {
+                match instance.known[fact] {
+                    Known::Seen => {}
+                    Known::Told => unseen.push("told"),
+                    Known::Assumed => unseen.push("assumed"),
+                }
+            }
+        }
+        unseen.sort_unstable();
+        unseen.dedup();
+        if !unseen.is_empty() {
+            reasons.push(format!(
+                "`{wanted}` is {}, the office wants it seen",
+                unseen.join(" and ")
+            ));
+        }
+    }
+    reasons
+}
+
+/// What sets letters.
+struct Press {
+    typesetter: Typesetter,
+    templates: TemplateSet,
+    texts: BTreeMap<String, Arc<Texts>>,
+    labels: BTreeMap<String, BTreeMap<String, String>>,
+    context: LetterContext,
+    run_id: String,
+}
+
+impl Press {
+    fn new(
+        templates: &Files,
+        office: &Office,
+        pack: &Pack,
+        terms: &Terms,
+        orders: &Orders,
+    ) -> Result<Press, StatementError> {
+        let set = TemplateSet::new(
+            templates
+                .texts()
+                .map(|(name, text)| (name.to_owned(), text.to_owned()))
+                .collect(),
+        );
+        let day = |days: i64| day_of(days).unwrap_or_default();
+        let context = LetterContext {
+            number: String::new(),
+            issued: orders.issued,
+            assessed: day(terms.dates.first().copied().unwrap_or_default()),
+            rules_title: pack.manifest.title.clone(),
+            area: pack.manifest.area.clone(),
+            rules_until: day(pack.manifest.to),
+            currency: pack.manifest.currency.clone(),
+            period: pack.manifest.period.word().to_owned(),
+            office: letterhead(office),
+            labels: BTreeMap::new(),
+            texts: set.texts("en")?,
+            delivery: LetterDelivery::default(),
+        };
+        Ok(Press {
+            typesetter: Typesetter::new(&set)?,
+            templates: set,
+            texts: BTreeMap::new(),
+            labels: pack.labels.clone(),
+            context,
+            run_id: orders.run_id.clone(),
+        })
+    }
+
+    fn letter(
+        &mut self,
+        household: &Household,
+        assessment: &Assessment,
+    ) -> Result<StatementFile, StatementError> {
+        let language = match household.delivery.language.as_str() {
+            "" => "en",
+            language => language,
+        };
+        let texts = match self.texts.get(language) {
+            Some(texts) => Arc::clone(texts),
+            None => {
+                let texts = self.templates.texts(language)?;
+                self.texts.insert(language.to_owned(), Arc::clone(&texts));
+                texts
+            }
+        };
+        let delivery = &household.delivery;
+        let only = household.instances[ADULT]
+            .iter()
+            .position(|adult| !delivery.only.is_empty() && adult.reference == delivery.only);
+        let ordinary = LetterDelivery::default();
+        self.context.number = statement_number(&self.run_id, &household.reference);
+        self.context.texts = texts;
+        self.context.labels = self.labels.get(language).cloned().unwrap_or_default();
+        self.context.delivery = LetterDelivery {
+            address: delivery.address.clone(),
+            paper: match delivery.paper.as_str() {
+                "" => ordinary.paper,
+                paper => paper.to_owned(),
+            },
+            print_size: delivery.print_size.max(ordinary.print_size),
+            only,
+            fold: delivery.fold.clone(),
+        };
+        let made = typeset(&mut self.typesetter, assessment, &self.context)?;
+        Ok(StatementFile {
+            kind: "client".to_owned(),
+            variant: String::new(),
+            pages: u32::try_from(made.pages).ok(),
+            pdf: made.bytes,
+        })
+    }
+}
+
+/// The office's lines as a letter prints them.
+fn letterhead(office: &Office) -> crate::statement::Office {
+    let mut lines = office.address.clone();
+    let others = [
+        &office.phone,
+        &office.email,
+        &office.hours,
+        &office.accreditation,
+    ];
+    lines.extend(others.into_iter().filter(|line| !line.is_empty()).cloned());
+    let next = [&office.signatory, &office.privacy, &office.complaints];
+    crate::statement::Office {
+        name: office.name.clone(),
+        lines,
+        next_steps: next
+            .into_iter()
+            .filter(|line| !line.is_empty())
+            .cloned()
+            .collect(),
+    }
+}

@@ -1,0 +1,610 @@
+//! What a letter says, how long it is, and that it is the same every time.
+
+use super::invented::{COUPLE, LONE_PARENT, context, couple, earner, lone_parent, minimal, tenant};
+use hourworth::measures::{AmountUse, Assessment, FactUse, TargetHours};
+use hourworth::num::{Hours, Money};
+use hourworth::statement::{
+    Detail, LetterContext, LetterView, PAGE_LIMIT, RowWeight, StatementError, TemplateSet,
+    Typesetter, letter_view, missing_labels, typeset,
+};
+
+fn typesetter() -> Typesetter {
+    Typesetter::new(&TemplateSet::built_in()).expect("the built-in templates are sound")
+}
+
+fn view(assessment: &Assessment, context: &LetterContext) -> LetterView {
+    letter_view(assessment, context, Detail::Full).expect("a view")
+}
+
+/// All words of a letter without spaces, one text a page.
+fn words(assessment: &Assessment, context: &LetterContext) -> Vec<String> {
+    let pages = typesetter()
+        .words(&view(assessment, context), &context.texts)
+        .expect("words");
+    pages.into_iter().map(|page| dense(&page)).collect()
+}
+
+fn dense(text: &str) -> String {
+    text.chars()
+        .filter(|character| !character.is_whitespace())
+        .collect()
+}
+
+#[track_caller]
+fn says(pages: &[String], text: &str) {
+    assert!(
+        pages.concat().contains(&dense(text)),
+        "not said: {text}\n{pages:#?}"
+    );
+}
+
+fn all() -> Vec<(&'static str, Assessment)> {
+    vec![
+        ("tenant", tenant()),
+        ("lone parent", lone_parent()),
+        ("couple", couple()),
+        ("minimal", minimal()),
+    ]
+}
+
+#[test]
+fn page_counts() {
+    let mut typesetter = typesetter();
+    for (name, assessment) in all() {
+        for size in [12, 16, 18, 20] {
+            let mut context = context();
+            context.delivery.print_size = size;
+            let made = typeset(&mut typesetter, &assessment, &context).expect(name);
+            let most = match (name, size) {
+                ("tenant" | "minimal", 12) => 2,
+                ("lone parent", 12) => 3,
+                (_, 12) => PAGE_LIMIT,
+                (_, _) => 9,
+            };
+            assert!(
+                made.pages <= most,
+                "{name} at {size} points: {} pages",
+                made.pages
+            );
+        }
+    }
+}
+
+#[test]
+fn the_same_input_gives_the_same_bytes() {
+    let mut first = typesetter();
+    let made: Vec<_> = all()
+        .iter()
+        .map(|(_, assessment)| typeset(&mut first, assessment, &context()).expect("bytes"))
+        .collect();
+    // Another typesetter, another order, and after many letters with sweeps in between.
+    let mut second = typesetter();
+    for round in 0..4 {
+        for (position, (name, assessment)) in all().iter().enumerate().rev() {
+            let again = typeset(&mut second, assessment, &context()).expect("bytes");
+            assert!(again == made[position], "{name} differs in round {round}");
+        }
+    }
+    let mut other = context();
+    other.number = "7K2Q-H-0043".to_owned();
+    let differs = typeset(&mut first, &tenant(), &other).expect("bytes");
+    assert!(
+        differs.bytes != made[0].bytes,
+        "another number gives other bytes"
+    );
+}
+
+#[test]
+fn key_figures_of_the_tenant() {
+    let (assessment, context) = (tenant(), context());
+    let pages = words(&assessment, &context);
+    let line = &assessment.earners[0].lines[0];
+    let (today, then) = (&line.grid[line.own], &line.grid[line.step_to]);
+    // The sums are the fixture's own; the letter must say their difference.
+    let gain = then.net.0 - today.net.0;
+    assert_eq!((gain, then.pay.0 - today.pay.0), (9000, 22_030));
+    says(&pages[..1], "You keep £90 more a month");
+    says(
+        &pages[..1],
+        "20 hours a week in place of 16. Pay goes up by £220.30: of each extra £10 you keep £4.09.",
+    );
+    says(&pages[..1], "Statement 7K2Q-H-0042");
+    says(&pages[..1], "4 June 2026");
+    says(&pages[..1], "Worked out for 1 June 2026");
+    says(&pages[..1], "Harrowmere");
+    says(&pages[..1], "31 March 2027");
+    says(&pages[..1], "Ana Petrescu-Hale");
+    says(&pages[..1], "not a decision and not a payslip");
+    says(
+        &pages,
+        "If the job ends, you have £940 a month: £388.43 less than today.",
+    );
+    says(
+        &pages,
+        "At 12 hours a week you have £1,234.24: £94.19 less than today.",
+    );
+    says(&pages, "Papers seen: rent £690.00 a month.");
+    says(
+        &pages,
+        "You told us: home rented private; Ana: born 1991-05-02.",
+    );
+    says(
+        &pages,
+        "Assumed, as nobody told us: Ana: pension payment 5%.",
+    );
+    says(&pages, "Assumed to be no or none: savings; student; carer.");
+    says(&pages, "Left out: travel to work");
+    says(&pages, "to the Support Office, by the end of the month");
+    assert_eq!(pages.len(), 2);
+    for (position, page) in pages.iter().enumerate() {
+        says(
+            std::slice::from_ref(page),
+            &format!("Page {} of 2", position + 1),
+        );
+        says(std::slice::from_ref(page), "Statement 7K2Q-H-0042");
+    }
+}
+
+#[test]
+fn every_letter_defers_on_its_first_page() {
+    for (name, assessment) in all() {
+        let pages = words(&assessment, &context());
+        for sentence in [
+            "Check with the office that runs each benefit or tax, and with an accredited or licensed adviser.",
+            "This letter informs. It does not advise.",
+            "This is an estimate",
+        ] {
+            assert!(pages[0].contains(&dense(sentence)), "{name}: {sentence}");
+        }
+        says(
+            &pages,
+            "ask the offices named here and an accredited or licensed adviser",
+        );
+    }
+}
+
+#[test]
+fn no_average_rate_no_advice_and_none_of_the_words_we_avoid() {
+    let texts = TemplateSet::built_in();
+    let (_, en) = texts
+        .files()
+        .find(|(name, _)| *name == "text/en.toml")
+        .expect("texts");
+    let mut all_words = vec![
+        en.lines()
+            .filter(|line| !line.starts_with('#'))
+            .collect::<String>(),
+    ];
+    all_words.extend(all().iter().map(|(_, assessment)| {
+        typesetter()
+            .words(&view(assessment, &context()), &context().texts)
+            .expect("words")
+            .join(" ")
+    }));
+    for text in all_words {
+        let text = text.to_lowercase();
+        for word in [
+            "baseline",
+            "reform",
+            "scenario",
+            "policy",
+            "entity",
+            "variable",
+            "parameter",
+            "better off",
+            "should",
+            "recommend",
+            "participation",
+            "average",
+            "ptr",
+            "metr",
+            "-£0",
+            "−£0.00",
+            "nan",
+        ] {
+            let found = text
+                .split(|c: char| !c.is_alphanumeric() && !"-−£. ".contains(c))
+                .any(|part| {
+                    part.split(' ').any(|single| single == word)
+                        || (word.contains(' ') && part.contains(word))
+                });
+            assert!(!found, "`{word}` in the letter");
+        }
+    }
+}
+
+#[test]
+fn the_table_adds_up() {
+    let pence = |text: &str| -> i64 {
+        let digits: String = text.chars().filter(char::is_ascii_digit).collect();
+        let size: i64 = digits.parse().unwrap_or(0);
+        if text.starts_with('−') { -size } else { size }
+    };
+    let mut totals = 0;
+    for (name, assessment) in all() {
+        for section in view(&assessment, &context()).sections {
+            for table in section.tables {
+                for column in 0..table.columns.len() {
+                    let mut sum = 0;
+                    for row in &table.rows {
+                        match row.weight {
+                            RowWeight::Plain => sum += pence(&row.cells[column]),
+                            RowWeight::Total => {
+                                assert_eq!(sum, pence(&row.cells[column]), "{name}: {}", row.name);
+                                totals += 1;
+                            }
+                        }
+                    }
+                }
+            }
+        }
+    }
+    assert!(totals > 20, "{totals} totals");
+}
+
+#[test]
+fn childcare_makes_the_first_answer_after_costs() {
+    let (assessment, context) = (lone_parent(), context());
+    let section = &view(&assessment, &context).sections[0];
+    let line = &assessment.earners[0].lines[0];
+    let gain = line.grid[line.step_to].after_costs.0 - line.grid[line.own].after_costs.0;
+    assert_eq!(gain, 7920, "the fixture's own difference");
+    assert_eq!(section.answers[0].kept, "You keep £79.20 more a month");
+    assert!(section.measure.contains("after childcare"));
+    assert_eq!(section.answers[1].step, "School kitchen, term time");
+    assert!(
+        section
+            .chart
+            .alt
+            .starts_with("Line chart: Net income after costs of working")
+    );
+}
+
+#[test]
+fn falls_on_the_way_come_first_and_say_where_they_are_regained() {
+    let section = &view(&lone_parent(), &context()).sections[0];
+    assert!(section.turns.len() <= 5);
+    let fall = section
+        .turns
+        .iter()
+        .find(|turn| turn.place == "23 hours")
+        .expect("the fall");
+    assert_eq!(
+        fall.what,
+        "Local Tax Help ends. You lose £94. You are back at that sum from 29.65 hours on."
+    );
+    assert_eq!(fall.pay, "Pay £1,266.76");
+}
+
+#[test]
+fn many_falls_are_cut_to_five_and_the_rest_is_counted() {
+    let mut assessment = lone_parent();
+    let line = &mut assessment.earners[0].lines[0];
+    let fall = line
+        .turns
+        .iter()
+        .find(|turn| turn.size.0 < 0)
+        .expect("a fall")
+        .clone();
+    for more in 1..=6 {
+        let mut turn = fall.clone();
+        turn.hours = Hours(fall.hours.0 - more * 20);
+        turn.at = turn.hours.as_fraction();
+        line.turns.push(turn);
+    }
+    line.turns.sort_by_key(|turn| turn.hours);
+    let section = &view(&assessment, &context()).sections[0];
+    assert_eq!(section.turns.len(), 5);
+    assert!(
+        section
+            .turns
+            .iter()
+            .all(|turn| turn.what.contains("You lose £94"))
+    );
+    assert!(
+        section.turns_note.starts_with("There are "),
+        "{}",
+        section.turns_note
+    );
+}
+
+#[test]
+fn passported_help_lost_and_kept() {
+    let offers = [("Depot", 1800, 127_100)];
+    let mut home = LONE_PARENT.clone();
+    home.meals = Some(17);
+    let one = earner(&home, 0, "Ana", Some((1600, 127_100)), &offers);
+    let lost = super::invented::assessment(&home, vec![one]);
+    let pages = words(&lost, &context());
+    says(
+        &pages,
+        "Free school meals: you have it today. It ends at 17 hours a week.",
+    );
+    home.meals = Some(40);
+    let one = earner(&home, 0, "Ana", Some((1600, 127_100)), &offers);
+    let kept = super::invented::assessment(&home, vec![one]);
+    says(
+        &words(&kept, &context()),
+        "No change at the steps shown: Free school meals.",
+    );
+}
+
+#[test]
+fn the_first_with_an_offer_leads_and_each_offer_has_its_answer() {
+    let context = context();
+    let view = view(&couple(), &context);
+    let headings: Vec<&str> = view
+        .sections
+        .iter()
+        .map(|section| section.heading.as_str())
+        .collect();
+    assert_eq!(headings, ["Ana’s hours", "Ben’s hours"]);
+    let steps: Vec<&str> = view.sections[0]
+        .answers
+        .iter()
+        .map(|answer| answer.step.as_str())
+        .collect();
+    assert_eq!(steps, ["Bakery, mornings", "Care home, nights"]);
+    // Not in work today: the rate over the whole step would be an average, so the letter gives the one from there on.
+    assert!(
+        view.sections[0].answers[0]
+            .detail
+            .contains("From there, of each extra £10")
+    );
+    let mut only = context.clone();
+    only.delivery.only = Some(1);
+    let alone = letter_view(&couple(), &only, Detail::Full).expect("a view");
+    assert_eq!(alone.sections.len(), 1);
+    let pages = words(&couple(), &only);
+    assert!(
+        !pages.concat().contains("Bakery"),
+        "the other's offers are not printed"
+    );
+    assert!(
+        !pages.concat().contains("1991-05-02"),
+        "the other's facts are not printed"
+    );
+}
+
+#[test]
+fn a_lower_offer_and_a_level_one() {
+    let offers = [("Shorter week", 1000, 127_100), ("Same pay", 1600, 127_100)];
+    let one = earner(&COUPLE, 0, "", Some((1600, 127_100)), &offers);
+    let view = view(&super::invented::assessment(&COUPLE, vec![one]), &context());
+    let answers = &view.sections[0].answers;
+    assert!(
+        answers[1].kept.contains("less a month"),
+        "{}",
+        answers[1].kept
+    );
+    assert!(
+        answers[1].detail.contains("Pay goes down by £330.46"),
+        "{}",
+        answers[1].detail
+    );
+    assert_eq!(answers[2].kept, "You have the same each month");
+}
+
+#[test]
+fn a_sum_to_reach() {
+    let mut assessment = tenant();
+    let mut said = |first, stays| {
+        assessment.earners[0].target = Some(TargetHours {
+            sum: Money(150_000),
+            first,
+            stays,
+        });
+        let answer = view(&assessment, &context()).sections[0].answers[1].clone();
+        (answer.kept, answer.detail)
+    };
+    assert_eq!(
+        said(Some(Hours(2775)), Some(Hours(3000))),
+        (
+            "27.75 hours a week bring £1,500 a month".to_owned(),
+            "From 30 hours a week on, the sum stays at £1,500 or more.".to_owned()
+        )
+    );
+    assert_eq!(said(None, None).0, "No hours up to 48 bring £1,500 a month");
+    assert!(said(Some(Hours(2775)), None).1.contains("falls below"));
+}
+
+#[test]
+fn changed_and_unconfirmed_amounts_are_named() {
+    let mut assessment = tenant();
+    let amount = |name: &str, confirmed, because: &str| AmountUse {
+        name: name.into(),
+        value: "£411.00 a month".into(),
+        from: "2026-04-06".into(),
+        to: String::new(),
+        source: "Invented Gazette".into(),
+        locator: "p. 2".into(),
+        confirmed,
+        changed_because: because.into(),
+        part: "Invented part".into(),
+    };
+    assessment.amounts.push(amount(
+        "work_allowance",
+        true,
+        "the council asks what a lower one would do",
+    ));
+    assessment.amounts.push(amount("carer_addition", false, ""));
+    let mut context = context();
+    context
+        .labels
+        .insert("amount.carer_addition".into(), "addition for carers".into());
+    let pages = words(&assessment, &context);
+    says(
+        &pages[..1],
+        "Work allowance was set to £411.00 a month, because the council asks what a lower one would do.",
+    );
+    says(
+        &pages[..1],
+        "It shows what they would mean with changed amounts.",
+    );
+    says(
+        &pages,
+        "not yet checked against their source: addition for carers £411.00 a month.",
+    );
+    assert!(!words(&tenant(), &context).concat().contains("Whatif"));
+}
+
+#[test]
+fn folded_items_are_not_named() {
+    let mut context = context();
+    context.delivery.fold = vec!["local_tax_help".to_owned()];
+    let said = words(&lone_parent(), &context).concat();
+    assert!(!said.contains("LocalTaxHelp"), "{said}");
+    assert!(said.contains(&dense("other items")));
+}
+
+#[test]
+fn a_missing_label_has_a_fallback_and_is_listed() {
+    let (assessment, mut context) = (lone_parent(), context());
+    assert_eq!(
+        missing_labels(&assessment, &context.labels),
+        Vec::<String>::new()
+    );
+    for key in [
+        "item.support",
+        "fact.rent",
+        "turn.local_tax_help",
+        "left_out",
+        "office.support",
+        "office.tax",
+    ] {
+        context.labels.remove(key);
+    }
+    let missing = missing_labels(&assessment, &context.labels);
+    assert_eq!(
+        missing,
+        [
+            "fact.rent",
+            "item.support",
+            "left_out",
+            "turn.local_tax_help",
+            "office.*"
+        ]
+    );
+    let pages = words(&assessment, &context);
+    says(&pages, "Local Tax Help changes. You lose £94.");
+    says(&pages, "support");
+}
+
+#[test]
+fn a_name_that_cannot_be_set_is_reported_with_its_field() {
+    let mut context = context();
+    context.delivery.address[0] = "Ana 家".to_owned();
+    let fault = typeset(&mut typesetter(), &tenant(), &context);
+    assert_eq!(
+        fault,
+        Err(StatementError::Glyph {
+            field: "address[0]".to_owned(),
+            character: '家'
+        })
+    );
+}
+
+#[test]
+fn typed_signs_show_as_typed_in_the_letter() {
+    let mut context = context();
+    let odd = "#strong[x] *y* \\ \"z\" $1 <a> @b // c";
+    context.delivery.address[1] = odd.to_owned();
+    context
+        .labels
+        .insert("item.support".into(), "Support & #co".into());
+    let mut assessment = lone_parent();
+    assessment.earners[0].lines[1].terms.offer = "[Job] \"A\" #1".to_owned();
+    let pages = words(&assessment, &context);
+    says(&pages, odd);
+    says(&pages, "Support & #co");
+    says(&pages, "[Job] \"A\" #1");
+}
+
+#[test]
+fn a_long_letter_is_shortened_not_refused() {
+    let offers = [
+        ("Bakery, mornings", 2000, 128_000),
+        ("Care home, nights and every second weekend", 3000, 141_250),
+        ("Garden centre", 2400, 131_000),
+    ];
+    let first = earner(&COUPLE, 0, "Ana", Some((800, 127_100)), &offers);
+    let second = earner(&COUPLE, 1, "Ben", Some((3000, 127_100)), &offers);
+    let mut assessment = super::invented::assessment(&COUPLE, vec![first, second]);
+    for number in 0..40 {
+        assessment.facts.push(FactUse {
+            kind: "adult".into(),
+            of: "Ben".into(),
+            name: format!("further_fact_number_{number}"),
+            value: if number % 4 == 0 {
+                "yes".into()
+            } else {
+                "no".into()
+            },
+            known: 'a',
+        });
+    }
+    let mut typesetter = typesetter();
+    let context = context();
+    let full = view(&assessment, &context);
+    let long = typesetter.letter(&full, &context.texts, context.issued);
+    assert!(
+        matches!(
+            long,
+            Err(StatementError::TooLong {
+                pages: 5..,
+                limit: PAGE_LIMIT
+            })
+        ),
+        "{long:?}"
+    );
+    let made = typeset(&mut typesetter, &assessment, &context).expect("a shorter letter");
+    assert!(made.pages <= PAGE_LIMIT);
+}
+
+#[test]
+fn the_pdf_is_tagged_and_says_its_standards() {
+    let made = typeset(&mut typesetter(), &couple(), &context()).expect("bytes");
+    let text = String::from_utf8_lossy(&made.bytes).into_owned();
+    for part in [
+        "<pdfuaid:part>1</pdfuaid:part>",
+        "<pdfaid:part>2</pdfaid:part>",
+        "<pdfaid:conformance>A</pdfaid:conformance>",
+        "What you keep if one of you works more",
+        "/MarkInfo",
+    ] {
+        assert!(text.contains(part), "no {part}");
+    }
+}
+
+#[test]
+fn letter_paper_and_no_address() {
+    let mut context = context();
+    context.delivery.paper = "us-letter".to_owned();
+    context.delivery.address.clear();
+    let pages = words(&tenant(), &context);
+    says(&pages[..1], "Statement for Ana");
+    let made = typeset(&mut typesetter(), &tenant(), &context).expect("bytes");
+    assert!(made.pages <= 3);
+}
+
+/// Two-page letters a second in one process: run with `--nocapture` to read the figure.
+#[test]
+fn a_letter_is_quick() {
+    let (mut typesetter, assessment) = (typesetter(), tenant());
+    let mut times: Vec<_> = (0..50)
+        .map(|turn| {
+            let mut context = context();
+            context.number = format!("7K2Q-H-{turn:04}");
+            let begin = std::time::Instant::now();
+            typeset(&mut typesetter, &assessment, &context).expect("bytes");
+            begin.elapsed()
+        })
+        .collect();
+    times.sort();
+    println!("median of 50 letters: {:?}", times[25]);
+    assert!(
+        times[25] < std::time::Duration::from_secs(1),
+        "a letter took {:?}",
+        times[25]
+    );
+}
