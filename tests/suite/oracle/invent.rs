@@ -183,6 +183,8 @@ impl Maker<'_> {
             self.part = self.luck.below(2);
             self.shown(&named);
         }
+        // Both dates are used.
+        self.say("note", Some(HOUSEHOLD), "later", "note later where assessment at least 2026-04-06".into());
         if self.luck.percent(30) {
             let when = self.piece(Ty::YesNo, &[HOUSEHOLD], 2, Room { degree: 2, steady: false });
             self.say("hold", Some(HOUSEHOLD), "", format!("hold where {} because \"it is so\"", when.text));
@@ -626,7 +628,7 @@ impl Maker<'_> {
         let words: Vec<String> = keys.iter().map(|key| key.map_or("count".into(), |at| format!("choice_{at}"))).collect();
         let gives = self.type_text(ty);
         self.say("table", None, &name, format!("table {name} by {} gives {gives}", words.join(", ")));
-        let low = self.luck.between(-1, 2);
+        let low = self.luck.between(0, 2);
         let mut combinations: Vec<Vec<String>> = vec![Vec::new()];
         for key in &keys {
             let values: Vec<String> = match key {
@@ -945,7 +947,7 @@ fn words(text: &str) -> BTreeSet<&str> {
 
 impl Invented {
     fn uses(&self, name: &str) -> bool {
-        self.statements.iter().any(|s| s.name != name && words(&s.text).contains(name))
+        self.statements.iter().any(|s| s.name != name && (words(&s.text).contains(name) || s.per.as_deref() == Some(name)))
             || self.statements.iter().any(|s| s.name == name && s.text.split_once('=').is_some_and(|(_, body)| words(body).contains(name)))
     }
 
@@ -954,7 +956,7 @@ impl Invented {
         loop {
             let before = self.statements.len() + self.amounts.len();
             let all = self.clone();
-            self.statements.retain(|s| matches!(s.keyword, "record" | "choice" | "item" | "hold" | "note") || all.uses(&s.name));
+            self.statements.retain(|s| matches!(s.keyword, "item" | "hold" | "note") || all.uses(&s.name));
             self.amounts.retain(|(name, _)| all.uses(name));
             self.tables.retain(|(name, _)| all.statements.iter().any(|s| s.name == *name));
             // A hold that asks for what is gone goes too.
