@@ -4,7 +4,7 @@
 use super::book::{ADULT, CHILD, HOUSEHOLD, JOB, OTHER};
 use super::luck::Luck;
 use hourworth::load::{Files, PackFiles, TextFile};
-use std::collections::BTreeSet;
+use std::collections::{BTreeSet, HashMap};
 
 /// Adults, children and other adults together.
 const MEMBER: usize = 1000;
@@ -178,7 +178,8 @@ impl Maker<'_> {
         // Whatever nothing needs is shown.
         let figures: Vec<Named> = self.names.iter().filter(|n| n.name.starts_with("figure")).cloned().collect();
         let twins = |name: &str| figures.iter().filter(|n| n.name == name).count() > 1;
-        let unused: Vec<Named> = figures.iter().filter(|n| twins(&n.name) || !self.out.uses(&n.name)).cloned().collect();
+        let uses = self.out.uses();
+        let unused: Vec<Named> = figures.iter().filter(|n| twins(&n.name) || !uses.contains_key(n.name.as_str())).cloned().collect();
         for named in unused {
             self.part = self.luck.below(2);
             self.shown(&named);
@@ -946,9 +947,17 @@ fn words(text: &str) -> BTreeSet<&str> {
 }
 
 impl Invented {
-    fn uses(&self, name: &str) -> bool {
-        self.statements.iter().any(|s| s.name != name && (words(&s.text).contains(name) || s.per.as_deref() == Some(name)))
-            || self.statements.iter().any(|s| s.name == name && s.text.split_once('=').is_some_and(|(_, body)| words(body).contains(name)))
+    /// The statements that hold each word, but for the name that a statement declares where it declares it.
+    fn uses(&self) -> HashMap<&str, usize> {
+        let mut uses: HashMap<&str, usize> = HashMap::new();
+        for statement in &self.statements {
+            let body = if statement.name.is_empty() { statement.text.as_str() } else { statement.text.split_once(statement.name.as_str()).map_or("", |(_, rest)| rest) };
+            let per = statement.per.as_deref().unwrap_or("");
+            for word in words(body).into_iter().chain([per]) {
+                *uses.entry(word).or_default() += 1;
+            }
+        }
+        uses
     }
 
     /// Leaves out what nothing needs.
@@ -956,8 +965,9 @@ impl Invented {
         loop {
             let before = self.statements.len() + self.amounts.len();
             let all = self.clone();
-            self.statements.retain(|s| matches!(s.keyword, "item" | "hold" | "note") || all.uses(&s.name));
-            self.amounts.retain(|(name, _)| all.uses(name));
+            let uses = all.uses();
+            self.statements.retain(|s| matches!(s.keyword, "item" | "hold" | "note") || uses.contains_key(s.name.as_str()));
+            self.amounts.retain(|(name, _)| uses.contains_key(name.as_str()));
             self.tables.retain(|(name, _)| all.statements.iter().any(|s| s.name == *name));
             // A hold that asks for what is gone goes too.
             self.statements.retain(|s| s.keyword != "hold" || words(&s.text).iter().all(|w| !w.starts_with("amount_") || all.amounts.iter().any(|(name, _)| name == w)));
