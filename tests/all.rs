@@ -4,6 +4,7 @@ mod suite {
     mod batch;
     mod case;
     mod cli;
+    mod published;
     mod statement;
     mod uk;
 }
