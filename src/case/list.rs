@@ -132,6 +132,9 @@ pub enum Needed {
     WhereUsed,
 }
 
+/// How many other rows of one reference a message names.
+const SHARED_ROWS: usize = 8;
+
 impl<'a> ListReader<'a> {
     /// Opens the tables of a list and reads their headers. Faults of the whole list are in [`ListReader::list_faults`] from then on: a
     /// caller that prints stops there; a caller that only checks reads on for the faults of the households.
@@ -268,7 +271,8 @@ impl<'a> ListReader<'a> {
         let mut shared = vec![];
         if !others.is_empty() {
             shared.push(household.row());
-            shared.extend(others.iter().map(Record::row));
+            // A message names a few of the rows; a broken list may repeat one reference thousands of times.
+            shared.extend(others.iter().map(Record::row).take(SHARED_ROWS));
         }
         let checks = Checks::new(
             self.schema,

@@ -69,7 +69,11 @@ pub(super) fn print(args: &PrintArgs) -> Result<Exit, Failure> {
     let single = prepared.list.is_single();
     let entries = readings.map(|reading| Ok(entry(reading?, single)));
     let mut told = Told::new(survey.households);
-    let ended = run(&folder, &plan, entries, &StopFlag::default(), &mut told);
+    let stop = StopFlag::default();
+    let asked = stop.clone();
+    // Without the handler the run can still be stopped, only less politely.
+    let _ = ctrlc::set_handler(move || asked.stop());
+    let ended = run(&folder, &plan, entries, &stop, &mut told);
     told.end();
     let summary = ended?;
     if let Some(zip) = &args.zip {

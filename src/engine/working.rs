@@ -143,10 +143,6 @@ fn shown(value: Fraction, unit: &str, words: &[String]) -> String {
             format!("{}%", text.trim_end_matches('0').trim_end_matches('.'))
         }
         "hours" => format!("{} hours", trimmed(4)),
-        "date" => i32::try_from(value.floor())
-            .ok()
-            .and_then(chrono::NaiveDate::from_epoch_days)
-            .map_or_else(String::new, |d| d.format("%Y-%m-%d").to_string()),
         "money" => value.decimal(2),
         _ if unit.starts_with("money") => {
             let exact_pennies = (value * Fraction::whole(100)).denominator() == 1;

@@ -17,6 +17,13 @@ pub struct Fraction {
 pub(crate) fn gcd(a: i128, b: i128) -> i128 {
     let (mut a, mut b) = (a.unsigned_abs(), b.unsigned_abs());
     while b != 0 {
+        // A division of 64 bits is several times faster, and most numbers get there at once.
+        if let (Ok(mut x), Ok(mut y)) = (u64::try_from(a), u64::try_from(b)) {
+            while y != 0 {
+                (x, y) = (y, x % y);
+            }
+            return i128::from(x);
+        }
         (a, b) = (b, a % b);
     }
     i128::try_from(a).expect("a common divisor fits")

@@ -9,8 +9,10 @@ mod book;
 mod bound;
 mod compare;
 mod homes;
+mod invent;
 mod luck;
 mod reader;
+mod small_packs;
 mod text;
 mod united_kingdom;
 

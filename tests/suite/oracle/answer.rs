@@ -65,8 +65,8 @@ impl Value {
 pub enum Course {
     /// On the pack, the dates and who lives there alone: it has this value.
     Fixed(Value),
-    /// On facts too.
-    Steady,
+    /// On facts too; the fact or figure (kind, record, name) where it is one as it stands.
+    Steady(Option<(usize, usize, String)>),
     /// On the hours of the varied job too.
     Varies,
 }
@@ -76,10 +76,15 @@ impl Course {
         matches!(self, Course::Fixed(value) if value.clone().truth() == yes)
     }
 
+    /// Whether two courses are surely one and the same value.
+    fn same(&self, other: &Course) -> bool {
+        self == other && !matches!(self, Course::Steady(None) | Course::Varies)
+    }
+
     fn rank(&self) -> u8 {
         match self {
             Course::Fixed(_) => 0,
-            Course::Steady => 1,
+            Course::Steady(_) => 1,
             Course::Varies => 2,
         }
     }
@@ -89,8 +94,10 @@ impl Course {
 fn either_course(when: &Course, yes: Course, no: Course) -> Course {
     match when {
         Course::Fixed(known) => if known.clone().truth() { yes } else { no },
-        Course::Steady | Course::Varies if matches!(yes, Course::Fixed(_)) && yes == no => yes,
-        Course::Steady | Course::Varies => [when.clone(), yes, no].into_iter().max_by_key(Course::rank).expect("three courses"),
+        Course::Steady(_) | Course::Varies if yes.same(&no) => yes,
+        Course::Steady(_) | Course::Varies => {
+            if [when, &yes, &no].iter().any(|c| **c == Course::Varies) { Course::Varies } else { Course::Steady(None) }
+        }
     }
 }
 
@@ -412,11 +419,11 @@ impl<'a> Oracle<'a> {
                     for (rate, limit) in &ladder.lines {
                         let rate = self.value(rate, inside, run).number();
                         let high = match limit {
-                            // A limit below the one before leaves its line empty.
-                            Limit::UpTo(limit) | Limit::Below(limit) => self.value(limit, inside, run).number().max(low.clone()),
-                            Limit::Beyond => all.clone().max(low.clone()),
+                            Limit::UpTo(limit) | Limit::Below(limit) => self.value(limit, inside, run).number(),
+                            Limit::Beyond => all.clone(),
                         };
-                        // What of it lies between the two limits.
+                        // What of it lies between the two limits. A limit below the one before it leaves an empty band.
+                        let high = high.max(low.clone());
                         let slice = all.clone().min(high.clone()) - &low;
                         total += slice.max(Q::zero()) * rate;
                         low = high;
@@ -503,10 +510,14 @@ impl<'a> Oracle<'a> {
     }
 
     fn record_course(&self, name: &str, kind: usize, record: usize) -> Course {
+        let itself = || Course::Steady(Some((kind, record, name.to_owned())));
         match self.book.names[kind].get(name) {
-            Some(figure) => self.figure_course(*figure, record),
+            Some(figure) => match self.figure_course(*figure, record) {
+                Course::Steady(None) => itself(),
+                course => course,
+            },
             None if (kind, record) == (JOB, self.home.varied_job) && name == "hours" => Course::Varies,
-            None => Course::Steady,
+            None => itself(),
         }
     }
 
@@ -526,7 +537,7 @@ impl<'a> Oracle<'a> {
     fn joined(&self, expr: &Expr, place: &Place<'_>, parts: impl IntoIterator<Item = Course>) -> Course {
         match parts.into_iter().max_by_key(Course::rank) {
             Some(Course::Varies) => Course::Varies,
-            Some(Course::Steady) => Course::Steady,
+            Some(Course::Steady(_)) => Course::Steady(None),
             Some(Course::Fixed(_)) | None => Course::Fixed(self.value(expr, place, &self.nowhere())),
         }
     }
@@ -567,7 +578,7 @@ impl<'a> Oracle<'a> {
                 (_, None) => of(failing.as_ref().expect("something stands in")),
             },
             // The keys do not vary, by the checker.
-            Expr::Lookup { .. } | Expr::Years { .. } => Course::Steady,
+            Expr::Lookup { .. } | Expr::Years { .. } => Course::Steady(None),
             Expr::Where { when, give, otherwise } => match of(when) {
                 known @ Course::Fixed(_) => of(if known.is(true) { give } else { otherwise }),
                 unknown => either_course(&unknown, of(give), of(otherwise)),
@@ -617,11 +628,15 @@ impl<'a> Oracle<'a> {
                     return led.map_or_else(|| of(failing), |r| inside(kind, r, give));
                 }
                 let mut parts: Vec<Course> = could.iter().map(|(r, _)| inside(kind, *r, give)).collect();
+                parts.push(of(failing));
+                // Whoever leads, it comes to the same.
+                if parts.iter().all(|part| part.same(&parts[0])) {
+                    return parts.swap_remove(0);
+                }
                 if could.len() > 1 {
                     parts.extend(keys);
                 }
                 parts.extend(could.into_iter().map(|(_, c)| c));
-                parts.push(of(failing));
                 self.joined(expr, place, parts)
             }
             Expr::Place(over) => {
@@ -654,7 +669,7 @@ impl<'a> Oracle<'a> {
                 let by_fact = matches!(&**inner, Expr::Pair { sign: Sign::Divide, right, .. } if !self.plain(right, place));
                 match of(inner) {
                     // A quotient by what is no plain number counts as resting on facts.
-                    Course::Fixed(_) if by_fact => Course::Steady,
+                    Course::Fixed(_) if by_fact => Course::Steady(None),
                     course => self.joined(expr, place, [course]),
                 }
             }

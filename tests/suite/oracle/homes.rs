@@ -16,6 +16,8 @@ pub struct Village<'a> {
     /// The day of the list.
     pub day: i64,
     pub most_children: usize,
+    /// The highest wage, in ten-thousandths.
+    pub most_pay: i64,
 }
 
 /// The values of all amounts, and of those by the month, week and year.
@@ -88,8 +90,9 @@ impl Village<'_> {
                 1..=7 => luck.between(500, 4000) * 100,
                 8 => luck.between(50_000, 400_000),
                 9 | 10 => luck.between(4000, 30_000) * 100,
-                _ => fact.max,
-            },
+                _ => self.most_pay,
+            }
+            .min(self.most_pay),
             _ => match (fact.need, luck.percent(50)) {
                 (Need::Default(value), true) => value,
                 _ => self.any(luck, kind, fact),
@@ -201,4 +204,24 @@ pub fn smaller(schema: &Schema, household: &Household) -> Vec<Household> {
         }
     }
     out
+}
+
+/// A household for a schema that lacks some of the facts or kinds.
+pub fn project(from: &Schema, to: &Schema, household: &Household) -> Household {
+    let mut copy = household.clone();
+    copy.instances = to
+        .kinds
+        .iter()
+        .map(|kind| {
+            let old = from.kinds.iter().position(|k| k.name == kind.name).expect("no kind is new");
+            let place = |fact: &FactSpec| from.kinds[old].facts.iter().position(|f| f.name == fact.name).expect("no fact is new");
+            let records = household.instances[old].iter();
+            records.map(|r| Instance { values: kind.facts.iter().map(|f| r.values[place(f)]).collect(), ..r.clone() }).collect()
+        })
+        .collect();
+    let place = |fact: &FactSpec| from.kinds[JOB].facts.iter().position(|f| f.name == fact.name).expect("no fact is new");
+    for offer in &mut copy.offers {
+        offer.values = to.kinds[JOB].facts.iter().map(|f| offer.values[place(f)]).collect();
+    }
+    copy
 }

@@ -38,7 +38,7 @@ fn draw(seed: u64, book: &Book, pack: &Pack, schema: &Schema) -> Drawn {
         _ => (luck.pick(&starts) - 1).max(from),
     };
     let payment = if luck.percent(60) { day } else { (day + luck.between(-40, 40)).clamp(from, to) };
-    let village = Village { schema, marks: marks(book), day, most_children: 5 };
+    let village = Village { schema, marks: marks(book), day, most_children: 5, most_pay: 20_000_000 };
     let household = village.household(&mut luck);
     let earner = luck.below(household.instances[ADULT].len());
     let offered = household.offers.first().is_some_and(|offer| offer.owner == earner);
