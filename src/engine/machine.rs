@@ -249,6 +249,20 @@ impl<'m> Special<'m> {
         program.items.iter().map(|item| item_money(item, values[item.reg.position()], program.steps[item.reg].scale.exact)).collect()
     }
 
+    /// Items that would be due at these hours and are not claimed: position and sum.
+    pub fn unclaimed(&self, hours: Hours) -> Vec<(usize, Money)> {
+        let mut values = Vec::new();
+        self.fill(hours, &mut values);
+        let program = &self.machine.program;
+        let money = |item: &Item, reg: crate::program::Reg| item_money(item, values[reg.position()], program.steps[reg].scale.exact);
+        let items = program.items.iter().enumerate();
+        items
+            .filter_map(|(at, item)| Some((at, money(item, item.due?), money(item, item.reg))))
+            .filter(|(_, due, counted)| due.0 > 0 && counted.0 == 0)
+            .map(|(at, due, _)| (at, due))
+            .collect()
+    }
+
     /// Reasons to hold the household, at these hours.
     pub fn holds(&self, hours: Hours) -> Vec<String> {
         let mut values = Vec::new();

@@ -259,7 +259,9 @@ impl Walker<'_, '_> {
             if first == Ordering::Equal { c[2].cmp(&0) } else { first }
         };
         // The whole number k of the stair: values from k - shift to k + 1 - shift (or, where steps end there, from k - 1 to k).
-        let k = match (on_edge, side, ends) {
+        // What neither rises nor falls stays on the edge, on the side where the edge itself belongs.
+        let stand = if rising == Ordering::Equal { Side::At } else { side };
+        let k = match (on_edge, stand, ends) {
             (false, _, false) => shifted.floor(),
             (false, _, true) => shifted.ceil() - if shift.is_zero() { 0 } else { 1 },
             (true, Side::At, false) => {

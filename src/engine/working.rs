@@ -43,7 +43,7 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
             let reg = line.reg?;
             Some(Worked {
                 part: line.part.clone(),
-                name: line.name.clone(),
+                name: if line.as_if { format!("{} as if", line.name) } else { line.name.clone() },
                 of: (line.kind as usize, line.instance as usize),
                 exact: exact(reg),
                 value: shown(exact(reg), &line.unit, &line.words),
@@ -136,6 +136,7 @@ fn shown(value: Fraction, unit: &str, words: &[String]) -> String {
         if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.').to_owned() } else { text }
     };
     match unit {
+        "date" => super::fact_text(&crate::case::FactType::Date, i64::try_from(value.floor()).unwrap_or(0)),
         "yesno" => if value.is_zero() { "no" } else { "yes" }.to_owned(),
         "rate" => {
             let percent = value * Fraction::whole(100);

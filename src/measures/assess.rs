@@ -4,7 +4,7 @@ use super::couple::couple;
 use super::line::{Asked, Worked, work_out};
 use super::points::{Sums, Totals, point};
 use super::split::{Quarters, rise};
-use super::types::{AmountUse, Assessment, EarnerResult, FactUse, ItemInfo, JobTerms, OfferMeasures, WorkingLine};
+use super::types::{AmountUse, Assessment, EarnerResult, FactUse, ItemInfo, JobTerms, OfferMeasures, Unclaimed, WorkingLine};
 use crate::case::{ADULT, Household, JOB, Known, Schema};
 use crate::engine::{JobChoice, Machine, Setting, Special, Used, fact_text, working};
 use crate::num::{Hours, Money};
@@ -63,6 +63,7 @@ pub fn assess(
     let mut earners = Vec::new();
     let mut items = Vec::new();
     let mut table = None;
+    let mut unclaimed = Vec::new();
     let mut gathered = Gathered::default();
     for adult in 0..household.instances[ADULT].len() {
         let Some(setting) = Setting::new(household, adult, JobChoice::Today) else { continue };
@@ -83,6 +84,7 @@ pub fn assess(
         if items.is_empty() {
             items = item_infos(&special);
             table = couple(household, &machine);
+            unclaimed = special.unclaimed(today).into_iter().map(|(item, due)| Unclaimed { item, due }).collect();
             gathered.add(&special, &special.used(&[Hours(0), today]));
         }
         if let Some(result) = earner(household, &machine, &special, &setting, request, wanted, &mut gathered) {
@@ -93,7 +95,7 @@ pub fn assess(
         return Ok(Verdict::Held(reasons));
     }
     let (facts, amounts) = gathered.finish(household, schema);
-    Ok(Verdict::Assessed(Box::new(Assessment { reference: household.reference.clone(), items, earners, couple: table, notes, facts, amounts })))
+    Ok(Verdict::Assessed(Box::new(Assessment { reference: household.reference.clone(), items, earners, couple: table, unclaimed, notes, facts, amounts })))
 }
 
 fn item_infos(special: &Special<'_>) -> Vec<ItemInfo> {

@@ -24,7 +24,7 @@ pub(super) enum BodyOf {
 }
 
 enum Done {
-    Definition(usize, Option<super::tree::Node>),
+    Definition(usize, Option<super::tree::Node>, Option<super::tree::Node>),
     Bands(usize, Vec<(super::tree::Node, Option<super::tree::Node>)>),
     Scale(usize, Vec<(super::tree::Node, Limit)>),
     Condition { hold: bool, condition: Condition },
@@ -58,7 +58,11 @@ impl Declarer<'_> {
                 (StatementKind::Figure { expr, .. } | StatementKind::Item { expr, .. }, BodyOf::Definition(at)) => {
                     let definition = &self.pack.definitions[at];
                     let node = context(definition.kind).wanted(expr, definition.ty, &mut faults);
-                    done.push(Done::Definition(at, node));
+                    let claimed = match &statement.what {
+                        StatementKind::Item { claimed: Some(claimed), .. } => context(definition.kind).wanted(claimed, Ty::YesNo, &mut faults),
+                        _ => None,
+                    };
+                    done.push(Done::Definition(at, node, claimed));
                 }
                 (StatementKind::Bands { bands, name, .. }, BodyOf::Bands(at)) => {
                     let decl = &self.pack.bands[at];
@@ -106,7 +110,10 @@ impl Declarer<'_> {
         drop(names);
         for one in done {
             match one {
-                Done::Definition(at, node) => self.pack.definitions[at].body = node,
+                Done::Definition(at, node, claimed) => {
+                    self.pack.definitions[at].body = node;
+                    self.pack.definitions[at].claimed = claimed;
+                }
                 Done::Bands(at, bands) => self.pack.bands[at].bands = bands,
                 Done::Scale(at, steps) => self.pack.scales[at].steps = steps,
                 Done::Condition { hold: true, condition } => self.pack.holds.push(condition),

@@ -98,6 +98,10 @@ impl<'a> Context<'a> {
                 make(Ty::Money(period), What::Fixed(*value))
             }
             ExprKind::Day(day) => make(Ty::Date, What::Fixed(Fraction::whole(i128::from(*day)))),
+            ExprKind::YesNo(value) if self.yes_no_word(*value, hint).is_some() => {
+                let word = self.yes_no_word(*value, hint)?;
+                make(hint?, What::Fixed(Fraction::whole(word as i128)))
+            }
             ExprKind::YesNo(value) => make(Ty::YesNo, What::Fixed(Fraction::whole(i128::from(*value)))),
             ExprKind::Name(name) => self.name(name, hint, faults),
             ExprKind::Of { name, whose, failing } => self.of(name, whose, failing.as_deref(), span, faults),
@@ -168,6 +172,7 @@ impl<'a> Context<'a> {
                     self.absent(name, "is not an amount", "a name of `amounts.csv`", known, faults)
                 }
             },
+            ExprKind::AsIf { name, changes } => self.as_if(name, changes, span, faults),
             ExprKind::Binary { op, left, right } => self.binary(*op, left, right, span, faults),
             ExprKind::Round { of, direction, unit, manner } => {
                 if let ExprKind::Binary { op: BinaryOp::Divide, left, right } = &of.kind {

@@ -355,6 +355,7 @@ impl Declarer<'_> {
                     item,
                     span,
                     name_span: name.span,
+                    claimed: None,
                     body: None,
                 });
             }

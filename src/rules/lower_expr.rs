@@ -48,6 +48,24 @@ impl Lowering<'_> {
                 self.went_in(format!("{text} of partner"), reg, node.ty);
                 reg
             }
+            What::AsIf { figure, kind, level, changes, text } => {
+                let changes = changes
+                    .iter()
+                    .map(|change| {
+                        let (from, instance) = scopes[change.level];
+                        let record = self.climb(from, instance, change.kind).expect("a checked fact can be reached");
+                        ((change.kind, record, change.fact), self.node(&change.value, scopes))
+                    })
+                    .collect();
+                let (from, instance) = scopes[*level];
+                let instance = self.climb(from, instance, *kind).expect("a checked figure can be reached");
+                let changed = self.changed(changes);
+                let before = std::mem::replace(&mut self.world, changed);
+                let reg = self.figure(*figure, instance);
+                self.world = before;
+                self.went_in(format!("{text} as if"), reg, node.ty);
+                reg
+            }
             What::Lookup { table, dated, keys } => {
                 let keys = keys.iter().map(|key| self.node(key, scopes)).collect();
                 let id = self.table(*table, *dated);
@@ -160,12 +178,21 @@ impl Lowering<'_> {
                 let inner = self.node(inner, scopes);
                 self.builder.not(inner)
             }
+            // Where the left side settles it, the right one is not needed.
             What::Both(left, right) => {
-                let (left, right) = (self.node(left, scopes), self.node(right, scopes));
+                let left = self.node(left, scopes);
+                if left == self.builder.yes_no(false) {
+                    return left;
+                }
+                let right = self.node(right, scopes);
                 self.builder.both(left, right)
             }
             What::Either(left, right) => {
-                let (left, right) = (self.node(left, scopes), self.node(right, scopes));
+                let left = self.node(left, scopes);
+                if left == self.builder.yes_no(true) {
+                    return left;
+                }
+                let right = self.node(right, scopes);
                 self.builder.either(left, right)
             }
         }

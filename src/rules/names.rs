@@ -4,7 +4,7 @@ use super::ast::{Expr, Ident};
 use super::check::{Context, Faults};
 use super::declare::{kinds_of_word, with_near};
 use super::pack::{ADULT, Pack};
-use super::tree::{Node, Over, Target, What};
+use super::tree::{Changed, Node, Over, Target, What};
 use super::types::Ty;
 use crate::diag::{Diagnostic, nearest};
 use crate::num::Fraction;
@@ -203,6 +203,48 @@ impl Context<'_> {
                 .expected(format!("a place under `per {}`", self.pack.kinds[kind].name)),
         );
         None
+    }
+
+    /// The place of `yes` or `no` among the words of a choice that is wanted here.
+    pub(super) fn yes_no_word(&self, value: bool, hint: Option<Ty>) -> Option<usize> {
+        let Some(Ty::Choice(at)) = hint else { return None };
+        self.pack.choices[at].words.iter().position(|w| w == if value { "yes" } else { "no" })
+    }
+
+    /// A figure once more under changed facts.
+    pub(super) fn as_if(&mut self, name: &Ident, changes: &[(Ident, Expr)], span: Span, faults: &mut Faults) -> Option<Node> {
+        let mut changed = Vec::new();
+        let mut whole = true;
+        for (fact, value) in changes {
+            match self.find(&fact.text) {
+                Some((level, _, Target::Fact { kind, fact: at }, ty)) => match self.wanted(value, ty, faults) {
+                    Some(value) => changed.push(Changed { kind, fact: at, level, value }),
+                    None => whole = false,
+                },
+                Some((_, _, Target::Figure(_), _)) => {
+                    faults.push(Diagnostic::fault(fact.span, format!("`{}` is a figure", fact.text)).expected("a fact to change"));
+                    whole = false;
+                }
+                None => {
+                    self.unknown(fact, None, faults);
+                    whole = false;
+                }
+            }
+        }
+        match self.find(&name.text) {
+            Some((level, kind, Target::Figure(figure), ty)) if whole => {
+                Some(Node { ty, span, what: What::AsIf { figure, kind, level, changes: changed, text: name.text.clone() } })
+            }
+            Some((_, _, Target::Figure(_), _)) => None,
+            Some((_, _, Target::Fact { .. }, _)) => {
+                faults.push(Diagnostic::fault(name.span, format!("`{}` is a fact", name.text)).expected("a figure or item to work out once more"));
+                None
+            }
+            None => {
+                self.unknown(name, None, faults);
+                None
+            }
+        }
     }
 
     pub(super) fn lookup(&mut self, table: &Ident, keys: &[Expr], span: Span, faults: &mut Faults) -> Option<Node> {

@@ -392,6 +392,12 @@ impl Parser<'_> {
         };
         self.sign('=')?;
         let expr = self.expression()?;
+        let claimed = if self.take_word("claimed") {
+            self.word("where")?;
+            Some(self.expression()?)
+        } else {
+            None
+        };
         let ends = self.peek().kind == TokenKind::End || self.peek().first;
         if !self.at_word("see") && !ends {
             return self.unexpected("`see \"…\"`");
@@ -406,7 +412,7 @@ impl Parser<'_> {
         }
         self.next();
         let law = self.text("a law reference as a text")?;
-        Ok(StatementKind::Item { name, kind, expr, law })
+        Ok(StatementKind::Item { name, kind, expr, claimed, law })
     }
 
     /// `band` and `step` lines belong to the `bands` or `scale` right above them.

@@ -48,9 +48,9 @@ pub(super) const STATEMENTS: [&str; 16] = [
 ];
 
 /// Words that cannot be names because the language uses them inside statements.
-pub(super) const RESERVED: [&str; 42] = [
-    "a", "above", "an", "and", "any", "as", "ask", "at", "because", "below", "beyond", "by", "charged", "converted", "count", "dated",
-    "default", "every", "failing", "first", "from", "give", "gives", "half", "is", "larger", "limited", "missing", "money", "not", "of",
+pub(super) const RESERVED: [&str; 44] = [
+    "a", "above", "an", "and", "any", "as", "ask", "at", "because", "below", "beyond", "by", "charged", "claimed", "converted", "count", "dated",
+    "default", "every", "failing", "first", "from", "give", "gives", "half", "if", "is", "larger", "limited", "missing", "money", "not", "of",
     "or", "otherwise", "over", "partner", "place", "placed", "raised", "required", "rounded", "where", "with",
 ];
 

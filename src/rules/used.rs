@@ -125,8 +125,8 @@ fn reached(pack: &Pack) -> Used {
         used.kinds.insert(definition.kind);
         // A figure of every member is used where it is used of one.
         waiting.extend(&by_span[&definition.span]);
-        if let Some(body) = &definition.body {
-            note(pack, body, &mut used, &mut waiting);
+        for node in definition.body.iter().chain(&definition.claimed) {
+            note(pack, node, &mut used, &mut waiting);
         }
     }
     used
@@ -141,6 +141,10 @@ fn note(pack: &Pack, node: &Node, used: &mut Used, waiting: &mut Vec<usize>) {
                 used.facts.insert((*kind, *fact));
             }
         },
+        What::AsIf { figure, changes, .. } => {
+            waiting.push(*figure);
+            used.facts.extend(changes.iter().map(|c| (c.kind, c.fact)));
+        }
         What::Amount { amount, dated } => {
             used.amounts.insert(*amount);
             used.dates.insert(*dated);

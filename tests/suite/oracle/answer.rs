@@ -78,7 +78,18 @@ impl Course {
 
     /// Whether two courses are surely one and the same value.
     fn same(&self, other: &Course) -> bool {
-        self == other && !matches!(self, Course::Steady(None) | Course::Varies)
+        match (self, other) {
+            (Course::Fixed(Value::Word(one)), Course::Fixed(Value::Word(two))) => one == two,
+            (Course::Fixed(Value::Word(_)), _) | (_, Course::Fixed(Value::Word(_))) => false,
+            // Yes is 1 and no is 0.
+            (Course::Fixed(one), Course::Fixed(two)) => one.clone().number() == two.clone().number(),
+            (Course::Steady(Some(one)), Course::Steady(Some(two))) => one == two,
+            (_, _) => false,
+        }
+    }
+
+    fn is_number(&self, wanted: i128) -> bool {
+        matches!(self, Course::Fixed(Value::Number(value)) if *value == whole(wanted))
     }
 
     fn rank(&self) -> u8 {
@@ -583,7 +594,11 @@ impl<'a> Oracle<'a> {
                 known @ Course::Fixed(_) => of(if known.is(true) { give } else { otherwise }),
                 unknown => either_course(&unknown, of(give), of(otherwise)),
             },
-            Expr::Larger(list) | Expr::Smaller(list) => self.joined(expr, place, list.iter().map(of)),
+            Expr::Larger(list) | Expr::Smaller(list) => {
+                let mut parts: Vec<Course> = list.iter().map(of).collect();
+                // The larger of one value, or of one value twice, is that value.
+                if parts.iter().all(|part| part.same(&parts[0])) { parts.swap_remove(0) } else { self.joined(expr, place, parts) }
+            }
             Expr::SumOver { over, body } => {
                 let mut parts = Vec::new();
                 for kind in self.book.kinds_of(&over.kind) {
@@ -594,7 +609,8 @@ impl<'a> Oracle<'a> {
                         }
                     }
                 }
-                self.joined(expr, place, parts)
+                parts.retain(|part| !part.is_number(0));
+                if parts.len() == 1 { parts.swap_remove(0) } else { self.joined(expr, place, parts) }
             }
             Expr::CountOf(over) => {
                 let mut parts = Vec::new();
@@ -659,11 +675,16 @@ impl<'a> Oracle<'a> {
             }
             Expr::Pair { sign, left, right } => {
                 let (left, right) = (of(left), of(right));
-                let is_nothing = |c: &Course| matches!(c, Course::Fixed(Value::Number(value)) if value.is_zero());
-                if *sign == Sign::Multiply && (is_nothing(&left) || is_nothing(&right)) {
-                    return nothing;
+                match sign {
+                    Sign::Multiply if left.is_number(0) || right.is_number(0) => nothing,
+                    // Nothing more and once over leave a value as it stands.
+                    Sign::Add | Sign::Subtract if right.is_number(0) => left,
+                    Sign::Multiply | Sign::Divide if right.is_number(1) => left,
+                    Sign::Add if left.is_number(0) => right,
+                    Sign::Multiply if left.is_number(1) => right,
+                    Sign::LimitedTo | Sign::RaisedTo if left.same(&right) => left,
+                    _ => self.joined(expr, place, [left, right]),
                 }
-                self.joined(expr, place, [left, right])
             }
             Expr::Rounded { of: inner, .. } => {
                 let by_fact = matches!(&**inner, Expr::Pair { sign: Sign::Divide, right, .. } if !self.plain(right, place));
@@ -685,8 +706,7 @@ impl<'a> Oracle<'a> {
                             Limit::UpTo(limit) | Limit::Below(limit) => self.course(limit, inside),
                             Limit::Beyond => nothing.clone(),
                         };
-                        let high = if low.rank() > high.rank() { low.clone() } else { high };
-                        if !matches!(&rate, Course::Fixed(Value::Number(value)) if value.is_zero()) {
+                        if !rate.is_number(0) {
                             parts.extend([of(inner), rate, low, high.clone()]);
                         }
                         low = high;

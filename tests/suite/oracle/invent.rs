@@ -4,7 +4,7 @@
 use super::book::{ADULT, CHILD, HOUSEHOLD, JOB, OTHER};
 use super::luck::Luck;
 use hourworth::load::{Files, PackFiles, TextFile};
-use std::collections::BTreeSet;
+use std::collections::{BTreeSet, HashMap};
 
 /// Adults, children and other adults together.
 const MEMBER: usize = 1000;
@@ -178,11 +178,14 @@ impl Maker<'_> {
         // Whatever nothing needs is shown.
         let figures: Vec<Named> = self.names.iter().filter(|n| n.name.starts_with("figure")).cloned().collect();
         let twins = |name: &str| figures.iter().filter(|n| n.name == name).count() > 1;
-        let unused: Vec<Named> = figures.iter().filter(|n| twins(&n.name) || !self.out.uses(&n.name)).cloned().collect();
+        let uses = self.out.uses();
+        let unused: Vec<Named> = figures.iter().filter(|n| twins(&n.name) || !uses.contains_key(n.name.as_str())).cloned().collect();
         for named in unused {
             self.part = self.luck.below(2);
             self.shown(&named);
         }
+        // Both dates are used.
+        self.say("note", Some(HOUSEHOLD), "later", "note later where assessment at least 2026-04-06".into());
         if self.luck.percent(30) {
             let when = self.piece(Ty::YesNo, &[HOUSEHOLD], 2, Room { degree: 2, steady: false });
             self.say("hold", Some(HOUSEHOLD), "", format!("hold where {} because \"it is so\"", when.text));
@@ -626,7 +629,7 @@ impl Maker<'_> {
         let words: Vec<String> = keys.iter().map(|key| key.map_or("count".into(), |at| format!("choice_{at}"))).collect();
         let gives = self.type_text(ty);
         self.say("table", None, &name, format!("table {name} by {} gives {gives}", words.join(", ")));
-        let low = self.luck.between(-1, 2);
+        let low = self.luck.between(0, 2);
         let mut combinations: Vec<Vec<String>> = vec![Vec::new()];
         for key in &keys {
             let values: Vec<String> = match key {
@@ -944,9 +947,17 @@ fn words(text: &str) -> BTreeSet<&str> {
 }
 
 impl Invented {
-    fn uses(&self, name: &str) -> bool {
-        self.statements.iter().any(|s| s.name != name && words(&s.text).contains(name))
-            || self.statements.iter().any(|s| s.name == name && s.text.split_once('=').is_some_and(|(_, body)| words(body).contains(name)))
+    /// The statements that hold each word, but for the name that a statement declares where it declares it.
+    fn uses(&self) -> HashMap<&str, usize> {
+        let mut uses: HashMap<&str, usize> = HashMap::new();
+        for statement in &self.statements {
+            let body = if statement.name.is_empty() { statement.text.as_str() } else { statement.text.split_once(statement.name.as_str()).map_or("", |(_, rest)| rest) };
+            let per = statement.per.as_deref().unwrap_or("");
+            for word in words(body).into_iter().chain([per]) {
+                *uses.entry(word).or_default() += 1;
+            }
+        }
+        uses
     }
 
     /// Leaves out what nothing needs.
@@ -954,8 +965,9 @@ impl Invented {
         loop {
             let before = self.statements.len() + self.amounts.len();
             let all = self.clone();
-            self.statements.retain(|s| matches!(s.keyword, "record" | "choice" | "item" | "hold" | "note") || all.uses(&s.name));
-            self.amounts.retain(|(name, _)| all.uses(name));
+            let uses = all.uses();
+            self.statements.retain(|s| matches!(s.keyword, "item" | "hold" | "note") || uses.contains_key(s.name.as_str()));
+            self.amounts.retain(|(name, _)| uses.contains_key(name.as_str()));
             self.tables.retain(|(name, _)| all.statements.iter().any(|s| s.name == *name));
             // A hold that asks for what is gone goes too.
             self.statements.retain(|s| s.keyword != "hold" || words(&s.text).iter().all(|w| !w.starts_with("amount_") || all.amounts.iter().any(|(name, _)| name == w)));

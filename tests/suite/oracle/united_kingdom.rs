@@ -13,7 +13,7 @@ use std::panic::{AssertUnwindSafe, catch_unwind};
 /// The first seed; each household has the next one.
 const SEED: u64 = 20_260_406;
 
-const HOUSEHOLDS: usize = 120;
+const HOUSEHOLDS: usize = 500;
 
 /// One household of a seed with what is asked of it.
 struct Drawn {
