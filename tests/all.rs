@@ -4,6 +4,8 @@ mod suite {
     mod batch;
     mod case;
     mod cli;
+    mod documents;
+    mod imports;
     mod language;
     mod oracle;
     mod statement;

@@ -145,6 +145,7 @@ pub(crate) fn assessment() -> Assessment {
             target: None,
         }],
         couple: None,
+        unclaimed: vec![],
         notes: vec![],
         facts: vec![],
         amounts: vec![],

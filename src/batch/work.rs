@@ -6,13 +6,14 @@ use super::{
     Assessor, Books, GridRows, Outcome, Prepared, Product, StatementFile, results,
     statement_number, turning_points,
 };
-use crate::case::{ADULT, Household, Known, Schema, day_of};
+use crate::case::{ADULT, FactType, Household, Known, Schema, day_of};
 use crate::load::{Files, HoldRules, Office, PackFiles, Terms};
 use crate::measures::{Assessment, TurnKind, Verdict};
 use crate::num::{Fraction, Hours};
 use crate::rules::{Change, Pack};
 use crate::statement::{
-    LetterContext, LetterDelivery, StatementError, TemplateSet, Texts, Typesetter, typeset,
+    FactShape, LetterContext, LetterDelivery, StatementError, TemplateSet, Texts, Typesetter,
+    typeset,
 };
 use chrono::NaiveDate;
 use serde::{Deserialize, Serialize};
@@ -110,16 +111,21 @@ pub fn work(payload: &[u8]) -> Result<Work, String> {
         grid_step: setup.grid.1,
     };
     let office = setup.office.unwrap_or_default();
-    let press = match setup.orders.statements {
+    let mut press = match setup.orders.statements {
         Statements::LeftOut => None,
         Statements::Made => Some(
             Press::new(&setup.templates, &office, &pack, &terms, &setup.orders)
                 .map_err(|error| error.to_string())?,
         ),
     };
+    let items = item_columns(&pack);
+    let books = Books::new(pack, terms);
+    if let Some(press) = &mut press {
+        press.context.facts = fact_shapes(books.schema());
+    }
     Ok(Work {
-        items: item_columns(&pack),
-        books: Books::new(pack, terms),
+        items,
+        books,
         orders: setup.orders,
         hold: office.hold,
         press,
@@ -152,7 +158,7 @@ impl Assessor for Work {
         if let Some(press) = &mut self.press {
             match press.letter(household, &assessment) {
                 Ok(statement) => product.statements.push(statement),
-                Err(error @ StatementError::Glyph { .. }) => {
+                Err(error @ (StatementError::Glyph { .. } | StatementError::Room { .. })) => {
                     return Outcome::Held {
                         reasons: vec![error.to_string()],
                     };
@@ -257,6 +263,7 @@ impl Press {
             period: pack.manifest.period.word().to_owned(),
             office: letterhead(office),
             labels: BTreeMap::new(),
+            facts: BTreeMap::new(),
             texts: set.texts("en")?,
             delivery: LetterDelivery::default(),
         };
@@ -313,6 +320,25 @@ impl Press {
             pdf: made.bytes,
         })
     }
+}
+
+/// How letters write the facts of a schema, by kind of record and name.
+fn fact_shapes(schema: &Schema) -> BTreeMap<String, FactShape> {
+    let mut shapes = BTreeMap::new();
+    for kind in &schema.kinds {
+        for fact in &kind.facts {
+            let shape = match &fact.ty {
+                FactType::Money(period) => FactShape::Money(period.clone()),
+                FactType::Hours => FactShape::Hours,
+                FactType::Date => FactShape::Date,
+                FactType::YesNo => FactShape::YesNo,
+                FactType::Choice(_) => FactShape::Word,
+                FactType::Rate | FactType::Number | FactType::Count => FactShape::Plain,
+            };
+            shapes.insert(format!("{}.{}", kind.name, fact.name), shape);
+        }
+    }
+    shapes
 }
 
 /// The office's lines as a letter prints them.

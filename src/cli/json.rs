@@ -26,6 +26,10 @@ pub(super) fn json(assessment: &Assessment) -> Value {
             "net": sums(&table.net),
             "after_costs": sums(&table.after_costs),
         })),
+        "unclaimed": assessment.unclaimed.iter().map(|unclaimed| json!({
+            "item": assessment.items[unclaimed.item].name,
+            "due": unclaimed.due.plain(),
+        })).collect::<Value>(),
         "notes": assessment.notes,
         "facts": assessment.facts.iter().map(|fact| json!({
             "kind": fact.kind,

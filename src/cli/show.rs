@@ -67,6 +67,13 @@ pub fn show(assessment: &Assessment, terms: &Terms) -> String {
     if assessment.earners.is_empty() {
         out.push("no adult has a job or an offer: there is no line to show".into());
     }
+    for unclaimed in &assessment.unclaimed {
+        out.push(format!(
+            "not claimed and in no sum: {}, {} at today's hours",
+            assessment.items[unclaimed.item].name,
+            unclaimed.due.plain()
+        ));
+    }
     for note in &assessment.notes {
         out.push(format!("note: {note}"));
     }

@@ -19,6 +19,9 @@ impl Curve {
         if self.c[1] == 0 && self.c[2] == 0 {
             return Fraction::new(self.c[0], self.scale);
         }
+        if let Some(value) = self.small_at(h) {
+            return value;
+        }
         let (p, q) = (BigInt::from(h.numerator()), BigInt::from(h.denominator()));
         let [c0, c1, c2] = self.c.map(BigInt::from);
         let numerator = c0 * &q * &q + c1 * &p * &q + c2 * &p * &p;
@@ -28,6 +31,20 @@ impl Curve {
             let scaled = numerator * fine / denominator;
             Fraction::new(i128::try_from(scaled).expect("a bounded value fits"), 1_000_000_000_000_000)
         })
+    }
+
+    /// The value, where every step on the way fits into 128 bits.
+    fn small_at(&self, h: Fraction) -> Option<Fraction> {
+        let (p, q) = (h.numerator(), h.denominator());
+        if self.c[2] == 0 {
+            let numerator = self.c[0].checked_mul(q)?.checked_add(self.c[1].checked_mul(p)?)?;
+            return Some(Fraction::new(numerator, self.scale.checked_mul(q)?));
+        }
+        let square = q.checked_mul(q)?;
+        let linear = self.c[1].checked_mul(p.checked_mul(q)?)?;
+        let quadratic = self.c[2].checked_mul(p.checked_mul(p)?)?;
+        let numerator = self.c[0].checked_mul(square)?.checked_add(linear)?.checked_add(quadratic)?;
+        Some(Fraction::new(numerator, self.scale.checked_mul(square)?))
     }
 
     /// The weighted sum of curves.

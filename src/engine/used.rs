@@ -28,7 +28,8 @@ impl Special<'_> {
             for item in &program.items {
                 here[item.reg.position()] = true;
             }
-            for (reg, step) in program.steps.iter_with_id().collect::<Vec<_>>().into_iter().rev() {
+            for reg in (0..program.steps.len()).rev().map(Reg::new) {
+                let step = &program.steps[reg];
                 if !here[reg.position()] {
                     continue;
                 }
@@ -96,13 +97,12 @@ impl Special<'_> {
             lines.extend(step.line.map(Id::position));
         }
         // An amount that was folded into another constant counts where its line does.
-        let read: BTreeSet<usize> = program.steps.iter().flat_map(|s| constants_of(&s.op).into_iter().chain(s.factor)).map(Id::position).collect();
         for at in lines {
             let line = &program.lines[Id::new(at)];
             for amount in &line.amounts {
                 let name = &program.amounts[*amount].name;
                 let reg = line.inputs.iter().find(|e| e.name == *name).map(|e| e.reg.position());
-                if reg.is_none_or(|r| reached[r] || !read.contains(&r)) {
+                if reg.is_none_or(|r| reached[r] || !self.machine.read[r]) {
                     used.amounts.entry(amount.position()).or_insert_with(|| line.part.clone());
                 }
             }
@@ -113,25 +113,5 @@ impl Special<'_> {
     /// The amount at a position.
     pub fn amount(&self, at: usize) -> &Amount {
         &self.program().amounts[Id::new(at)]
-    }
-}
-
-fn constants_of(op: &Op) -> Vec<Reg> {
-    match op {
-        Op::Constant(_) | Op::Fact(_) | Op::Hours | Op::Lookup { .. } => Vec::new(),
-        Op::Add(a, b)
-        | Op::Subtract(a, b)
-        | Op::Multiply(a, b)
-        | Op::Smaller(a, b)
-        | Op::Larger(a, b)
-        | Op::AtLeast(a, b)
-        | Op::Above(a, b)
-        | Op::Same(a, b)
-        | Op::Both(a, b)
-        | Op::Either(a, b)
-        | Op::Years { from: a, to: b }
-        | Op::Divide { of: a, by: b, .. } => vec![*a, *b],
-        Op::Times(a, _) | Op::Round { of: a, .. } | Op::Not(a) => vec![*a],
-        Op::Choose { when, then, otherwise } => vec![*when, *then, *otherwise],
     }
 }

@@ -165,9 +165,10 @@ impl Walker<'_, '_> {
         }
     }
 
+    /// The builder's bounds hold for the sum of the sizes of a polynomial's terms up to 168 hours, so nothing here can wrap.
     fn scaled(&self, reg: usize, by: i128) -> Poly {
         let p = &self.polys[reg];
-        if by == 1 { *p } else { [p[0] * by, p[1] * by, p[2] * by] }
+        if by == 1 { *p } else { p.map(|c| c.wrapping_mul(by)) }
     }
 
     /// Sign of a difference at or right of the place, noting where it next changes.
@@ -296,11 +297,11 @@ impl Walker<'_, '_> {
 }
 
 fn sum(x: &Poly, y: &Poly) -> Poly {
-    [x[0] + y[0], x[1] + y[1], x[2] + y[2]]
+    std::array::from_fn(|k| x[k].wrapping_add(y[k]))
 }
 
 fn difference(x: &Poly, y: &Poly) -> Poly {
-    [x[0] - y[0], x[1] - y[1], x[2] - y[2]]
+    std::array::from_fn(|k| x[k].wrapping_sub(y[k]))
 }
 
 fn product(x: &Poly, y: &Poly) -> Poly {

@@ -43,7 +43,7 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
             let reg = line.reg?;
             Some(Worked {
                 part: line.part.clone(),
-                name: line.name.clone(),
+                name: if line.as_if { format!("{} as if", line.name) } else { line.name.clone() },
                 of: (line.kind as usize, line.instance as usize),
                 exact: exact(reg),
                 value: shown(exact(reg), &line.unit, &line.words),

@@ -2,10 +2,10 @@
 
 use super::PackFiles;
 use crate::case::{FactSpec, FactType, KindSpec, Need, Schema};
-use crate::diag::Diagnostic;
+use crate::diag::{Diagnostic, nearest};
 use crate::num::Fraction;
 use crate::rules::{FactDecl, FactKind, Pack, PackTexts, check};
-use crate::source::Sources;
+use crate::source::{Sources, Span};
 
 /// Checks the files of a pack.
 ///
@@ -18,11 +18,23 @@ pub fn check_pack(pack: &PackFiles) -> Result<Pack, (Sources, Vec<Diagnostic>)> 
     let manifest = sources.add("pack.toml", text("pack.toml"));
     let order = sources.add("order.txt", text("order.txt"));
     let mut names: Vec<String> = Vec::new();
-    for line in text("order.txt").lines().map(str::trim).filter(|l| !l.is_empty() && !l.starts_with('#')) {
+    let mut next = 0;
+    for whole in text("order.txt").split_inclusive('\n') {
+        let (line, start) = (whole.trim(), next + whole.len() - whole.trim_start().len());
+        next += whole.len();
+        if line.is_empty() || line.starts_with('#') {
+            continue;
+        }
+        let place = Span { file: order, start: start as u32, end: (start + line.len()) as u32 };
         if pack.files.text(line).is_none() {
-            faults.push(in_order(order, &sources, line, "there is no such file"));
+            let fault = Diagnostic::fault(place, format!("there is no file `{line}`")).expected("a `.rules` file of the pack");
+            let near = nearest(line, pack.files.texts().map(|(name, _)| name).filter(|name| name.ends_with(".rules")));
+            faults.push(match near {
+                Some(near) => fault.hint(format!("did you mean `{near}`?")),
+                None => fault,
+            });
         } else if names.iter().any(|n| n == line) {
-            faults.push(in_order(order, &sources, line, "it stands twice"));
+            faults.push(Diagnostic::fault(place, format!("`{line}` stands twice")).expected("each `.rules` file once"));
         } else {
             names.push(line.to_owned());
         }
@@ -52,12 +64,6 @@ pub fn check_pack(pack: &PackFiles) -> Result<Pack, (Sources, Vec<Diagnostic>)> 
             Err((sources, faults))
         }
     }
-}
-
-fn in_order(file: crate::source::FileId, sources: &Sources, line: &str, what: &str) -> Diagnostic {
-    let start = sources.get(file).text.find(line).unwrap_or(0);
-    let span = crate::source::Span { file, start: start as u32, end: (start + line.len()) as u32 };
-    Diagnostic::fault(span, format!("`{line}`: {what}")).expected("each `.rules` file once, in the order of the law")
 }
 
 /// The kinds and facts of the lists that a pack takes.

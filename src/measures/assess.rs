@@ -3,8 +3,8 @@
 use super::couple::couple;
 use super::line::{Asked, Worked, work_out};
 use super::points::{Sums, Totals, point};
-use super::split::{holding, quarter_hours, rise, target};
-use super::types::{AmountUse, Assessment, EarnerResult, FactUse, ItemInfo, JobTerms, OfferMeasures, WorkingLine};
+use super::split::{Quarters, rise};
+use super::types::{AmountUse, Assessment, EarnerResult, FactUse, ItemInfo, JobTerms, OfferMeasures, Unclaimed, WorkingLine};
 use crate::case::{ADULT, Household, JOB, Known, Schema};
 use crate::engine::{JobChoice, Machine, Setting, Special, Used, fact_text, working};
 use crate::num::{Hours, Money};
@@ -63,6 +63,7 @@ pub fn assess(
     let mut earners = Vec::new();
     let mut items = Vec::new();
     let mut table = None;
+    let mut unclaimed = Vec::new();
     let mut gathered = Gathered::default();
     for adult in 0..household.instances[ADULT].len() {
         let Some(setting) = Setting::new(household, adult, JobChoice::Today) else { continue };
@@ -83,6 +84,7 @@ pub fn assess(
         if items.is_empty() {
             items = item_infos(&special);
             table = couple(household, &machine);
+            unclaimed = special.unclaimed(today).into_iter().map(|(item, due)| Unclaimed { item, due }).collect();
             gathered.add(&special, &special.used(&[Hours(0), today]));
         }
         if let Some(result) = earner(household, &machine, &special, &setting, request, wanted, &mut gathered) {
@@ -93,7 +95,7 @@ pub fn assess(
         return Ok(Verdict::Held(reasons));
     }
     let (facts, amounts) = gathered.finish(household, schema);
-    Ok(Verdict::Assessed(Box::new(Assessment { reference: household.reference.clone(), items, earners, couple: table, notes, facts, amounts })))
+    Ok(Verdict::Assessed(Box::new(Assessment { reference: household.reference.clone(), items, earners, couple: table, unclaimed, notes, facts, amounts })))
 }
 
 fn item_infos(special: &Special<'_>) -> Vec<ItemInfo> {
@@ -163,7 +165,7 @@ fn earner(
         let step_to = Hours((today.0 + request.more.0).min(16_800));
         lines.push(work_out(special, setting, Asked { terms, grid: &hours, step_to, up_to, at_zero: &at_zero }));
         gathered.add(special, &special.used(&[Hours(0), today, step_to]));
-        target_hours = wanted.map(|sum| target(&quarter_hours(special, &sums, up_to), sum));
+        target_hours = wanted.map(|sum| Quarters::new(special, &sums, up_to).target(sum));
     }
     let mut measures = Vec::new();
     for offer in offers {
@@ -174,13 +176,13 @@ fn earner(
         let terms = JobTerms { offer: offer_words(record, measures.len() + 1), reference: record.reference.clone(), wage: other.wage(), hours: own };
         let worked = work_out(&special, &other, Asked { terms, grid: &hours, step_to: own, up_to, at_zero: &at_zero });
         gathered.add(&special, &special.used(&[own]));
-        let quarters = quarter_hours(&special, &sums, up_to);
+        let mut quarters = Quarters::new(&special, &sums, up_to);
         if target_hours.is_none() {
-            target_hours = wanted.map(|sum| target(&quarters, sum));
+            target_hours = wanted.map(|sum| quarters.target(sum));
         }
         let today_net = lines.first().filter(|_| has_job).map_or(not_in_work.net, |line| line.line.grid[line.line.own].net);
         let split = if has_job { lines.first().and_then(|old| rise(old, &worked, today)) } else { None };
-        measures.push(OfferMeasures { line: lines.len(), holding: holding(&quarters, today_net), rise: split });
+        measures.push(OfferMeasures { line: lines.len(), holding: quarters.stays(today_net), rise: split });
         lines.push(worked);
     }
     Some(EarnerResult {

@@ -6,27 +6,35 @@ use super::types::{RiseSplit, TargetHours};
 use crate::engine::Special;
 use crate::num::{Fraction, Hours, Money};
 
-/// Net income at every quarter hour from zero to the end of a line. Payable hours are quarter hours (design section 2).
-pub(super) fn quarter_hours(special: &Special<'_>, sums: &Sums, up_to: Hours) -> Vec<Money> {
-    let mut values = Vec::new();
-    (0..=up_to.0 / 25).map(|quarter| sums.totals(&special.at(Hours(quarter * 25), &mut values)).net).collect()
+/// Net income at quarter hours of a line, worked out when it is asked for. Payable hours are quarter hours (design section 2).
+pub(super) struct Quarters<'a, 'm> {
+    special: &'a Special<'m>,
+    sums: &'a Sums,
+    /// How many quarters the line has.
+    last: i64,
+    values: Vec<i128>,
 }
 
-/// The fewest quarter hours from which a sum stays reached to the end of the line.
-fn stays(line: &[Money], sum: Money) -> Option<Hours> {
-    let below = line.iter().rposition(|net| *net < sum).map_or(0, |at| at + 1);
-    (below < line.len()).then(|| Hours(below as i64 * 25))
-}
+impl<'a, 'm> Quarters<'a, 'm> {
+    pub(super) fn new(special: &'a Special<'m>, sums: &'a Sums, up_to: Hours) -> Self {
+        Quarters { special, sums, last: up_to.0 / 25, values: Vec::new() }
+    }
 
-/// Target hours for a sum.
-pub(super) fn target(line: &[Money], sum: Money) -> TargetHours {
-    let first = line.iter().position(|net| *net >= sum).map(|at| Hours(at as i64 * 25));
-    TargetHours { sum, first, stays: stays(line, sum) }
-}
+    fn net(&mut self, quarter: i64) -> Money {
+        self.sums.totals(&self.special.at(Hours(quarter * 25), &mut self.values)).net
+    }
 
-/// Holding hours: the fewest at a new wage from which today's net income is kept.
-pub(super) fn holding(line: &[Money], today: Money) -> Option<Hours> {
-    stays(line, today)
+    /// The fewest quarter hours from which a sum stays reached to the end of the line; for today's net income they are the holding hours.
+    pub(super) fn stays(&mut self, sum: Money) -> Option<Hours> {
+        let below = (0..=self.last).rev().find(|quarter| self.net(*quarter) < sum).map_or(0, |at| at + 1);
+        (below <= self.last).then_some(Hours(below * 25))
+    }
+
+    /// Target hours for a sum.
+    pub(super) fn target(&mut self, sum: Money) -> TargetHours {
+        let first = (0..=self.last).find(|quarter| self.net(*quarter) >= sum).map(|at| Hours(at * 25));
+        TargetHours { sum, first, stays: self.stays(sum) }
+    }
 }
 
 fn stretch_at(stretches: &[Stretch], at: Fraction) -> Option<&Stretch> {

@@ -331,6 +331,15 @@ pub struct CoupleTable {
     pub after_costs: Vec<Vec<Money>>,
 }
 
+/// A benefit that would be due at today's hours and is not claimed; it stands in no sum.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Unclaimed {
+    /// Position in [`Assessment::items`].
+    pub item: usize,
+    /// What would be due a period, other claims as they are.
+    pub due: Money,
+}
+
 /// Everything that was worked out for one household.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Assessment {
@@ -342,6 +351,8 @@ pub struct Assessment {
     pub earners: Vec<EarnerResult>,
     /// The table of both partners' hours, where both have a job today.
     pub couple: Option<CoupleTable>,
+    /// Benefits that would be due at today's hours of the first earner and are not claimed.
+    pub unclaimed: Vec<Unclaimed>,
     /// Names of the pack's notes that hold at today's hours.
     pub notes: Vec<String>,
     /// The facts used, with how they are known.

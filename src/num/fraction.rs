@@ -17,6 +17,13 @@ pub struct Fraction {
 pub(crate) fn gcd(a: i128, b: i128) -> i128 {
     let (mut a, mut b) = (a.unsigned_abs(), b.unsigned_abs());
     while b != 0 {
+        // A division of 64 bits is several times faster, and most numbers get there at once.
+        if let (Ok(mut x), Ok(mut y)) = (u64::try_from(a), u64::try_from(b)) {
+            while y != 0 {
+                (x, y) = (y, x % y);
+            }
+            return i128::from(x);
+        }
         (a, b) = (b, a % b);
     }
     i128::try_from(a).expect("a common divisor fits")
@@ -209,6 +216,17 @@ mod tests {
         t(-1, 1000, 2, "0.00");
         t(2, 3, 1, "0.7");
         t(7, 2, 0, "4");
+    }
+
+    #[test]
+    fn what_does_not_fit_is_none() {
+        let large = Fraction::whole(i128::MAX);
+        assert_eq!(large.checked_add(Fraction::ONE), None);
+        assert_eq!(large.checked_mul(Fraction::whole(2)), None);
+        assert_eq!(Fraction::new(1, i128::MAX).checked_mul(Fraction::new(1, 2)), None);
+        // What cancels still fits.
+        assert_eq!(large.checked_mul(Fraction::new(1, i128::MAX)), Some(Fraction::ONE));
+        assert_eq!(Fraction::new(1, 6).checked_add(Fraction::new(1, 3)), Some(Fraction::new(1, 2)));
     }
 
     #[test]

@@ -297,6 +297,9 @@ impl Builder {
                 })();
                 let limit = x.limit.checked_mul(y.limit);
                 let (degree, varies) = (x.degree + y.degree, x.varies || y.varies);
+                if degree > 2 {
+                    self.overflow();
+                }
                 self.push(Op::Multiply(a, b), scale, limit, degree, varies)
             }
         }

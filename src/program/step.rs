@@ -190,6 +190,8 @@ pub struct Line {
     pub words: Vec<String>,
     /// Position in the order of the law.
     pub order: u32,
+    /// Whether it was worked out under changed facts.
+    pub as_if: bool,
 }
 
 /// An item of one record.
@@ -203,6 +205,8 @@ pub struct Item {
     pub reg: Reg,
     /// Position of the adult that it belongs to; none for the household's own.
     pub adult: Option<u32>,
+    /// What would be due if it were claimed; none where claiming is no question.
+    pub due: Option<Reg>,
 }
 
 /// A reason to hold a household: it applies where the register is yes.

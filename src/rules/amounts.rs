@@ -118,7 +118,8 @@ fn typed(text: &str, ty: Ty, words: &[String]) -> Result<Fraction, String> {
 fn dated(span: Span, fields: &BTreeMap<&str, &str>, ty: Ty, words: &[String], faults: &mut Vec<Diagnostic>) -> Option<Row> {
     let get = |column: &str| fields.get(column).copied().unwrap_or("");
     let mut bad = |column: &str, expected: &str| {
-        faults.push(Diagnostic::fault(span, format!("`{}` in column `{column}`", get(column))).expected(expected));
+        let found = if get(column).is_empty() { "nothing".to_owned() } else { format!("`{}`", get(column)) };
+        faults.push(Diagnostic::fault(span, format!("{found} in column `{column}`")).expected(expected));
     };
     let from = day(get("from"));
     if from.is_none() {
@@ -212,7 +213,7 @@ pub(super) fn read(file: FileId, text: &str, currency: &str, broken: &mut BTreeS
     let mut places: BTreeMap<String, usize> = BTreeMap::new();
     for (span, fields) in records {
         if fields.len() != COLUMNS.len() {
-            faults.push(Diagnostic::fault(span, format!("this row has {} fields", fields.len())).expected(format!("{}", COLUMNS.len())));
+            faults.push(Diagnostic::fault(span, format!("this row has {} fields", fields.len())).expected(format!("{}, as the first line has", COLUMNS.len())));
             continue;
         }
         let named: BTreeMap<&str, &str> = COLUMNS.iter().copied().zip(fields.iter().map(String::as_str)).collect();
@@ -244,7 +245,7 @@ pub(super) fn read(file: FileId, text: &str, currency: &str, broken: &mut BTreeS
             Some(at) => {
                 let decl = &mut found[*at];
                 if decl.ty != ty {
-                    faults.push(Diagnostic::fault(span, format!("`{name}` is {ty} here")).expected(format!("{}, as in its first row", decl.ty)));
+                    faults.push(Diagnostic::fault(span, format!("`{name}` is {} here", ty.words())).expected(format!("{}, as in its first row", decl.ty.words())));
                 }
                 decl.rows.push(row);
             }
@@ -268,13 +269,13 @@ pub(super) fn read_table(file: FileId, text: &str, keys: usize, ty: Ty, words: &
     let Some((span, header)) = records.next() else { return Vec::new() };
     let rest = ["from", "to", "value", "source", "locator", "status"];
     if header.len() != keys + rest.len() || header[keys..] != rest {
-        faults.push(Diagnostic::fault(span, "these are not the columns of this table").expected(format!("{keys} key columns, then {}", rest.join(","))));
+        faults.push(Diagnostic::fault(span, "these are not the columns of this table").expected(format!("{keys} key {}, then {}", if keys == 1 { "column" } else { "columns" }, rest.join(","))));
         return Vec::new();
     }
     let mut out = Vec::new();
     for (span, fields) in records {
         if fields.len() != header.len() {
-            faults.push(Diagnostic::fault(span, format!("this row has {} fields", fields.len())).expected(format!("{}", header.len())));
+            faults.push(Diagnostic::fault(span, format!("this row has {} fields", fields.len())).expected(format!("{}, as the first line has", header.len())));
             continue;
         }
         let named: BTreeMap<&str, &str> = rest.iter().copied().zip(fields[keys..].iter().map(String::as_str)).collect();
@@ -283,4 +284,22 @@ pub(super) fn read_table(file: FileId, text: &str, keys: usize, ty: Ty, words: &
         }
     }
     out
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn days_and_numbers_are_read_strictly() {
+        assert_eq!(day("1970-01-02"), Some(1));
+        assert_eq!(day("2024-02-29"), Some(19_782));
+        for wrong in ["2026-02-29", "2026-2-28", "2026- 2-28", "+2026-2-28", "02026-2-28", "2026/02/28", "2026-02-28 ", ""] {
+            assert_eq!(day(wrong), None, "`{wrong}`");
+        }
+        assert_eq!(decimal("-0.55"), Some(Fraction::new(-55, 100)));
+        for wrong in ["", "-", ".5", "5.", "1,000", "1e3", "+1", "--1", "1.2.3", "1234567890123456789"] {
+            assert_eq!(decimal(wrong), None, "`{wrong}`");
+        }
+    }
 }

@@ -43,7 +43,7 @@ pub(super) enum StatementKind {
     Bands { name: Ident, of: TypeName, bands: Vec<Band> },
     Scale { name: Ident, of: TypeName, gives: TypeName, steps: Vec<ScaleStep> },
     Figure { name: Ident, ty: TypeName, expr: Expr, law: Option<String> },
-    Item { name: Ident, kind: ItemKind, expr: Expr, law: String },
+    Item { name: Ident, kind: ItemKind, expr: Expr, claimed: Option<Expr>, law: String },
     Hold { when: Expr, because: String },
     Note { name: Ident, when: Expr },
 }
@@ -152,6 +152,8 @@ pub(super) enum ExprKind {
     Place { by: Ident, down: bool, with: Option<Box<Expr>> },
     Years { from: Box<Expr>, to: Box<Expr> },
     Missing(Ident),
+    /// A figure worked out once more under changed facts.
+    AsIf { name: Ident, changes: Vec<(Ident, Expr)> },
     Binary { op: BinaryOp, left: Box<Expr>, right: Box<Expr> },
     Round { of: Box<Expr>, direction: Direction, unit: Fraction, manner: Option<Manner> },
     Convert { of: Box<Expr>, by: Ident },
@@ -178,6 +180,7 @@ impl ExprKind {
             ExprKind::Of { failing: one, .. } | ExprKind::CountOf { with: one, .. } | ExprKind::Place { with: one, .. } => {
                 one.iter().for_each(|e| call(e));
             }
+            ExprKind::AsIf { changes, .. } => changes.iter().for_each(|(_, value)| call(value)),
             ExprKind::Lookup { keys: list, .. } | ExprKind::Extreme { list, .. } => list.iter().for_each(call),
             ExprKind::Where { when, give, otherwise } => [when, give, otherwise].into_iter().for_each(|e| call(e)),
             ExprKind::SumOver { with, body, .. } => {

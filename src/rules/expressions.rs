@@ -362,6 +362,20 @@ impl Parser<'_> {
             }
             self.sign(']')?;
             ExprKind::Lookup { table: name, keys }
+        } else if self.take_word("as") {
+            self.word("if")?;
+            self.sign('(')?;
+            let mut changes = Vec::new();
+            loop {
+                let fact = self.any_word("the fact to change")?;
+                self.word("is")?;
+                changes.push((fact, self.value()?));
+                if !self.take_word("and") {
+                    break;
+                }
+            }
+            self.sign(')')?;
+            ExprKind::AsIf { name, changes }
         } else {
             ExprKind::Name(name)
         };

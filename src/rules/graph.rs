@@ -32,7 +32,7 @@ struct Graph<'a> {
 }
 
 /// How many expressions may stand inside each other from an item down to the facts, so that no pack can exhaust the stack.
-const DEEPEST: usize = 1_000;
+const DEEPEST: usize = 500;
 
 pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
     let order = Order::new(pack).run(faults);
@@ -82,6 +82,27 @@ fn needs(pack: &Pack, node: &Node) -> Vec<usize> {
     out
 }
 
+/// Notes the figures and facts that a node rests on, those of its bands and scales included.
+pub(super) fn rests_on(pack: &Pack, node: &Node, figures: &mut Vec<usize>, facts: &mut std::collections::BTreeSet<(usize, usize)>) {
+    let mut lists = Vec::new();
+    let mut note = |node: &Node, lists: &mut Vec<usize>| match &node.what {
+        What::Name { target: Target::Figure(at), .. } | What::Partner { target: Target::Figure(at), .. } | What::AsIf { figure: at, .. } => figures.push(*at),
+        What::Name { target: Target::Fact { kind, fact }, .. } | What::Partner { target: Target::Fact { kind, fact }, .. } => {
+            facts.insert((*kind, *fact));
+        }
+        What::Charge { bands, .. } => lists.push(*bands),
+        What::PlaceOn { scale, .. } => lists.push(pack.bands.len() + *scale),
+        _ => {}
+    };
+    node.visit(&mut |node| note(node, &mut lists));
+    for list in lists {
+        let nodes = if list < pack.bands.len() { pack.bands[list].nodes() } else { pack.scales[list - pack.bands.len()].nodes() };
+        for node in nodes {
+            node.visit(&mut |node| note(node, &mut Vec::new()));
+        }
+    }
+}
+
 /// Puts definitions into an order in which each comes after what it needs, and finds circles. Keeps its own stack, so that
 /// a long chain is no danger.
 struct Order<'a> {
@@ -91,7 +112,7 @@ struct Order<'a> {
 
 impl<'a> Order<'a> {
     fn new(pack: &'a Pack) -> Self {
-        let needs = pack.definitions.iter().map(|d| d.body.as_ref().map_or_else(Vec::new, |body| needs(pack, body))).collect();
+        let needs = pack.definitions.iter().map(|d| d.body.iter().chain(&d.claimed).flat_map(|node| needs(pack, node)).collect()).collect();
         Order { pack, needs }
     }
 
@@ -152,7 +173,7 @@ impl<'a> Order<'a> {
         faults.push(
             Diagnostic::fault(first.name_span, format!("`{}` needs itself: {}", first.name, names.join(" needs ")))
                 .expected("figures that do not need each other")
-                .hint("split one of them so that one part does not need the other, or work it out `as if` a fact were settled"),
+                .hint("split one of them so that one part does not need the other, or work one out `as if` a fact were otherwise"),
         );
     }
 }
@@ -223,6 +244,12 @@ impl Graph<'_> {
         match &node.what {
             What::Fixed(_) | What::Amount { .. } | What::Missing { .. } | What::Dated(_) => Course::default(),
             What::Name { target, .. } => self.target(*target),
+            // What it needs may come later in the order: under changed facts a figure may need itself. Where it is not known yet, the
+            // program's own bounds still hold when it is made.
+            What::AsIf { figure, changes, .. } => {
+                let varies = Course { degree: 1, varies: true };
+                changes.iter().fold(self.courses[*figure].with(varies), |c, change| c.with(self.course(&change.value)))
+            }
             What::Partner { target, failing, .. } => {
                 let course = self.target(*target);
                 failing.as_ref().map_or(course, |f| course.with(self.course(f)))

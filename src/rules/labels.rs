@@ -7,8 +7,9 @@ use crate::program::ItemKind;
 use crate::source::{FileId, Sources, Span};
 use std::collections::BTreeMap;
 
-/// Reads one language's labels: `key,text` and any further columns, which are for the pack's authors.
-pub(super) fn read(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> BTreeMap<String, String> {
+/// Reads one language's labels: `key,text` and any further columns, which are for the pack's authors. None where the file
+/// has other columns.
+pub(super) fn read(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> Option<BTreeMap<String, String>> {
     let inside = text.trim_start_matches('\u{feff}');
     let skipped = text.len() - inside.len();
     let mut reader = csv::ReaderBuilder::new().flexible(true).from_reader(inside.as_bytes());
@@ -17,7 +18,7 @@ pub(super) fn read(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> BT
     let header_is_right = reader.headers().is_ok_and(|h| h.get(0) == Some("key") && h.get(1) == Some("text"));
     if !header_is_right {
         faults.push(Diagnostic::fault(whole, "these are not the columns of a label file").expected("key,text"));
-        return out;
+        return None;
     }
     for record in reader.records() {
         let Ok(record) = record else {
@@ -38,7 +39,7 @@ pub(super) fn read(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> BT
             (Some(key), _) => faults.push(Diagnostic::fault(span, format!("`{key}` has no text")).expected("a text in the second column")),
         }
     }
-    out
+    Some(out)
 }
 
 /// Groups of keys whose second half is a name of the pack.

@@ -29,7 +29,7 @@ impl Lexer<'_> {
                 }
                 c if c.is_whitespace() || c == '\u{feff}' => self.at += c.len_utf8(),
                 '#' => self.skip_while(|c| c != '\n'),
-                'a'..='z' => self.word(start),
+                'a'..='z' | 'A'..='Z' => self.word(start, faults),
                 '0'..='9' => self.number(start, faults),
                 '"' => self.text_literal(start, faults),
                 '+' | '-' | '*' | '/' | '(' | ')' | '[' | ']' | ',' | ':' | '=' | '%' => {
@@ -38,13 +38,10 @@ impl Lexer<'_> {
                 }
                 other => {
                     self.at += other.len_utf8();
-                    let mut fault = Diagnostic::fault(self.span(start), format!("`{other}` is not a sign of the language"))
-                        .expected("a word in lower case, a number, a text or one of + - * / ( ) [ ] , : = %");
-                    if other.is_ascii_uppercase() {
-                        self.skip_while(|c| c.is_ascii_alphanumeric() || c == '_');
-                        fault = fault.hint("write names in lower case");
-                    }
-                    faults.push(fault);
+                    faults.push(
+                        Diagnostic::fault(self.span(start), format!("`{}` is not a sign of the language", other.escape_debug()))
+                            .expected("a word in lower case, a number, a text or one of + - * / ( ) [ ] , : = %"),
+                    );
                 }
             }
         }
@@ -75,9 +72,15 @@ impl Lexer<'_> {
         }
     }
 
-    fn word(&mut self, start: usize) {
-        self.skip_while(|c| c.is_ascii_lowercase() || c.is_ascii_digit() || c == '_');
-        self.push(TokenKind::Word(self.text[start..self.at].to_owned()), start);
+    fn word(&mut self, start: usize, faults: &mut Vec<Diagnostic>) {
+        self.skip_while(|c| c.is_ascii_alphanumeric() || c == '_');
+        let word = &self.text[start..self.at];
+        let lower = word.to_ascii_lowercase();
+        if lower != word {
+            let fault = Diagnostic::fault(self.span(start), format!("`{word}` has capitals")).expected("lower case letters, digits and `_`");
+            faults.push(fault.hint(format!("write `{lower}`")));
+        }
+        self.push(TokenKind::Word(lower), start);
     }
 
     /// A number (`12570`, `0.55`) or a day (`2026-04-06`).

@@ -9,7 +9,13 @@ use crate::diag::{Diagnostic, nearest};
 use crate::index::Id;
 use crate::num::{Direction, Fraction};
 use crate::program::{Amount, Builder, FactRef, Guard, Item, ItemKind, Line, Manner, Note, Program, Reg, Shape, Table};
-use std::collections::HashMap;
+use std::collections::{BTreeMap, BTreeSet, HashMap};
+
+/// Facts that stand changed: kind, record and fact.
+type World = BTreeMap<(usize, usize, usize), Reg>;
+
+/// How often a figure may be worked out inside itself under changed facts.
+const DEEPEST_WORLDS: usize = 3;
 
 pub(super) struct Lowering<'a> {
     pub pack: &'a Pack,
@@ -17,7 +23,18 @@ pub(super) struct Lowering<'a> {
     changes: &'a [Change],
     pub shape: &'a Shape,
     pub builder: Builder,
-    done: HashMap<(usize, usize), Reg>,
+    /// Registers of figures by their facts changed for `as if`, definition and record.
+    done: HashMap<(usize, usize, usize), Reg>,
+    /// What would be due of an item that can be claimed, by definition and record, under no changed facts.
+    due: HashMap<(usize, usize), Reg>,
+    /// Sets of changed facts; the first changes nothing.
+    worlds: Vec<World>,
+    /// The one at hand.
+    pub world: usize,
+    /// Figures being worked out, by world, definition and record.
+    open: Vec<(usize, usize, usize)>,
+    /// By definition: the facts that it rests on. Filled when first asked for.
+    rests_on: HashMap<usize, BTreeSet<(usize, usize)>>,
     amounts: HashMap<(usize, usize), (Id<Amount>, Reg)>,
     tables: HashMap<(usize, usize), Id<Table>>,
     pub faults: Vec<Diagnostic>,
@@ -62,6 +79,11 @@ pub(super) fn program(pack: &Pack, dates: &[i64], changes: &[Change], shape: &Sh
         shape,
         builder: Builder::new(shape.clone()),
         done: HashMap::new(),
+        due: HashMap::new(),
+        worlds: vec![World::new()],
+        world: 0,
+        open: Vec::new(),
+        rests_on: HashMap::new(),
         amounts: HashMap::new(),
         tables: HashMap::new(),
         faults: Vec::new(),
@@ -105,8 +127,12 @@ pub(super) fn probe(pack: &Pack, faults: &mut Vec<Diagnostic>) {
         for shape in [small(pack), large(pack)] {
             let dates = vec![day; pack.manifest.dates.len()];
             if let Err(found) = program(pack, &dates, &[], &shape) {
-                let new: Vec<_> = found.into_iter().filter(|fault| !faults.contains(fault)).collect();
-                faults.extend(new);
+                for fault in found {
+                    if !faults.iter().any(|f| f.span == fault.span && f.message == fault.message) {
+                        let later = day > pack.manifest.from;
+                        faults.push(if later { fault.hint(format!("it is so from {}", day_text(day))) } else { fault });
+                    }
+                }
             }
         }
     }
@@ -136,7 +162,8 @@ impl Lowering<'_> {
                 let reg = self.figure(at, instance);
                 let adult = self.climb(definition.kind, instance, ADULT).map(|at| at as u32);
                 let line = self.line_of(at, instance);
-                self.builder.item(Item { kind, line, reg, adult });
+                let due = self.due.get(&(at, instance)).copied();
+                self.builder.item(Item { kind, line, reg, adult, due });
             }
         }
         for (conditions, hold) in [(&pack.holds, true), (&pack.notes, false)] {
@@ -179,15 +206,27 @@ impl Lowering<'_> {
             .program()
             .lines
             .iter_with_id()
-            .find(|(_, l)| l.name == name.name && l.kind == name.kind as u32 && l.instance == instance as u32);
+            .find(|(_, l)| !l.as_if && l.name == name.name && l.kind == name.kind as u32 && l.instance == instance as u32);
         found.map(|(id, _)| id).expect("a figure that was worked out has a line")
     }
 
     /// The register of a figure or item of one record.
     pub(super) fn figure(&mut self, at: usize, instance: usize) -> Reg {
-        if let Some(reg) = self.done.get(&(at, instance)) {
+        let world = self.narrowed(at);
+        if let Some(reg) = self.done.get(&(world, at, instance)) {
             return *reg;
         }
+        if self.open.contains(&(world, at, instance)) || self.open.iter().filter(|(_, d, i)| (*d, *i) == (at, instance)).count() > DEEPEST_WORLDS {
+            let definition = &self.pack.definitions[at];
+            let fault = Diagnostic::fault(definition.name_span, format!("`{}` needs itself even as if the facts were changed", definition.name))
+                .expected("changed facts under which it does not need itself");
+            if !self.faults.contains(&fault) {
+                self.faults.push(fault);
+            }
+            return self.builder.constant(Fraction::ZERO);
+        }
+        self.open.push((world, at, instance));
+        let before_world = std::mem::replace(&mut self.world, world);
         let pack = self.pack;
         let definition = &pack.definitions[at];
         let body = definition.body.as_ref().expect("a checked pack has no empty figure");
@@ -210,6 +249,7 @@ impl Lowering<'_> {
             unit: definition.ty.to_string(),
             words,
             order: at as u32,
+            as_if: world != 0,
         });
         let mut reg = self.node(body, &mut vec![(definition.kind, instance)]);
         if definition.item.is_some_and(|kind| kind != ItemKind::Passport) {
@@ -218,14 +258,68 @@ impl Lowering<'_> {
         if definition.item.is_some() && self.builder.limit(reg) > LARGEST_ITEM {
             self.builder.overflow();
         }
+        if let Some(claimed) = &definition.claimed {
+            let claimed = self.node(claimed, &mut vec![(definition.kind, instance)]);
+            if world == 0 {
+                self.due.insert((at, instance), reg);
+            }
+            let none = self.builder.constant(Fraction::ZERO);
+            reg = self.builder.choose(claimed, reg, none);
+        }
         self.builder.close(line, reg, before);
         self.part = before_part;
-        self.done.insert((at, instance), reg);
+        self.world = before_world;
+        self.open.pop();
+        self.done.insert((world, at, instance), reg);
         reg
+    }
+
+    /// The world at hand without the changed facts that a figure does not rest on, so that it is worked out once more only where they matter.
+    fn narrowed(&mut self, at: usize) -> usize {
+        if self.world == 0 {
+            return 0;
+        }
+        let rests_on = self.rests_on(at).clone();
+        let world: World = self.worlds[self.world].iter().filter(|((kind, _, fact), _)| rests_on.contains(&(*kind, *fact))).map(|(k, v)| (*k, *v)).collect();
+        self.world_of(world)
+    }
+
+    fn world_of(&mut self, world: World) -> usize {
+        self.worlds.iter().position(|w| *w == world).unwrap_or_else(|| {
+            self.worlds.push(world);
+            self.worlds.len() - 1
+        })
+    }
+
+    /// The world at hand with further facts changed.
+    pub(super) fn changed(&mut self, changes: Vec<((usize, usize, usize), Reg)>) -> usize {
+        let mut world = self.worlds[self.world].clone();
+        world.extend(changes);
+        self.world_of(world)
+    }
+
+    /// The facts that a figure rests on, through all that it needs.
+    fn rests_on(&mut self, at: usize) -> &BTreeSet<(usize, usize)> {
+        if !self.rests_on.contains_key(&at) {
+            let (mut facts, mut seen, mut waiting) = (BTreeSet::new(), BTreeSet::new(), vec![at]);
+            while let Some(next) = waiting.pop() {
+                if seen.insert(next) {
+                    let definition = &self.pack.definitions[next];
+                    for node in definition.body.iter().chain(&definition.claimed) {
+                        super::graph::rests_on(self.pack, node, &mut waiting, &mut facts);
+                    }
+                }
+            }
+            self.rests_on.insert(at, facts);
+        }
+        &self.rests_on[&at]
     }
 
     /// The register of a fact of one record.
     pub(super) fn fact(&mut self, kind: usize, instance: usize, fact: usize) -> Reg {
+        if let Some(changed) = self.worlds[self.world].get(&(kind, instance, fact)) {
+            return *changed;
+        }
         if kind == JOB && fact == 0 && instance == self.shape.varied_job as usize {
             return self.builder.hours();
         }

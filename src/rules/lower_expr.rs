@@ -48,6 +48,24 @@ impl Lowering<'_> {
                 self.went_in(format!("{text} of partner"), reg, node.ty);
                 reg
             }
+            What::AsIf { figure, kind, level, changes, text } => {
+                let changes = changes
+                    .iter()
+                    .map(|change| {
+                        let (from, instance) = scopes[change.level];
+                        let record = self.climb(from, instance, change.kind).expect("a checked fact can be reached");
+                        ((change.kind, record, change.fact), self.node(&change.value, scopes))
+                    })
+                    .collect();
+                let (from, instance) = scopes[*level];
+                let instance = self.climb(from, instance, *kind).expect("a checked figure can be reached");
+                let changed = self.changed(changes);
+                let before = std::mem::replace(&mut self.world, changed);
+                let reg = self.figure(*figure, instance);
+                self.world = before;
+                self.went_in(format!("{text} as if"), reg, node.ty);
+                reg
+            }
             What::Lookup { table, dated, keys } => {
                 let keys = keys.iter().map(|key| self.node(key, scopes)).collect();
                 let id = self.table(*table, *dated);
@@ -160,12 +178,21 @@ impl Lowering<'_> {
                 let inner = self.node(inner, scopes);
                 self.builder.not(inner)
             }
+            // Where the left side settles it, the right one is not needed.
             What::Both(left, right) => {
-                let (left, right) = (self.node(left, scopes), self.node(right, scopes));
+                let left = self.node(left, scopes);
+                if left == self.builder.yes_no(false) {
+                    return left;
+                }
+                let right = self.node(right, scopes);
                 self.builder.both(left, right)
             }
             What::Either(left, right) => {
-                let (left, right) = (self.node(left, scopes), self.node(right, scopes));
+                let left = self.node(left, scopes);
+                if left == self.builder.yes_no(true) {
+                    return left;
+                }
+                let right = self.node(right, scopes);
                 self.builder.either(left, right)
             }
         }
@@ -279,7 +306,7 @@ impl Lowering<'_> {
             BinaryOp::Divide => match self.builder.fixed_value(right) {
                 Some(value) if !value.is_zero() => self.builder.times(left, Fraction::ONE / value),
                 _ => {
-                    self.faults.push(Diagnostic::fault(node.span, "this divides by nothing").expected("an amount above zero"));
+                    self.faults.push(Diagnostic::fault(node.span, "this divides by nothing").expected("a divisor other than zero"));
                     left
                 }
             },
@@ -296,35 +323,29 @@ impl Lowering<'_> {
         let (from, at) = *scopes.last().expect("bands are said of a record");
         let own = self.climb(from, at, decl.kind).expect("checked bands can be reached");
         let mut inner = vec![(decl.kind, own)];
-        let mut low: Option<Reg> = None;
+        let mut low = none;
         let mut total = none;
-        for (rate, limit) in &decl.bands {
+        for (at, (rate, limit)) in decl.bands.iter().enumerate() {
             let rate = self.node(rate, &mut inner);
-            let span = limit.as_ref().map(|limit| limit.span);
-            let limit = limit.as_ref().map(|limit| self.node(limit, &mut inner));
-            let before = low.map_or(Some(Fraction::ZERO), |low| self.builder.fixed_value(low));
-            if let (Some(before), Some(limit), Some(span)) = (before, limit, span)
-                && let Some(high) = self.builder.fixed_value(limit)
-                && (high < before || high == before && low.is_some())
-            {
-                self.faults.push(falls(span, &decl.name));
-            }
-            // A limit that is no fixed number may lie below nothing, or below the one before it: that leaves an empty band.
-            let limit = limit.map(|limit| {
-                let sure = self.builder.is_fixed(limit) && before.is_some();
-                if sure { limit } else { self.builder.larger(limit, low.unwrap_or(none)) }
-            });
-            let upper = limit.map_or(of, |limit| self.builder.smaller(of, limit));
-            let inside = match low {
-                None => upper,
-                Some(low) => {
-                    let over = self.builder.subtract(upper, low);
-                    self.builder.larger(over, none)
+            let high = match limit {
+                None => None,
+                Some(limit) => {
+                    let high = self.node(limit, &mut inner);
+                    if let (Some(before), Some(value)) = (self.builder.fixed_value(low), self.builder.fixed_value(high))
+                        && (value < before || value == before && at > 0)
+                    {
+                        self.faults.push(falls(limit.span, &decl.name));
+                    }
+                    // A limit that only this household's facts bring below the one before leaves its band empty.
+                    Some(self.builder.larger(high, low))
                 }
             };
+            let upper = high.map_or(of, |high| self.builder.smaller(of, high));
+            let inside = self.builder.subtract(upper, low);
+            let inside = if at == 0 { inside } else { self.builder.larger(inside, none) };
             let share = self.builder.multiply(inside, rate);
             total = self.builder.add(total, share);
-            low = limit;
+            low = high.unwrap_or(low);
         }
         total
     }

@@ -56,7 +56,8 @@ pub(super) fn read(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> Op
         Err(error) => {
             let span = place(error.span().unwrap_or(0..0));
             let message = error.message().trim().replace('\n', ", ");
-            faults.push(Diagnostic::fault(span, message).expected("title, area, currency, period, covers and dates, as `rules/README.md` shows them"));
+            let (found, expected) = message.split_once(", expected ").unwrap_or((&message, "title, area, currency, period, covers and dates"));
+            faults.push(Diagnostic::fault(span, found).expected(expected));
             return None;
         }
     };

@@ -7,15 +7,18 @@
 
 mod amounts;
 mod ast;
+mod bodies;
 mod check;
 mod declare;
 mod expressions;
+mod facts;
 mod graph;
 mod labels;
 mod lexer;
 mod lower;
 mod lower_expr;
 mod manifest;
+mod names;
 mod pack;
 mod parser;
 mod tables;

@@ -179,24 +179,30 @@ pub fn check(texts: PackTexts) -> Result<Pack, (Sources, Vec<Diagnostic>)> {
     let parts: Vec<Part> =
         texts.rules.iter().map(|file| super::parser::parse(*file, &sources.get(*file).text, &mut faults)).collect();
     let Some(manifest) = manifest else { return Err((sources, faults)) };
+    let clean_rules = faults.is_empty();
     let mut broken = BTreeSet::new();
     let amounts = texts
         .amounts
         .map(|file| super::amounts::read(file, &sources.get(file).text, &manifest.currency, &mut broken, &mut faults))
         .unwrap_or_default();
+    let clean_amounts = clean_rules && faults.is_empty();
     let mut labels = BTreeMap::new();
     for (language, file) in &texts.labels {
-        labels.insert(language.clone(), super::labels::read(*file, &sources.get(*file).text, &mut faults));
+        if let Some(texts) = super::labels::read(*file, &sources.get(*file).text, &mut faults) {
+            labels.insert(language.clone(), texts);
+        }
     }
     let table_texts: Vec<(String, FileId, String)> =
         texts.tables.iter().map(|(name, file)| (name.clone(), *file, sources.get(*file).text.clone())).collect();
-    let clean_syntax = faults.is_empty();
+    let before = faults.len();
     let pack = super::declare::declare(manifest, parts, amounts, labels, &table_texts, broken, &mut faults);
-    // Unused names and circles would only echo earlier faults.
-    if clean_syntax && faults.is_empty() {
+    // Circles and unused names would only echo a statement that was given up.
+    if clean_rules && faults.len() == before {
         super::graph::check(&pack, &mut faults);
-        super::used::check(&pack, &mut faults);
         super::labels::check(&pack, &texts.labels, &sources, &mut faults);
+        if clean_amounts {
+            super::used::check(&pack, &mut faults);
+        }
     }
     if faults.is_empty() {
         super::lower::probe(&pack, &mut faults);

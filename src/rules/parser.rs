@@ -15,6 +15,8 @@ pub(super) type Parsed<T> = Result<T, GaveUp>;
 
 pub(super) struct Parser<'a> {
     tokens: Vec<Token>,
+    /// Where signs stand that are no tokens: a statement that holds one is reported once.
+    unread: Vec<u32>,
     at: usize,
     pub(super) faults: &'a mut Vec<Diagnostic>,
     /// How many values are open inside each other, bounded so that no text can exhaust the stack.
@@ -23,8 +25,10 @@ pub(super) struct Parser<'a> {
 
 /// Reads one file.
 pub(super) fn parse(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> Part {
+    let before = faults.len();
     let tokens = super::lexer::tokens(file, text, faults);
-    Parser { tokens, at: 0, faults, depth: 0 }.part(file)
+    let unread = faults[before..].iter().filter_map(|f| f.span.map(|s| s.start)).collect();
+    Parser { tokens, unread, at: 0, faults, depth: 0 }.part(file)
 }
 
 impl Parser<'_> {
@@ -79,7 +83,12 @@ impl Parser<'_> {
     /// Reports the token at hand and gives the statement up.
     pub(super) fn unexpected<T>(&mut self, expected: &str) -> Parsed<T> {
         let token = self.peek();
-        let fault = Diagnostic::fault(token.span, format!("found {}", token.kind.shown())).expected(expected);
+        let ends = token.kind == TokenKind::End || token.first && self.peek_word().is_some_and(|w| STATEMENTS.contains(&w));
+        let fault = if ends && self.at > 0 {
+            Diagnostic::fault(self.previous_span(), "the statement ends here").expected(format!("{expected} after it"))
+        } else {
+            Diagnostic::fault(token.span, format!("found {}", token.kind.shown())).expected(expected)
+        };
         self.faults.push(fault);
         Err(GaveUp)
     }
@@ -192,7 +201,12 @@ impl Parser<'_> {
             }
             self.next();
             let named = self.peek_word().map(str::to_owned);
+            let before = self.faults.len();
             if self.statement(&keyword, token.span, &mut per, &mut part).is_err() {
+                let read = token.span.start..=self.peek().span.start;
+                if self.unread.iter().any(|at| read.contains(at)) {
+                    self.faults.truncate(before);
+                }
                 if !["part", "law", "per", "band", "step", "hold"].contains(&keyword.as_str()) {
                     part.broken.extend(named);
                 }
@@ -378,6 +392,16 @@ impl Parser<'_> {
         };
         self.sign('=')?;
         let expr = self.expression()?;
+        let claimed = if self.take_word("claimed") {
+            self.word("where")?;
+            Some(self.expression()?)
+        } else {
+            None
+        };
+        let ends = self.peek().kind == TokenKind::End || self.peek().first;
+        if !self.at_word("see") && !ends {
+            return self.unexpected("`see \"…\"`");
+        }
         if !self.at_word("see") {
             self.faults.push(
                 Diagnostic::fault(name.span, format!("the item `{}` has no law reference", name.text))
@@ -388,7 +412,7 @@ impl Parser<'_> {
         }
         self.next();
         let law = self.text("a law reference as a text")?;
-        Ok(StatementKind::Item { name, kind, expr, law })
+        Ok(StatementKind::Item { name, kind, expr, claimed, law })
     }
 
     /// `band` and `step` lines belong to the `bands` or `scale` right above them.
@@ -426,7 +450,7 @@ impl Parser<'_> {
 
     fn type_name(&mut self) -> Parsed<TypeName> {
         let word = self.any_word("a type")?;
-        let period = if word.text == "money" && (self.take_word("a") || self.take_word("an")) {
+        let period = if self.take_word("a") || self.take_word("an") {
             Some(self.any_word("a period")?)
         } else {
             None

@@ -46,6 +46,8 @@ pub(super) enum What {
     /// The same of the partner; `failing` where there is none.
     Partner { target: Target, level: usize, failing: Option<Box<Node>>, text: String },
     /// A value of a table on a date of the pack.
+    /// A figure of the record at `level`, or of its owner of the right kind, once more under changed facts.
+    AsIf { figure: usize, kind: usize, level: usize, changes: Vec<Changed>, text: String },
     Lookup { table: usize, dated: usize, keys: Vec<Node> },
     Where { when: Box<Node>, give: Box<Node>, otherwise: Box<Node> },
     Extreme { larger: bool, list: Vec<Node> },
@@ -86,6 +88,15 @@ impl Node {
     }
 }
 
+/// A fact that stands changed for one figure: that of the record at `level`, or of its owner of the right kind.
+#[derive(Clone, Debug)]
+pub(super) struct Changed {
+    pub kind: usize,
+    pub fact: usize,
+    pub level: usize,
+    pub value: Node,
+}
+
 /// A figure or item of one kind of record.
 #[derive(Clone, Debug)]
 pub(super) struct Definition {
@@ -95,6 +106,8 @@ pub(super) struct Definition {
     pub part: usize,
     pub law: String,
     pub item: Option<ItemKind>,
+    /// Whether the item is claimed; none where that is no question.
+    pub claimed: Option<Node>,
     pub span: Span,
     pub name_span: Span,
     /// None where the expression has faults.
@@ -155,6 +168,7 @@ impl Node {
     fn inner<'a>(&'a self, call: &mut dyn FnMut(&'a Node)) {
         match &self.what {
             What::Fixed(_) | What::Amount { .. } | What::Missing { .. } | What::Dated(_) | What::Name { .. } => {}
+            What::AsIf { changes, .. } => changes.iter().for_each(|c| call(&c.value)),
             What::Partner { failing, .. } => {
                 if let Some(failing) = failing {
                     call(failing);

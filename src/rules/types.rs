@@ -49,6 +49,20 @@ pub(super) enum Ty {
 impl Ty {
     pub(super) const WORDS: [&'static str; 7] = ["money", "rate", "hours", "number", "count", "date", "yesno"];
 
+    /// How a message names it.
+    pub(super) fn words(self) -> String {
+        match self {
+            Ty::Money(None) => "money without a period".to_owned(),
+            Ty::Money(Some(_)) | Ty::Hours => self.to_string(),
+            Ty::Rate => "a rate".to_owned(),
+            Ty::Number => "a number".to_owned(),
+            Ty::Count => "a whole number".to_owned(),
+            Ty::Date => "a day".to_owned(),
+            Ty::YesNo => "yes or no".to_owned(),
+            Ty::Choice(_) => "a choice".to_owned(),
+        }
+    }
+
     /// Rates, numbers and counts mix.
     pub(super) fn is_scalar(self) -> bool {
         match self {

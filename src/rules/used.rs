@@ -24,6 +24,9 @@ struct Used {
     kinds: BTreeSet<usize>,
 }
 
+/// What a list holds, the positions that are used, and the declarations.
+type List<'a> = (&'a str, &'a BTreeSet<usize>, Vec<(Span, &'a str)>);
+
 pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
     if pack.definitions.iter().all(|d| d.item.is_none()) {
         faults.push(Diagnostic::general("the pack has no item").expected("at least one `item`, as a statement consists of them"));
@@ -31,8 +34,8 @@ pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
     }
     let used = reached(pack);
     let mut report = |span: Option<Span>, what: &str, name: &str| {
-        let fault = Diagnostic { span, ..Diagnostic::general(format!("the {what} `{name}` is not used")) };
-        faults.push(fault.expected("something that an item, hold or note needs").hint("use it, or remove it"));
+        let fault = Diagnostic { span, ..Diagnostic::general(format!("nothing needs the {what} `{name}`")) };
+        faults.push(fault.expected("an item, hold or note that does").hint("use it, or remove it"));
     };
     for (at, definition) in pack.definitions.iter().enumerate() {
         if !used.figures.contains(&at) {
@@ -57,7 +60,7 @@ pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
             report(Some(amount.rows[0].span), "amount", &amount.name);
         }
     }
-    let lists: [(&str, &BTreeSet<usize>, Vec<(Span, &str)>); 4] = [
+    let lists: [List<'_>; 4] = [
         ("table", &used.tables, pack.tables.iter().map(|t| (t.span, t.name.as_str())).collect()),
         ("conversion", &used.conversions, pack.conversions.iter().map(|c| (c.span, c.name.as_str())).collect()),
         ("bands", &used.bands, pack.bands.iter().map(|b| (b.span, b.name.as_str())).collect()),
@@ -122,8 +125,8 @@ fn reached(pack: &Pack) -> Used {
         used.kinds.insert(definition.kind);
         // A figure of every member is used where it is used of one.
         waiting.extend(&by_span[&definition.span]);
-        if let Some(body) = &definition.body {
-            note(pack, body, &mut used, &mut waiting);
+        for node in definition.body.iter().chain(&definition.claimed) {
+            note(pack, node, &mut used, &mut waiting);
         }
     }
     used
@@ -138,6 +141,10 @@ fn note(pack: &Pack, node: &Node, used: &mut Used, waiting: &mut Vec<usize>) {
                 used.facts.insert((*kind, *fact));
             }
         },
+        What::AsIf { figure, changes, .. } => {
+            waiting.push(*figure);
+            used.facts.extend(changes.iter().map(|c| (c.kind, c.fact)));
+        }
         What::Amount { amount, dated } => {
             used.amounts.insert(*amount);
             used.dates.insert(*dated);

@@ -101,8 +101,10 @@ pub(super) fn draw(
     let mut top = 0.0;
     for bar in bars {
         let high = size * 1.7;
+        let mut least = top;
         if beside {
             let words = wrapped(&bar.label, Weight::Regular, size, left - size * 0.5);
+            least = top + line * words.len() as f64;
             let start = top + (high - line * words.len() as f64).max(0.0) / 2.0;
             for (position, text) in words.into_iter().enumerate() {
                 let y = start + position as f64 * line;
@@ -120,7 +122,7 @@ pub(super) fn draw(
             (unit, total_width, size),
             &mut out,
         );
-        top += size * 0.6;
+        top = top.max(least) + size * 0.6;
     }
     out.height = hundredths((top - size * 0.6).max(0.0));
     out

@@ -252,7 +252,7 @@ pub(super) fn draw(plot: &Plot<'_>) -> Chart {
         .iter()
         .map(|(_, text)| width(text, Weight::Regular, size))
         .fold(0.0, f64::max);
-    let height = 62.0 + size * 11.6;
+    let height = 52.0 + size * 11.0;
     let scale = Scale {
         hours: (0.0, last),
         sums: (bottom_sum, top_sum),

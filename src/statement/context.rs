@@ -26,15 +26,42 @@ pub struct LetterContext {
     pub period: String,
     /// The office that sends the letter.
     pub office: Office,
-    /// The pack's labels by key. Read here: `item.NAME` an item's name, `what.NAME` the same in few words for the chart,
-    /// `turn.NAME` what happens when the rule of a figure or item turns, `note.NAME` a note, `fact.NAME` a fact,
-    /// `amount.NAME` an amount of the law, `office.NAME` an office and how to reach it, `report.NAME` what to report to
-    /// whom by when, `left_out` what the sum leaves out.
+    /// The pack's labels by key. Read here, all but the first two optional:
+    ///
+    /// * `item.NAME` an item's name, `fact.NAME` a fact's;
+    /// * `title` the rules, `kind.KIND` a kind of item, `what.NAME` what an item is, in a sentence;
+    /// * `turn.NAME.starts` (or `ends`, `more`, `less`), else `turn.NAME`: what happens when the rule of a figure or item
+    ///   turns; `more` and `less` are what it adds to net income for each further unit of pay;
+    /// * `said.NAME` a fact with its `{value}`; `word.NAME.VALUE`, else `word.VALUE`, a value in words; `none.NAME` what is not
+    ///   there where a fact was assumed to be no, none or nothing, `none.NAME.VALUE` where this value says as much; `-` is not
+    ///   worth a word;
+    /// * `amount.NAME` an amount of the law, `note.NAME` a note;
+    /// * `office.NAME` who runs an item, `report.NAME` what to tell it by when;
+    /// * `left_out.NUMBER`, or `left_out.NAME.NUMBER` where the household has the item: what the sum leaves out.
     pub labels: BTreeMap<String, String>,
+    /// How the pack's facts are written, by `KIND.NAME`; one that is not named here is printed as it stands.
+    pub facts: BTreeMap<String, FactShape>,
     /// The fixed words.
     pub texts: Arc<Texts>,
     /// How the letter reaches its reader.
     pub delivery: LetterDelivery,
+}
+
+/// What the text of a fact holds.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum FactShape {
+    /// A sum in currency units, for this period (`hour`, `month`); an empty period for a sum that has none.
+    Money(String),
+    /// Hours a week.
+    Hours,
+    /// A day, year first.
+    Date,
+    /// `yes` or `no`.
+    YesNo,
+    /// A word of a choice.
+    Word,
+    /// A number, a rate: printed as it stands.
+    Plain,
 }
 
 /// The office that sends letters.
@@ -77,12 +104,12 @@ impl Default for LetterDelivery {
 
 /// Which label keys an assessment needs and the pack lacks, in order.
 ///
-/// `turn.NAME` counts as present where the figure's item has a name; `what.NAME` is optional.
+/// Any `turn.NAME.…` counts as `turn.NAME`; what an item is, the kinds, and how facts are said are optional.
 pub fn missing_labels(
     assessment: &crate::measures::Assessment,
     labels: &BTreeMap<String, String>,
 ) -> Vec<String> {
-    let mut wanted: Vec<String> = vec!["left_out".to_owned()];
+    let mut wanted: Vec<String> = vec![];
     wanted.extend(
         assessment
             .items
@@ -100,7 +127,7 @@ pub fn missing_labels(
         assessment
             .amounts
             .iter()
-            .filter(|amount| !amount.confirmed || !amount.changed_because.is_empty())
+            .filter(|amount| !amount.changed_because.is_empty())
             .map(|amount| format!("amount.{}", amount.name)),
     );
     for earner in &assessment.earners {
@@ -114,9 +141,12 @@ pub fn missing_labels(
     }
     wanted.sort();
     wanted.dedup();
-    wanted.retain(|key| !labels.contains_key(key));
-    for group in ["office.", "report."] {
-        if !labels.keys().any(|key| key.starts_with(group)) {
+    let starts = |start: &str| labels.keys().any(|key| key.starts_with(start));
+    wanted.retain(|key| {
+        !labels.contains_key(key) && !(key.starts_with("turn.") && starts(&format!("{key}.")))
+    });
+    for group in ["left_out", "office.", "report."] {
+        if !starts(group) {
             wanted.push(format!("{group}*"));
         }
     }

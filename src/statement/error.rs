@@ -31,6 +31,16 @@ pub enum StatementError {
         /// The character.
         character: char,
     },
+    /// A text is too long for its place on the sheet: the household is held.
+    #[error("`{field}` needs {found}, expected {expected}")]
+    Room {
+        /// Where in the view: `address`, `address[2]`.
+        field: String,
+        /// What it would take up.
+        found: String,
+        /// What there is.
+        expected: String,
+    },
     /// A text file is faulty or lacks a key.
     #[error("texts `{language}`: {message}")]
     Texts {

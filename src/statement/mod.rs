@@ -16,6 +16,7 @@ mod error;
 mod fonts;
 mod money;
 mod place;
+mod room;
 mod templates;
 mod texts;
 mod typeset;
@@ -25,13 +26,13 @@ mod world;
 pub use bars::{BarPart, Bars};
 pub use build::{Detail, letter_view};
 pub use chart::{Chart, Dot, Label, Run, Tick};
-pub use context::{LetterContext, LetterDelivery, Office, missing_labels};
+pub use context::{FactShape, LetterContext, LetterDelivery, Office, missing_labels};
 pub use error::StatementError;
-pub use money::Currency;
+pub use money::{Currency, Decimals};
 pub use templates::TemplateSet;
 pub use texts::Texts;
 pub use typeset::{PAGE_LIMIT, Typeset, Typesetter, typeset};
 pub use view::{
-    Answer, Column, LetterView, Part, PartKind, Particular, Row, RowWeight, Section, Table,
-    TurnText,
+    Answer, AnswerWeight, Column, LetterView, Line, Part, PartKind, Particular, Row, RowWeight,
+    Section, Table, TurnText,
 };

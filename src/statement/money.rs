@@ -61,6 +61,26 @@ impl Currency {
         text
     }
 
+    /// A sum that is given as decimal text, in currency units: `1059.30` is `£1,059.30`, `725.00` is `£725`; a wage keeps
+    /// its decimals. None where the text is no such number.
+    pub fn typed(&self, text: &str, decimals: Decimals) -> Option<String> {
+        let (minus, size) = match text.strip_prefix('-') {
+            Some(size) => (MINUS.to_string(), size),
+            None => (String::new(), text),
+        };
+        let (whole, part) = size.split_once('.').unwrap_or((size, ""));
+        let digits = |text: &str| text.chars().all(|c| c.is_ascii_digit());
+        if whole.is_empty() || whole.len() > 15 || !digits(whole) || !digits(part) {
+            return None;
+        }
+        let whole = grouped(whole.parse().ok()?);
+        let part = match (decimals, part.trim_end_matches('0')) {
+            (Decimals::WhereNeeded, "") => String::new(),
+            (_, kept) => format!(".{kept:0<2}"),
+        };
+        Some(format!("{minus}{}{whole}{part}", self.sign))
+    }
+
     fn written(&self, sum: Money, pence: Pence) -> String {
         let size = sum.0.unsigned_abs();
         let minus = if sum.0 < 0 {
@@ -74,6 +94,15 @@ impl Currency {
             (_, part) => format!("{minus}{}{whole}.{part:02}", self.sign),
         }
     }
+}
+
+/// When the decimals of a typed sum are written.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Decimals {
+    /// At least two.
+    Always,
+    /// None where the sum is whole.
+    WhereNeeded,
 }
 
 /// When pence are written.
@@ -177,6 +206,23 @@ mod tests {
         assert_eq!(pound.wage(120_000), "£12.00");
         assert_eq!(pound.wage(127_125), "£12.7125");
         assert_eq!(Currency::of("CHF").wage(305_000), "CHF\u{a0}30.50");
+    }
+
+    #[test]
+    fn sums_given_as_text() {
+        let pound = Currency::of("GBP");
+        let t = |text, decimals, expected: Option<&str>| {
+            assert_eq!(pound.typed(text, decimals).as_deref(), expected, "{text}");
+        };
+        t("725.00", Decimals::WhereNeeded, Some("£725"));
+        t("1059.30", Decimals::WhereNeeded, Some("£1,059.30"));
+        t("1048", Decimals::WhereNeeded, Some("£1,048"));
+        t("-3.5", Decimals::WhereNeeded, Some("−£3.50"));
+        t("12.00", Decimals::Always, Some("£12.00"));
+        t("12.7125", Decimals::Always, Some("£12.7125"));
+        t("", Decimals::Always, None);
+        t("£725.00", Decimals::Always, None);
+        t("5%", Decimals::WhereNeeded, None);
     }
 
     #[test]

@@ -3,6 +3,7 @@
 use super::build::Detail;
 use super::context::LetterContext;
 use super::error::StatementError;
+use super::room;
 use super::templates::{Filler, TemplateSet, check_glyphs};
 use super::texts::Texts;
 use super::view::LetterView;
@@ -192,7 +193,11 @@ fn frame_text(frame: &Frame) -> String {
     out
 }
 
-/// Builds and typesets one client letter; where it would be longer than [`PAGE_LIMIT`] pages, with less detail.
+/// Pages that an ordinary letter has.
+const ORDINARY_PAGES: usize = 2;
+
+/// Builds and typesets one client letter: with every detail; shorter where that fits on two pages, or where the letter would be
+/// longer than [`PAGE_LIMIT`] pages.
 ///
 /// # Errors
 /// As for [`super::letter_view`] and [`Typesetter::letter`].
@@ -201,11 +206,20 @@ pub fn typeset(
     assessment: &crate::measures::Assessment,
     context: &LetterContext,
 ) -> Result<Typeset, StatementError> {
-    let view = super::letter_view(assessment, context, Detail::Full)?;
-    match typesetter.letter(&view, &context.texts, context.issued) {
+    let mut set = |view: &LetterView| typesetter.letter(view, &context.texts, context.issued);
+    let full = super::letter_view(assessment, context, Detail::Full)?;
+    if full.print_size <= ORDINARY_PRINT && room::pages(&full) > ORDINARY_PAGES {
+        let short = super::letter_view(assessment, context, Detail::Short)?;
+        if room::pages(&short) <= ORDINARY_PAGES {
+            let made = set(&short)?;
+            if made.pages <= ORDINARY_PAGES {
+                return Ok(made);
+            }
+        }
+    }
+    match set(&full) {
         Err(StatementError::TooLong { .. }) => {
-            let view = super::letter_view(assessment, context, Detail::Brief)?;
-            typesetter.letter(&view, &context.texts, context.issued)
+            set(&super::letter_view(assessment, context, Detail::Brief)?)
         }
         other => other,
     }

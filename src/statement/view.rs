@@ -20,6 +20,8 @@ pub struct LetterView {
     pub office: String,
     /// Lines under the office's name.
     pub office_lines: Vec<String>,
+    /// Lines of the office that stand beside the address, where there is no room above it.
+    pub office_more: Vec<String>,
     /// Lines of name and address; empty where none was given.
     pub address: Vec<String>,
     /// Whose statement it is, where there is no address.
@@ -32,9 +34,11 @@ pub struct LetterView {
     pub caution: String,
     /// Changed amounts of a what-if with the reasons; empty for none.
     pub what_if: Vec<String>,
+    /// The pack's notes that hold for this household, printed below the caution; at most one part.
+    pub notes: Vec<Part>,
     /// The word for the statement period.
     pub period: String,
-    /// Whether sections need the earner's name as a heading.
+    /// Whether sections need the earner's name as a heading: wherever there are two adults.
     pub named: bool,
     /// One section an earner, the leading one first.
     pub sections: Vec<Section>,
@@ -59,15 +63,36 @@ pub struct Part {
     /// How the lines are set.
     pub kind: PartKind,
     /// Paragraphs or points of a list.
-    pub lines: Vec<String>,
+    pub lines: Vec<Line>,
     /// 1 where the part is short enough to stay on one page, else 0.
     pub keep: u8,
 }
 
+/// A paragraph or point.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize)]
+pub struct Line {
+    /// Its first words, in bold: what it is about; may be empty.
+    pub lead: String,
+    /// The rest.
+    pub text: String,
+}
+
+impl From<String> for Line {
+    fn from(text: String) -> Line {
+        Line {
+            lead: String::new(),
+            text,
+        }
+    }
+}
+
 impl Part {
     /// A part; it stays on one page where its words are few for their size of print.
-    pub(super) fn new(heading: String, kind: PartKind, lines: Vec<String>, print_size: u8) -> Part {
-        let letters: usize = lines.iter().map(|line| line.chars().count() + 20).sum();
+    pub(super) fn new(heading: String, kind: PartKind, lines: Vec<Line>, print_size: u8) -> Part {
+        let letters: usize = lines
+            .iter()
+            .map(|line| line.lead.chars().count() + line.text.chars().count() + 20)
+            .sum();
         let keep = u8::from(letters * usize::from(print_size).pow(2) < 110_000);
         Part {
             heading,
@@ -97,7 +122,7 @@ pub struct Section {
     pub heading: String,
     /// First answers, one a named step.
     pub answers: Vec<Answer>,
-    /// What is measured: empty for net income, else that it is after costs of working.
+    /// What "you keep" means here: who "you" are, and what costs of working are taken off; may be empty.
     pub measure: String,
     /// The chart.
     pub chart: super::chart::Chart,
@@ -122,12 +147,26 @@ pub struct Section {
 /// A first answer.
 #[derive(Clone, Debug, Serialize)]
 pub struct Answer {
-    /// The named step: `4 hours more`, the offer's words.
+    /// The named step: `4 hours more`, `Offer`, `Offer A`.
     pub step: String,
-    /// What is kept, in large type.
+    /// The offer's own words; may be empty.
+    pub about: String,
+    /// What is kept.
     pub kept: String,
     /// The second sentence and the marginal one.
     pub detail: String,
+    /// Whether it is set in large type.
+    pub weight: AnswerWeight,
+}
+
+/// How heavy an answer is.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize)]
+#[serde(rename_all = "lowercase")]
+pub enum AnswerWeight {
+    /// What the household asks first, in large type.
+    Lead,
+    /// An answer beside it.
+    Beside,
 }
 
 /// A turning point in words.
@@ -150,6 +189,8 @@ pub struct Table {
     pub rows: Vec<Row>,
     /// What the table is, for readers who do not see it.
     pub summary: String,
+    /// What the star at a name means; may be empty.
+    pub note: String,
 }
 
 /// Head of a column.

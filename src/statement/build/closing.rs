@@ -1,115 +1,95 @@
-//! The closing parts: what is in the sum, the facts, unconfirmed amounts, what to report, next steps.
+//! The closing parts: what is in the sum, the facts, unconfirmed amounts, whom to tell, next steps.
+//! Only what concerns this household: items that are not zero at a point that the letter shows.
 
 use super::Detail;
-use super::words::{Words, listed};
-use crate::measures::{FactUse, ItemKind};
+use super::facts::facts;
+use super::words::{Words, enumerated, listed};
+use crate::measures::ItemKind;
 use crate::statement::error::StatementError;
 use crate::statement::money::{capital, readable};
-use crate::statement::view::{Part, PartKind};
+use crate::statement::view::{Line, Part, PartKind};
 
 /// All closing parts in order.
 pub(super) fn parts(words: &Words<'_>) -> Result<Vec<Part>, StatementError> {
-    let mut parts = vec![];
-    let notes: Vec<String> = words
-        .assessment
-        .notes
-        .iter()
-        .map(|note| {
-            let text = words.label(&format!("note.{note}"));
-            text.unwrap_or_else(|| format!("{}.", capital(&readable(note))))
-        })
-        .collect();
-    add(
-        words,
-        &mut parts,
-        "notes.heading",
-        PartKind::Paragraphs,
-        notes,
-    )?;
-    add(
-        words,
-        &mut parts,
-        "sum.heading",
-        PartKind::Paragraphs,
-        counted(words)?,
-    )?;
-    add(
-        words,
-        &mut parts,
-        "facts.heading",
-        PartKind::Paragraphs,
-        facts(words)?,
-    )?;
-    add(
-        words,
-        &mut parts,
-        "unconfirmed.heading",
-        PartKind::Paragraphs,
-        unconfirmed(words)?,
-    )?;
-    let mut report = grouped(words, "report.");
-    if report.is_empty() {
-        report.push(words.plain("report.general")?);
+    let mut rests_on = counted(words)?;
+    rests_on.extend(facts(words)?);
+    rests_on.extend(unconfirmed(words)?);
+    if words.detail == Detail::Full {
+        rests_on.extend(glossary(words)?);
     }
-    add(
-        words,
-        &mut parts,
-        "report.heading",
-        PartKind::Points,
-        report,
-    )?;
-    let offices = grouped(words, "office.");
-    add(
-        words,
-        &mut parts,
-        "offices.heading",
-        PartKind::Points,
-        offices,
-    )?;
-    add(
-        words,
-        &mut parts,
-        "next.heading",
-        PartKind::Steps,
-        next_steps(words)?,
-    )?;
-    Ok(parts)
+    Ok(vec![
+        words.part("sum.heading", PartKind::Paragraphs, rests_on)?,
+        words.part("report.heading", PartKind::Paragraphs, reports(words)?)?,
+        words.part("next.heading", PartKind::Steps, next_steps(words)?)?,
+    ])
 }
 
-/// Adds a part unless it is empty.
-fn add(
-    words: &Words<'_>,
-    parts: &mut Vec<Part>,
-    heading: &str,
-    kind: PartKind,
-    lines: Vec<String>,
-) -> Result<(), StatementError> {
-    if !lines.is_empty() {
-        parts.push(words.part(heading, kind, lines)?);
+/// What the benefits, taxes and help in kind of this household are, in the pack's words.
+fn glossary(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
+    let mut lines: Vec<Line> = vec![];
+    for (position, item) in words.assessment.items.iter().enumerate() {
+        let explained = match item.kind {
+            ItemKind::Benefit | ItemKind::Passport | ItemKind::Tax | ItemKind::Contribution => true,
+            ItemKind::Pay
+            | ItemKind::Income
+            | ItemKind::Pension
+            | ItemKind::Loan
+            | ItemKind::Cost
+            | ItemKind::Housing => false,
+        };
+        if !explained || !words.marks.present(position) || words.folded(&item.name) {
+            continue;
+        }
+        if let Some(what) = words.label(&format!("what.{}", item.name)) {
+            let name = words.item(position)?;
+            let line = Line {
+                lead: words.say("glossary.lead", &[("name", &name)])?,
+                text: what,
+            };
+            if !lines.contains(&line) {
+                lines.push(line);
+            }
+        }
     }
-    Ok(())
+    Ok(lines)
 }
 
-/// The pack's labels of one group, in the order of their keys.
-fn grouped(words: &Words<'_>, start: &str) -> Vec<String> {
+/// The pack's notes that hold for this household; at most one part.
+pub(super) fn notes(words: &Words<'_>) -> Result<Vec<Part>, StatementError> {
+    let said = words.assessment.notes.iter().filter_map(|note| {
+        let key = format!("note.{note}");
+        match words.context.labels.get(&key) {
+            Some(_) => words.label(&key),
+            None => Some(format!("{}.", capital(&readable(note)))),
+        }
+    });
+    let lines: Vec<Line> = said.map(Line::from).collect();
+    if lines.is_empty() {
+        return Ok(vec![]);
+    }
+    Ok(vec![words.part("notes.heading", PartKind::Paragraphs, lines)?])
+}
+
+/// The pack's labels of one group, in the order of their keys, with what follows the group's name in the key.
+fn grouped<'a>(words: &'a Words<'_>, group: &'a str) -> impl Iterator<Item = (&'a str, String)> {
     words
         .context
         .labels
-        .range(start.to_owned()..)
-        .take_while(|(key, _)| key.starts_with(start))
-        .map(|(_, text)| text.clone())
-        .collect()
+        .range(group.to_owned()..)
+        .take_while(move |(key, _)| key.starts_with(group))
+        .filter_map(move |(key, _)| Some((key[group.len()..].trim_start_matches('.'), words.label(key)?)))
+}
+
+/// Whether an item of this name concerns the household.
+fn concerns(words: &Words<'_>, name: &str) -> bool {
+    let mut items = words.assessment.items.iter().enumerate();
+    items.any(|(position, item)| item.name == name && words.marks.present(position))
 }
 
 /// What is counted and what is left out.
-fn counted(words: &Words<'_>) -> Result<Vec<String>, StatementError> {
+fn counted(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
     let mut names: Vec<String> = vec![];
     for (position, item) in words.assessment.items.iter().enumerate() {
-        let used = words.assessment.earners.iter().any(|earner| {
-            std::iter::once(&earner.not_in_work)
-                .chain(earner.lines.iter().flat_map(|line| &line.grid))
-                .any(|point| point.items[position].0 != 0)
-        });
         let in_sum = match item.kind {
             ItemKind::Pay
             | ItemKind::Income
@@ -122,163 +102,103 @@ fn counted(words: &Words<'_>) -> Result<Vec<String>, StatementError> {
             ItemKind::Passport | ItemKind::Housing => false,
         };
         let name = words.item(position)?;
-        if used && in_sum && !names.contains(&name) {
+        if words.marks.present(position) && in_sum && !names.contains(&name) {
             names.push(name);
         }
     }
-    let mut lines = vec![words.say("sum.in", &[("list", &listed(&names))])?];
-    if let Some(out) = words.label("left_out") {
-        lines.push(words.say("sum.out", &[("list", &out)])?);
-    }
-    Ok(lines)
-}
-
-/// The facts, by how they are known.
-fn facts(words: &Words<'_>) -> Result<Vec<String>, StatementError> {
-    let hidden: Vec<&str> = words
-        .assessment
-        .earners
-        .iter()
-        .filter(|earner| {
-            words
-                .context
-                .delivery
-                .only
-                .is_some_and(|only| only != earner.adult)
-        })
-        .map(|earner| earner.name.as_str())
-        .filter(|name| !name.is_empty())
-        .collect();
-    let shown = || {
-        words
-            .assessment
-            .facts
-            .iter()
-            .filter(|fact| !hidden.contains(&fact.of.as_str()))
-    };
-    let mut lines = vec![];
-    for (known, key) in [('s', "facts.seen"), ('t', "facts.told")] {
-        let group: Vec<&FactUse> = shown().filter(|fact| fact.known == known).collect();
-        push_facts(words, &mut lines, key, &group)?;
-    }
-    let assumed: Vec<&FactUse> = shown().filter(|fact| fact.known == 'a').collect();
-    let (none, some): (Vec<&FactUse>, Vec<&FactUse>) = assumed
-        .into_iter()
-        .partition(|fact| is_nothing(&fact.value));
-    push_facts(words, &mut lines, "facts.assumed", &some)?;
-    let mut names: Vec<String> = vec![];
-    for fact in none {
-        let name = fact_name(words, fact);
-        if !names.contains(&name) {
-            names.push(name);
+    let mut lines = vec![Line {
+        lead: words.plain("sum.in_lead")?,
+        text: words.say("sum.in", &[("list", &enumerated(&names))])?,
+    }];
+    let is_item = |name: &str| words.assessment.items.iter().any(|item| item.name == name);
+    let mut left_out: Vec<String> = vec![];
+    for (key, text) in grouped(words, "left_out") {
+        let name = key.split('.').next().unwrap_or_default();
+        if !is_item(name) || concerns(words, name) {
+            left_out.push(text.trim_end_matches('.').to_owned());
         }
     }
-    match words.detail {
-        _ if names.is_empty() => {}
-        Detail::Full => {
-            lines.push(words.say("facts.assumed_none", &[("list", &listed(&names))])?);
-        }
-        Detail::Brief => {
-            let count = names.len().to_string();
-            lines.push(words.say("facts.assumed_count", &[("count", &count)])?);
-        }
-    }
-    let missing: Vec<&FactUse> = shown()
-        .filter(|fact| !matches!(fact.known, 's' | 't' | 'a'))
-        .collect();
-    push_facts(words, &mut lines, "facts.missing", &missing)?;
-    Ok(lines)
-}
-
-/// Adds one paragraph of facts, those of one person together.
-fn push_facts(
-    words: &Words<'_>,
-    lines: &mut Vec<String>,
-    key: &str,
-    facts: &[&FactUse],
-) -> Result<(), StatementError> {
-    let mut owners: Vec<&str> = vec![];
-    for fact in facts {
-        if !owners.contains(&fact.of.as_str()) {
-            owners.push(&fact.of);
-        }
-    }
-    let mut groups = vec![];
-    for owner in owners {
-        let mut said = vec![];
-        for fact in facts.iter().filter(|fact| fact.of == owner) {
-            let name = fact_name(words, fact);
-            said.push(words.say("facts.fact", &[("name", &name), ("value", &fact.value)])?);
-        }
-        let list = said.join(", ");
-        groups.push(if owner.is_empty() {
-            list
-        } else {
-            words.say("facts.of", &[("of", owner), ("list", &list)])?
+    if !left_out.is_empty() {
+        lines.push(Line {
+            lead: words.plain("sum.out_lead")?,
+            text: words.say("sum.out", &[("list", &listed(&left_out))])?,
         });
     }
-    if !groups.is_empty() {
-        lines.push(words.say(key, &[("list", &listed(&groups))])?);
-    }
-    Ok(())
+    Ok(lines)
 }
 
-/// The name of a fact.
-fn fact_name(words: &Words<'_>, fact: &FactUse) -> String {
-    words
-        .label(&format!("fact.{}", fact.name))
-        .unwrap_or_else(|| readable(&fact.name))
-}
-
-/// Whether a value says no, none or nothing.
-fn is_nothing(value: &str) -> bool {
-    let figure = value
-        .trim_start_matches(|c: char| !c.is_ascii_digit())
-        .split(' ')
-        .next()
-        .unwrap_or("");
-    let zero = !figure.is_empty() && figure.chars().all(|c| matches!(c, '0' | '.' | '%'));
-    zero || matches!(value, "no" | "none" | "")
-}
-
-/// Amounts whose source nobody has checked.
-fn unconfirmed(words: &Words<'_>) -> Result<Vec<String>, StatementError> {
-    let mut names: Vec<String> = vec![];
-    for amount in words
-        .assessment
-        .amounts
-        .iter()
-        .filter(|amount| !amount.confirmed)
-    {
-        let name = words
-            .label(&format!("amount.{}", amount.name))
-            .unwrap_or_else(|| readable(&amount.name));
-        let said = words.say("facts.fact", &[("name", &name), ("value", &amount.value)])?;
-        if !names.contains(&said) {
-            names.push(said);
+/// Amounts whose source nobody has checked, counted by instrument.
+fn unconfirmed(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
+    let mut folded = 0;
+    let mut groups: Vec<(String, usize)> = vec![];
+    for (name, count) in &words.marks.instruments {
+        if words.reveals(name) {
+            folded += count;
+        } else {
+            groups.push((name.clone(), *count));
         }
     }
-    if names.is_empty() {
+    if folded > 0 {
+        groups.push((words.plain("sum.folded")?, folded));
+    }
+    if groups.is_empty() {
         return Ok(vec![]);
     }
-    Ok(vec![
-        words.say("unconfirmed.line", &[("list", &listed(&names))])?,
-    ])
+    let mut said = vec![];
+    for (name, count) in groups {
+        let count = count.to_string();
+        said.push(words.say("unconfirmed.group", &[("name", &name), ("count", &count)])?);
+    }
+    Ok(vec![Line {
+        lead: words.plain("unconfirmed.lead")?,
+        text: words.say("unconfirmed.line", &[("list", &enumerated(&said))])?,
+    }])
+}
+
+/// Whom to tell what by when: each office once, in the order of the statement's items.
+fn reports(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
+    let mut offices: Vec<(String, Vec<String>)> = vec![];
+    let mut seen: Vec<&str> = vec![];
+    for (position, item) in words.assessment.items.iter().enumerate() {
+        let name = item.name.as_str();
+        if seen.contains(&name) || !words.marks.present(position) || words.folded(name) {
+            continue;
+        }
+        seen.push(name);
+        let office = words.label(&format!("office.{name}"));
+        let report = words.label(&format!("report.{name}"));
+        let (Some(office), Some(report)) = (office, report) else {
+            continue;
+        };
+        let (office, report) = (capital(&office), report.trim_end_matches('.').to_owned());
+        match offices.iter_mut().find(|(known, _)| *known == office) {
+            Some((_, said)) if said.contains(&report) => {}
+            Some((_, said)) => said.push(report),
+            None => offices.push((office, vec![report])),
+        }
+    }
+    let mut lines = vec![];
+    for (office, said) in offices {
+        lines.push(Line {
+            lead: words.say("report.lead", &[("office", &office)])?,
+            text: format!("{}.", listed(&said)),
+        });
+    }
+    if lines.is_empty() {
+        lines.push(Line::from(words.plain("report.general")?));
+    }
+    Ok(lines)
 }
 
 /// The fixed next steps, then the office's own.
-fn next_steps(words: &Words<'_>) -> Result<Vec<String>, StatementError> {
+fn next_steps(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
     let until = words.day(words.context.rules_until);
+    let keys = words.context.texts.keys("next.");
     let mut lines = vec![];
-    let keys: Vec<&str> = words
-        .context
-        .texts
-        .keys("next.")
-        .filter(|key| *key != "next.heading")
-        .collect();
-    for key in keys {
-        lines.push(words.say(key, &[("until", &until)])?);
+    for key in keys.filter(|key| *key != "next.heading") {
+        lines.push(Line::from(words.say(key, &[("until", &until)])?));
     }
-    lines.extend(words.context.office.next_steps.iter().cloned());
+    let own = words.context.office.next_steps.iter().cloned();
+    lines.extend(own.map(Line::from));
     Ok(lines)
 }

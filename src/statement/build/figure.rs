@@ -1,7 +1,7 @@
 //! What the chart and the bars of a section show.
 
-use super::section::Step;
-use super::turns::{in_range, jump};
+use super::steps::Step;
+use super::turns::{in_range, is_cost_step, jump, own_traps};
 use super::words::{Measure, Words, hours_text};
 use crate::measures::{BudgetLine, EarnerResult, ItemKind, Segment, Turn, TurnKind};
 use crate::num::{Direction, Fraction, Hours, Money, divide_rounded};
@@ -13,15 +13,21 @@ use crate::statement::money::{hours, kept_of_ten, money};
 
 /// Jumps named in the chart at most.
 const NAMED_JUMPS: usize = 3;
+/// The least jump that is named in the chart, in minor units.
+const LEAST_NAMED: i64 = 500;
 /// Bars at most.
-const BARS: usize = 3;
+const BARS: usize = 2;
+/// Rates named in the title at most.
+const RATES: usize = 3;
+/// Stretches shorter than this, in hours, are not named in the title.
+const LEAST_STRETCH: Fraction = Fraction::ONE;
 /// Stretches shorter than this, in hours, get no bar unless they start at today's hours.
 const LEAST_BAR: Fraction = Fraction::ONE;
 
-/// Width of the text in points: the page less its margins of 24 and 18 mm.
+/// Width of the text in points: the page less its margins of 20 and 18 mm.
 pub(in crate::statement) fn text_width(paper: &str) -> f64 {
     let page = if paper == "us-letter" { 612.0 } else { 595.28 };
-    page - (24.0 + 18.0) * 72.0 / 25.4
+    page - (20.0 + 18.0) * 72.0 / 25.4
 }
 
 /// A place for drawing.
@@ -45,10 +51,7 @@ pub(super) fn chart(
     let Some(main) = earner.lines.first() else {
         return Ok(Chart::default());
     };
-    let axis = words.plain(match measure {
-        Measure::Net => "chart.axis_sum",
-        Measure::AfterCosts => "chart.axis_sum_after_costs",
-    })?;
+    let axis = axis(words, earner, measure, Starred::AsItIs)?;
     let mut lines: Vec<&BudgetLine> = vec![main];
     for step in steps {
         let known = lines
@@ -61,16 +64,17 @@ pub(super) fn chart(
     let drops = named_jumps(main, steps, earner, measure);
     let mut named = vec![];
     for turn in &drops {
-        let size = words.currency.whole(jump(turn, measure));
-        let at = hours_text(turn.hours);
+        let size = jump(turn, measure);
+        let key = if size.0 < 0 { "chart.drop" } else { "chart.rise" };
+        let (size, at) = (words.currency.whole(size), hours_text(turn.hours));
         named.push(Drop {
             hours: place(turn.at),
             sums: around(turn, measure),
-            label: words.say("chart.drop", &[("sum", &size), ("hours", &at)])?,
+            label: words.say(key, &[("sum", &size), ("hours", &at)])?,
         });
     }
     let mut bands = vec![];
-    for trap in &main.traps {
+    for trap in own_traps(main, measure) {
         let to = trap.to.map_or(place(main.up_to.as_fraction()), place);
         bands.push(Band {
             hours: (place(trap.from), to),
@@ -78,7 +82,7 @@ pub(super) fn chart(
         });
     }
     let plot = Plot {
-        title: title(words, earner, main, &drops, measure)?,
+        title: title(words, earner, steps, &drops, measure)?,
         alt: alt(words, earner, main, steps, &drops, measure)?,
         axes: (axis, words.plain("chart.axis_hours")?),
         lines: lines.iter().map(|line| stretches(line, measure)).collect(),
@@ -90,6 +94,32 @@ pub(super) fn chart(
         size,
     };
     Ok(chart::draw(&plot))
+}
+
+/// Whether the star of sums that rest on unconfirmed amounts is wanted.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Starred {
+    AsItIs,
+    Never,
+}
+
+/// The words over the axis of sums.
+fn axis(
+    words: &Words<'_>,
+    earner: &EarnerResult,
+    measure: Measure,
+    starred: Starred,
+) -> Result<String, StatementError> {
+    let points = [Words::today(earner), &earner.not_in_work];
+    let star = match starred {
+        Starred::AsItIs => words.marks.of_points(&points, |_| true),
+        Starred::Never => "",
+    };
+    let key = match measure {
+        Measure::Net => "chart.axis_sum",
+        Measure::AfterCosts => "chart.axis_sum_after_costs",
+    };
+    words.say(key, &[("star", star)])
 }
 
 /// A line's segments as stretches.
@@ -183,7 +213,7 @@ fn marks(
     Ok(marks)
 }
 
-/// The largest falls, those between today and the steps first.
+/// The largest jumps: falls between today and the steps first, then other falls, then rises.
 fn named_jumps<'a>(
     main: &'a BudgetLine,
     steps: &[Step<'_>],
@@ -191,34 +221,41 @@ fn named_jumps<'a>(
     measure: Measure,
 ) -> Vec<&'a Turn> {
     let range = in_range(earner, steps);
-    let mut falls: Vec<&Turn> = main
+    let mut jumps: Vec<&Turn> = main
         .turns
         .iter()
-        .filter(|turn| turn.kind == TurnKind::Cliff && jump(turn, measure).0 <= -500)
+        .filter(|turn| !is_cost_step(main, turn, measure) && turn.at > Fraction::ZERO)
+        .filter(|turn| turn.kind == TurnKind::Cliff || turn.kind == TurnKind::CostStep)
+        .filter(|turn| jump(turn, measure).0.abs() >= LEAST_NAMED)
         .collect();
-    falls.sort_by_key(|turn| {
+    jumps.sort_by_key(|turn| {
         let inside = turn.hours >= range.0 && turn.hours <= range.1;
-        (!inside, jump(turn, measure).0)
+        let size = jump(turn, measure).0;
+        (size > 0, !inside, -size.abs())
     });
-    falls.truncate(NAMED_JUMPS);
-    falls.sort_by_key(|turn| turn.hours);
-    falls
+    jumps.truncate(NAMED_JUMPS);
+    jumps.sort_by_key(|turn| turn.hours);
+    jumps
 }
 
-/// The message of the chart.
+/// The message of the chart: a trap or a jump between today and the steps, else what is kept of each further unit.
 fn title(
     words: &Words<'_>,
     earner: &EarnerResult,
-    main: &BudgetLine,
+    steps: &[Step<'_>],
     drops: &[&Turn],
     measure: Measure,
 ) -> Result<String, StatementError> {
+    let Some(main) = earner.lines.first() else {
+        return words.plain("chart.title_plain");
+    };
     let today = Words::today(earner);
-    let ahead = main
-        .traps
-        .iter()
-        .find(|trap| trap.to.is_none_or(|to| to > today.hours.as_fraction()));
-    if let Some(trap) = ahead {
+    let (low, high) = in_range(earner, steps);
+    let trap = own_traps(main, measure).into_iter().find(|trap| {
+        let ahead = trap.to.is_none_or(|to| to > today.hours.as_fraction());
+        ahead && trap.from < high.as_fraction()
+    });
+    if let Some(trap) = trap {
         let from = hours_text(hours(trap.from));
         return match trap.to {
             Some(to) => words.say(
@@ -228,24 +265,62 @@ fn title(
             None => words.say("chart.title_trap_open", &[("from", &from)]),
         };
     }
-    if let Some(turn) = drops.iter().find(|turn| turn.hours >= today.hours) {
-        let sum = words.currency.short(-jump(turn, measure));
+    let inside = |turn: &&&Turn| turn.hours > low && turn.hours <= high;
+    if let Some(turn) = drops.iter().find(inside) {
+        let size = jump(turn, measure);
+        let sum = words.currency.short(Money(size.0.abs()));
         let at = hours_text(turn.hours);
-        return words.say("chart.title_drop", &[("hours", &at), ("sum", &sum)]);
+        let key = if size.0 < 0 {
+            "chart.title_drop"
+        } else {
+            "chart.title_rise"
+        };
+        return words.say(key, &[("hours", &at), ("sum", &sum)]);
     }
-    match measure.rate_at(today) {
-        Some(rate) if rate < Fraction::ONE => {
+    let rates = rates_between(main, (low, high), measure);
+    let said: Vec<String> = rates.iter().map(|ten| words.currency.short(*ten)).collect();
+    match rates.as_slice() {
+        [] => words.plain("chart.title_plain"),
+        some if some.iter().any(|ten| ten.0 <= 0) => words.plain("chart.title_plain"),
+        [_] => {
             let at = hours_text(today.hours);
-            let ten = words.currency.short(kept_of_ten(rate));
             let key = if earner.has_job {
                 "chart.title_slope"
             } else {
                 "chart.title_slope_start"
             };
-            words.say(key, &[("hours", &at), ("ten", &ten)])
+            words.say(key, &[("hours", &at), ("ten", &said[0])])
         }
-        Some(_) | None => words.plain("chart.title_plain"),
+        [..] => {
+            let mut list = String::new();
+            for ten in &said {
+                list = match list.as_str() {
+                    "" => ten.clone(),
+                    first => words.say("chart.title_slopes_then", &[("first", first), ("next", ten)])?,
+                };
+            }
+            words.say("chart.title_slopes", &[("list", &list)])
+        }
     }
+}
+
+/// What is kept of ten units on the stretches of a range, neighbours that are alike as one.
+fn rates_between(main: &BudgetLine, (low, high): (Hours, Hours), measure: Measure) -> Vec<Money> {
+    let (low, high) = (low.as_fraction(), high.as_fraction());
+    let mut rates: Vec<Money> = vec![];
+    for segment in &main.segments {
+        let (from, to) = (segment.from.max(low), segment.to.min(high));
+        let long = to - from >= LEAST_STRETCH || rates.is_empty() && to > from;
+        let (true, Some(rate)) = (long, measure.rate(segment)) else {
+            continue;
+        };
+        let ten = kept_of_ten(rate);
+        if rates.last().is_none_or(|last| (last.0 - ten.0).abs() >= 5) {
+            rates.push(ten);
+        }
+    }
+    rates.truncate(RATES);
+    rates
 }
 
 /// The chart in words.
@@ -259,10 +334,7 @@ fn alt(
 ) -> Result<String, StatementError> {
     let sum = |sum: Money| words.currency.short(sum);
     let last = hours_text(main.up_to);
-    let axis = words.plain(match measure {
-        Measure::Net => "chart.axis_sum",
-        Measure::AfterCosts => "chart.axis_sum_after_costs",
-    })?;
+    let axis = axis(words, earner, measure, Starred::Never)?;
     let mut said = vec![
         words.say("chart.alt", &[("axis", &axis), ("last", &last)])?,
         words.say(
@@ -292,9 +364,14 @@ fn alt(
             ("before", &before),
             ("after", &after),
         ];
-        said.push(words.say("chart.alt_drop", &values)?);
+        let key = if jump(turn, measure).0 < 0 {
+            "chart.alt_drop"
+        } else {
+            "chart.alt_rise"
+        };
+        said.push(words.say(key, &values)?);
     }
-    for trap in &main.traps {
+    for trap in own_traps(main, measure) {
         let (from, depth) = (hours_text(hours(trap.from)), sum(trap.depth));
         said.push(match trap.to {
             Some(to) => words.say(
@@ -332,6 +409,7 @@ pub(super) fn bars(
     let (low, high) = in_range(earner, steps);
     let (low, high) = (low.as_fraction(), high.as_fraction());
     let mut found: Vec<(Fraction, Fraction, Vec<(Goes, String, Money)>)> = vec![];
+    let mut star = "";
     for segment in &main.segments {
         let begins_inside = segment.from < high || (low == high && segment.from <= low);
         if segment.to <= low || !begins_inside || measure.rate(segment).is_none() {
@@ -343,6 +421,9 @@ pub(super) fn bars(
             segment.from
         };
         let parts = parts(words, segment, measure)?;
+        if star.is_empty() {
+            star = words.marks.of_segment(segment);
+        }
         match found.last_mut() {
             Some(last) if last.1 == from && last.2 == parts => last.1 = segment.to,
             Some(_) | None => found.push((from, segment.to, parts)),
@@ -376,7 +457,7 @@ pub(super) fn bars(
         bars.push(Bar { label, parts });
     }
     Ok(bars::draw(
-        words.plain("bars.heading")?,
+        words.say("bars.heading", &[("star", star)])?,
         alts.join(" "),
         &bars,
         &words.currency,
@@ -399,7 +480,7 @@ fn parts(
             ItemKind::Tax | ItemKind::Contribution => (Goes::Tax, words.plain("bars.tax")?),
             ItemKind::Loan => (Goes::Tax, words.plain("bars.loan")?),
             ItemKind::Pension => (Goes::Pension, words.plain("bars.pension")?),
-            ItemKind::Income | ItemKind::Benefit => (Goes::Benefit, words.short_item(position)?),
+            ItemKind::Income | ItemKind::Benefit => (Goes::Benefit, words.item(position)?),
         };
         if share.is_zero() {
             continue;

@@ -1,94 +1,83 @@
 //! From an assessment to the view of a letter: which numbers are said, in which words, in which order.
 //! Works nothing out that the measures hold; only takes differences of printed sums.
 
+mod answers;
 mod closing;
+mod facts;
 mod figure;
+mod head;
+mod marks;
 mod section;
+mod steps;
 mod table;
+mod turn_words;
 mod turns;
 mod words;
 
 use super::context::LetterContext;
 use super::error::StatementError;
-use super::money::{capital, readable};
-use super::view::{LetterView, Particular};
+use super::money::{Decimals, capital, readable};
+use super::view::LetterView;
 use crate::measures::{Assessment, EarnerResult};
 use words::Words;
+
+pub(super) use figure::text_width;
 
 /// How much a letter says.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Detail {
     /// Everything.
     Full,
-    /// For letters that would be too long: the chart of the leading person alone, no bars, three turning points
-    /// a person, and of the facts that were assumed to be none only how many they are.
+    /// For letters that fit on two pages without the bars, the words explained, and the longer list of facts that were
+    /// assumed to be none.
+    Short,
+    /// For letters that would be too long: as short, and the chart of the leading person alone, three turning points a person.
     Brief,
 }
 
 /// Builds the view of a client letter.
 ///
 /// # Errors
-/// Where a text is missing from the language file.
+/// Where a text is missing from the language file, or the address has no room.
 pub fn letter_view(
     assessment: &Assessment,
     context: &LetterContext,
     detail: Detail,
 ) -> Result<LetterView, StatementError> {
-    let words = Words::new(assessment, context, detail)?;
+    head::check_address(&context.delivery.address)?;
     let earners = leading_first(assessment, context);
+    let words = Words::new(assessment, context, detail, &earners)?;
     let mut sections = vec![];
     for (place, earner) in earners.iter().enumerate() {
         sections.push(section::section(&words, earner, place)?);
     }
-    let until = words.day(context.rules_until);
     let assessed = words.day(context.assessed);
-    let particulars = [
-        ("number", context.number.clone()),
-        ("issued", words.day(context.issued)),
-        ("assessed", assessed.clone()),
-        ("area", context.area.clone()),
-        ("rules", context.rules_title.clone()),
-        ("rules_until", until.clone()),
+    let mut estimate = vec![
+        words.say("estimate.first", &[("assessed", &assessed)])?,
+        words.plain("estimate.change")?,
     ];
-    let mut rows = vec![];
-    for (key, value) in particulars {
-        rows.push(Particular {
-            name: words.say(&format!("head.{key}"), &[])?,
-            value,
-        });
+    if !words.marks.instruments.is_empty() {
+        estimate.push(words.plain("estimate.star")?);
     }
-    let title = match earners.len() {
-        0 | 1 => words.say("title", &[])?,
-        _ => words.say("title_couple", &[])?,
-    };
-    let names: Vec<&str> = earners
-        .iter()
-        .map(|earner| earner.name.as_str())
-        .filter(|name| !name.is_empty())
-        .collect();
-    let whose = match names.as_slice() {
-        [] => assessment.reference.clone(),
-        names => names.join(", "),
-    };
+    let (office_lines, office_more) = head::office_lines(&words);
     Ok(LetterView {
         language: context.texts.language().to_owned(),
         paper: context.delivery.paper.clone(),
         print_size: context.delivery.print_size.max(12),
-        title,
+        title: words.plain(if words.couple() { "title_couple" } else { "title" })?,
         number: context.number.clone(),
         office: context.office.name.clone(),
-        office_lines: context.office.lines.clone(),
+        office_lines,
+        office_more,
         address: context.delivery.address.clone(),
-        whose: words.say("for", &[("who", &whose)])?,
-        particulars: rows,
-        estimate: vec![
-            words.say("estimate.first", &[("assessed", &assessed)])?,
-            words.say("estimate.change", &[])?,
-        ],
-        caution: words.say("caution.text", &[])?,
+        whose: head::whose(&words, &earners)?,
+        particulars: head::particulars(&words)?,
+        estimate,
+        caution: words.plain("caution.text")?,
         what_if: what_if(&words)?,
+        notes: closing::notes(&words)?,
         period: words.period.clone(),
-        named: sections.len() > 1,
+        named: words.couple(),
         sections,
         closing: closing::parts(&words)?,
     })
@@ -127,10 +116,24 @@ fn what_if(words: &Words<'_>) -> Result<Vec<String>, StatementError> {
                 "what_if.line",
                 &[
                     ("amount", &capital(&name)),
-                    ("value", &amount.value),
+                    ("value", &amount_value(words, &amount.value)),
                     ("reason", amount.changed_because.trim_end_matches('.')),
                 ],
             )
         })
         .collect()
+}
+
+/// The value of an amount as a letter writes it: `1048 GBP a month` is `£1,048 a month`, `60 percent` is `60%`.
+fn amount_value(words: &Words<'_>, value: &str) -> String {
+    let mut parts = value.splitn(3, ' ');
+    let (figure, unit) = (parts.next().unwrap_or_default(), parts.next());
+    let rest = parts.next().map(|rest| format!(" {rest}")).unwrap_or_default();
+    let sum = words.currency.typed(figure, Decimals::WhereNeeded);
+    match (unit, sum) {
+        (Some("percent"), _) => format!("{figure}%{rest}"),
+        (Some(unit), Some(sum)) if unit == words.context.currency => format!("{sum}{rest}"),
+        (Some("count"), _) => format!("{figure}{rest}"),
+        (Some(_) | None, _) => value.to_owned(),
+    }
 }

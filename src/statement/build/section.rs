@@ -1,67 +1,19 @@
 //! One earner's section: first answers, chart, bars, turning points, table, passported help, the way back.
+//! The section of a second earner without an offer is short: no chart, no bars, no table.
 
 use super::Detail;
+use super::answers::{answers, four_fewer, meaning};
 use super::figure;
+use super::steps::{Step, steps};
 use super::table;
 use super::turns;
-use super::words::{Measure, Words, hours_text, listed};
-use crate::measures::{BudgetLine, EarnerResult, ItemKind, OfferMeasures, Point};
-use crate::num::{Fraction, Hours, Money};
+use super::words::{Measure, Words, hours_text};
+use crate::measures::{EarnerResult, ItemKind, Point};
+use crate::num::Money;
 use crate::statement::bars::Bars;
 use crate::statement::chart::Chart;
 use crate::statement::error::StatementError;
-use crate::statement::money::{kept_of_ten, readable};
-use crate::statement::view::{Answer, PartKind, Section};
-
-/// A named step: from today to a point of a line.
-pub(super) struct Step<'a> {
-    /// The line that it lies on.
-    pub line: &'a BudgetLine,
-    /// The point that it leads to.
-    pub to: &'a Point,
-    /// The offer; none for four hours more.
-    pub offer: Option<&'a OfferMeasures>,
-    /// What the step is called.
-    pub name: String,
-}
-
-/// All named steps of an earner.
-pub(super) fn steps<'a>(
-    words: &Words<'_>,
-    earner: &'a EarnerResult,
-) -> Result<Vec<Step<'a>>, StatementError> {
-    let mut steps = vec![];
-    if let (true, Some(line)) = (earner.has_job, earner.lines.first())
-        && line.step_to != line.own
-    {
-        let to = &line.grid[line.step_to];
-        let more = Hours(to.hours.0 - line.grid[line.own].hours.0);
-        steps.push(Step {
-            line,
-            to,
-            offer: None,
-            name: words.say("step.more", &[("hours", &hours_text(more))])?,
-        });
-    }
-    for offer in &earner.offers {
-        let Some(line) = earner.lines.get(offer.line) else {
-            continue;
-        };
-        let name = match line.terms.offer.as_str() {
-            "" if line.terms.reference.is_empty() => words.plain("step.offer")?,
-            "" => readable(&line.terms.reference),
-            given => given.to_owned(),
-        };
-        let to = &line.grid[line.step_to];
-        steps.push(Step {
-            line,
-            to,
-            offer: Some(offer),
-            name,
-        });
-    }
-    Ok(steps)
-}
+use crate::statement::view::{Line, Part, PartKind, Section};
 
 /// Builds the section that has this place in the letter, counted from 0.
 pub(super) fn section(
@@ -69,171 +21,64 @@ pub(super) fn section(
     earner: &EarnerResult,
     place: usize,
 ) -> Result<Section, StatementError> {
-    let measure = words.measure(earner);
+    let measure = Words::measure(earner);
     let steps = steps(words, earner)?;
-    let mut answers = vec![];
-    for step in &steps {
-        answers.push(answer(words, earner, step, measure)?);
-    }
-    if let Some(target) = target(words, earner)? {
-        answers.push(target);
-    }
-    let turns = turns::turns(words, earner, &steps, measure)?;
+    let turns = turns::turns(words, earner, &steps, (measure, place))?;
+    let asked = place == 0 || steps.iter().any(|step| step.offer.is_some());
     let mut parts = vec![];
-    let help = passported(words, earner, &steps)?;
-    if !help.is_empty() {
-        parts.push(words.part("passport.heading", PartKind::Paragraphs, help)?);
+    if let Some(help) = passported(words, earner, &steps)? {
+        parts.push(help);
     }
-    let back = way_back(words, earner, measure)?;
-    parts.push(words.part("back.heading", PartKind::Paragraphs, back)?);
+    let back = Line::from(way_back(words, earner, measure)?);
+    parts.push(words.part("back.heading", PartKind::Paragraphs, vec![back])?);
+    let drawn = match words.detail {
+        Detail::Full | Detail::Short => asked,
+        Detail::Brief => place == 0,
+    };
     Ok(Section {
-        heading: if words.by_name(earner) {
+        heading: if words.couple() && !earner.name.is_empty() {
             words.say("section.named", &[("name", &earner.name)])?
         } else {
             words.plain("section.you")?
         },
-        answers,
-        measure: match measure {
-            Measure::Net => String::new(),
-            Measure::AfterCosts => words.plain("measure.after_costs")?,
+        answers: answers(words, earner, &steps, measure)?,
+        measure: if place == 0 {
+            meaning(words, earner, measure)?
+        } else {
+            String::new()
         },
-        chart: match (words.detail, place) {
-            (Detail::Full, _) | (Detail::Brief, 0) => {
-                figure::chart(words, earner, &steps, measure)?
-            }
-            (Detail::Brief, _) => Chart::default(),
+        chart: if drawn {
+            figure::chart(words, earner, &steps, measure)?
+        } else {
+            Chart::default()
         },
-        bars: match words.detail {
-            Detail::Full => figure::bars(words, earner, &steps, measure)?,
-            Detail::Brief => Bars::default(),
+        bars: if words.detail == Detail::Full && place == 0 {
+            figure::bars(words, earner, &steps, measure)?
+        } else {
+            Bars::default()
         },
         turns_heading: words.plain("turns.heading")?,
         turns: turns.texts,
         turns_lead: turns.lead,
         turns_note: turns.note,
         table_heading: words.plain("table.heading")?,
-        tables: table::tables(words, earner, &steps)?,
+        tables: if asked {
+            table::tables(words, earner, &steps)?
+        } else {
+            vec![]
+        },
         parts,
     })
 }
 
-/// The first answer to one step.
-fn answer(
-    words: &Words<'_>,
-    earner: &EarnerResult,
-    step: &Step<'_>,
-    measure: Measure,
-) -> Result<Answer, StatementError> {
-    let today = Words::today(earner);
-    let (now, then) = (measure.at(today), measure.at(step.to));
-    let gain = then - now;
-    let kept = match gain.0 {
-        0 => words.plain("step.same")?,
-        above if above > 0 => words.say("step.gain", &[("sum", &words.currency.short(gain))])?,
-        _ => words.say("step.loss", &[("sum", &words.currency.short(-gain))])?,
-    };
-    Ok(Answer {
-        step: step.name.clone(),
-        kept,
-        detail: detail(words, earner, step, measure, gain)?,
-    })
-}
-
-/// The second sentence of a first answer, and the marginal one.
-fn detail(
-    words: &Words<'_>,
-    earner: &EarnerResult,
-    step: &Step<'_>,
-    measure: Measure,
-    gain: Money,
-) -> Result<String, StatementError> {
-    let today = Words::today(earner);
-    let rise = step.to.pay - today.pay;
-    let named = if words.by_name(earner) { "_named" } else { "" };
-    let (from, to) = (hours_text(today.hours), hours_text(step.to.hours));
-    let wage = words.currency.wage(step.line.terms.wage);
-    let ten = if earner.has_job && rise.0 > 0 {
-        let share = Fraction::new(i128::from(gain.0), i128::from(rise.0));
-        Some(kept_of_ten(Fraction::ONE - share))
-    } else {
-        measure.rate_at(step.to).map(kept_of_ten)
-    };
-    let ten = ten.map(|sum| words.currency.short(sum)).unwrap_or_default();
-    let key = match (earner.has_job, step.offer.is_some(), rise.0) {
-        (false, _, _) if ten.is_empty() => "detail_start_plain".to_owned(),
-        (false, _, _) => format!("detail_start{named}"),
-        (true, false, above) if above > 0 => format!("detail_more{named}"),
-        (true, true, above) if above > 0 => format!("detail_offer{named}"),
-        (true, _, 0) => "detail_level".to_owned(),
-        (true, _, _) => "detail_lower".to_owned(),
-    };
-    let pay = words.currency.short(Money(rise.0.abs()));
-    let values = [
-        ("name", earner.name.as_str()),
-        ("from", &from),
-        ("to", &to),
-        ("wage", &wage),
-        ("pay", &pay),
-        ("ten", &ten),
-    ];
-    let mut text = words.say(&format!("step.{key}"), &values)?;
-    if let (true, Some(offer)) = (earner.has_job, step.offer) {
-        text.push(' ');
-        text.push_str(&match offer.holding {
-            Some(hours) => words.say("step.holding", &[("hours", &hours_text(hours))])?,
-            None => {
-                let last = hours_text(step.line.up_to);
-                words.say("step.holding_none", &[("hours", &last)])?
-            }
-        });
-    }
-    Ok(text)
-}
-
-/// The hours that the sum asked for needs.
-fn target(words: &Words<'_>, earner: &EarnerResult) -> Result<Option<Answer>, StatementError> {
-    let (Some(target), Some(line)) = (&earner.target, earner.lines.first()) else {
-        return Ok(None);
-    };
-    let sum = words.currency.short(target.sum);
-    let last = hours_text(line.up_to);
-    let (kept, detail) = match (target.first, target.stays) {
-        (None, _) => (
-            words.say("step.target_none", &[("hours", &last), ("sum", &sum)])?,
-            String::new(),
-        ),
-        (Some(first), stays) => {
-            let first_text = hours_text(first);
-            let kept = words.say(
-                "step.target_first",
-                &[("hours", &first_text), ("sum", &sum)],
-            )?;
-            let detail = match stays {
-                Some(hours) => words.say(
-                    "step.target_stays",
-                    &[("hours", &hours_text(hours)), ("sum", &sum)],
-                )?,
-                None => words.say("step.target_stays_none", &[("sum", &sum)])?,
-            };
-            (kept, detail)
-        }
-    };
-    Ok(Some(Answer {
-        step: words.plain("step.target")?,
-        kept,
-        detail,
-    }))
-}
-
-/// Help in kind between today and the steps.
+/// Help in kind between today and the steps; none where there is none.
 fn passported(
     words: &Words<'_>,
     earner: &EarnerResult,
     steps: &[Step<'_>],
-) -> Result<Vec<String>, StatementError> {
+) -> Result<Option<Part>, StatementError> {
     let today = Words::today(earner);
-    let mut lines = vec![];
-    let mut kept = vec![];
+    let mut lines: Vec<Line> = vec![];
     for (position, item) in words.assessment.items.iter().enumerate() {
         if item.kind != ItemKind::Passport {
             continue;
@@ -241,42 +86,58 @@ fn passported(
         let name = words.item(position)?;
         let has = |point: &Point| point.items[position].0 != 0;
         let change = steps.iter().find(|step| has(step.to) != has(today));
-        let Some(step) = change else {
-            if has(today) && !kept.contains(&name) {
-                kept.push(name);
-            }
-            continue;
+        let text = match change {
+            Some(step) => help_changes(words, (today, step), position)?,
+            None if has(today) => words.plain("passport.kept")?,
+            None => continue,
         };
-        let wanted = if has(today) { -1 } else { 1 };
-        let (low, high) = (
-            today.hours.min(step.to.hours),
-            today.hours.max(step.to.hours),
-        );
-        let turn = step.line.turns.iter().find(|turn| {
-            turn.hours >= low
-                && turn.hours <= high
-                && turn
-                    .effects
-                    .iter()
-                    .any(|effect| effect.item == position && effect.jump.0.signum() == wanted)
-        });
-        let verb = if has(today) { "lost" } else { "won" };
-        lines.push(match turn {
-            Some(turn) if step.to.hours >= today.hours => words.say(
-                &format!("passport.{verb}"),
-                &[("name", &name), ("hours", &hours_text(turn.hours))],
-            )?,
-            Some(_) | None => words.say(
-                &format!("passport.{verb}_step"),
-                &[("name", &name), ("step", &step.name)],
-            )?,
-        });
+        let lead = words.say("passport.lead", &[("name", &name)])?;
+        let line = Line { lead, text };
+        if !lines.contains(&line) {
+            lines.push(line);
+        }
     }
-    if !kept.is_empty() {
-        lines.push(words.say("passport.kept", &[("list", &listed(&kept))])?);
+    if lines.is_empty() {
+        return Ok(None);
     }
-    lines.dedup();
-    Ok(lines)
+    let mut part = words.part("kind.passport", PartKind::Paragraphs, lines)?;
+    part.heading = words.kind(ItemKind::Passport)?;
+    Ok(Some(part))
+}
+
+/// Help that is won or lost between today and a step: where, if that is known.
+fn help_changes(
+    words: &Words<'_>,
+    (today, step): (&Point, &Step<'_>),
+    position: usize,
+) -> Result<String, StatementError> {
+    let (wanted, verb) = match today.items[position].0 {
+        0 => (1, "won"),
+        _ => (-1, "lost"),
+    };
+    let (low, high) = (
+        today.hours.min(step.to.hours),
+        today.hours.max(step.to.hours),
+    );
+    let turn = step.line.turns.iter().find(|turn| {
+        turn.hours >= low
+            && turn.hours <= high
+            && turn
+                .effects
+                .iter()
+                .any(|effect| effect.item == position && effect.jump.0.signum() == wanted)
+    });
+    match turn {
+        Some(turn) if step.to.hours >= today.hours => {
+            let (hours, pay) = (hours_text(turn.hours), words.currency.short(turn.pay));
+            let values = [("hours", hours.as_str()), ("pay", &pay)];
+            words.say(&format!("passport.{verb}"), &values)
+        }
+        Some(_) | None => words.say(
+            &format!("passport.{verb}_step"),
+            &[("step", &step.name)],
+        ),
+    }
 }
 
 /// What there is if the job ends or hours fall back by four.
@@ -284,44 +145,42 @@ fn way_back(
     words: &Words<'_>,
     earner: &EarnerResult,
     measure: Measure,
-) -> Result<Vec<String>, StatementError> {
+) -> Result<String, StatementError> {
     let today = Words::today(earner);
-    let without = measure.at(&earner.not_in_work);
-    let sum = words.currency.short(without);
     if !earner.has_job {
-        return Ok(vec![words.say("back.start", &[("sum", &sum)])?]);
+        let sum = words.currency.short(measure.at(today));
+        let star = words.marks.of_points(&[today], |_| true);
+        return words.say("back.start", &[("sum", &format!("{sum}{star}"))]);
     }
-    let mut lines = vec![against(words, "back.ends", "", without, measure.at(today))?];
-    let fewer = Hours(today.hours.0 - 400);
-    if let (Some(line), true) = (earner.lines.first(), fewer.0 > 0)
+    let values = (measure.at(today), measure);
+    let ends = against(words, ("back.ends", ""), &earner.not_in_work, values)?;
+    let mut lines = vec![ends];
+    if let (Some(line), Some(fewer)) = (earner.lines.first(), four_fewer(today.hours))
         && let Some(point) = line.grid.iter().find(|point| point.hours == fewer)
     {
         let hours = hours_text(fewer);
-        lines.push(against(
-            words,
-            "back.fewer",
-            &hours,
-            measure.at(point),
-            measure.at(today),
-        )?);
+        lines.push(against(words, ("back.fewer", &hours), point, values)?);
     }
-    lines.push(words.plain("back.report")?);
-    Ok(vec![lines.join(" ")])
+    if words.marks.has_benefits(words.assessment) {
+        lines.push(words.plain("back.report")?);
+    }
+    Ok(lines.join(" "))
 }
 
-/// A sum against today's.
+/// A point's sum against today's.
 fn against(
     words: &Words<'_>,
-    key: &str,
-    hours: &str,
-    sum: Money,
-    today: Money,
+    (key, hours): (&str, &str),
+    point: &Point,
+    (today, measure): (Money, Measure),
 ) -> Result<String, StatementError> {
-    let text = words.currency.short(sum);
+    let sum = measure.at(point);
+    let star = words.marks.of_points(&[point], |_| true);
+    let text = format!("{}{star}", words.currency.short(sum));
     let difference = words.currency.short(Money((today - sum).0.abs()));
     let key = match (today - sum).0 {
         0 => format!("{key}_same"),
-        above if above > 0 => key.to_owned(),
+        1.. => key.to_owned(),
         _ => format!("{key}_more"),
     };
     words.say(

@@ -1,6 +1,7 @@
 //! The short table: not in work, today, and each step; few rows, every sum exact to the minor unit.
 
-use super::section::Step;
+use super::marks::STAR;
+use super::steps::Step;
 use super::words::{Words, hours_text};
 use crate::measures::{EarnerResult, ItemKind, Point};
 use crate::num::Money;
@@ -9,9 +10,11 @@ use crate::statement::fonts::{Weight, width};
 use crate::statement::money::NONE;
 use crate::statement::view::{Column, Row, RowWeight, Table};
 
+/// Letters that the name of a single item may have to stand for its row.
+const LONGEST_NAME: usize = 23;
+
 /// What a row holds.
 struct Source {
-    key: &'static str,
     kinds: &'static [ItemKind],
     sign: Sign,
 }
@@ -23,38 +26,43 @@ enum Sign {
     ComesOff,
 }
 
+/// Rows above net income.
 const ABOVE_NET: [Source; 6] = [
     Source {
-        key: "pay",
         kinds: &[ItemKind::Pay],
         sign: Sign::Adds,
     },
     Source {
-        key: "off",
         kinds: &[ItemKind::Tax, ItemKind::Contribution],
         sign: Sign::ComesOff,
     },
     Source {
-        key: "pension",
         kinds: &[ItemKind::Pension],
         sign: Sign::ComesOff,
     },
     Source {
-        key: "loan",
         kinds: &[ItemKind::Loan],
         sign: Sign::ComesOff,
     },
     Source {
-        key: "benefits",
         kinds: &[ItemKind::Benefit],
         sign: Sign::Adds,
     },
     Source {
-        key: "income",
         kinds: &[ItemKind::Income],
         sign: Sign::Adds,
     },
 ];
+/// The row below net income.
+const COSTS: Source = Source {
+    kinds: &[ItemKind::Cost],
+    sign: Sign::ComesOff,
+};
+/// The row below what is left after costs.
+const HOUSING: Source = Source {
+    kinds: &[ItemKind::Housing],
+    sign: Sign::ComesOff,
+};
 
 /// The table in as many pieces as fit side by side.
 pub(super) fn tables(
@@ -105,78 +113,102 @@ pub(super) fn tables(
 fn most_columns(words: &Words<'_>) -> usize {
     let size = f64::from(words.context.delivery.print_size.max(12));
     let cell = width("£1,234.56", Weight::Bold, size) + size;
-    let names = size * 11.5;
+    let names = size * 13.5;
     let paper = super::figure::text_width(&words.context.delivery.paper);
     (((paper - names) / cell) as usize).clamp(1, 5)
 }
 
 /// One piece of the table.
 fn table(words: &Words<'_>, columns: &[(Column, &Point)]) -> Result<Table, StatementError> {
+    let points: Vec<&Point> = columns.iter().map(|(_, point)| *point).collect();
     let mut rows = vec![];
     for source in &ABOVE_NET {
-        let sums: Vec<Money> = columns
-            .iter()
-            .map(|(_, point)| words.total(point, source.kinds))
-            .collect();
-        push(words, &mut rows, source.key, &sums, source.sign)?;
+        push(words, &mut rows, source, &points)?;
     }
-    total(
-        words,
-        &mut rows,
-        "net",
-        columns.iter().map(|(_, point)| point.net),
-    )?;
-    let costs: Vec<Money> = columns
-        .iter()
-        .map(|(_, point)| point.net - point.after_costs)
-        .collect();
-    if costs.iter().any(|sum| sum.0 != 0) {
-        push(words, &mut rows, "costs", &costs, Sign::ComesOff)?;
-        let sums = columns.iter().map(|(_, point)| point.after_costs);
-        total(words, &mut rows, "after_costs", sums)?;
+    total(words, &mut rows, "table.net", points.iter().map(|point| point.net))?;
+    if push(words, &mut rows, &COSTS, &points)? {
+        let sums = points.iter().map(|point| point.after_costs);
+        total(words, &mut rows, "table.after_costs", sums)?;
     }
-    let housing: Vec<Money> = columns
-        .iter()
-        .map(|(_, point)| point.after_costs - point.after_housing)
-        .collect();
-    if housing.iter().any(|sum| sum.0 != 0) {
-        push(words, &mut rows, "housing", &housing, Sign::ComesOff)?;
-        let sums = columns.iter().map(|(_, point)| point.after_housing);
-        total(words, &mut rows, "after_housing", sums)?;
+    if push(words, &mut rows, &HOUSING, &points)? {
+        let sums = points.iter().map(|point| point.after_housing);
+        total(words, &mut rows, "table.after_housing", sums)?;
     }
     let names: Vec<&str> = columns
         .iter()
         .map(|(column, _)| column.name.as_str())
         .collect();
+    let starred = rows.iter().any(|row| row.name.ends_with(STAR));
     Ok(Table {
         summary: words.say("table.summary", &[("columns", &names.join("; "))])?,
         columns: columns.iter().map(|(column, _)| column.clone()).collect(),
         rows,
+        note: if starred {
+            words.plain("table.star")?
+        } else {
+            String::new()
+        },
     })
 }
 
-/// Adds a row unless it is empty everywhere; pay always stands.
+/// Adds a row unless it is empty everywhere; pay always stands. Returns whether there is a row.
 fn push(
     words: &Words<'_>,
     rows: &mut Vec<Row>,
-    key: &str,
-    sums: &[Money],
-    sign: Sign,
-) -> Result<(), StatementError> {
-    if key != "pay" && sums.iter().all(|sum| sum.0 == 0) {
-        return Ok(());
+    source: &Source,
+    points: &[&Point],
+) -> Result<bool, StatementError> {
+    let sums: Vec<Money> = points
+        .iter()
+        .map(|point| words.total(point, source.kinds))
+        .collect();
+    if source.kinds != [ItemKind::Pay] && sums.iter().all(|sum| sum.0 == 0) {
+        return Ok(false);
     }
-    let cells = sums.iter().map(|sum| match (sum.0, sign) {
+    let cells = sums.iter().map(|sum| match (sum.0, source.sign) {
         (0, _) => NONE.to_owned(),
         (_, Sign::Adds) => words.currency.exact(*sum),
         (_, Sign::ComesOff) => words.currency.exact(-*sum),
     });
+    let of_row = |item: usize| source.kinds.contains(&words.assessment.items[item].kind);
+    let star = words.marks.of_points(points, of_row);
     rows.push(Row {
-        name: words.plain(&format!("table.{key}"))?,
+        name: format!("{}{star}", name(words, source, points)?),
         cells: cells.collect(),
         weight: RowWeight::Plain,
     });
-    Ok(())
+    Ok(true)
+}
+
+/// The name of a row: the one item's own where there is only one, else its kinds'.
+fn name(
+    words: &Words<'_>,
+    source: &Source,
+    points: &[&Point],
+) -> Result<String, StatementError> {
+    let mut names: Vec<String> = vec![];
+    for (position, item) in words.assessment.items.iter().enumerate() {
+        let due = points.iter().any(|point| point.items[position].0 != 0);
+        if due && source.kinds.contains(&item.kind) {
+            let name = words.item(position)?;
+            if !names.contains(&name) {
+                names.push(name);
+            }
+        }
+    }
+    let name = match (names.as_slice(), source.kinds) {
+        ([one], _) if one.chars().count() <= LONGEST_NAME => one.clone(),
+        (_, [first, second]) => {
+            let (first, second) = (words.kind(*first)?, words.kind(*second)?);
+            words.say("table.two_kinds", &[("first", &first), ("second", &second)])?
+        }
+        (_, [first, ..]) => words.kind(*first)?,
+        (_, []) => String::new(),
+    };
+    if words.couple() && source.kinds == [ItemKind::Pay] {
+        return words.say("table.both", &[("name", &name)]);
+    }
+    Ok(name)
 }
 
 /// Adds a total.
@@ -187,7 +219,7 @@ fn total(
     sums: impl Iterator<Item = Money>,
 ) -> Result<(), StatementError> {
     rows.push(Row {
-        name: words.plain(&format!("table.{key}"))?,
+        name: words.plain(key)?,
         cells: sums.map(|sum| words.currency.exact(sum)).collect(),
         weight: RowWeight::Total,
     });

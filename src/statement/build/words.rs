@@ -1,12 +1,13 @@
 //! Names and numbers as a letter says them.
 
 use super::Detail;
+use super::marks::Marks;
 use crate::measures::{Assessment, EarnerResult, ItemKind, Point, Segment};
 use crate::num::{Fraction, Hours, Money};
 use crate::statement::context::LetterContext;
 use crate::statement::error::StatementError;
 use crate::statement::money::{Currency, day, readable};
-use crate::statement::view::{Part, PartKind};
+use crate::statement::view::{Line, Part, PartKind};
 use chrono::NaiveDate;
 
 /// Which income a section speaks of.
@@ -64,7 +65,13 @@ pub(super) struct Words<'a> {
     pub currency: Currency,
     /// The word for the statement period.
     pub period: String,
+    /// Which items concern this household, and which rest on unconfirmed amounts.
+    pub marks: Marks,
+    /// Ten currency units, as the letter speaks of them: `£10`.
+    each: String,
     months: Vec<String>,
+    /// The labels of the items that are folded, in lower case.
+    hidden: Vec<String>,
 }
 
 impl<'a> Words<'a> {
@@ -73,26 +80,34 @@ impl<'a> Words<'a> {
         assessment: &'a Assessment,
         context: &'a LetterContext,
         detail: Detail,
+        earners: &[&EarnerResult],
     ) -> Result<Words<'a>, StatementError> {
         let texts = &context.texts;
+        let currency = Currency::of(&context.currency);
         let key = format!("period.{}", context.period);
         let months = (1..=12)
             .map(|month| texts.say(&format!("month.{month}"), &[]))
             .collect::<Result<_, _>>()?;
+        let folded = context.delivery.fold.iter();
+        let hidden = folded.filter_map(|name| context.labels.get(&format!("item.{name}")));
         Ok(Words {
             assessment,
             context,
             detail,
-            currency: Currency::of(&context.currency),
             period: texts.say(&key, &[])?,
+            marks: Marks::new(assessment, earners),
+            each: currency.short(Money(1000)),
             months,
+            hidden: hidden.map(|label| label.to_lowercase()).collect(),
+            currency,
         })
     }
 
-    /// A fixed text with its values; `period` is always known.
+    /// A fixed text with its values; `period` and `each` (ten currency units) are always known.
     pub fn say(&self, key: &str, values: &[(&str, &str)]) -> Result<String, StatementError> {
         let mut all = values.to_vec();
         all.push(("period", &self.period));
+        all.push(("each", &self.each));
         self.context.texts.say(key, &all)
     }
 
@@ -106,19 +121,41 @@ impl<'a> Words<'a> {
         &self,
         heading: &str,
         kind: PartKind,
-        lines: Vec<String>,
+        lines: Vec<Line>,
     ) -> Result<Part, StatementError> {
         let size = self.context.delivery.print_size.max(12);
         Ok(Part::new(self.plain(heading)?, kind, lines, size))
     }
 
-    /// A label of the pack, if it has one.
+    /// What is kept of ten currency units, as a clause: `you keep £3.24 of each extra £10`.
+    pub fn rate(&self, kept: Money) -> Result<String, StatementError> {
+        let key = match kept.0 {
+            ..0 => "rate.lost",
+            0 => "rate.nothing",
+            1000 => "rate.all",
+            1..1000 => "rate.kept",
+            _ => "rate.more",
+        };
+        let ten = self.currency.short(Money(kept.0.abs()));
+        self.say(key, &[("ten", &ten)])
+    }
+
+    /// A label of the pack, if it has one that gives no folded item away.
     pub fn label(&self, key: &str) -> Option<String> {
         self.context
             .labels
             .get(key)
-            .filter(|text| !text.is_empty())
+            .filter(|text| !text.is_empty() && !self.reveals(text))
             .cloned()
+    }
+
+    /// Whether a text names an item that is folded for safety.
+    pub fn reveals(&self, text: &str) -> bool {
+        if self.hidden.is_empty() {
+            return false;
+        }
+        let text = text.to_lowercase();
+        self.hidden.iter().any(|label| text.contains(label))
     }
 
     /// A day in words.
@@ -146,12 +183,23 @@ impl<'a> Words<'a> {
             .unwrap_or_else(|| readable(name)))
     }
 
-    /// An item's short name for drawings.
-    pub fn short_item(&self, position: usize) -> Result<String, StatementError> {
-        let name = &self.assessment.items[position].name;
-        match self.label(&format!("what.{name}")) {
-            Some(short) if !self.folded(name) => Ok(short),
-            Some(_) | None => self.item(position),
+    /// The pack's word for a kind of item, else the fixed one.
+    pub fn kind(&self, kind: ItemKind) -> Result<String, StatementError> {
+        let key = match kind {
+            ItemKind::Pay => "kind.pay",
+            ItemKind::Income => "kind.income",
+            ItemKind::Tax => "kind.tax",
+            ItemKind::Contribution => "kind.contribution",
+            ItemKind::Pension => "kind.pension",
+            ItemKind::Loan => "kind.loan",
+            ItemKind::Benefit => "kind.benefit",
+            ItemKind::Passport => "kind.passport",
+            ItemKind::Cost => "kind.cost",
+            ItemKind::Housing => "kind.housing",
+        };
+        match self.label(key) {
+            Some(word) => Ok(word),
+            None => self.plain(key),
         }
     }
 
@@ -166,12 +214,9 @@ impl<'a> Words<'a> {
             .sum()
     }
 
-    /// Which income is spoken of: after costs where any cost of working is due anywhere on the lines.
-    pub fn measure(&self, earner: &EarnerResult) -> Measure {
-        let differs = std::iter::once(&earner.not_in_work)
-            .chain(earner.lines.iter().flat_map(|line| &line.grid))
-            .any(|point| point.net != point.after_costs);
-        if differs {
+    /// Which income is spoken of: after costs where a line has costs of working, as for its traps.
+    pub fn measure(earner: &EarnerResult) -> Measure {
+        if earner.lines.iter().any(|line| line.has_costs) {
             Measure::AfterCosts
         } else {
             Measure::Net
@@ -186,17 +231,11 @@ impl<'a> Words<'a> {
         }
     }
 
-    /// Whether the letter speaks to more than one adult by name.
-    pub fn by_name(&self, earner: &EarnerResult) -> bool {
-        let adults = self
-            .assessment
-            .items
-            .iter()
-            .filter_map(|item| item.adult)
-            .chain(self.assessment.earners.iter().map(|earner| earner.adult))
-            .max()
-            .unwrap_or(0);
-        adults > 0 && !earner.name.is_empty()
+    /// Whether there are two adults.
+    pub fn couple(&self) -> bool {
+        let adults = self.assessment.items.iter().filter_map(|item| item.adult);
+        let earners = self.assessment.earners.iter().map(|earner| earner.adult);
+        adults.chain(earners).max().unwrap_or(0) > 0
     }
 }
 
@@ -205,7 +244,12 @@ pub(super) fn hours_text(hours: Hours) -> String {
     hours.plain()
 }
 
-/// Parts in one line, each after `; `.
+/// Parts that may hold commas, in one line.
 pub(super) fn listed(parts: &[String]) -> String {
     parts.join("; ")
+}
+
+/// Names in one line.
+pub(super) fn enumerated(parts: &[String]) -> String {
+    parts.join(", ")
 }

@@ -14,7 +14,12 @@ use hourworth::rules::{Pack, day, decimal};
 const ALWAYS: [(&str, &str); 3] = [("birth", "1990-01-01"), ("hours", "0"), ("wage", "10")];
 
 fn value(spec: &FactSpec, given: Option<&str>) -> i64 {
-    let text = given.or_else(|| ALWAYS.iter().find(|(name, _)| *name == spec.name).map(|(_, text)| *text));
+    let text = given.or_else(|| {
+        ALWAYS
+            .iter()
+            .find(|(name, _)| *name == spec.name)
+            .map(|(_, text)| *text)
+    });
     let Some(text) = text else {
         return match spec.need {
             Need::Default(value) => value,
@@ -23,28 +28,56 @@ fn value(spec: &FactSpec, given: Option<&str>) -> i64 {
     };
     let units = |text: &str, units: i64| {
         let scaled = decimal(text).expect("a number") * Fraction::whole(i128::from(units));
-        assert_eq!(scaled.denominator(), 1, "`{text}` is too fine for `{}`", spec.name);
+        assert_eq!(
+            scaled.denominator(),
+            1,
+            "`{text}` is too fine for `{}`",
+            spec.name
+        );
         i64::try_from(scaled.floor()).expect("a small number")
     };
     match &spec.ty {
         FactType::YesNo => i64::from(text == "yes"),
-        FactType::Choice(words) => words.iter().position(|w| w == text).expect("a word of the choice") as i64,
+        FactType::Choice(words) => words
+            .iter()
+            .position(|w| w == text)
+            .expect("a word of the choice") as i64,
         FactType::Date => day(text).expect("a day"),
         FactType::Rate => units(text.trim_end_matches('%'), 100),
-        FactType::Money(_) | FactType::Hours | FactType::Number | FactType::Count => units(text, spec.ty.units()),
+        FactType::Money(_) | FactType::Hours | FactType::Number | FactType::Count => {
+            units(text, spec.ty.units())
+        }
     }
 }
 
-fn household(schema: &Schema, records: &[Record]) -> Household {
+pub fn household(schema: &Schema, records: &[Record]) -> Household {
     let mut instances: Vec<Vec<Instance>> = vec![vec![]; schema.kinds.len()];
     let mut add = |kind: usize, owner: usize, facts: &[(String, String)]| {
         for (name, _) in facts {
-            assert!(schema.kinds[kind].facts.iter().any(|f| f.name == *name), "the pack has no fact `{name}`");
+            assert!(
+                schema.kinds[kind].facts.iter().any(|f| f.name == *name),
+                "the pack has no fact `{name}`"
+            );
         }
-        let given = |name: &str| facts.iter().find(|(n, _)| n == name).map(|(_, v)| v.as_str());
-        let values: Vec<i64> = schema.kinds[kind].facts.iter().map(|spec| value(spec, given(&spec.name))).collect();
+        let given = |name: &str| {
+            facts
+                .iter()
+                .find(|(n, _)| n == name)
+                .map(|(_, v)| v.as_str())
+        };
+        let values: Vec<i64> = schema.kinds[kind]
+            .facts
+            .iter()
+            .map(|spec| value(spec, given(&spec.name)))
+            .collect();
         let known = vec![Known::Told; values.len()];
-        instances[kind].push(Instance { label: String::new(), reference: String::new(), owner: owner - 1, values, known });
+        instances[kind].push(Instance {
+            label: String::new(),
+            reference: String::new(),
+            owner: owner - 1,
+            values,
+            known,
+        });
     };
     let some = |kind: &str| records.iter().filter(|r| r.kind == kind).count();
     for (kind, spec) in schema.kinds.iter().enumerate() {
@@ -62,11 +95,21 @@ fn household(schema: &Schema, records: &[Record]) -> Household {
     }
     let mut roles: Vec<JobRole> = vec![];
     for (at, job) in instances[JOB].iter().enumerate() {
-        let further = instances[JOB][..at].iter().any(|before| before.owner == job.owner);
-        roles.push(if further { JobRole::Further } else { JobRole::Today });
+        let further = instances[JOB][..at]
+            .iter()
+            .any(|before| before.owner == job.owner);
+        roles.push(if further {
+            JobRole::Further
+        } else {
+            JobRole::Today
+        });
     }
     for record in records {
-        assert!(schema.kinds.iter().any(|k| k.name == record.kind), "the pack has no kind `{}`", record.kind);
+        assert!(
+            schema.kinds.iter().any(|k| k.name == record.kind),
+            "the pack has no kind `{}`",
+            record.kind
+        );
     }
     Household {
         reference: "test".into(),
@@ -83,14 +126,24 @@ fn household(schema: &Schema, records: &[Record]) -> Household {
 pub fn differences(section: &Section, pack: &Pack) -> Vec<String> {
     let schema = schema_of(pack);
     let household = household(&schema, &section.records);
-    section.expects.iter().filter_map(|expect| difference(expect, pack, &schema, &household)).collect()
+    section
+        .expects
+        .iter()
+        .filter_map(|expect| difference(expect, pack, &schema, &household))
+        .collect()
 }
 
 /// `NAME [of KIND N] [at H hours] [on DAY] = VALUE`; `note` and `held` stand for the notes and the reasons to hold.
 fn difference(expect: &str, pack: &Pack, schema: &Schema, household: &Household) -> Option<String> {
     let (head, wanted) = expect.split_once(" = ").unwrap_or((expect, ""));
     let words: Vec<&str> = head.split(' ').collect();
-    let after = |word: &str, by: usize| words.iter().position(|w| *w == word).and_then(|at| words.get(at + by)).copied();
+    let after = |word: &str, by: usize| {
+        words
+            .iter()
+            .position(|w| *w == word)
+            .and_then(|at| words.get(at + by))
+            .copied()
+    };
     let on = after("on", 1).map_or(20_500, |d| day(d).expect("a day"));
     let setting = Setting::new(household, 0, JobChoice::Today).expect("the first adult");
     let dates = vec![on; pack.manifest.dates.len()];
@@ -101,18 +154,37 @@ fn difference(expect: &str, pack: &Pack, schema: &Schema, household: &Household)
     let machine = Machine::new(program);
     let special = machine.special(&setting.facts(machine.program()));
     let hours = after("at", 1).map_or(setting.own_hours(), |h| {
-        Hours(i64::try_from((decimal(h).expect("hours") * Fraction::whole(100)).floor()).expect("hours of a week"))
+        Hours(
+            i64::try_from((decimal(h).expect("hours") * Fraction::whole(100)).floor())
+                .expect("hours of a week"),
+        )
     });
     match words[0] {
-        "note" => return (special.notes(hours).join(", ") != wanted).then(|| format!("notes: {:?}", special.notes(hours))),
-        "held" => return (special.holds(hours).join(", ") != wanted).then(|| format!("holds: {:?}", special.holds(hours))),
+        "note" => {
+            return (special.notes(hours).join(", ") != wanted)
+                .then(|| format!("notes: {:?}", special.notes(hours)));
+        }
+        "held" => {
+            return (special.holds(hours).join(", ") != wanted)
+                .then(|| format!("holds: {:?}", special.holds(hours)));
+        }
         _ => {}
     }
     let (name, kind) = name_and_kind(head);
-    let kind = schema.kinds.iter().position(|k| k.name == kind).expect("a kind of the pack");
-    let instance = after("of", 2).and_then(|n| n.parse::<usize>().ok()).unwrap_or(1) - 1;
+    let kind = schema
+        .kinds
+        .iter()
+        .position(|k| k.name == kind)
+        .expect("a kind of the pack");
+    let instance = after("of", 2)
+        .and_then(|n| n.parse::<usize>().ok())
+        .unwrap_or(1)
+        - 1;
     let lines = working(&special, hours);
-    let found = lines.iter().find(|l| l.name == name && l.of == (kind, instance)).map_or("nothing", |l| l.value.as_str());
+    let found = lines
+        .iter()
+        .find(|l| l.name == name && l.of == (kind, instance))
+        .map_or("nothing", |l| l.value.as_str());
     (found != wanted).then(|| format!("{head} = {found}, expected {wanted}"))
 }
 

@@ -660,6 +660,7 @@ pub fn assessment(home: &Home, earners: Vec<EarnerResult>) -> Assessment {
             .collect(),
         earners,
         couple: None,
+        unclaimed: vec![],
         notes: vec![],
         facts: vec![
             fact("", "rent", &format!("£{}.00 a month", home.rent), 's'),
@@ -749,6 +750,7 @@ pub fn context() -> LetterContext {
             .iter()
             .map(|(key, text)| ((*key).to_owned(), (*text).to_owned()))
             .collect::<BTreeMap<_, _>>(),
+        facts: BTreeMap::new(),
         texts: TemplateSet::built_in()
             .texts("en")
             .expect("the texts are sound"),

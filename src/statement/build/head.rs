@@ -1,0 +1,96 @@
+//! The head of the letter: whose it is, its particulars, the office; and whether all of it has room.
+
+use super::words::Words;
+use crate::measures::EarnerResult;
+use crate::statement::chart::wrapped;
+use crate::statement::error::StatementError;
+use crate::statement::fonts::{Weight, width};
+use crate::statement::view::Particular;
+
+/// Size of print of the address and of the office's lines, in points, whatever the size of the rest.
+const SIZE: f64 = 12.0;
+/// Width of the address in points: 84 mm, what the window of an envelope shows.
+const WIDE: f64 = 84.0 * 72.0 / 25.4;
+/// Lines of an address that the window shows: common practice, no source.
+const ADDRESS_LINES: usize = 6;
+/// Lines of the office above the address, its name among them.
+const OFFICE_LINES: usize = 6;
+
+/// Number, days, place and rules.
+pub(super) fn particulars(words: &Words<'_>) -> Result<Vec<Particular>, StatementError> {
+    let context = words.context;
+    let rules = words.label("title");
+    [
+        ("issued", words.day(context.issued)),
+        ("assessed", words.day(context.assessed)),
+        ("area", context.area.clone()),
+        ("rules", rules.unwrap_or_else(|| context.rules_title.clone())),
+        ("rules_until", words.day(context.rules_until)),
+    ]
+    .into_iter()
+    .map(|(key, value)| {
+        Ok(Particular {
+            name: words.plain(&format!("head.{key}"))?,
+            value,
+        })
+    })
+    .collect()
+}
+
+/// Whose statement it is.
+pub(super) fn whose(words: &Words<'_>, earners: &[&EarnerResult]) -> Result<String, StatementError> {
+    let names: Vec<&str> = earners
+        .iter()
+        .map(|earner| earner.name.as_str())
+        .filter(|name| !name.is_empty())
+        .collect();
+    let whose = match names.as_slice() {
+        [] => words.assessment.reference.clone(),
+        names => names.join(", "),
+    };
+    words.say("for", &[("who", &whose)])
+}
+
+/// Checks that the window of an envelope shows the whole address.
+///
+/// # Errors
+/// Where it has too many lines, or a word that is wider than the window.
+pub(super) fn check_address(address: &[String]) -> Result<(), StatementError> {
+    let mut lines = 0;
+    for (position, line) in address.iter().enumerate() {
+        let rows = wrapped(line, Weight::Regular, SIZE, WIDE);
+        if let Some(word) = rows.iter().find(|row| width(row, Weight::Regular, SIZE) > WIDE) {
+            return Err(StatementError::Room {
+                field: format!("address[{position}]"),
+                found: format!("more than 84 mm for `{word}`"),
+                expected: "words that fit into the window of an envelope".to_owned(),
+            });
+        }
+        lines += rows.len();
+    }
+    if lines > ADDRESS_LINES {
+        return Err(StatementError::Room {
+            field: "address".to_owned(),
+            found: format!("{lines} lines"),
+            expected: format!("at most {ADDRESS_LINES}, which the window of an envelope shows"),
+        });
+    }
+    Ok(())
+}
+
+/// The office's lines: those that stand above the address, and those that stand beside it.
+pub(super) fn office_lines(words: &Words<'_>) -> (Vec<String>, Vec<String>) {
+    let lines = &words.context.office.lines;
+    if words.context.delivery.address.is_empty() {
+        return (lines.clone(), vec![]);
+    }
+    let mut used = wrapped(&words.context.office.name, Weight::Bold, SIZE, WIDE).len();
+    let above = lines
+        .iter()
+        .take_while(|line| {
+            used += wrapped(line, Weight::Regular, SIZE, WIDE).len();
+            used <= OFFICE_LINES
+        })
+        .count();
+    (lines[..above].to_vec(), lines[above..].to_vec())
+}
