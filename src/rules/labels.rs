@@ -65,6 +65,11 @@ pub(super) fn check(pack: &Pack, files: &[(String, FileId)], sources: &Sources, 
         for key in labels.keys() {
             let Some((group, name)) = key.split_once('.') else { continue };
             let Some(known) = names(pack, group) else { continue };
+            // What a turning point does may have words of its own.
+            let name = match name.rsplit_once('.') {
+                Some((name, "starts" | "ends" | "less" | "more")) if group == "turn" => name,
+                _ => name,
+            };
             if !known.contains(&name) {
                 let start = text.find(&format!("\n{key},")).map_or(0, |at| at + 1);
                 let end = if start == 0 { 0 } else { start + key.len() };
