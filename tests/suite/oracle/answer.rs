@@ -5,7 +5,7 @@
 //! Two manners of rounding: by the `law`, and `smooth`, where a rounding of what varies with the earner's hours is left out unless
 //! it says `as steps`.
 
-use super::book::{ADULT, Book, Condition, JOB, Ladder, Limit, Row};
+use super::book::{ADULT, Book, Cell, Condition, JOB, Ladder, Limit, Row};
 use super::reader::{Expr, Search, Sign, Test, Way};
 use super::text::{Q, full_years, q, whole};
 use num_bigint::BigInt;
@@ -51,11 +51,20 @@ impl Value {
         }
     }
 
+    /// A word of a choice, of which `yes` and `no` may be two.
+    fn word(self) -> String {
+        match self {
+            Value::Word(word) => word,
+            Value::Truth(yes) => if yes { "yes" } else { "no" }.to_owned(),
+            Value::Number(value) => panic!("{value} is no word"),
+        }
+    }
+
     fn truth(self) -> bool {
         match self {
             Value::Truth(yes) => yes,
             Value::Number(value) => !value.is_zero(),
-            Value::Word(word) => panic!("`{word}` is not yes or no"),
+            Value::Word(word) => panic!("the word `{word}` is no answer"),
         }
     }
 }
@@ -115,8 +124,17 @@ fn either_course(when: &Course, yes: Course, no: Course) -> Course {
 /// Records at hand: kind and position, the innermost last.
 type Scopes = Vec<(usize, usize)>;
 
-/// Where an expression is said: the part, which picks the amounts, and the records at hand.
+/// Facts that are taken otherwise for `as if`, by kind, record and fact; what was worked out under them.
+#[derive(Default)]
+struct World {
+    changed: HashMap<(usize, usize, usize), (Value, Course)>,
+    courses: RefCell<HashMap<(usize, usize), Course>>,
+    done: RefCell<HashMap<(usize, usize), Value>>,
+}
+
+/// Where an expression is said: the part, which picks the amounts, the records at hand, and the facts taken otherwise.
 struct Place<'p> {
+    world: &'p World,
     part: usize,
     scopes: &'p Scopes,
 }
@@ -148,8 +166,8 @@ pub struct Oracle<'a> {
     book: &'a Book,
     days: Vec<i64>,
     home: Home,
-    courses: RefCell<HashMap<(usize, usize), Course>>,
-    steady: RefCell<HashMap<(usize, usize), Value>>,
+    /// Nothing is taken otherwise; what does not vary is remembered.
+    base: World,
 }
 
 /// `value` as a multiple of `unit`.
@@ -172,7 +190,7 @@ pub fn rounded(value: &Q, way: Way, unit: &Q) -> Q {
 
 impl<'a> Oracle<'a> {
     pub fn new(book: &'a Book, days: Vec<i64>, home: Home) -> Oracle<'a> {
-        Oracle { book, days, home, courses: RefCell::default(), steady: RefCell::default() }
+        Oracle { book, days, home, base: World::default() }
     }
 
     /// All items at these hours, in the order of the law.
@@ -181,7 +199,7 @@ impl<'a> Oracle<'a> {
         let mut out = Vec::new();
         for (at, figure) in self.book.figures.iter().enumerate().filter(|(_, f)| f.item.is_some()) {
             for record in 0..self.count(figure.kind) {
-                out.push(((figure.name.clone(), figure.kind, record), self.figure(at, record, &run).number()));
+                out.push(((figure.name.clone(), figure.kind, record), self.figure(at, record, &self.base, &run).number()));
             }
         }
         out
@@ -190,7 +208,7 @@ impl<'a> Oracle<'a> {
     /// A figure or item of one record by the law; none where the book has none of that name, or its value is a word.
     pub fn figure_by_law(&self, name: &str, kind: usize, record: usize, hours: &Q) -> Option<Q> {
         let at = *self.book.names[kind].get(name)?;
-        match self.figure(at, record, &self.run(hours, Mode::Law)) {
+        match self.figure(at, record, &self.base, &self.run(hours, Mode::Law)) {
             Value::Word(_) => None,
             value => Some(value.number()),
         }
@@ -211,7 +229,7 @@ impl<'a> Oracle<'a> {
         let mut out = Vec::new();
         for condition in list {
             for kind in &condition.kinds {
-                let holds = |record| self.value(&condition.when, &Place { part: condition.part, scopes: &vec![(*kind, record)] }, &run).truth();
+                let holds = |record| self.value(&condition.when, &Place { world: &self.base, part: condition.part, scopes: &vec![(*kind, record)] }, &run).truth();
                 if (0..self.count(*kind)).any(holds) && !out.contains(&condition.text) {
                     out.push(condition.text.clone());
                 }
@@ -237,24 +255,33 @@ impl<'a> Oracle<'a> {
         self.owner(self.book.kinds[kind].owner?, self.home.records[kind][record].owner, wanted)
     }
 
-    fn figure(&self, at: usize, record: usize, run: &Run) -> Value {
-        if let Some(value) = self.steady.borrow().get(&(at, record)).or(run.done.borrow().get(&(at, record))) {
-            return value.clone();
+    fn figure(&self, at: usize, record: usize, world: &World, run: &Run) -> Value {
+        let as_it_is = world.changed.is_empty();
+        let known = world.done.borrow().get(&(at, record)).cloned();
+        if let Some(value) = known.or_else(|| run.done.borrow().get(&(at, record)).filter(|_| as_it_is).cloned()) {
+            return value;
         }
         let figure = &self.book.figures[at];
         let scopes = vec![(figure.kind, record)];
-        let mut value = self.value(&figure.expr, &Place { part: figure.part, scopes: &scopes }, run);
-        let varies = self.figure_course(at, record) == Course::Varies;
-        if figure.item.as_deref().is_some_and(|kind| kind != "passport") && (run.mode == Mode::Law || !varies) {
+        let place = Place { world, part: figure.part, scopes: &scopes };
+        let mut value = self.value(&figure.expr, &place, run);
+        if figure.item.as_deref().is_some_and(|kind| kind != "passport") && (run.mode == Mode::Law || self.course(&figure.expr, &place) != Course::Varies) {
             value = Value::Number(rounded(&value.number(), Way::HalfUp, &q(1, 100)));
         }
-        let done = if varies { &run.done } else { &self.steady };
+        if figure.claimed.as_ref().is_some_and(|claimed| !self.value(claimed, &place, run).truth()) {
+            value = Value::Number(Q::zero());
+        }
+        let passes = as_it_is && self.figure_course(at, record, world) == Course::Varies;
+        let done = if passes { &run.done } else { &world.done };
         done.borrow_mut().insert((at, record), value.clone());
         value
     }
 
     /// A fact of a record.
-    fn fact(&self, kind: usize, record: usize, fact: usize, run: &Run) -> Value {
+    fn fact(&self, kind: usize, record: usize, fact: usize, world: &World, run: &Run) -> Value {
+        if let Some((value, _)) = world.changed.get(&(kind, record, fact)) {
+            return value.clone();
+        }
         if (kind, record, fact) == (JOB, self.home.varied_job, 0) {
             return Value::Number(run.hours.clone());
         }
@@ -284,14 +311,30 @@ impl<'a> Oracle<'a> {
     }
 
     /// A figure, item or fact of a record.
-    fn of_record(&self, name: &str, kind: usize, record: usize, run: &Run) -> Value {
+    fn of_record(&self, name: &str, kind: usize, record: usize, world: &World, run: &Run) -> Value {
         match self.book.names[kind].get(name) {
-            Some(figure) => self.figure(*figure, record, run),
+            Some(figure) => self.figure(*figure, record, world, run),
             None => {
-                let fact = self.book.kinds[kind].facts.iter().position(|f| f.name == name).unwrap_or_else(|| panic!("`{name}` is known"));
-                self.fact(kind, record, fact, run)
+                let fact = self.fact_at(name, kind).unwrap_or_else(|| panic!("`{name}` is known"));
+                self.fact(kind, record, fact, world, run)
             }
         }
+    }
+
+    fn fact_at(&self, name: &str, kind: usize) -> Option<usize> {
+        self.book.kinds[kind].facts.iter().position(|f| f.name == name)
+    }
+
+    /// The place at hand with some facts taken otherwise: those of the records at hand, as bare names find them.
+    fn changed(&self, changes: &[(String, Expr)], place: &Place<'_>, value: impl Fn(&Expr, &Course) -> Value) -> World {
+        let mut changed = place.world.changed.clone();
+        for (name, expr) in changes {
+            let (kind, record) = self.nearest(name, place.scopes).expect("the fact is at hand");
+            let fact = self.fact_at(name, kind).expect("it is a fact");
+            let course = self.course(expr, place);
+            changed.insert((kind, record, fact), (value(expr, &course), course));
+        }
+        World { changed, ..World::default() }
     }
 
     /// The row that holds on the date of a part.
@@ -317,11 +360,11 @@ impl<'a> Oracle<'a> {
     }
 
     fn eligible(&self, over: &Search, kind: usize, record: usize, place: &Place<'_>, run: &Run) -> bool {
-        over.with.as_ref().is_none_or(|with| self.value(with, &Place { part: place.part, scopes: &place.inside(kind, record) }, run).truth())
+        over.with.as_ref().is_none_or(|with| self.value(with, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) }, run).truth())
     }
 
     fn key(&self, over: &Search, kind: usize, record: usize, place: &Place<'_>, run: &Run) -> Q {
-        self.name(&over.by, &Place { part: place.part, scopes: &place.inside(kind, record) }, run).number()
+        self.name(&over.by, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) }, run).number()
     }
 
     /// Whether `a` stands before `b`: the smaller key, `down` the larger; a tie keeps the order of the list.
@@ -344,12 +387,11 @@ impl<'a> Oracle<'a> {
     /// A bare name.
     fn name(&self, name: &str, place: &Place<'_>, run: &Run) -> Value {
         if let Some((kind, record)) = self.nearest(name, place.scopes) {
-            return self.of_record(name, kind, record, run);
+            return self.of_record(name, kind, record, place.world, run);
         }
         if let Some(rows) = self.book.amounts.get(name) {
             // Nothing is known on that day: the household is held.
-            let value = self.picked(rows.iter(), place.part).first().and_then(|row| row.value.clone()).unwrap_or_default();
-            return Value::Number(value);
+            return cell(self.picked(rows.iter(), place.part).first().and_then(|row| row.value.as_ref()));
         }
         if let Some(date) = self.date(name) {
             return Value::Number(whole(i128::from(self.days[date])));
@@ -370,12 +412,12 @@ impl<'a> Oracle<'a> {
             Expr::YesNo(yes) => Value::Truth(*yes),
             Expr::Name(name) => self.name(name, place, run),
             Expr::Of { name, whose, failing } => match self.relation(whose, place) {
-                (kind, Some(record)) => self.of_record(name, kind, record, run),
+                (kind, Some(record)) => self.of_record(name, kind, record, place.world, run),
                 (_, None) => self.value(failing.as_ref().expect("something stands in"), place, run),
             },
             Expr::Lookup { table, keys } => {
                 let keys: Vec<Value> = keys.iter().map(|k| self.value(k, place, run)).collect();
-                Value::Number(self.looked_up(table, &keys, place.part))
+                self.looked_up(table, &keys, place.part)
             }
             Expr::Where { when, give, otherwise } => self.value(if truth(when) { give } else { otherwise }, place, run),
             Expr::Larger(list) => Value::Number(list.iter().map(number).max().expect("a list has an entry")),
@@ -383,7 +425,7 @@ impl<'a> Oracle<'a> {
             Expr::SumOver { over, body } => {
                 let mut total = Q::zero();
                 for (kind, record) in self.counted(over, place, run) {
-                    total += self.value(body, &Place { part: place.part, scopes: &place.inside(kind, record) }, run).number();
+                    total += self.value(body, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) }, run).number();
                 }
                 Value::Number(total)
             }
@@ -397,7 +439,7 @@ impl<'a> Oracle<'a> {
                 let kind = self.book.kinds_of(&over.kind)[0];
                 let list: Vec<usize> = self.among(kind, place).into_iter().filter(|r| self.eligible(over, kind, *r, place, run)).collect();
                 match self.leading(over, kind, &list, place, run) {
-                    Some(record) => self.value(give, &Place { part: place.part, scopes: &place.inside(kind, record) }, run),
+                    Some(record) => self.value(give, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) }, run),
                     None => self.value(failing, place, run),
                 }
             }
@@ -410,6 +452,11 @@ impl<'a> Oracle<'a> {
             Expr::Years { from, to } => {
                 let day = |e: &Expr| number(e).to_integer().to_i64().expect("a day");
                 Value::Number(whole(i128::from(full_years(day(from), day(to)))))
+            }
+            Expr::AsIf { name, changes } => {
+                let (kind, record) = self.nearest(name, place.scopes).expect("the figure is at hand");
+                let world = self.changed(changes, place, |expr, _| self.value(expr, place, run));
+                self.of_record(name, kind, record, &world, run)
             }
             Expr::Missing(name) => {
                 let row = self.picked(self.book.amounts[name].iter(), place.part);
@@ -458,7 +505,7 @@ impl<'a> Oracle<'a> {
             Expr::Compared { test, left, right } => {
                 let (left, right) = (self.value(left, place, run), self.value(right, place, run));
                 let same = match (&left, &right) {
-                    (Value::Word(left), Value::Word(right)) => left == right,
+                    (Value::Word(word), other) | (other, Value::Word(word)) => *word == other.clone().word(),
                     (_, _) => matches!(test, Test::Is | Test::IsNot) && left.clone().number() == right.clone().number(),
                 };
                 Value::Truth(match test {
@@ -487,16 +534,16 @@ impl<'a> Oracle<'a> {
     fn on_ladder<T>(&self, ladder: &Ladder, place: &Place<'_>, call: impl FnOnce(&Place<'_>) -> T) -> T {
         let (kind, record) = place.here();
         let own = self.owner(kind, record, ladder.kind).expect("a ladder can be reached");
-        call(&Place { part: ladder.part, scopes: &vec![(ladder.kind, own)] })
+        call(&Place { world: place.world, part: ladder.part, scopes: &vec![(ladder.kind, own)] })
     }
 
     /// The row of a table; a count outside takes the nearest end.
-    fn looked_up(&self, name: &str, keys: &[Value], part: usize) -> Q {
+    fn looked_up(&self, name: &str, keys: &[Value], part: usize) -> Value {
         let table = &self.book.tables[name];
         let mut rows = self.picked(table.rows.iter(), part);
         for (at, key) in keys.iter().enumerate() {
             let wanted = match key {
-                Value::Word(word) => word.clone(),
+                key if table.keys[at].is_some() => key.clone().word(),
                 count => {
                     let column = rows.iter().map(|row| row.keys[at].parse::<i64>().expect("a count"));
                     let (low, high) = (column.clone().min().expect("a table has rows"), column.max().expect("a table has rows"));
@@ -506,35 +553,48 @@ impl<'a> Oracle<'a> {
             };
             rows.retain(|row| row.keys[at] == wanted);
         }
-        rows[0].value.clone().expect("a table has no gaps")
+        cell(rows[0].value.as_ref())
     }
 
     /// What a figure depends on.
-    fn figure_course(&self, at: usize, record: usize) -> Course {
-        if let Some(course) = self.courses.borrow().get(&(at, record)) {
+    fn figure_course(&self, at: usize, record: usize, world: &World) -> Course {
+        if let Some(course) = world.courses.borrow().get(&(at, record)) {
             return course.clone();
         }
         let figure = &self.book.figures[at];
-        let course = self.course(&figure.expr, &Place { part: figure.part, scopes: &vec![(figure.kind, record)] });
-        self.courses.borrow_mut().insert((at, record), course.clone());
+        let place = Place { world, part: figure.part, scopes: &vec![(figure.kind, record)] };
+        let mut course = self.course(&figure.expr, &place);
+        if let (Course::Fixed(value), Some(kind)) = (&course, &figure.item)
+            && kind != "passport"
+        {
+            course = Course::Fixed(Value::Number(rounded(&value.clone().number(), Way::HalfUp, &q(1, 100))));
+        }
+        if let Some(claimed) = &figure.claimed {
+            course = either_course(&self.course(claimed, &place), course, Course::Fixed(Value::Number(Q::zero())));
+        }
+        world.courses.borrow_mut().insert((at, record), course.clone());
         course
     }
 
-    fn record_course(&self, name: &str, kind: usize, record: usize) -> Course {
+    fn record_course(&self, name: &str, kind: usize, record: usize, world: &World) -> Course {
         let itself = || Course::Steady(Some((kind, record, name.to_owned())));
-        match self.book.names[kind].get(name) {
-            Some(figure) => match self.figure_course(*figure, record) {
-                Course::Steady(None) => itself(),
+        if let Some(figure) = self.book.names[kind].get(name) {
+            return match self.figure_course(*figure, record, world) {
+                Course::Steady(None) if world.changed.is_empty() => itself(),
                 course => course,
-            },
-            None if (kind, record) == (JOB, self.home.varied_job) && name == "hours" => Course::Varies,
+            };
+        }
+        let fact = self.fact_at(name, kind).expect("a fact");
+        match world.changed.get(&(kind, record, fact)) {
+            Some((_, course)) => course.clone(),
+            None if (kind, record, fact) == (JOB, self.home.varied_job, 0) => Course::Varies,
             None => itself(),
         }
     }
 
     fn name_course(&self, name: &str, place: &Place<'_>) -> Course {
         match self.nearest(name, place.scopes) {
-            Some((kind, record)) => self.record_course(name, kind, record),
+            Some((kind, record)) => self.record_course(name, kind, record, place.world),
             None => Course::Fixed(self.name(name, place, &self.nowhere())),
         }
     }
@@ -556,12 +616,12 @@ impl<'a> Oracle<'a> {
     fn with_course(&self, over: &Search, kind: usize, record: usize, place: &Place<'_>) -> Course {
         match &over.with {
             None => Course::Fixed(Value::Truth(true)),
-            Some(with) => self.course(with, &Place { part: place.part, scopes: &place.inside(kind, record) }),
+            Some(with) => self.course(with, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) }),
         }
     }
 
     fn key_course(&self, over: &Search, kind: usize, record: usize, place: &Place<'_>) -> Course {
-        self.name_course(&over.by, &Place { part: place.part, scopes: &place.inside(kind, record) })
+        self.name_course(&over.by, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) })
     }
 
     /// Whether an expression is made of numbers and amounts alone.
@@ -580,14 +640,23 @@ impl<'a> Oracle<'a> {
     fn course(&self, expr: &Expr, place: &Place<'_>) -> Course {
         let of = |e: &Expr| self.course(e, place);
         let nothing = Course::Fixed(Value::Number(Q::zero()));
-        let inside = |kind, record, e: &Expr| self.course(e, &Place { part: place.part, scopes: &place.inside(kind, record) });
+        let inside = |kind, record, e: &Expr| self.course(e, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) });
         match expr {
             Expr::Number(_) | Expr::Day(_) | Expr::YesNo(_) | Expr::Missing(_) => self.joined(expr, place, []),
             Expr::Name(name) => self.name_course(name, place),
             Expr::Of { name, whose, failing } => match self.relation(whose, place) {
-                (kind, Some(record)) => self.record_course(name, kind, record),
+                (kind, Some(record)) => self.record_course(name, kind, record, place.world),
                 (_, None) => of(failing.as_ref().expect("something stands in")),
             },
+            Expr::AsIf { name, changes } => {
+                let (kind, record) = self.nearest(name, place.scopes).expect("the figure is at hand");
+                // A value that is not fixed is not asked for.
+                let world = self.changed(changes, place, |_, course| match course {
+                    Course::Fixed(value) => value.clone(),
+                    Course::Steady(_) | Course::Varies => Value::Number(Q::zero()),
+                });
+                self.record_course(name, kind, record, &world)
+            }
             // The keys do not vary, by the checker.
             Expr::Lookup { .. } | Expr::Years { .. } => Course::Steady(None),
             Expr::Where { when, give, otherwise } => match of(when) {
@@ -740,12 +809,12 @@ impl<'a> Oracle<'a> {
             Expr::Not(inner) => self.joined(expr, place, [of(inner)]),
             Expr::And(left, right) | Expr::Or(left, right) => {
                 let decides = matches!(expr, Expr::Or(..));
-                let (left, right) = (of(left), of(right));
-                match [left.is(decides), right.is(decides)] {
-                    [true, _] => left,
-                    [_, true] => right,
-                    [false, false] => self.joined(expr, place, [left, right]),
+                let left = of(left);
+                if left.is(decides) {
+                    return left;
                 }
+                let right = of(right);
+                if right.is(decides) { right } else { self.joined(expr, place, [left, right]) }
             }
         }
     }
@@ -760,5 +829,14 @@ fn pair(sign: Sign, left: Q, right: Q) -> Q {
         Sign::Beyond => (left - right).max(Q::zero()),
         Sign::LimitedTo => left.min(right),
         Sign::RaisedTo => left.max(right),
+    }
+}
+
+/// What stands in a cell. Nothing is known where it is empty: the household is held.
+fn cell(cell: Option<&Cell>) -> Value {
+    match cell {
+        Some(Cell::Number(value)) => Value::Number(value.clone()),
+        Some(Cell::Word(word)) => Value::Word(word.clone()),
+        None => Value::Number(Q::zero()),
     }
 }

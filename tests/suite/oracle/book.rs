@@ -37,6 +37,8 @@ pub struct Figure {
     pub expr: Expr,
     /// The kind of item; none for a figure.
     pub item: Option<String>,
+    /// Where an item is claimed; none where that is no question.
+    pub claimed: Option<Expr>,
 }
 
 /// A hold or a note.
@@ -64,21 +66,28 @@ pub struct Ladder {
     pub lines: Vec<(Expr, Limit)>,
 }
 
+/// What stands in a cell: a number, or the word of a choice.
+#[derive(Clone, Debug)]
+pub enum Cell {
+    Number(Q),
+    Word(String),
+}
+
 /// A dated row of `amounts.csv` or of a table; no value where it is absent.
 #[derive(Debug)]
 pub struct Row {
     pub keys: Vec<String>,
     pub from: i64,
     pub to: i64,
-    pub value: Option<Q>,
+    pub value: Option<Cell>,
 }
 
 /// A keyed table: the choice that each key is of, none for a count.
 #[derive(Debug)]
 pub struct Table {
     pub keys: Vec<Option<String>>,
-    /// Whether it gives rates, which its file writes as percentages.
-    pub percent: bool,
+    /// The type of its values.
+    pub gives: String,
     pub rows: Vec<Row>,
 }
 
@@ -118,7 +127,7 @@ impl Book {
         ] {
             book.kinds.push(Kind { name: name.into(), owner, facts });
         }
-        let order: Vec<&str> = text("order.txt").lines().map(str::trim).filter(|l| !l.is_empty() && !l.starts_with('#')).collect();
+        let order: Vec<&str> = text("order.txt").lines().map(|l| l.split('#').next().unwrap_or("").trim()).filter(|l| !l.is_empty()).collect();
         // Kinds and choices may be declared after they are named.
         for name in &order {
             book.declarations(text(name));
@@ -132,7 +141,8 @@ impl Book {
             if let Some(table) = name.strip_prefix("tables/").and_then(|n| n.strip_suffix(".csv"))
                 && let Some(table) = book.tables.get_mut(table)
             {
-                read_table(table, text);
+                let choice = book.choices.contains_key(&table.gives);
+                read_table(table, choice, text);
             }
         }
         book
@@ -320,18 +330,22 @@ impl Book {
             }
         }
         reader.word("gives");
-        let percent = type_name(reader).0 == "rate";
-        self.tables.insert(name, Table { keys, percent, rows: Vec::new() });
+        let gives = type_name(reader).0;
+        self.tables.insert(name, Table { keys, gives, rows: Vec::new() });
     }
 
     fn figure(&mut self, name: String, per: &str, part: usize, item: Option<String>, reader: &mut Reader) {
         let expr = reader.expr();
+        let claimed = reader.take("claimed").then(|| {
+            reader.word("where");
+            reader.expr()
+        });
         if reader.take("see") {
             reader.text();
         }
         for kind in self.kinds_of(per) {
             self.names[kind].insert(name.clone(), self.figures.len());
-            self.figures.push(Figure { name: name.clone(), kind, part, expr: expr.clone(), item: item.clone() });
+            self.figures.push(Figure { name: name.clone(), kind, part, expr: expr.clone(), item: item.clone(), claimed: claimed.clone() });
         }
     }
 
@@ -339,7 +353,7 @@ impl Book {
         for fields in csv::ReaderBuilder::new().from_reader(text.as_bytes()).records() {
             let fields = fields.expect("the checker read this");
             let cell = |at: usize| fields.get(at).unwrap_or("").trim().to_owned();
-            let row = row(Vec::new(), &cell(1), &cell(2), &cell(3), &cell(8), cell(4) == "percent");
+            let row = row(Vec::new(), &cell(1), &cell(2), &cell(3), &cell(8), if cell(4) == "percent" { "rate" } else { "" });
             self.amounts.entry(cell(0)).or_default().push(row);
         }
     }
@@ -358,26 +372,30 @@ fn dates(manifest: &str) -> Vec<String> {
     lines.take_while(|line| !line.trim().starts_with('[')).filter_map(|line| line.split_once('=')).map(|(name, _)| name.trim().to_owned()).collect()
 }
 
-fn row(keys: Vec<String>, from: &str, to: &str, value: &str, status: &str, percent: bool) -> Row {
-    let value = match (value, status) {
-        (_, "absent") => None,
-        ("yes", _) => Some(whole(1)),
-        ("no", _) => Some(whole(0)),
-        _ => number(value).or_else(|| day(value).map(|d| whole(i128::from(d)))),
+fn row(keys: Vec<String>, from: &str, to: &str, value: &str, status: &str, ty: &str) -> Row {
+    let value = match (value, status, ty) {
+        (_, "absent", _) => None,
+        (word, _, "choice") => Some(Cell::Word(word.to_owned())),
+        ("yes", _, _) => Some(Cell::Number(whole(1))),
+        ("no", _, _) => Some(Cell::Number(whole(0))),
+        // Rates stand in percent.
+        (value, _, "rate") => number(value).map(|v| Cell::Number(v / q(100, 1))),
+        (value, _, _) => number(value).or_else(|| day(value).map(|d| whole(i128::from(d)))).map(Cell::Number),
     };
     Row {
         keys,
         from: day(from).expect("the checker read this day"),
         to: if to.is_empty() { i64::MAX } else { day(to).expect("the checker read this day") },
-        value: value.map(|v| if percent { v / q(100, 1) } else { v }),
+        value,
     }
 }
 
-fn read_table(table: &mut Table, text: &str) {
+fn read_table(table: &mut Table, choice: bool, text: &str) {
     let keys = table.keys.len();
+    let ty = if choice { "choice" } else { table.gives.as_str() };
     for fields in csv::ReaderBuilder::new().from_reader(text.as_bytes()).records() {
         let fields = fields.expect("the checker read this");
         let cell = |at: usize| fields.get(at).unwrap_or("").trim().to_owned();
-        table.rows.push(row((0..keys).map(cell).collect(), &cell(keys), &cell(keys + 1), &cell(keys + 2), &cell(keys + 5), table.percent));
+        table.rows.push(row((0..keys).map(cell).collect(), &cell(keys), &cell(keys + 1), &cell(keys + 2), &cell(keys + 5), ty));
     }
 }

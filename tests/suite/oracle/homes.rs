@@ -1,7 +1,7 @@
 //! Random households for any pack. In: the pack's schema, figures of the law that are worth meeting, a day, chance. Out: households with
 //! facts in their ranges, weighted towards limits, ages and nothing at all; their text; and smaller ones for a failure.
 
-use super::book::{ADULT, Book, CHILD, HOUSEHOLD, JOB, OTHER};
+use super::book::{ADULT, Book, CHILD, Cell, HOUSEHOLD, JOB, OTHER};
 use super::luck::Luck;
 use super::text::{Q, calendar, day_number, q, whole};
 use hourworth::case::{Delivery, FactSpec, FactType, Household, Instance, JobRole, Known, Need, Schema};
@@ -22,7 +22,12 @@ pub struct Village<'a> {
 
 /// The values of all amounts, and of those by the month, week and year.
 pub fn marks(book: &Book) -> Vec<Q> {
-    let mut out: Vec<Q> = book.amounts.values().flatten().filter_map(|row| row.value.clone()).collect();
+    let mut out: Vec<Q> = Vec::new();
+    for row in book.amounts.values().flatten() {
+        if let Some(Cell::Number(value)) = &row.value {
+            out.push(value.clone());
+        }
+    }
     out.extend(out.clone().iter().flat_map(|v| [v * q(1, 12), v * q(12, 52)]));
     out.extend([whole(0), whole(1), whole(16), whole(25)]);
     // The order of a map is not the same twice.

@@ -271,7 +271,12 @@ impl Maker<'_> {
         };
         // `where` goes on as far as it can.
         let text = if text.starts_with("where") && !ending.is_empty() { format!("({text})") } else { text };
-        self.say("item", Some(kind), &item, format!("item {item}: {money} = {text}{ending} see \"s.1\""));
+        let claimed = if self.luck.percent(15) {
+            format!(" claimed where {}", self.piece(Ty::YesNo, &[kind], 2, Room { degree: 2, steady: false }).text)
+        } else {
+            String::new()
+        };
+        self.say("item", Some(kind), &item, format!("item {item}: {money} = {text}{ending}{claimed} see \"s.1\""));
     }
 
     fn any_type(&mut self) -> Ty {
@@ -524,6 +529,7 @@ impl Maker<'_> {
                 Piece { text, level: EITHER + 1, degree: give.degree.max(otherwise.degree), varies: when.varies || give.varies || otherwise.varies }
             }
             4 => self.search(ty, scopes, deeper, room),
+            5 if self.luck.percent(35) => self.as_if(ty, scopes, deeper, room),
             5 => self.relation(ty, scopes, deeper, room),
             6 if self.luck.percent(50) => self.lookup(ty, scopes, deeper),
             6 => self.on_scale(ty, scopes, deeper, room),
@@ -601,6 +607,25 @@ impl Maker<'_> {
         }
         let named = self.luck.pick(&known).clone();
         Piece { text: format!("{} of {}", named.name, self.kind_name(kind)), level: VALUE, degree: named.degree, varies: named.varies }
+    }
+
+    /// A figure once more, as if facts were otherwise.
+    fn as_if(&mut self, ty: Ty, scopes: &[usize], depth: usize, room: Room) -> Piece {
+        let all = Room { degree: 2, steady: false };
+        let figures: Vec<Named> = self.reachable(ty, scopes, room).into_iter().filter(|n| n.name.starts_with("figure")).collect();
+        let kinds: Vec<usize> = scopes.iter().flat_map(|kind| self.owners(*kind)).collect();
+        let facts: Vec<Named> = self.names.iter().filter(|n| !n.name.starts_with("figure") && kinds.iter().any(|k| Self::belongs(n, *k))).cloned().collect();
+        if figures.is_empty() || facts.is_empty() || room.steady || room.degree == 0 {
+            return self.relation(ty, scopes, depth, room);
+        }
+        let figure = self.luck.pick(&figures).clone();
+        let mut changes = Vec::new();
+        for _ in 0..1 + self.luck.below(2) {
+            let fact = self.luck.pick(&facts).clone();
+            let value = if self.luck.percent(60) { self.literal(fact.ty) } else { self.piece(fact.ty, scopes, depth.min(1), all) };
+            changes.push(format!("{} is {}", fact.name, value.at(VALUE)));
+        }
+        Piece { text: format!("{} as if ({})", figure.name, changes.join(" and ")), level: VALUE, degree: figure.degree.max(1), varies: true }
     }
 
     fn lookup(&mut self, ty: Ty, scopes: &[usize], depth: usize) -> Piece {

@@ -65,6 +65,8 @@ pub enum Expr {
     Place(Search),
     Years { from: Box<Expr>, to: Box<Expr> },
     Missing(String),
+    /// A figure once more, and the facts that are taken otherwise for it.
+    AsIf { name: String, changes: Vec<(String, Expr)> },
     Pair { sign: Sign, left: Box<Expr>, right: Box<Expr> },
     Rounded { of: Box<Expr>, way: Way, unit: Q, steps: bool },
     Converted { of: Box<Expr>, by: String },
@@ -330,7 +332,8 @@ impl Reader {
             "yes" => Expr::YesNo(true),
             "no" => Expr::YesNo(false),
             "money" => {
-                let value = self.number();
+                let minus = self.take_sign('-');
+                let value = if minus { -self.number() } else { self.number() };
                 if self.take("a") || self.take("an") {
                     self.name();
                 }
@@ -381,6 +384,21 @@ impl Reader {
                 let whose = self.name();
                 let failing = self.take("failing").then(|| self.boxed_value());
                 Expr::Of { name: word, whose, failing }
+            }
+            _ if self.take("as") => {
+                self.word("if");
+                self.sign('(');
+                let mut changes = Vec::new();
+                loop {
+                    let fact = self.name();
+                    self.word("is");
+                    changes.push((fact, self.value()));
+                    if !self.take("and") {
+                        break;
+                    }
+                }
+                self.sign(')');
+                Expr::AsIf { name: word, changes }
             }
             _ if self.take_sign('[') => Expr::Lookup { table: word, keys: self.list(']') },
             _ => Expr::Name(word),
