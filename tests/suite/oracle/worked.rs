@@ -9,6 +9,7 @@ use super::text::{Q, day, number, q, whole};
 use hourworth::case::{Delivery, FactType, Household, Instance, JobRole, Known, Need, Schema};
 use hourworth::engine::JobChoice;
 use hourworth::load::{check_pack, schema_of};
+use hourworth::rules::Pack;
 use num_traits::ToPrimitive;
 
 const MANIFEST: &str = "title = \"Harrowmere\"\narea = \"Harrowmere\"\ncurrency = \"GBP\"\nperiod = \"month\"\n\
@@ -58,9 +59,9 @@ fn household(schema: &Schema, records: &[(&str, usize, &str)]) -> Household {
 }
 
 impl Worked<'_> {
-    /// Items at hours as they should be, by the oracle and the engine, and everything else that the two can be asked.
-    fn gives(&self, expected: &[(&str, Q, &str)]) {
-        let rules = format!("part \"Worked\" dated by closing\nlaw \"The Harrowmere Act\"\n{}\nnote opened where opening at least 2025-04-06", self.rules);
+    /// The pack as both sides read it, or why it is refused.
+    fn ready(&self) -> Result<(Book, Pack), String> {
+        let rules = format!("part \"Worked\" dated by closing\nlaw \"The Harrowmere Act\"\n{}\nnote closed where closing at least 2025-04-06", self.rules);
         let mut texts = vec![
             ("pack.toml".to_owned(), MANIFEST.to_owned()),
             ("order.txt".to_owned(), "worked.rules\n".to_owned()),
@@ -69,10 +70,14 @@ impl Worked<'_> {
         ];
         texts.extend(self.tables.iter().map(|(name, text)| (format!("tables/{name}.csv"), (*text).to_owned())));
         let files = files(&texts);
-        let pack = check_pack(&files).unwrap_or_else(|(sources, faults)| {
-            panic!("{}", faults.iter().map(|f| f.render(&sources, false)).collect::<String>());
-        });
-        let (book, schema) = (Book::read(&files), schema_of(&pack));
+        let pack = check_pack(&files).map_err(|(sources, faults)| faults.iter().map(|f| f.render(&sources, false)).collect::<String>())?;
+        Ok((Book::read(&files), pack))
+    }
+
+    /// Items at hours as they should be, by the oracle and the engine, and everything else that the two can be asked.
+    fn gives(&self, expected: &[(&str, Q, &str)]) {
+        let (book, pack) = self.ready().unwrap_or_else(|words| panic!("{words}"));
+        let schema = schema_of(&pack);
         let household = household(&schema, &[&[("household", 0, self.records[0].2)], &self.records[1..]].concat());
         let days = [day("2025-06-01").expect("a day"), day("2026-06-01").expect("a day")];
         let records = household.instances.iter().map(|kind| kind.iter().map(|r| Record { owner: r.owner, values: r.values.clone() }).collect()).collect();
@@ -251,4 +256,36 @@ fn claims_and_facts_taken_otherwise() {
         ("after", whole(15), "2"),
         ("after", whole(16), "1"),
     ]);
+}
+
+/// What stands in for a fact is bound by what the fact is bound by: its range, and that it does not vary where facts may not.
+#[test]
+fn facts_taken_otherwise_keep_their_bounds() {
+    let before = "fact people of household: count from 1 to 9 default 1 ask \"How many?\"\nfact born of household: date default 1990-01-01 ask \"When?\"\n\
+        fact share of household: rate from 10% to 50% default 20% ask \"Which share?\"\n\
+        fact costs of household: money a month from 0 to 1000 default 0 ask \"How much?\"\n\
+        table limit by count gives money a month\nfigure by_people: money a month = (costs / people rounded half up to 0.01)\n\
+        figure looked_up: money a month = limit[people]\nfigure aged: money a month = money 1 a month * (years from born to closing)\n\
+        figure shared: money a month = costs * share\n\
+        figure works: yesno = any job with (hours above 10 hours)\nfigure plain: money a month = by_people + looked_up + aged + shared\n\
+        item kept: benefit = plain see \"s.1\"\n";
+    let table = ("limit", "rooms,from,to,value,source,locator,status\n1,2020-01-01,,10,a book,p. 1,read\n2,2020-01-01,,20,a book,p. 1,read\n");
+    let refused = [
+        "by_people as if (people is 0)",
+        "by_people as if (people is 10)",
+        "by_people as if (people is where works give 1 otherwise 2)",
+        "looked_up as if (people is (where works give 1 otherwise 2))",
+        "aged as if (born is (where works give 1990-01-01 otherwise 1980-01-01))",
+        "shared as if (share is 60%)",
+        "shared as if (costs is money -1 a month)",
+        "by_people as if (people is count of child)",
+    ];
+    for expr in refused {
+        let rules = format!("{before}item changed: benefit = {expr} see \"s.2\"");
+        let worked = Worked { rules: &rules, amounts: "", tables: &[table], records: &ONE_JOB };
+        match worked.ready() {
+            Err(words) => println!("{expr}: {words}"),
+            Ok(_) => println!("NOT REFUSED {expr}"),
+        }
+    }
 }
