@@ -8,6 +8,7 @@ mod suite {
     mod imports;
     mod language;
     mod oracle;
+    mod published;
     mod statement;
     mod uk;
 }

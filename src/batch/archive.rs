@@ -1,6 +1,6 @@
 //! All outputs of a run in one ZIP file: the same bytes for the same input, beyond 4 GB and 65,535 files where needed.
 
-use super::aside::private_file;
+use super::aside::fresh_file;
 use super::folder::{HELD, RECORD, REJECTS, RESULTS, RunFolder, STATEMENTS_LIST, TURNS};
 use super::{Error, aside};
 use std::fs::File;
@@ -29,7 +29,7 @@ pub fn pack_folder(folder: &RunFolder, zip: &Path) -> Result<(), Error> {
 }
 
 fn write(folder: &RunFolder, path: &Path) -> Result<(), Error> {
-    let file = private_file(path).map_err(Error::write(path))?;
+    let file = fresh_file(path).map_err(Error::write(path))?;
     let mut zip = ZipWriter::new(BufWriter::with_capacity(1 << 20, file));
     let plain = SimpleFileOptions::default()
         .last_modified_time(DateTime::default())

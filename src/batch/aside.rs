@@ -34,7 +34,7 @@ impl Aside {
         let mut aside = name.as_os_str().to_owned();
         aside.push(UNFINISHED);
         let aside = PathBuf::from(aside);
-        let file = private_file(&aside).map_err(Error::write(&aside))?;
+        let file = fresh_file(&aside).map_err(Error::write(&aside))?;
         Ok(Aside {
             name: name.to_owned(),
             aside,
@@ -97,6 +97,21 @@ pub(super) fn write_whole(name: &Path, bytes: &[u8], forced: Forced) -> Result<(
     file.finish(forced)
 }
 
+/// A new file that only its owner can read and write. Whatever an earlier run left under the name is removed first, so that neither its
+/// permissions nor a link planted there decide where the new one lies and who can read it.
+pub(super) fn fresh_file(path: &Path) -> io::Result<File> {
+    match fs::remove_file(path) {
+        Ok(()) => {}
+        Err(cause) if cause.kind() == io::ErrorKind::NotFound => {}
+        Err(cause) => return Err(cause),
+    }
+    let mut options = OpenOptions::new();
+    options.write(true).create_new(true);
+    #[cfg(unix)]
+    std::os::unix::fs::OpenOptionsExt::mode(&mut options, 0o600);
+    options.open(path)
+}
+
 /// A new or emptied file that only its owner can read and write.
 pub(super) fn private_file(path: &Path) -> io::Result<File> {
     let mut options = OpenOptions::new();
@@ -104,6 +119,19 @@ pub(super) fn private_file(path: &Path) -> io::Result<File> {
     #[cfg(unix)]
     std::os::unix::fs::OpenOptionsExt::mode(&mut options, 0o600);
     options.open(path)
+}
+
+/// Takes a folder that somebody else made away from everybody but its owner.
+#[cfg(unix)]
+pub(super) fn close_folder(path: &Path) -> io::Result<()> {
+    use std::os::unix::fs::PermissionsExt;
+    fs::set_permissions(path, fs::Permissions::from_mode(0o700))
+}
+
+/// The system's own permissions hold.
+#[cfg(not(unix))]
+pub(super) fn close_folder(_path: &Path) -> io::Result<()> {
+    Ok(())
 }
 
 /// A folder, with those above it, that only its owner can enter.
@@ -135,6 +163,25 @@ mod tests {
         file.finish(Forced::No).unwrap();
         assert_eq!(fs::read(&name).unwrap(), b"new");
         assert_eq!(fs::read_dir(folder.path()).unwrap().count(), 1);
+    }
+
+    #[cfg(unix)]
+    #[test]
+    fn what_lies_under_the_name_decides_nothing() {
+        use std::os::unix::fs::PermissionsExt;
+        let folder = tempfile::tempdir().unwrap();
+        let name = folder.path().join("x.csv");
+        let aside = folder.path().join("x.csv.unfinished");
+        fs::write(&aside, "left behind").unwrap();
+        fs::set_permissions(&aside, fs::Permissions::from_mode(0o644)).unwrap();
+        write_whole(&name, b"x", Forced::No).unwrap();
+        assert_eq!(fs::metadata(&name).unwrap().permissions().mode() & 0o777, 0o600);
+        let elsewhere = folder.path().join("elsewhere");
+        fs::write(&elsewhere, "mine").unwrap();
+        std::os::unix::fs::symlink(&elsewhere, &aside).unwrap();
+        write_whole(&name, b"y", Forced::No).unwrap();
+        assert_eq!(fs::read(&elsewhere).unwrap(), b"mine");
+        assert_eq!(fs::read(&name).unwrap(), b"y");
     }
 
     #[cfg(unix)]

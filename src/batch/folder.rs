@@ -4,7 +4,7 @@
 //! anything else in it is refused, so that nothing is ever removed that this program did not write.
 
 use super::Error;
-use super::aside::{Forced, UNFINISHED, private_file, private_folder, write_whole};
+use super::aside::{Forced, UNFINISHED, close_folder, private_file, private_folder, write_whole};
 use std::fs::{self, File, TryLockError};
 use std::path::{Path, PathBuf};
 
@@ -38,11 +38,13 @@ pub enum Existing {
 #[derive(Debug)]
 pub struct RunFolder {
     path: PathBuf,
+    /// It holds an earlier run, which goes when the new one begins.
+    holds: bool,
     _lock: File,
 }
 
 impl RunFolder {
-    /// Takes the folder: makes it where it is missing, locks it, clears an earlier run where that was asked for.
+    /// Takes the folder: makes it where it is missing and locks it. An earlier run in it stays until [`RunFolder::begin`].
     ///
     /// # Errors
     /// Where the folder holds something else, holds a run that nobody asked to replace, is in use, or cannot be written.
@@ -68,27 +70,28 @@ impl RunFolder {
                 });
             }
         }
-        let folder = RunFolder {
-            path: path.to_owned(),
-            _lock: lock,
-        };
-        if holds {
-            match existing {
-                Existing::Refuse => return Err(Error::HoldsRun(path.to_owned())),
-                Existing::Replace => folder.clear()?,
-            }
+        match existing {
+            Existing::Refuse if holds => return Err(Error::HoldsRun(path.to_owned())),
+            Existing::Refuse | Existing::Replace => {}
         }
-        Ok(folder)
+        close_folder(path).map_err(Error::write(path))?;
+        Ok(RunFolder {
+            path: path.to_owned(),
+            holds,
+            _lock: lock,
+        })
+    }
+
+    /// Removes the earlier run, where there is one.
+    ///
+    /// # Errors
+    /// Where the disk refuses.
+    pub(super) fn begin(&self) -> Result<(), Error> {
+        if self.holds { self.clear() } else { Ok(()) }
     }
 
     /// Removes what a run writes, finished or not, and nothing else.
     fn clear(&self) -> Result<(), Error> {
-        for name in [STATEMENTS, SORTING] {
-            let folder = self.path.join(name);
-            if folder.exists() {
-                fs::remove_dir_all(&folder).map_err(Error::write(&folder))?;
-            }
-        }
         // The record goes first: a folder that was cleared half way claims nothing.
         for name in [
             RECORD,
@@ -105,6 +108,10 @@ impl RunFolder {
                     fs::remove_file(&file).map_err(Error::write(&file))?;
                 }
             }
+        }
+        let folder = self.path.join(STATEMENTS);
+        if folder.exists() {
+            fs::remove_dir_all(&folder).map_err(Error::write(&folder))?;
         }
         Ok(())
     }
@@ -189,9 +196,25 @@ mod tests {
             RunFolder::take(&path, Existing::Refuse),
             Err(Error::HoldsRun(_))
         ));
-        let _again = RunFolder::take(&path, Existing::Replace).unwrap();
+        let again = RunFolder::take(&path, Existing::Replace).unwrap();
+        // What stops the new run before it begins must not cost the old one.
+        assert!(path.join(RECORD).exists());
+        again.begin().unwrap();
         assert!(!path.join(STATEMENTS).exists() && !path.join(RECORD).exists());
         assert!(path.join("note.txt").exists());
+    }
+
+    #[cfg(unix)]
+    #[test]
+    fn a_folder_that_was_there_before_is_closed_to_others() {
+        use std::os::unix::fs::PermissionsExt;
+        let outer = tempfile::tempdir().unwrap();
+        let path = outer.path().join("run");
+        fs::create_dir(&path).unwrap();
+        fs::set_permissions(&path, fs::Permissions::from_mode(0o755)).unwrap();
+        let _folder = RunFolder::take(&path, Existing::Refuse).unwrap();
+        let mode = fs::metadata(&path).unwrap().permissions().mode();
+        assert_eq!(mode & 0o777, 0o700);
     }
 
     #[test]

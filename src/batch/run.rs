@@ -63,6 +63,7 @@ where
     I: Iterator<Item = Result<Entry, Error>> + Send,
 {
     let begun = Instant::now();
+    folder.begin()?;
     let started = plan.record.json(State::Running);
     folder.write(RECORD, started.as_bytes(), Forced::ToDisk)?;
     let mut writer = Writer::open(folder, plan)?;

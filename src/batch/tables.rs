@@ -81,7 +81,8 @@ pub enum GridRows {
 /// * `metr_here`: 1 − dY/dE to the right, roundings smoothed; `metr_here_after_costs` likewise
 /// * `metr_step`: 1 − ΔY/ΔE to the next row of the same line, from the rounded sums; empty on the last row and where pay does not
 ///   change; `metr_step_after_costs` likewise
-/// * `kept_of_next_hour`: net income one hour further on, less net income here; empty where the grid has no such hour;
+/// * `kept_of_next_hour`: net income one hour further on, less net income here; empty where the grid has no such hour, and on
+///   `not_in_work` where the earner has further jobs;
 ///   `kept_of_next_hour_after_costs` likewise
 /// * `replacement`: Y(0) / Y(h)
 pub fn results_header(items: &[String]) -> Vec<String> {
@@ -134,10 +135,13 @@ pub fn results(assessment: &Assessment, items: &[String], grid: GridRows) -> Tab
             let rows = chosen(earner, line, grid);
             for (place, (name, point)) in rows.iter().enumerate() {
                 let next = rows.get(place + 1).map(|(_, point)| *point);
+                // The line's hours are those of one job. Where others go on beside it, its first hour is no next hour of somebody who has
+                // ended all jobs.
+                let same_line = place > 0 || line.grid.first().is_none_or(|first| first.pay == point.pay);
                 let hour = line
                     .grid
                     .iter()
-                    .find(|other| other.hours == Hours(point.hours.0 + 100));
+                    .find(|other| same_line && other.hours == Hours(point.hours.0 + 100));
                 let mut cells = vec![
                     assessment.reference.clone(),
                     (earner.adult + 1).to_string(),
@@ -224,7 +228,7 @@ fn step_rate(from: &Point, to: Option<&Point>, sum: impl Fn(&Point) -> Money) ->
 ///   is not regained
 /// * `pay`: E there; for a cliff the first payable pay from which the new branch stays
 /// * `net_before`, `net_after`, `size`: exact sums at the point; for a trap its highest net income before, its lowest inside, and
-///   what is lost at most
+///   what is lost at most; a trap of a line with costs of working is one of what is left after them and stands in the `after_costs` columns
 /// * `after_costs_before`, `after_costs_after`, `metr_before`, `metr_after`
 /// * `causes`: the rules that turned; `effects`: what changed for each item, adding up to the whole
 pub fn turning_points_header() -> Vec<String> {
@@ -273,14 +277,21 @@ pub fn turning_points(assessment: &Assessment) -> Table {
             }
             for trap in &line.traps {
                 let mut cells = front("trap");
+                let sums = [trap.peak.plain(), (trap.peak - trap.depth).plain()];
+                let none = [String::new(), String::new()];
+                let (net, after_costs) = if line.has_costs {
+                    (none, sums)
+                } else {
+                    (sums, none)
+                };
                 cells.extend([
                     trap.from.decimal(2),
                     trap.to.map(|to| to.decimal(2)).unwrap_or_default(),
                     String::new(),
-                    trap.peak.plain(),
-                    (trap.peak - trap.depth).plain(),
-                    (-trap.depth).plain(),
                 ]);
+                cells.extend(net);
+                cells.push((-trap.depth).plain());
+                cells.extend(after_costs);
                 cells.resize(turning_points_header().len(), String::new());
                 table.push(&cells);
             }

@@ -78,6 +78,34 @@ fn turning_points_come_in_words_and_figures() {
 }
 
 #[test]
+fn a_trap_after_costs_stands_in_the_columns_after_costs() {
+    let mut assessment = assessment();
+    assessment.earners[0].lines[0].has_costs = true;
+    let table = turning_points(&assessment);
+    let rows = rows(turning_points_header(), &table);
+    let is = |name: &str, wanted: &str| assert_eq!(rows[1][name], wanted, "{name}");
+    is("kind", "trap");
+    is("net_before", "");
+    is("net_after", "");
+    is("size", "-12.00");
+    is("after_costs_before", "515.00");
+    is("after_costs_after", "503.00");
+}
+
+#[test]
+fn the_first_hour_beside_further_jobs_is_no_next_hour_of_nobody_at_work() {
+    let mut assessment = assessment();
+    // Another job goes on at no hours of this one.
+    assessment.earners[0].lines[0].grid[0].pay = Money(4000);
+    let table = results(&assessment, &items(), GridRows::Named);
+    let rows = rows(results_header(&items()), &table);
+    assert_eq!(
+        column(&rows, "kept_of_next_hour"),
+        ["", "4.00", "", "10.00", ""]
+    );
+}
+
+#[test]
 fn cells_are_quoted_and_formulas_are_defused() {
     let mut table = Table::default();
     table.push(&[

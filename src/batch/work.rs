@@ -6,7 +6,8 @@ use super::{
     Assessor, Books, GridRows, Outcome, Prepared, Product, StatementFile, results,
     statement_number, turning_points,
 };
-use crate::case::{ADULT, FactType, Household, Known, Schema, day_of};
+use crate::case::{ADULT, FactType, Household, JOB, Known, Schema, day_of};
+use crate::diag::nearest;
 use crate::load::{Files, HoldRules, Office, PackFiles, Terms};
 use crate::measures::{Assessment, TurnKind, Verdict};
 use crate::num::{Fraction, Hours};
@@ -143,6 +144,7 @@ pub fn item_columns(pack: &Pack) -> Vec<String> {
 impl Assessor for Work {
     fn assess(&mut self, household: &Household) -> Outcome {
         let mut reasons = own_reasons(household, &self.hold, self.books.schema());
+        reasons.extend(unfolded(household, &self.items));
         let assessment = match self.books.assess(household) {
             Ok(Verdict::Assessed(assessment)) => assessment,
             Ok(Verdict::Held(more)) => {
@@ -151,6 +153,9 @@ impl Assessor for Work {
             }
             Err(cause) => return Outcome::Failed { cause },
         };
+        if assessment.earners.is_empty() {
+            reasons.push("no adult has a job of today with hours and a wage, or an offer, so there is nothing to compare".to_owned());
+        }
         if !reasons.is_empty() {
             return Outcome::Held { reasons };
         }
@@ -192,6 +197,24 @@ fn tables(assessment: &Assessment, items: &[String], rows: GridRows) -> Product 
     }
 }
 
+/// Names to fold that are no item of the pack. Nothing would be folded for them, and somebody's safety may hang on it.
+fn unfolded(household: &Household, items: &[String]) -> Vec<String> {
+    let unknown = household
+        .delivery
+        .fold
+        .iter()
+        .filter(|name| !items.contains(name));
+    unknown
+        .map(|name| {
+            let hint = match nearest(name, items.iter().map(String::as_str)) {
+                Some(near) => format!("; did you mean `{near}`?"),
+                None => String::new(),
+            };
+            format!("`fold` names `{name}`, expected an item of the rules{hint}")
+        })
+        .collect()
+}
+
 /// Why the list or the office holds a household, whatever its figures.
 fn own_reasons(household: &Household, hold: &HoldRules, schema: &Schema) -> Vec<String> {
     let mut reasons = vec![];
@@ -203,11 +226,15 @@ fn own_reasons(household: &Household, hold: &HoldRules, schema: &Schema) -> Vec<
     }
     for wanted in &hold.must_be_seen {
         let mut unseen = vec![];
-        for (kind, instances) in schema.kinds.iter().zip(&household.instances) {
+        for (at, (kind, instances)) in schema.kinds.iter().zip(&household.instances).enumerate() {
             let Some(fact) = kind.facts.iter().position(|fact| fact.name == *wanted) else {
                 continue;
             };
-            for instance in instances {
+            // A job without hours stands for none, so nothing of it can be seen.
+            let all = instances
+                .iter()
+                .filter(|job| at != JOB || job.values[0] > 0);
+            for instance in all {
                 match instance.known[fact] {
                     Known::Seen => {}
                     Known::Told => unseen.push("told"),

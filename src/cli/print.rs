@@ -10,6 +10,7 @@ use crate::batch::{
 };
 use crate::case::{Fault, RejectedHousehold};
 use chrono::NaiveDate;
+use std::path::Path;
 use std::time::Duration;
 
 /// After how many households a worker is replaced.
@@ -29,6 +30,9 @@ pub(super) fn print(args: &PrintArgs) -> Result<Exit, Failure> {
         Existing::Refuse
     };
     let folder = RunFolder::take(&args.to, existing)?;
+    if let Some(zip) = &args.zip {
+        free(zip, existing)?;
+    }
     let (survey, rows) = prepared.survey(Some(&folder))?;
     if !survey.list_faults.is_empty() {
         return Err(crate::load::Error::Faults(survey.list_faults).into());
@@ -88,6 +92,25 @@ pub(super) fn print(args: &PrintArgs) -> Result<Exit, Failure> {
     })
 }
 
+/// Refuses a ZIP file that could not be written or would take another file's place, before the run rather than after it.
+fn free(zip: &Path, existing: Existing) -> Result<(), Failure> {
+    if zip.exists() && (existing == Existing::Refuse || zip.is_dir()) {
+        return Err(Failure::Request(format!(
+            "`{}` exists already; choose another name for the ZIP file, or give `--replace`",
+            zip.display()
+        )));
+    }
+    match zip.parent() {
+        Some(folder) if folder != Path::new("") && !folder.is_dir() => {
+            Err(Failure::Request(format!(
+                "there is no folder `{}` for the ZIP file; make it first",
+                folder.display()
+            )))
+        }
+        Some(_) | None => Ok(()),
+    }
+}
+
 /// One reading of the list as an entry of the run.
 fn entry(reading: crate::case::Reading, single: bool) -> Entry {
     match reading {
@@ -126,7 +149,15 @@ fn inputs(prepared: &Prepared, args: &PrintArgs) -> Inputs {
     let yes_no = |yes: bool| if yes { "yes" } else { "no" }.to_owned();
     let mut options = vec![
         ("list".to_owned(), settings.title.clone()),
-        ("pack".to_owned(), prepared.pack_files.name.clone()),
+        // As it was asked for: where the list itself lies changes nothing.
+        (
+            "pack".to_owned(),
+            args.rules
+                .rules
+                .as_ref()
+                .unwrap_or(&settings.pack)
+                .clone(),
+        ),
         ("grid".to_owned(), yes_no(args.grid)),
         ("statements".to_owned(), yes_no(!args.no_statements)),
         ("deadline_seconds".to_owned(), args.deadline.to_string()),

@@ -47,17 +47,17 @@ pub fn show(assessment: &Assessment, terms: &Terms) -> String {
             out.push(String::new());
             out.push(match (target.first, target.stays) {
                 (Some(first), Some(stays)) => format!(
-                    "for {} net: first reached at {} hours, stays reached from {} hours",
+                    "for {} after costs of working: first reached at {} hours, stays reached from {} hours",
                     target.sum.plain(),
                     first.plain(),
                     stays.plain()
                 ),
                 (Some(first), None) => format!(
-                    "for {} net: first reached at {} hours, but not kept to the end of the line",
+                    "for {} after costs of working: first reached at {} hours, but not kept to the end of the line",
                     target.sum.plain(),
                     first.plain()
                 ),
-                (None, _) => format!("for {} net: not reached on this line", target.sum.plain()),
+                (None, _) => format!("for {} after costs of working: not reached on this line", target.sum.plain()),
             });
         }
     }
@@ -255,10 +255,11 @@ fn turning_points(assessment: &Assessment, line: &BudgetLine) -> Vec<String> {
             None => format!("not regained by {} hours", line.up_to.plain()),
         };
         out.push(format!(
-            "  trap from {} hours: up to {} below {}, {until}",
+            "  trap from {} hours: up to {} below {}{}, {until}",
             trap.from.decimal(2),
             trap.depth.plain(),
-            trap.peak.plain()
+            trap.peak.plain(),
+            if line.has_costs { " after costs" } else { "" }
         ));
     }
     for stretch in &line.no_gain {
@@ -335,10 +336,10 @@ fn offer_of<'a>(earner: &'a EarnerResult, line: &BudgetLine) -> Option<&'a Offer
 fn offer_words(offer: &OfferMeasures) -> Vec<String> {
     let mut out = vec![match offer.holding {
         Some(hours) => format!(
-            "holding hours: from {} hours at this wage today's net income is kept",
+            "holding hours: from {} hours at this wage as much is left after costs of working as today",
             hours.plain()
         ),
-        None => "holding hours: none; today's net income is not kept at this wage".to_owned(),
+        None => "holding hours: none; less is left after costs of working than today at the end of the line".to_owned(),
     }];
     if let Some(rise) = &offer.rise {
         let warning = if rise.fragile {
@@ -429,7 +430,7 @@ mod tests {
           > 3  30.00      28.00  518.00       508.00           8.00  33.3%      55.0%
 
         no turning points
-        holding hours: from 2.25 hours at this wage today's net income is kept
+        holding hours: from 2.25 hours at this wage as much is left after costs of working as today
         rise split at today's hours: price part 2.25 for each further hour, income part +4.10; today's hours sit on a turning point, so this split is fragile
 
              518 │                                                           ▄▄▀▀▀
@@ -449,7 +450,7 @@ mod tests {
                   0                    1                    2                    3 hours
                   net income by hours a week; T today, 1 =shift
 
-        for 514.00 net: first reached at 1.25 hours, but not kept to the end of the line
+        for 514.00 after costs of working: first reached at 1.25 hours, but not kept to the end of the line
         ");
     }
 }

@@ -5,7 +5,7 @@ use super::line::{Asked, Worked, work_out};
 use super::points::{Sums, Totals, point};
 use super::split::{Quarters, rise};
 use super::types::{AmountUse, Assessment, EarnerResult, FactUse, ItemInfo, JobTerms, OfferMeasures, Unclaimed, WorkingLine};
-use crate::case::{ADULT, Household, JOB, Known, Schema};
+use crate::case::{ADULT, Household, Instance, JOB, Known, Schema};
 use crate::engine::{JobChoice, Machine, Setting, Special, Used, fact_text, working};
 use crate::num::{Hours, Money};
 use crate::program::{Amount, Shape};
@@ -47,7 +47,7 @@ pub enum Verdict {
     Assessed(Box<Assessment>),
 }
 
-/// Works a household out. `target` is a net sum a period that the household must have.
+/// Works a household out. `wanted` is the sum a period, after costs of working, that the household must have.
 ///
 /// # Errors
 /// Where the pack cannot make a program for the household's shape.
@@ -71,15 +71,17 @@ pub fn assess(
         let program = machine.program();
         let special = machine.special(&setting.facts(program));
         let today = setting.own_hours();
-        for reason in special.holds(today) {
-            if !reasons.contains(&reason) {
-                reasons.push(reason);
-            }
+        add_new(&mut reasons, special.holds(today));
+        add_new(&mut notes, special.notes(today));
+        // An offer has facts of its own, which the rules may not cover either.
+        for (offer, _) in offers_of(household, adult) {
+            let Some(other) = Setting::new(household, adult, JobChoice::Offer(offer)) else { continue };
+            let special = machine.special(&other.facts(program));
+            add_new(&mut reasons, special.holds(other.own_hours()));
+            add_new(&mut notes, special.notes(other.own_hours()));
         }
-        for note in special.notes(today) {
-            if !notes.contains(&note) {
-                notes.push(note);
-            }
+        if !reasons.is_empty() {
+            continue;
         }
         if items.is_empty() {
             items = item_infos(&special);
@@ -96,6 +98,20 @@ pub fn assess(
     }
     let (facts, amounts) = gathered.finish(household, schema);
     Ok(Verdict::Assessed(Box::new(Assessment { reference: household.reference.clone(), items, earners, couple: table, unclaimed, notes, facts, amounts })))
+}
+
+/// The offers of an adult, with their positions in the household.
+fn offers_of(household: &Household, adult: usize) -> impl Iterator<Item = (usize, &Instance)> {
+    household.offers.iter().enumerate().filter(move |(_, offer)| offer.owner == adult)
+}
+
+/// Adds what is not there yet.
+fn add_new(all: &mut Vec<String>, more: Vec<String>) {
+    for one in more {
+        if !all.contains(&one) {
+            all.push(one);
+        }
+    }
 }
 
 fn item_infos(special: &Special<'_>) -> Vec<ItemInfo> {
@@ -136,7 +152,7 @@ fn earner(
     gathered: &mut Gathered,
 ) -> Option<EarnerResult> {
     let adult = setting.shape.earner as usize;
-    let offers: Vec<usize> = (0..household.offers.len()).filter(|o| household.offers[*o].owner == adult).collect();
+    let offers: Vec<usize> = offers_of(household, adult).map(|(at, _)| at).collect();
     let today = setting.own_hours();
     let has_job = today.0 > 0 && setting.wage() > 0;
     if !has_job && offers.is_empty() {
@@ -180,9 +196,9 @@ fn earner(
         if target_hours.is_none() {
             target_hours = wanted.map(|sum| quarters.target(sum));
         }
-        let today_net = lines.first().filter(|_| has_job).map_or(not_in_work.net, |line| line.line.grid[line.line.own].net);
+        let kept = lines.first().filter(|_| has_job).map_or(not_in_work.after_costs, |line| line.line.grid[line.line.own].after_costs);
         let split = if has_job { lines.first().and_then(|old| rise(old, &worked, today)) } else { None };
-        measures.push(OfferMeasures { line: lines.len(), holding: quarters.stays(today_net), rise: split });
+        measures.push(OfferMeasures { line: lines.len(), holding: quarters.stays(kept), rise: split });
         lines.push(worked);
     }
     Some(EarnerResult {
@@ -211,7 +227,7 @@ fn amount_use(amount: &Amount, part: &str) -> AmountUse {
 }
 
 /// The words of an offer, or what stands for them.
-fn offer_words(record: &crate::case::Instance, number: usize) -> String {
+fn offer_words(record: &Instance, number: usize) -> String {
     match (record.label.trim(), record.reference.trim()) {
         ("", "") => format!("offer {number}"),
         ("", reference) => format!("offer {reference}"),

@@ -6,7 +6,7 @@ use super::types::{RiseSplit, TargetHours};
 use crate::engine::Special;
 use crate::num::{Fraction, Hours, Money};
 
-/// Net income at quarter hours of a line, worked out when it is asked for. Payable hours are quarter hours (design section 2).
+/// What is left after costs of working (net income where there are none) at quarter hours of a line, worked out when it is asked for. Payable hours are quarter hours (design section 2).
 pub(super) struct Quarters<'a, 'm> {
     special: &'a Special<'m>,
     sums: &'a Sums,
@@ -20,19 +20,19 @@ impl<'a, 'm> Quarters<'a, 'm> {
         Quarters { special, sums, last: up_to.0 / 25, values: Vec::new() }
     }
 
-    fn net(&mut self, quarter: i64) -> Money {
-        self.sums.totals(&self.special.at(Hours(quarter * 25), &mut self.values)).net
+    fn left(&mut self, quarter: i64) -> Money {
+        self.sums.totals(&self.special.at(Hours(quarter * 25), &mut self.values)).after_costs
     }
 
-    /// The fewest quarter hours from which a sum stays reached to the end of the line; for today's net income they are the holding hours.
+    /// The fewest quarter hours from which a sum stays reached to the end of the line; for what is left today they are the holding hours.
     pub(super) fn stays(&mut self, sum: Money) -> Option<Hours> {
-        let below = (0..=self.last).rev().find(|quarter| self.net(*quarter) < sum).map_or(0, |at| at + 1);
+        let below = (0..=self.last).rev().find(|quarter| self.left(*quarter) < sum).map_or(0, |at| at + 1);
         (below <= self.last).then_some(Hours(below * 25))
     }
 
     /// Target hours for a sum.
     pub(super) fn target(&mut self, sum: Money) -> TargetHours {
-        let first = (0..=self.last).find(|quarter| self.net(*quarter) >= sum).map(|at| Hours(at * 25));
+        let first = (0..=self.last).find(|quarter| self.left(*quarter) >= sum).map(|at| Hours(at * 25));
         TargetHours { sum, first, stays: self.stays(sum) }
     }
 }

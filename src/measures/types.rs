@@ -221,7 +221,8 @@ pub struct RiseSplit {
 pub struct OfferMeasures {
     /// Position of the offer's line in [`EarnerResult::lines`].
     pub line: usize,
-    /// The fewest quarter hours at the offer's wage from which today's net income is kept; none where it never is.
+    /// The fewest quarter hours at the offer's wage from which as much is left after costs of working as today (net income, where there are no such
+    /// costs); none where it never is.
     pub holding: Option<Hours>,
     /// The rise split at today's hours; none for an earner without a job today.
     pub rise: Option<RiseSplit>,
@@ -230,9 +231,9 @@ pub struct OfferMeasures {
 /// The hours that a sum needs.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct TargetHours {
-    /// The sum asked for, net a period.
+    /// The sum asked for, net a period and after costs of working, where there are any.
     pub sum: Money,
-    /// The fewest quarter hours at which net income first reaches it.
+    /// The fewest quarter hours at which what is left first reaches it.
     pub first: Option<Hours>,
     /// The fewest from which it stays reached to the end of the line.
     pub stays: Option<Hours>,

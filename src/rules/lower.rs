@@ -57,7 +57,9 @@ pub(super) fn accepts(pack: &Pack, dates: &[i64], changes: &[Change]) -> Result<
         }
     }
     for change in changes {
-        if !pack.amounts.iter().any(|a| a.name == change.amount) {
+        if let Some(amount) = pack.amounts.iter().find(|a| a.name == change.amount) {
+            faults.extend(unfit(amount.ty, change));
+        } else {
             let fault = Diagnostic::general(format!("`{}` is not an amount of the pack", change.amount)).expected("a name of `amounts.csv`");
             let near = nearest(&change.amount, pack.amounts.iter().map(|a| a.name.as_str()));
             faults.push(match near {
@@ -67,6 +69,24 @@ pub(super) fn accepts(pack: &Pack, dates: &[i64], changes: &[Change]) -> Result<
         }
     }
     if faults.is_empty() { Ok(()) } else { Err(faults) }
+}
+
+/// What is wrong with the value of a changed amount.
+fn unfit(ty: Ty, change: &Change) -> Option<Diagnostic> {
+    let expected = match ty {
+        Ty::Count if change.value.denominator() != 1 => "a whole number",
+        Ty::YesNo if !change.value.is_zero() && change.value != Fraction::ONE => "1 for yes or 0 for no",
+        Ty::Date | Ty::Choice(_) => "another amount: days and words cannot be changed by a list",
+        Ty::Count | Ty::YesNo | Ty::Money(_) | Ty::Rate | Ty::Hours | Ty::Number => return None,
+    };
+    Some(Diagnostic::general(format!("`{}` is {ty} and the list changes it to {}", change.amount, plain(change.value))).expected(expected))
+}
+
+/// Makes programs of a small and a large household: what a list's changed amounts and its dates together upset shows here, before the first
+/// household is read.
+pub(super) fn try_out(pack: &Pack, dates: &[i64], changes: &[Change]) -> Result<(), Vec<Diagnostic>> {
+    program(pack, dates, changes, &small(pack))?;
+    program(pack, dates, changes, &large(pack)).map(|_| ())
 }
 
 /// Makes the program.

@@ -453,3 +453,212 @@ fn help_and_wrong_arguments() {
         wrong.err
     );
 }
+
+/// A line of jobs for the first household with what its job and offer say of two columns beside the usual ones.
+fn jobs_with(columns: &str, today: &str, offer: &str) -> String {
+    format!(
+        "household,member,ref,status,offer,hours,wage,{columns}\nHA-01,A,J1,today,,16,12.71,{today}\nHA-01,A,shift,offer,more hours at the bakery,30,13.20,{offer}\n"
+    )
+}
+
+#[test]
+fn an_offer_that_the_rules_do_not_cover_holds_the_household() {
+    let desk = Desk::sound();
+    let run = |to: &str| {
+        desk.say(&format!(
+            "print cases --to {to} --no-statements --issued 2026-05-05"
+        ))
+    };
+    desk.write("cases/jobs.csv", &jobs_with("ni_category", "", "category_a"));
+    run("covered");
+    assert!(!desk.read("covered/held.csv").contains("HA-01"));
+    desk.write(
+        "cases/jobs.csv",
+        &jobs_with("ni_category", "", "other_category"),
+    );
+    run("other");
+    let held = desk.read("other/held.csv");
+    assert!(
+        held.contains("HA-01,\"A job has a National Insurance category"),
+        "{held}"
+    );
+    // A note that holds for the offer alone is a note of the household.
+    desk.write(
+        "cases/jobs.csv",
+        &jobs_with("pay_frequency", "month", "week"),
+    );
+    let said = desk.say("show cases --household HA-01");
+    assert!(said.out.contains("note: pay_not_monthly"), "{}", said.out);
+}
+
+#[test]
+fn nothing_is_printed_where_there_is_nothing_to_compare() {
+    let desk = Desk::sound();
+    desk.write(
+        "cases/jobs.csv",
+        "household,member,ref,status,offer,hours,wage\nHA-02,A,J1,today,,37.5,0\n",
+    );
+    let said = desk.say("print cases --to run --no-statements --issued 2026-05-05");
+    assert_eq!(said.status, 0, "{}", said.err);
+    insta::assert_snapshot!(desk.read("run/held.csv"), @r#"
+    household,reason
+    HA-01,"no adult has a job of today with hours and a wage, or an offer, so there is nothing to compare"
+    HA-02,"no adult has a job of today with hours and a wage, or an offer, so there is nothing to compare"
+    HA-03,the client asked to wait
+    HA-03,"no adult has a job of today with hours and a wage, or an offer, so there is nothing to compare"
+    "#);
+}
+
+#[test]
+fn an_item_that_cannot_be_folded_holds_the_household() {
+    let desk = Desk::sound();
+    let with = |name: &str| {
+        let lines = desk.read("cases/households.csv");
+        let mut out = String::new();
+        for line in lines.lines() {
+            let cell = match line {
+                line if line.starts_with("household,") => "fold",
+                line if line.starts_with("HA-01") => name,
+                _ => "",
+            };
+            out.push_str(&format!("{line},{cell}\n"));
+        }
+        out
+    };
+    let (good, bad) = (with("universal_credit"), with("universal_credits"));
+    desk.write("cases/households.csv", &good);
+    desk.say("print cases --to good --no-statements --issued 2026-05-05");
+    assert!(!desk.read("good/held.csv").contains("HA-01"));
+    desk.write("cases/households.csv", &bad);
+    desk.say("print cases --to bad --no-statements --issued 2026-05-05");
+    let held = desk.read("bad/held.csv");
+    assert!(
+        held.contains("HA-01,\"`fold` names `universal_credits`, expected an item of the rules; did you mean `universal_credit`?\""),
+        "{held}"
+    );
+}
+
+#[test]
+fn an_adult_without_a_job_has_nothing_that_could_be_seen() {
+    let desk = Desk::sound();
+    let members = desk.read("cases/members.csv");
+    desk.write(
+        "cases/members.csv",
+        &members.replace(
+            "HA-01,C,",
+            "HA-01,B,adult,Ida Quill,1991-02-03,\nHA-01,C,",
+        ),
+    );
+    desk.write(
+        "cases/jobs.csv",
+        "household,member,ref,status,offer,hours,wage,wage_known\nHA-01,A,J1,today,,16,12.71,seen\nHA-02,A,J1,today,,37.5,31,told\n",
+    );
+    desk.write("office.toml", "[hold]\nmust_be_seen = [\"wage\"]\n");
+    desk.say("print cases --to run --office office.toml --no-statements --issued 2026-05-05");
+    let held = desk.read("run/held.csv");
+    assert!(!held.contains("HA-01"), "{held}");
+    assert!(held.contains("HA-02,\"`wage` is told"), "{held}");
+}
+
+#[test]
+fn a_target_is_reached_when_the_costs_of_working_are_paid() {
+    let desk = Desk::sound();
+    let single = |costs: &str| {
+        format!(
+            "pack = \"uk\"\ndate = 2026-05-04\nreference = \"HA-9\"\n[dates]\npayment = 2026-05-29\n[household]\nnation = \"england\"\n\
+             tenure = \"none\"\nclaims_universal_credit = false\nclaims_child_benefit = false\ntarget_month = 550\n\
+             [[member]]\nref = \"a\"\nrole = \"adult\"\nbirth = 1990-01-01\n\
+             [[job]]\nmember = \"a\"\nstatus = \"today\"\nhours = 10\nwage = 12\n{costs}"
+        )
+    };
+    let told = |costs: &str| {
+        desk.write("one.toml", &single(costs));
+        let said = desk.say("show one.toml --household HA-9");
+        let line = said.out.lines().find(|line| line.starts_with("for 550.00"));
+        line.unwrap_or(&said.err).to_owned()
+    };
+    // 12 × 52/12 is 52.00 a month for each weekly hour, and below the thresholds of tax and contributions all of it is kept: 10.75 hours
+    // bring 559.00 and 10.5 hours 546.00. With costs of 100 a month 12.5 hours are needed for 650.00.
+    assert_eq!(
+        told(""),
+        "for 550.00 after costs of working: first reached at 10.75 hours, stays reached from 10.75 hours"
+    );
+    assert_eq!(
+        told("work_costs_month = 100\n"),
+        "for 550.00 after costs of working: first reached at 12.5 hours, stays reached from 12.5 hours"
+    );
+}
+
+#[test]
+fn a_changed_amount_that_upsets_the_rules_is_told_before_the_run() {
+    let desk = Desk::sound();
+    let changed = |changes: &[(&str, &str)]| {
+        let mut text = LIST.to_owned();
+        for (amount, value) in changes {
+            text.push_str(&format!(
+                "[[changed]]\namount = \"{amount}\"\nvalue = \"{value}\"\nbecause = \"x\"\n"
+            ));
+        }
+        desk.write("cases/list.toml", &text);
+        let said = desk.say("print cases --to run --no-statements");
+        assert_eq!(said.status, 2, "{}", said.err);
+        assert!(!desk.path("run").exists());
+        said.err
+    };
+    assert_eq!(
+        changed(&[
+            ("child_benefit_weeks", "52.5"),
+            ("relief_at_source_gross_in_uc", "2")
+        ]),
+        "hourworth: `child_benefit_weeks` is count and the list changes it to 52.5; expected a whole number\n\
+         `relief_at_source_gross_in_uc` is yesno and the list changes it to 2; expected 1 for yes or 0 for no\n"
+    );
+    let falls = changed(&[("basic_rate_limit", "999999")]);
+    assert!(falls.contains("is not above the one before"), "{falls}");
+}
+
+#[test]
+fn a_broken_list_costs_no_earlier_run_and_a_zip_takes_no_file_away() {
+    let desk = Desk::sound();
+    desk.say("print cases --to run --no-statements --issued 2026-05-05");
+    let before = contents(&desk.path("run"));
+    desk.write("cases/members.csv", "household,ref,ref\n");
+    let said = desk.say("print cases --to run --no-statements --replace");
+    assert_eq!(said.status, 2, "{}", said.err);
+    assert!(before == contents(&desk.path("run")));
+    let desk = Desk::sound();
+    desk.write("letter.odt", "mine");
+    let said = desk.say("print cases --to run --no-statements --zip letter.odt");
+    assert_eq!(said.status, 2);
+    assert_eq!(
+        said.err,
+        "hourworth: `letter.odt` exists already; choose another name for the ZIP file, or give `--replace`\n"
+    );
+    assert_eq!(desk.read("letter.odt"), "mine");
+    let said = desk.say("print cases --to other --no-statements --zip nowhere/all.zip");
+    assert_eq!(
+        said.err,
+        "hourworth: there is no folder `nowhere` for the ZIP file; make it first\n"
+    );
+    let said = desk.say("print cases --to inside --no-statements --zip inside/all.zip");
+    assert_eq!(said.status, 0, "{}", said.err);
+}
+
+#[test]
+fn where_a_list_lies_changes_no_number() {
+    let desk = Desk::sound();
+    let from = Path::new(env!("CARGO_MANIFEST_DIR")).join("rules/uk");
+    for (name, bytes) in contents(&from) {
+        let to = desk.path("cases/ours").join(name);
+        fs::create_dir_all(to.parent().unwrap()).unwrap();
+        fs::write(to, bytes).unwrap();
+    }
+    desk.write("cases/list.toml", &LIST.replace("\"uk\"", "\"ours\""));
+    for (list, to) in [("cases", "a"), ("./cases/", "b")] {
+        let said = desk.say(&format!(
+            "print {list} --to {to} --no-statements --issued 2026-05-05"
+        ));
+        assert_eq!(said.status, 0, "{}", said.err);
+    }
+    assert_eq!(desk.read("a/run.json"), desk.read("b/run.json"));
+}
