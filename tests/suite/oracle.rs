@@ -15,6 +15,7 @@ mod reader;
 mod small_packs;
 mod text;
 mod united_kingdom;
+mod worked;
 
 /// How many times as much is asked.
 fn times() -> usize {

@@ -767,16 +767,21 @@ impl<'a> Oracle<'a> {
             Expr::Charged { of: inner, by } => {
                 let ladder = &self.book.bands[by];
                 let mut parts = Vec::new();
+                let all = of(inner);
                 self.on_ladder(ladder, place, |inside| {
                     let mut low = nothing.clone();
                     for (rate, limit) in &ladder.lines {
                         let rate = self.course(rate, inside);
                         let high = match limit {
                             Limit::UpTo(limit) | Limit::Below(limit) => self.course(limit, inside),
-                            Limit::Beyond => nothing.clone(),
+                            Limit::Beyond => all.clone(),
                         };
-                        if !rate.is_number(0) {
-                            parts.extend([of(inner), rate, low, high.clone()]);
+                        let empty = match (&all, &low, &high) {
+                            (Course::Fixed(all), Course::Fixed(low), Course::Fixed(high)) => all.clone().number().min(high.clone().number()) <= low.clone().number(),
+                            (_, _, _) => false,
+                        };
+                        if !rate.is_number(0) && !empty {
+                            parts.extend([all.clone(), rate, low, high.clone()]);
                         }
                         low = high;
                     }
