@@ -37,13 +37,29 @@ impl Special<'_> {
                 let mut want = |r: &Reg| here[r.position()] = true;
                 match &step.op {
                     Op::Constant(_) | Op::Fact(_) | Op::Hours => {}
-                    Op::Choose { when, then, otherwise } => {
+                    Op::Choose {
+                        when,
+                        then,
+                        otherwise,
+                    } => {
                         want(when);
-                        want(if values[when.position()] != 0 { then } else { otherwise });
+                        want(if values[when.position()] != 0 {
+                            then
+                        } else {
+                            otherwise
+                        });
                     }
                     // Nothing times something rests on the nothing alone.
-                    Op::Multiply(a, b) if values[a.position()] == 0 && values[b.position()] != 0 => want(a),
-                    Op::Multiply(a, b) if values[b.position()] == 0 && values[a.position()] != 0 => want(b),
+                    Op::Multiply(a, b)
+                        if values[a.position()] == 0 && values[b.position()] != 0 =>
+                    {
+                        want(a)
+                    }
+                    Op::Multiply(a, b)
+                        if values[b.position()] == 0 && values[a.position()] != 0 =>
+                    {
+                        want(b)
+                    }
                     Op::Both(a, _) if values[a.position()] == 0 => want(a),
                     Op::Either(a, _) if values[a.position()] != 0 => want(a),
                     // A fixed limit that did not bite reached nothing.
@@ -51,7 +67,11 @@ impl Special<'_> {
                         let smaller = matches!(step.op, Op::Smaller(..));
                         let (x, y) = (program.steps[*a].scale.exact, program.steps[*b].scale.exact);
                         let (left, right) = (values[a.position()] * y, values[b.position()] * x);
-                        let a_wins = if smaller { left <= right } else { left >= right };
+                        let a_wins = if smaller {
+                            left <= right
+                        } else {
+                            left >= right
+                        };
                         let fixed = |r: &Reg| matches!(program.steps[*r].op, Op::Constant(_));
                         if a_wins || !fixed(a) {
                             want(a);
@@ -74,7 +94,9 @@ impl Special<'_> {
                         want(b);
                     }
                     // Nothing lies above the limit here, so neither the limit nor the rate reached anything.
-                    Op::Times(a, _) if values[a.position()] == 0 && matches!(program.steps[*a].op, Op::Larger(..)) => {}
+                    Op::Times(a, _)
+                        if values[a.position()] == 0
+                            && matches!(program.steps[*a].op, Op::Larger(..)) => {}
                     Op::Times(a, _) => {
                         want(a);
                         step.factor.iter().for_each(&mut want);
@@ -91,7 +113,11 @@ impl Special<'_> {
                 continue;
             }
             if let Op::Fact(input) = &step.op {
-                let FactRef { kind, instance, fact } = program.inputs[*input].fact;
+                let FactRef {
+                    kind,
+                    instance,
+                    fact,
+                } = program.inputs[*input].fact;
                 used.facts.insert((kind, instance, fact));
             }
             lines.extend(step.line.map(Id::position));
@@ -101,9 +127,15 @@ impl Special<'_> {
             let line = &program.lines[Id::new(at)];
             for amount in &line.amounts {
                 let name = &program.amounts[*amount].name;
-                let reg = line.inputs.iter().find(|e| e.name == *name).map(|e| e.reg.position());
+                let reg = line
+                    .inputs
+                    .iter()
+                    .find(|e| e.name == *name)
+                    .map(|e| e.reg.position());
                 if reg.is_none_or(|r| reached[r] || !self.machine.read[r]) {
-                    used.amounts.entry(amount.position()).or_insert_with(|| line.part.clone());
+                    used.amounts
+                        .entry(amount.position())
+                        .or_insert_with(|| line.part.clone());
                 }
             }
         }

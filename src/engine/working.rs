@@ -34,7 +34,12 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
     special.fill(hours, &mut values);
     let program = special.program();
     let needed = needed(program);
-    let mut lines: Vec<&Line> = program.lines.iter_with_id().filter(|(id, _)| needed.contains(&id.position())).map(|(_, l)| l).collect();
+    let mut lines: Vec<&Line> = program
+        .lines
+        .iter_with_id()
+        .filter(|(id, _)| needed.contains(&id.position()))
+        .map(|(_, l)| l)
+        .collect();
     lines.sort_by_key(|l| (l.order, l.instance));
     let exact = |reg: Reg| Fraction::new(values[reg.position()], program.steps[reg].scale.exact);
     lines
@@ -43,12 +48,20 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
             let reg = line.reg?;
             Some(Worked {
                 part: line.part.clone(),
-                name: if line.as_if { format!("{} as if", line.name) } else { line.name.clone() },
+                name: if line.as_if {
+                    format!("{} as if", line.name)
+                } else {
+                    line.name.clone()
+                },
                 of: (line.kind as usize, line.instance as usize),
                 exact: exact(reg),
                 value: shown(exact(reg), &line.unit, &line.words),
                 span: line.span,
-                inputs: line.inputs.iter().map(|e| format!("{} = {}", e.name, shown(exact(e.reg), &e.unit, &e.words))).collect(),
+                inputs: line
+                    .inputs
+                    .iter()
+                    .map(|e| format!("{} = {}", e.name, shown(exact(e.reg), &e.unit, &e.words)))
+                    .collect(),
                 law: line.law.clone(),
                 amounts: line.amounts.iter().map(|a| a.position()).collect(),
             })
@@ -66,7 +79,13 @@ fn needed(program: &Program) -> BTreeSet<usize> {
         }
     }
     let mut lines = BTreeSet::new();
-    for (reg, step) in program.steps.iter_with_id().collect::<Vec<_>>().into_iter().rev() {
+    for (reg, step) in program
+        .steps
+        .iter_with_id()
+        .collect::<Vec<_>>()
+        .into_iter()
+        .rev()
+    {
         if !wanted[reg.position()] {
             continue;
         }
@@ -92,7 +111,11 @@ fn needed(program: &Program) -> BTreeSet<usize> {
                 want(b);
             }
             Op::Times(a, _) | Op::Round { of: a, .. } | Op::Not(a) => want(a),
-            Op::Choose { when, then, otherwise } => {
+            Op::Choose {
+                when,
+                then,
+                otherwise,
+            } => {
                 want(when);
                 want(then);
                 want(otherwise);
@@ -129,14 +152,25 @@ fn needed(program: &Program) -> BTreeSet<usize> {
 /// A value with its unit: `1,048.00 a month` is written `1048.00 a month`.
 fn shown(value: Fraction, unit: &str, words: &[String]) -> String {
     if !words.is_empty() {
-        return usize::try_from(value.floor()).ok().and_then(|at| words.get(at)).cloned().unwrap_or_default();
+        return usize::try_from(value.floor())
+            .ok()
+            .and_then(|at| words.get(at))
+            .cloned()
+            .unwrap_or_default();
     }
     let trimmed = |places: u32| {
         let text = value.decimal(places);
-        if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.').to_owned() } else { text }
+        if text.contains('.') {
+            text.trim_end_matches('0').trim_end_matches('.').to_owned()
+        } else {
+            text
+        }
     };
     match unit {
-        "date" => super::fact_text(&crate::case::FactType::Date, i64::try_from(value.floor()).unwrap_or(0)),
+        "date" => super::fact_text(
+            &crate::case::FactType::Date,
+            i64::try_from(value.floor()).unwrap_or(0),
+        ),
         "yesno" => if value.is_zero() { "no" } else { "yes" }.to_owned(),
         "rate" => {
             let percent = value * Fraction::whole(100);
@@ -147,7 +181,11 @@ fn shown(value: Fraction, unit: &str, words: &[String]) -> String {
         "money" => value.decimal(2),
         _ if unit.starts_with("money") => {
             let exact_pennies = (value * Fraction::whole(100)).denominator() == 1;
-            format!("{} {}", value.decimal(if exact_pennies { 2 } else { 6 }), &unit[6..])
+            format!(
+                "{} {}",
+                value.decimal(if exact_pennies { 2 } else { 6 }),
+                &unit[6..]
+            )
         }
         _ => trimmed(6),
     }

@@ -97,15 +97,25 @@ impl Fraction {
     pub fn checked_add(self, other: Fraction) -> Option<Fraction> {
         let common = gcd(self.denominator, other.denominator);
         let (left, right) = (other.denominator / common, self.denominator / common);
-        let numerator = (self.numerator.checked_mul(left)?).checked_add(other.numerator.checked_mul(right)?)?;
-        Some(Fraction::new(numerator, self.denominator.checked_mul(left)?))
+        let numerator =
+            (self.numerator.checked_mul(left)?).checked_add(other.numerator.checked_mul(right)?)?;
+        Some(Fraction::new(
+            numerator,
+            self.denominator.checked_mul(left)?,
+        ))
     }
 
     /// The product, or none where it does not fit.
     pub fn checked_mul(self, other: Fraction) -> Option<Fraction> {
-        let (first, second) = (gcd(self.numerator, other.denominator).max(1), gcd(other.numerator, self.denominator).max(1));
+        let (first, second) = (
+            gcd(self.numerator, other.denominator).max(1),
+            gcd(other.numerator, self.denominator).max(1),
+        );
         let numerator = (self.numerator / first).checked_mul(other.numerator / second)?;
-        Some(Fraction::new(numerator, (self.denominator / second).checked_mul(other.denominator / first)?))
+        Some(Fraction::new(
+            numerator,
+            (self.denominator / second).checked_mul(other.denominator / first)?,
+        ))
     }
 
     /// The point half way to the other.
@@ -223,10 +233,19 @@ mod tests {
         let large = Fraction::whole(i128::MAX);
         assert_eq!(large.checked_add(Fraction::ONE), None);
         assert_eq!(large.checked_mul(Fraction::whole(2)), None);
-        assert_eq!(Fraction::new(1, i128::MAX).checked_mul(Fraction::new(1, 2)), None);
+        assert_eq!(
+            Fraction::new(1, i128::MAX).checked_mul(Fraction::new(1, 2)),
+            None
+        );
         // What cancels still fits.
-        assert_eq!(large.checked_mul(Fraction::new(1, i128::MAX)), Some(Fraction::ONE));
-        assert_eq!(Fraction::new(1, 6).checked_add(Fraction::new(1, 3)), Some(Fraction::new(1, 2)));
+        assert_eq!(
+            large.checked_mul(Fraction::new(1, i128::MAX)),
+            Some(Fraction::ONE)
+        );
+        assert_eq!(
+            Fraction::new(1, 6).checked_add(Fraction::new(1, 3)),
+            Some(Fraction::new(1, 2))
+        );
     }
 
     #[test]

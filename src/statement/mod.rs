@@ -6,7 +6,10 @@
 //! characters that the fonts cannot set, undefined names, and values where no text can stand.
 //! Reads no file, clock or environment. Imports `measures`, `diag`, `num`.
 
-#![expect(clippy::float_arithmetic, reason = "places on a page are floats; sums of money never are")]
+#![expect(
+    clippy::float_arithmetic,
+    reason = "places on a page are floats; sums of money never are"
+)]
 
 mod bars;
 mod build;

@@ -64,7 +64,12 @@ impl Sheet {
             self.pages += 1;
             self.used = high;
         } else {
-            self.used += high + if self.used > 0.0 { above * self.size } else { 0.0 };
+            self.used += high
+                + if self.used > 0.0 {
+                    above * self.size
+                } else {
+                    0.0
+                };
         }
     }
 
@@ -79,17 +84,25 @@ impl Sheet {
 
     fn part(&mut self, part: &Part) {
         let wide = self.beside();
-        let texts = part.lines.iter().map(|line| self.text(&format!("{} {}", line.lead, line.text), wide));
+        let texts = part
+            .lines
+            .iter()
+            .map(|line| self.text(&format!("{} {}", line.lead, line.text), wide));
         let body: f64 = texts.map(|high| high + 0.7 * self.size).sum();
         let high = 0.55 * self.size + self.row(self.lines(1), body - 0.7 * self.size);
-        if part.keep == 1 { self.whole(0.8, high) } else { self.flow(0.8, high) }
+        if part.keep == 1 {
+            self.whole(0.8, high)
+        } else {
+            self.flow(0.8, high)
+        }
     }
 
     fn table(&mut self, table: &Table) {
         let words = |text: &str| text.split(' ').count();
-        let head = table.columns.iter().map(|column| {
-            words(&column.name).div_ceil(3) + usize::from(!column.hours.is_empty())
-        });
+        let head = table
+            .columns
+            .iter()
+            .map(|column| words(&column.name).div_ceil(3) + usize::from(!column.hours.is_empty()));
         let head = self.lines(head.max().unwrap_or(1)) + 0.6 * self.size;
         let rows = table.rows.len() as f64 * (LINE.0 + 0.6) * self.size;
         self.whole(0.4, head + rows);
@@ -110,7 +123,11 @@ impl Sheet {
             let body = self.lines(kept) * scale + gap * self.size + self.text(&answer.detail, wide);
             let name = self.lines(1) + 0.45 * self.size;
             let about = self.text(&answer.about, names) + LINE.1 * self.size;
-            let name = if answer.about.is_empty() { name } else { name + about };
+            let name = if answer.about.is_empty() {
+                name
+            } else {
+                name + about
+            };
             let high = self.row(name, body);
             self.whole(above, high);
         }
@@ -127,7 +144,11 @@ impl Sheet {
         }
         for turn in &section.turns {
             let place = self.text(&turn.place, NAMES.0 * self.size);
-            let pay = if turn.pay.is_empty() { 0.0 } else { self.lines(2) - self.lines(1) };
+            let pay = if turn.pay.is_empty() {
+                0.0
+            } else {
+                self.lines(2) - self.lines(1)
+            };
             let high = self.row(place + pay, self.text(&turn.what, wide));
             self.whole(0.7, high);
         }
@@ -149,7 +170,11 @@ impl Sheet {
 /// Pages that a letter will probably take.
 pub(super) fn pages(view: &LetterView) -> usize {
     let size = f64::from(view.print_size);
-    let paper = if view.paper == "us-letter" { 792.0 } else { 841.89 };
+    let paper = if view.paper == "us-letter" {
+        792.0
+    } else {
+        841.89
+    };
     let mut sheet = Sheet {
         pages: 1,
         used: 0.0,

@@ -41,13 +41,12 @@ pub(super) fn facts(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
 
 /// Whether a fact may be printed: not another adult's where the letter is for one, and none that gives a folded item away.
 fn is_shown(words: &Words<'_>, fact: &FactUse) -> bool {
-    let others = |only: usize| {
-        words
-            .assessment
-            .earners
-            .iter()
-            .any(|earner| earner.adult != only && !earner.name.is_empty() && earner.name == fact.of)
-    };
+    let others =
+        |only: usize| {
+            words.assessment.earners.iter().any(|earner| {
+                earner.adult != only && !earner.name.is_empty() && earner.name == fact.of
+            })
+        };
     let reveals = ["fact", "said"].iter().any(|kind| {
         let label = words.context.labels.get(&format!("{kind}.{}", fact.name));
         label.is_some_and(|label| words.reveals(label))
@@ -173,7 +172,10 @@ fn value(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError> {
         return Ok(word);
     }
     let raw = fact.value.as_str();
-    let shape = words.context.facts.get(&format!("{}.{}", fact.kind, fact.name));
+    let shape = words
+        .context
+        .facts
+        .get(&format!("{}.{}", fact.kind, fact.name));
     match shape.unwrap_or(&FactShape::Plain) {
         FactShape::Money(period) => {
             let decimals = if period == "hour" {
@@ -189,9 +191,7 @@ fn value(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError> {
             }
             words.say(&format!("per.{period}"), &[("sum", &sum)])
         }
-        FactShape::Hours => {
-            words.say("facts.hours", &[("hours", figure(fact))])
-        }
+        FactShape::Hours => words.say("facts.hours", &[("hours", figure(fact))]),
         FactShape::Date => Ok(NaiveDate::parse_from_str(raw, "%Y-%m-%d")
             .map_or_else(|_| raw.to_owned(), |day| words.day(day))),
         FactShape::YesNo => match raw {

@@ -64,7 +64,11 @@ pub fn letter_view(
         language: context.texts.language().to_owned(),
         paper: context.delivery.paper.clone(),
         print_size: context.delivery.print_size.max(12),
-        title: words.plain(if words.couple() { "title_couple" } else { "title" })?,
+        title: words.plain(if words.couple() {
+            "title_couple"
+        } else {
+            "title"
+        })?,
         number: context.number.clone(),
         office: context.office.name.clone(),
         office_lines,
@@ -128,7 +132,10 @@ fn what_if(words: &Words<'_>) -> Result<Vec<String>, StatementError> {
 fn amount_value(words: &Words<'_>, value: &str) -> String {
     let mut parts = value.splitn(3, ' ');
     let (figure, unit) = (parts.next().unwrap_or_default(), parts.next());
-    let rest = parts.next().map(|rest| format!(" {rest}")).unwrap_or_default();
+    let rest = parts
+        .next()
+        .map(|rest| format!(" {rest}"))
+        .unwrap_or_default();
     let sum = words.currency.typed(figure, Decimals::WhereNeeded);
     match (unit, sum) {
         (Some("percent"), _) => format!("{figure}%{rest}"),

@@ -133,10 +133,7 @@ fn help_changes(
             let values = [("hours", hours.as_str()), ("pay", &pay)];
             words.say(&format!("passport.{verb}"), &values)
         }
-        Some(_) | None => words.say(
-            &format!("passport.{verb}_step"),
-            &[("step", &step.name)],
-        ),
+        Some(_) | None => words.say(&format!("passport.{verb}_step"), &[("step", &step.name)]),
     }
 }
 

@@ -151,7 +151,10 @@ pub(super) fn turns(
         });
     }
     for (from, to, text) in range_text(words, main, measure)? {
-        let (first, last) = (super::super::money::hours(from), super::super::money::hours(to));
+        let (first, last) = (
+            super::super::money::hours(from),
+            super::super::money::hours(to),
+        );
         candidates.push(Candidate {
             rank: rank(Way::Falls, first <= range.1 && last >= range.0),
             away: (first.0 - today.0).abs(),

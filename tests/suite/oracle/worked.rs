@@ -29,48 +29,103 @@ fn value(ty: &FactType, text: &str) -> i64 {
     match ty {
         FactType::YesNo => i64::from(text == "yes"),
         FactType::Date => day(text).expect("a day"),
-        FactType::Choice(words) => words.iter().position(|w| w == text).expect("a word of the choice") as i64,
-        FactType::Money(_) | FactType::Rate | FactType::Hours | FactType::Number | FactType::Count => {
-            (number(text).expect("a number") * whole(i128::from(ty.units()))).to_integer().to_i64().expect("a small number")
-        }
+        FactType::Choice(words) => words
+            .iter()
+            .position(|w| w == text)
+            .expect("a word of the choice") as i64,
+        FactType::Money(_)
+        | FactType::Rate
+        | FactType::Hours
+        | FactType::Number
+        | FactType::Count => (number(text).expect("a number") * whole(i128::from(ty.units())))
+            .to_integer()
+            .to_i64()
+            .expect("a small number"),
     }
 }
 
 fn household(schema: &Schema, records: &[(&str, usize, &str)]) -> Household {
     let mut instances: Vec<Vec<Instance>> = schema.kinds.iter().map(|_| Vec::new()).collect();
     for (name, owner, facts) in records {
-        let kind = schema.kinds.iter().position(|k| k.name == *name).expect("a kind");
-        let given: Vec<(&str, &str)> = facts.split(", ").filter_map(|f| f.split_once(" = ")).collect();
+        let kind = schema
+            .kinds
+            .iter()
+            .position(|k| k.name == *name)
+            .expect("a kind");
+        let given: Vec<(&str, &str)> = facts
+            .split(", ")
+            .filter_map(|f| f.split_once(" = "))
+            .collect();
         let values: Vec<i64> = schema.kinds[kind]
             .facts
             .iter()
-            .map(|fact| match (given.iter().find(|(name, _)| *name == fact.name), fact.need) {
-                (Some((_, text)), _) => value(&fact.ty, text),
-                (None, Need::Default(value)) => value,
-                (None, Need::Required) => fact.min.max(0),
-            })
+            .map(
+                |fact| match (given.iter().find(|(name, _)| *name == fact.name), fact.need) {
+                    (Some((_, text)), _) => value(&fact.ty, text),
+                    (None, Need::Default(value)) => value,
+                    (None, Need::Required) => fact.min.max(0),
+                },
+            )
             .collect();
-        instances[kind].push(Instance { label: String::new(), reference: String::new(), owner: *owner, known: vec![Known::Told; values.len()], values });
+        instances[kind].push(Instance {
+            label: String::new(),
+            reference: String::new(),
+            owner: *owner,
+            known: vec![Known::Told; values.len()],
+            values,
+        });
     }
     let job_roles = (0..instances[JOB].len())
-        .map(|at| if instances[JOB][..at].iter().all(|j| j.owner != instances[JOB][at].owner) { JobRole::Today } else { JobRole::Further })
+        .map(|at| {
+            if instances[JOB][..at]
+                .iter()
+                .all(|j| j.owner != instances[JOB][at].owner)
+            {
+                JobRole::Today
+            } else {
+                JobRole::Further
+            }
+        })
         .collect();
-    Household { reference: "R1".into(), delivery: Delivery::default(), target: None, instances, job_roles, offers: Vec::new(), row: 1 }
+    Household {
+        reference: "R1".into(),
+        delivery: Delivery::default(),
+        target: None,
+        instances,
+        job_roles,
+        offers: Vec::new(),
+        row: 1,
+    }
 }
 
 impl Worked<'_> {
     /// The pack as both sides read it, or why it is refused.
     fn ready(&self) -> Result<(Book, Pack), String> {
-        let rules = format!("part \"Worked\" dated by closing\nlaw \"The Harrowmere Act\"\n{}\nnote closed where closing at least 2025-04-06", self.rules);
+        let rules = format!(
+            "part \"Worked\" dated by closing\nlaw \"The Harrowmere Act\"\n{}\nnote closed where closing at least 2025-04-06",
+            self.rules
+        );
         let mut texts = vec![
             ("pack.toml".to_owned(), MANIFEST.to_owned()),
             ("order.txt".to_owned(), "worked.rules\n".to_owned()),
             ("worked.rules".to_owned(), rules),
-            ("amounts.csv".to_owned(), format!("{HEADER}{}", self.amounts)),
+            (
+                "amounts.csv".to_owned(),
+                format!("{HEADER}{}", self.amounts),
+            ),
         ];
-        texts.extend(self.tables.iter().map(|(name, text)| (format!("tables/{name}.csv"), (*text).to_owned())));
+        texts.extend(
+            self.tables
+                .iter()
+                .map(|(name, text)| (format!("tables/{name}.csv"), (*text).to_owned())),
+        );
         let files = files(&texts);
-        let pack = check_pack(&files).map_err(|(sources, faults)| faults.iter().map(|f| f.render(&sources, false)).collect::<String>())?;
+        let pack = check_pack(&files).map_err(|(sources, faults)| {
+            faults
+                .iter()
+                .map(|f| f.render(&sources, false))
+                .collect::<String>()
+        })?;
         Ok((Book::read(&files), pack))
     }
 
@@ -78,24 +133,74 @@ impl Worked<'_> {
     fn gives(&self, expected: &[(&str, Q, &str)]) {
         let (book, pack) = self.ready().unwrap_or_else(|words| panic!("{words}"));
         let schema = schema_of(&pack);
-        let household = household(&schema, &[&[("household", 0, self.records[0].2)], &self.records[1..]].concat());
-        let days = [day("2025-06-01").expect("a day"), day("2026-06-01").expect("a day")];
-        let records = household.instances.iter().map(|kind| kind.iter().map(|r| Record { owner: r.owner, values: r.values.clone() }).collect()).collect();
-        let oracle = Oracle::new(&book, days.to_vec(), Home { records, varied_job: 0 });
+        let household = household(
+            &schema,
+            &[&[("household", 0, self.records[0].2)], &self.records[1..]].concat(),
+        );
+        let days = [
+            day("2025-06-01").expect("a day"),
+            day("2026-06-01").expect("a day"),
+        ];
+        let records = household
+            .instances
+            .iter()
+            .map(|kind| {
+                kind.iter()
+                    .map(|r| Record {
+                        owner: r.owner,
+                        values: r.values.clone(),
+                    })
+                    .collect()
+            })
+            .collect();
+        let oracle = Oracle::new(
+            &book,
+            days.to_vec(),
+            Home {
+                records,
+                varied_job: 0,
+            },
+        );
         for (item, hours, wanted) in expected {
             let items = oracle.items(hours, Mode::Law);
-            let (_, found) = items.iter().find(|((name, _, record), _)| name == item && *record == 0).expect("the item is there");
-            assert_eq!(*found, number(wanted).expect("a number"), "{item} at {hours} hours");
+            let (_, found) = items
+                .iter()
+                .find(|((name, _, record), _)| name == item && *record == 0)
+                .expect("the item is there");
+            assert_eq!(
+                *found,
+                number(wanted).expect("a number"),
+                "{item} at {hours} hours"
+            );
         }
         for seed in 0..4 {
-            let subject = Subject { book: &book, pack: &pack, days: &days, household: &household, earner: 0, choice: JobChoice::Today };
-            let asked = Asked { seed, law_points: 60, fractions: 20, most_pieces: 60, rationals: 60, bounded: 40 };
-            compare(&subject, asked, &mut Tally::default()).unwrap_or_else(|fault| panic!("{fault}"));
+            let subject = Subject {
+                book: &book,
+                pack: &pack,
+                days: &days,
+                household: &household,
+                earner: 0,
+                choice: JobChoice::Today,
+            };
+            let asked = Asked {
+                seed,
+                law_points: 60,
+                fractions: 20,
+                most_pieces: 60,
+                rationals: 60,
+                bounded: 40,
+            };
+            compare(&subject, asked, &mut Tally::default())
+                .unwrap_or_else(|fault| panic!("{fault}"));
         }
     }
 }
 
-const ONE_JOB: [(&str, usize, &str); 3] = [("household", 0, ""), ("adult", 0, "birth = 1990-01-01"), ("job", 0, "hours = 20, wage = 10")];
+const ONE_JOB: [(&str, usize, &str); 3] = [
+    ("household", 0, ""),
+    ("adult", 0, "birth = 1990-01-01"),
+    ("job", 0, "hours = 20, wage = 10"),
+];
 
 #[test]
 fn bands_scales_and_roundings_by_hand() {
@@ -269,7 +374,10 @@ fn facts_taken_otherwise_keep_their_bounds() {
         figure shared: money a month = costs * share\n\
         figure works: yesno = any job with (hours above 10 hours)\nfigure plain: money a month = by_people + looked_up + aged + shared\n\
         item kept: benefit = plain see \"s.1\"\n";
-    let table = ("limit", "rooms,from,to,value,source,locator,status\n1,2020-01-01,,10,a book,p. 1,read\n2,2020-01-01,,20,a book,p. 1,read\n");
+    let table = (
+        "limit",
+        "rooms,from,to,value,source,locator,status\n1,2020-01-01,,10,a book,p. 1,read\n2,2020-01-01,,20,a book,p. 1,read\n",
+    );
     let refused = [
         "by_people as if (people is 0)",
         "by_people as if (people is 10)",
@@ -282,7 +390,12 @@ fn facts_taken_otherwise_keep_their_bounds() {
     ];
     for expr in refused {
         let rules = format!("{before}item changed: benefit = {expr} see \"s.2\"");
-        let worked = Worked { rules: &rules, amounts: "", tables: &[table], records: &ONE_JOB };
+        let worked = Worked {
+            rules: &rules,
+            amounts: "",
+            tables: &[table],
+            records: &ONE_JOB,
+        };
         match worked.ready() {
             Err(words) => println!("{expr}: {words}"),
             Ok(_) => println!("NOT REFUSED {expr}"),
