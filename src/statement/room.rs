@@ -8,7 +8,7 @@ use super::view::{AnswerWeight, LetterView, Part, Section, Table};
 /// A millimetre in points.
 const MM: f64 = 72.0 / 25.4;
 /// Height of a line, and the distance between lines, in sizes of print.
-const LINE: (f64, f64) = (0.714, 0.54);
+const LINE: (f64, f64) = (0.714, 0.52);
 /// Width of the column of names and of the gutter beside it, in sizes of print.
 const NAMES: (f64, f64) = (8.2, 0.8);
 /// Sizes above this one are large print, set in one column.
@@ -55,7 +55,7 @@ impl Sheet {
 
     /// Height of a rule and the heading under it.
     fn headed(&self) -> f64 {
-        0.55 * self.size + self.lines(1) + 0.6 * self.size
+        0.5 * self.size + self.lines(1) + 0.5 * self.size
     }
 
     /// Something that stays on one page, so many sizes of print below what stands before it.
@@ -89,11 +89,11 @@ impl Sheet {
             .iter()
             .map(|line| self.text(&format!("{} {}", line.lead, line.text), wide));
         let body: f64 = texts.map(|high| high + 0.7 * self.size).sum();
-        let high = 0.55 * self.size + self.row(self.lines(1), body - 0.7 * self.size);
+        let high = 0.5 * self.size + self.row(self.lines(1), body - 0.7 * self.size);
         if part.keep == 1 {
-            self.whole(0.8, high)
+            self.whole(0.7, high)
         } else {
-            self.flow(0.8, high)
+            self.flow(0.7, high)
         }
     }
 
@@ -136,9 +136,9 @@ impl Sheet {
     fn section(&mut self, section: &Section) {
         let wide = self.beside();
         if section.bars.height > 0 {
-            self.whole(0.8, self.headed() + section.bars.height as f64 / 100.0);
+            self.whole(0.7, self.headed() + section.bars.height as f64 / 100.0);
         }
-        self.flow(0.8, self.headed());
+        self.flow(0.7, self.headed());
         if !section.turns_lead.is_empty() {
             self.flow(0.0, self.text(&section.turns_lead, self.wide));
         }
@@ -155,8 +155,11 @@ impl Sheet {
         if !section.turns_note.is_empty() {
             self.flow(0.6, self.text(&section.turns_note, self.wide));
         }
+        for part in &section.help {
+            self.part(part);
+        }
         if !section.tables.is_empty() {
-            self.flow(0.8, self.headed());
+            self.flow(0.7, self.headed());
         }
         for table in &section.tables {
             self.table(table);
@@ -168,7 +171,12 @@ impl Sheet {
 }
 
 /// Pages that a letter will probably take.
-pub(super) fn pages(view: &LetterView) -> usize {
+pub fn probable_pages(view: &LetterView) -> usize {
+    probable_length(view).ceil() as usize
+}
+
+/// Pages that a letter will probably fill, the last one by its part: 2.25 is two pages and a quarter of the third.
+pub fn probable_length(view: &LetterView) -> f64 {
     let size = f64::from(view.print_size);
     let paper = if view.paper == "us-letter" {
         792.0
@@ -178,7 +186,7 @@ pub(super) fn pages(view: &LetterView) -> usize {
     let mut sheet = Sheet {
         pages: 1,
         used: 0.0,
-        high: paper - 29.0 * MM - size,
+        high: paper - 27.0 * MM - size,
         wide: super::build::text_width(&view.paper),
         size,
     };
@@ -197,9 +205,12 @@ pub(super) fn pages(view: &LetterView) -> usize {
             sheet.flow(1.2, 0.6 * size + sheet.headed());
         }
         sheet.answers(section);
+        if !section.measure.is_empty() {
+            sheet.flow(0.6, sheet.text(&section.measure, sheet.beside()));
+        }
         if place == 0 {
-            let estimate = format!("{} {}", section.measure, view.estimate.join(" "));
-            sheet.flow(0.9, sheet.text(&estimate, sheet.beside()));
+            let estimate = view.estimate.join(" ");
+            sheet.flow(0.8, sheet.text(&estimate, sheet.beside()));
         }
         if section.chart.height > 0 {
             sheet.whole(0.9, sheet.headed() + section.chart.height as f64 / 100.0);
@@ -214,7 +225,7 @@ pub(super) fn pages(view: &LetterView) -> usize {
         sheet.section(section);
     }
     for part in &view.closing {
-        sheet.flow(0.75, sheet.headed());
+        sheet.flow(0.7, sheet.headed());
         for line in &part.lines {
             let text = format!("{} {}", line.lead, line.text);
             sheet.flow(0.6, sheet.text(&text, sheet.wide));
@@ -222,5 +233,5 @@ pub(super) fn pages(view: &LetterView) -> usize {
         // No distance before the first.
         sheet.used -= 0.6 * size;
     }
-    sheet.pages
+    sheet.pages as f64 - 1.0 + sheet.used / sheet.high
 }

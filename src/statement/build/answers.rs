@@ -1,5 +1,6 @@
 //! The first answers: what is kept of each named step, and the hours that a sum needs.
 
+use super::Detail;
 use super::steps::Step;
 use super::words::{Measure, Words, hours_text};
 use crate::measures::{EarnerResult, ItemKind, Point};
@@ -27,13 +28,19 @@ pub(super) fn answers(
         .filter(offered)
         .chain(steps.iter().filter(|step| !offered(step)));
     for step in ordered {
+        if words.detail == Detail::Bare && asked && step.offer.is_none() {
+            continue;
+        }
         let weight = if asked && step.offer.is_none() {
             AnswerWeight::Beside
         } else {
             AnswerWeight::Lead
         };
         let mut answer = answer(words, earner, step, (measure, weight))?;
-        if first && let Some(near) = near(words, earner, step, measure)? {
+        if first
+            && words.detail != Detail::Bare
+            && let Some(near) = near(words, earner, step, measure)?
+        {
             answer.detail.push(' ');
             answer.detail.push_str(&near);
         }

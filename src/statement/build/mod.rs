@@ -23,15 +23,19 @@ use words::Words;
 
 pub(super) use figure::text_width;
 
-/// How much a letter says.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+/// How much a letter says; each says less than the one before.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
 pub enum Detail {
     /// Everything.
     Full,
-    /// For letters that fit on two pages without the bars, the words explained, and the longer list of facts that were
-    /// assumed to be none.
+    /// Without the words explained, and with fewer names among the facts that were assumed to be none.
+    Plain,
+    /// Also without the bars and without turning points that lie beyond the steps, where there are others.
     Short,
-    /// For letters that would be too long: as short, and the chart of the leading person alone, three turning points a person.
+    /// Also without an answer to four hours more beside an offer, without the sums of an hour less and more, and without a word
+    /// on further turning points.
+    Bare,
+    /// Also the chart of the leading person alone, and three turning points a person.
     Brief,
 }
 

@@ -173,16 +173,16 @@ pub(super) fn turns(
     let all = candidates.len();
     candidates.sort_by(|a, b| (a.rank, a.away, a.at).cmp(&(b.rank, b.away, b.at)));
     candidates.truncate(match (words.detail, place) {
-        (Detail::Full | Detail::Short, 0) => MOST,
-        (Detail::Full | Detail::Short, _) | (Detail::Brief, _) => FILL,
+        (Detail::Full | Detail::Plain | Detail::Short | Detail::Bare, 0) => MOST,
+        (_, _) => FILL,
     });
     let on_the_way = help_on_the_way
         || candidates
             .iter()
             .any(|found| found.rank <= Rank::SlopeOnTheWay);
     let fill = match words.detail {
-        Detail::Full | Detail::Brief => FILL,
-        Detail::Short => 1,
+        Detail::Full | Detail::Plain => FILL,
+        Detail::Short | Detail::Bare | Detail::Brief => 1,
     };
     let mut position = 0;
     candidates.retain(|found| {
@@ -196,6 +196,7 @@ pub(super) fn turns(
         words.plain("turns.none")?
     };
     let note = match all - candidates.len() {
+        _ if words.detail == Detail::Bare => String::new(),
         0 => String::new(),
         1 => words.plain("turns.more_one")?,
         more => words.say("turns.more", &[("count", &more.to_string())])?,
