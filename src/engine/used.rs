@@ -4,7 +4,7 @@
 use super::machine::Special;
 use crate::index::Id;
 use crate::num::Hours;
-use crate::program::{Amount, FactRef, Op, Reg};
+use crate::program::{Amount, FactRef, ItemKind, Op, Reg};
 use std::collections::{BTreeMap, BTreeSet};
 
 /// Facts and amounts in use.
@@ -25,8 +25,10 @@ impl Special<'_> {
         for at in hours {
             self.fill(*at, &mut values);
             let mut here = vec![false; program.steps.len()];
+            // An item that is nothing here prints no figure; help in kind that is not there was decided by something.
             for item in &program.items {
-                here[item.reg.position()] = true;
+                let counts = item.kind == ItemKind::Passport || values[item.reg.position()] != 0;
+                here[item.reg.position()] = counts;
             }
             for reg in (0..program.steps.len()).rev().map(Reg::new) {
                 let step = &program.steps[reg];
@@ -80,9 +82,15 @@ impl Special<'_> {
                             want(b);
                         }
                     }
-                    Op::Add(a, b)
-                    | Op::Subtract(a, b)
-                    | Op::Multiply(a, b)
+                    // Nothing added or taken away reached nothing, whatever it rests on.
+                    Op::Add(a, b) | Op::Subtract(a, b) => {
+                        for side in [a, b] {
+                            if values[side.position()] != 0 {
+                                want(side);
+                            }
+                        }
+                    }
+                    Op::Multiply(a, b)
                     | Op::AtLeast(a, b)
                     | Op::Above(a, b)
                     | Op::Same(a, b)
