@@ -1,7 +1,7 @@
 //! What a household's results rest on: the facts and amounts that reached its items at given hours.
 //! Branches that were not taken do not count.
 
-use super::machine::Special;
+use super::machine::{Code, Special};
 use crate::index::Id;
 use crate::num::Hours;
 use crate::program::{Amount, FactRef, Op, Reg};
@@ -36,7 +36,6 @@ impl Special<'_> {
                 reached[reg.position()] = true;
                 let mut want = |r: &Reg| here[r.position()] = true;
                 match &step.op {
-                    Op::Constant(_) | Op::Fact(_) | Op::Hours => {}
                     Op::Choose { when, then, otherwise } => {
                         want(when);
                         want(if values[when.position()] != 0 { then } else { otherwise });
@@ -48,10 +47,12 @@ impl Special<'_> {
                     Op::Either(a, _) if values[a.position()] != 0 => want(a),
                     // A fixed limit that did not bite reached nothing.
                     Op::Smaller(a, b) | Op::Larger(a, b) => {
-                        let smaller = matches!(step.op, Op::Smaller(..));
-                        let (x, y) = (program.steps[*a].scale.exact, program.steps[*b].scale.exact);
-                        let (left, right) = (values[a.position()] * y, values[b.position()] * x);
-                        let a_wins = if smaller { left <= right } else { left >= right };
+                        let code = &self.machine.exact[reg.position()];
+                        let a_wins = match code {
+                            Code::Smaller { a, by_a, b, by_b } => values[*a] * by_a <= values[*b] * by_b,
+                            Code::Larger { a, by_a, b, by_b } => values[*a] * by_a >= values[*b] * by_b,
+                            _ => unreachable!("a step and its code do the same"),
+                        };
                         let fixed = |r: &Reg| matches!(program.steps[*r].op, Op::Constant(_));
                         if a_wins || !fixed(a) {
                             want(a);
@@ -60,27 +61,28 @@ impl Special<'_> {
                             want(b);
                         }
                     }
-                    Op::Add(a, b)
-                    | Op::Subtract(a, b)
-                    | Op::Multiply(a, b)
-                    | Op::AtLeast(a, b)
-                    | Op::Above(a, b)
-                    | Op::Same(a, b)
-                    | Op::Both(a, b)
-                    | Op::Either(a, b)
-                    | Op::Years { from: a, to: b }
-                    | Op::Divide { of: a, by: b, .. } => {
-                        want(a);
-                        want(b);
-                    }
                     // Nothing lies above the limit here, so neither the limit nor the rate reached anything.
                     Op::Times(a, _) if values[a.position()] == 0 && matches!(program.steps[*a].op, Op::Larger(..)) => {}
                     Op::Times(a, _) => {
                         want(a);
                         step.factor.iter().for_each(&mut want);
                     }
-                    Op::Round { of: a, .. } | Op::Not(a) => want(a),
-                    Op::Lookup { keys, .. } => keys.iter().for_each(want),
+                    Op::Constant(_)
+                    | Op::Fact(_)
+                    | Op::Hours
+                    | Op::Add(..)
+                    | Op::Subtract(..)
+                    | Op::Multiply(..)
+                    | Op::AtLeast(..)
+                    | Op::Above(..)
+                    | Op::Same(..)
+                    | Op::Both(..)
+                    | Op::Either(..)
+                    | Op::Not(_)
+                    | Op::Round { .. }
+                    | Op::Divide { .. }
+                    | Op::Lookup { .. }
+                    | Op::Years { .. } => super::walk::operands(&self.machine.exact[reg.position()], &mut |r| here[r] = true),
                 }
             }
         }

@@ -180,7 +180,7 @@ fn earner(
         let terms = JobTerms { offer: String::new(), reference: String::new(), wage: setting.wage(), hours: today };
         let step_to = Hours((today.0 + request.more.0).min(16_800));
         lines.push(work_out(special, setting, Asked { terms, grid: &hours, step_to, up_to, at_zero: &at_zero }));
-        gathered.add(special, &special.used(&[Hours(0), today, step_to]));
+        gathered.add_line(special, lines.last());
         target_hours = wanted.map(|sum| Quarters::new(special, &sums, up_to).target(sum));
     }
     let mut measures = Vec::new();
@@ -191,7 +191,7 @@ fn earner(
         let own = other.own_hours();
         let terms = JobTerms { offer: offer_words(record, measures.len() + 1), reference: record.reference.clone(), wage: other.wage(), hours: own };
         let worked = work_out(&special, &other, Asked { terms, grid: &hours, step_to: own, up_to, at_zero: &at_zero });
-        gathered.add(&special, &special.used(&[own]));
+        gathered.add_line(&special, Some(&worked));
         let mut quarters = Quarters::new(&special, &sums, up_to);
         if target_hours.is_none() {
             target_hours = wanted.map(|sum| quarters.target(sum));
@@ -249,6 +249,16 @@ impl Gathered {
             let amount = special.amount(*at);
             self.amounts.entry(amount.name.clone()).or_insert_with(|| amount_use(amount, part));
         }
+    }
+
+    /// Adds what a whole line rests on: each stretch between turning points by its first hours, and the points named.
+    fn add_line(&mut self, special: &Special<'_>, worked: Option<&Worked>) {
+        let Some(Worked { line, .. }) = worked else { return };
+        let mut hours: Vec<Hours> = line.turns.iter().map(|turn| turn.hours.min(line.up_to)).collect();
+        hours.extend([Hours(0), line.grid[line.own].hours, line.grid[line.step_to].hours, line.up_to]);
+        hours.sort_unstable();
+        hours.dedup();
+        self.add(special, &special.used(&hours));
     }
 
     fn finish(self, household: &Household, schema: &Schema) -> (Vec<FactUse>, Vec<AmountUse>) {

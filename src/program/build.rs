@@ -487,6 +487,6 @@ impl Builder {
 
     /// Full years from one day to another.
     pub fn years(&mut self, from: Reg, to: Reg) -> Reg {
-        self.push(Op::Years { from, to }, Some(Scales { exact: 1, smooth: 1 }), Some(3000), 0, false)
+        self.push(Op::Years { from, to }, Some(Scales { exact: 1, smooth: 1 }), Some(10_000), 0, false)
     }
 }
