@@ -175,7 +175,10 @@ mod tests {
         fs::write(&aside, "left behind").unwrap();
         fs::set_permissions(&aside, fs::Permissions::from_mode(0o644)).unwrap();
         write_whole(&name, b"x", Forced::No).unwrap();
-        assert_eq!(fs::metadata(&name).unwrap().permissions().mode() & 0o777, 0o600);
+        assert_eq!(
+            fs::metadata(&name).unwrap().permissions().mode() & 0o777,
+            0o600
+        );
         let elsewhere = folder.path().join("elsewhere");
         fs::write(&elsewhere, "mine").unwrap();
         std::os::unix::fs::symlink(&elsewhere, &aside).unwrap();

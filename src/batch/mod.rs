@@ -41,5 +41,5 @@ pub use record::{Inputs, Record};
 pub use run::{Progress, RunPlan, Summary, run};
 pub(crate) use tables::wage;
 pub use tables::{GridRows, Table, results, results_header, turning_points, turning_points_header};
-pub use work::{Orders, Statements, Work, item_columns, setup, work};
+pub use work::{Orders, Press, Statements, Work, item_columns, setup, work};
 pub use worker::serve;

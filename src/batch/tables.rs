@@ -137,7 +137,8 @@ pub fn results(assessment: &Assessment, items: &[String], grid: GridRows) -> Tab
                 let next = rows.get(place + 1).map(|(_, point)| *point);
                 // The line's hours are those of one job. Where others go on beside it, its first hour is no next hour of somebody who has
                 // ended all jobs.
-                let same_line = place > 0 || line.grid.first().is_none_or(|first| first.pay == point.pay);
+                let same_line =
+                    place > 0 || line.grid.first().is_none_or(|first| first.pay == point.pay);
                 let hour = line
                     .grid
                     .iter()

@@ -8,7 +8,7 @@ use super::{
 };
 use crate::case::{ADULT, FactType, Household, JOB, Known, Schema, day_of};
 use crate::diag::nearest;
-use crate::load::{Files, HoldRules, Office, PackFiles, Terms};
+use crate::load::{Files, HoldRules, Office, PackFiles, Terms, schema_of};
 use crate::measures::{Assessment, TurnKind, Verdict};
 use crate::num::{Fraction, Hours};
 use crate::rules::{Change, Pack};
@@ -112,21 +112,16 @@ pub fn work(payload: &[u8]) -> Result<Work, String> {
         grid_step: setup.grid.1,
     };
     let office = setup.office.unwrap_or_default();
-    let mut press = match setup.orders.statements {
+    let press = match setup.orders.statements {
         Statements::LeftOut => None,
         Statements::Made => Some(
             Press::new(&setup.templates, &office, &pack, &terms, &setup.orders)
                 .map_err(|error| error.to_string())?,
         ),
     };
-    let items = item_columns(&pack);
-    let books = Books::new(pack, terms);
-    if let Some(press) = &mut press {
-        press.context.facts = fact_shapes(books.schema());
-    }
     Ok(Work {
-        items,
-        books,
+        items: item_columns(&pack),
+        books: Books::new(pack, terms),
         orders: setup.orders,
         hold: office.hold,
         press,
@@ -254,8 +249,8 @@ fn own_reasons(household: &Household, hold: &HoldRules, schema: &Schema) -> Vec<
     reasons
 }
 
-/// What sets letters.
-struct Press {
+/// What sets letters: templates, office and the words of a pack, ready for one household after another.
+pub struct Press {
     typesetter: Typesetter,
     templates: TemplateSet,
     texts: BTreeMap<String, Arc<Texts>>,
@@ -265,7 +260,11 @@ struct Press {
 }
 
 impl Press {
-    fn new(
+    /// Reads the templates and gathers what all letters of a run share.
+    ///
+    /// # Errors
+    /// Where a template or a file of texts is faulty.
+    pub fn new(
         templates: &Files,
         office: &Office,
         pack: &Pack,
@@ -290,7 +289,7 @@ impl Press {
             period: pack.manifest.period.word().to_owned(),
             office: letterhead(office),
             labels: BTreeMap::new(),
-            facts: BTreeMap::new(),
+            facts: fact_shapes(&schema_of(pack)),
             texts: set.texts("en")?,
             delivery: LetterDelivery::default(),
         };
@@ -304,11 +303,11 @@ impl Press {
         })
     }
 
-    fn letter(
-        &mut self,
-        household: &Household,
-        assessment: &Assessment,
-    ) -> Result<StatementFile, StatementError> {
+    /// What a household's letter needs besides its assessment: its number, its language's words, its delivery.
+    ///
+    /// # Errors
+    /// Where the template set has no texts in the household's language.
+    pub fn context(&mut self, household: &Household) -> Result<&LetterContext, StatementError> {
         let language = match household.delivery.language.as_str() {
             "" => "en",
             language => language,
@@ -339,6 +338,19 @@ impl Press {
             only,
             fold: delivery.fold.clone(),
         };
+        Ok(&self.context)
+    }
+
+    /// Sets a household's letter.
+    ///
+    /// # Errors
+    /// As for [`typeset`].
+    pub fn letter(
+        &mut self,
+        household: &Household,
+        assessment: &Assessment,
+    ) -> Result<StatementFile, StatementError> {
+        self.context(household)?;
         let made = typeset(&mut self.typesetter, assessment, &self.context)?;
         Ok(StatementFile {
             kind: "client".to_owned(),

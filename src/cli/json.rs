@@ -51,7 +51,9 @@ pub(super) fn json(assessment: &Assessment) -> Value {
 }
 
 fn sums(rows: &[Vec<Money>]) -> Vec<Vec<String>> {
-    rows.iter().map(|row| row.iter().map(|sum| sum.plain()).collect()).collect()
+    rows.iter()
+        .map(|row| row.iter().map(|sum| sum.plain()).collect())
+        .collect()
 }
 
 fn kind(kind: ItemKind) -> &'static str {

@@ -152,11 +152,7 @@ fn inputs(prepared: &Prepared, args: &PrintArgs) -> Inputs {
         // As it was asked for: where the list itself lies changes nothing.
         (
             "pack".to_owned(),
-            args.rules
-                .rules
-                .as_ref()
-                .unwrap_or(&settings.pack)
-                .clone(),
+            args.rules.rules.as_ref().unwrap_or(&settings.pack).clone(),
         ),
         ("grid".to_owned(), yes_no(args.grid)),
         ("statements".to_owned(), yes_no(!args.no_statements)),

@@ -86,10 +86,10 @@ pub(super) fn prove(args: &ProveArgs) -> Result<Exit, Failure> {
 }
 
 fn source(example: &Example) -> String {
-    let memory = if example.status == "read" {
-        ""
-    } else {
-        "; from memory, not confirmed"
+    let memory = match example.status.as_str() {
+        "read" => "",
+        "derived" => "; worked out by hand, not published",
+        _ => "; from memory, not confirmed",
     };
     format!(
         "{}, {}, {}{memory}",

@@ -3,7 +3,9 @@
 
 use super::chart::{Mark, chart};
 use crate::batch::wage;
-use crate::measures::{Assessment, BudgetLine, CoupleTable, EarnerResult, OfferMeasures, Point, Turn, TurnKind};
+use crate::measures::{
+    Assessment, BudgetLine, CoupleTable, EarnerResult, OfferMeasures, Point, Turn, TurnKind,
+};
 use crate::num::{Fraction, Hours, Money};
 
 /// The words that the figures need beside them.
@@ -88,7 +90,13 @@ fn couple(table: &CoupleTable) -> Vec<String> {
         "net income by both partners' hours a week (down: adult 1, across: adult 2):".to_owned(),
         String::new(),
     ];
-    let mark = |hours: &Hours, own: Hours| if *hours == own { format!("> {}", hours.plain()) } else { hours.plain() };
+    let mark = |hours: &Hours, own: Hours| {
+        if *hours == own {
+            format!("> {}", hours.plain())
+        } else {
+            hours.plain()
+        }
+    };
     let mut head = format!("{:>8}", "hours");
     for hours in &table.second {
         head.push_str(&format!("{:>11}", mark(hours, table.own.1)));

@@ -56,7 +56,10 @@ fn amount_words(amount: &AmountUse) -> String {
         ("", false) => "; not confirmed".to_owned(),
         (why, _) => format!("; changed by the list: {why}"),
     };
-    format!("amount {} {}, {days}: {place}{status}", amount.name, amount.value)
+    format!(
+        "amount {} {}, {days}: {place}{status}",
+        amount.name, amount.value
+    )
 }
 
 /// The same for programs.

@@ -29,7 +29,10 @@ impl Curve {
         small_fraction(&numerator, &denominator).unwrap_or_else(|| {
             let fine = BigInt::from(1_000_000_000_000_000i64);
             let scaled = numerator * fine / denominator;
-            Fraction::new(i128::try_from(scaled).expect("a bounded value fits"), 1_000_000_000_000_000)
+            Fraction::new(
+                i128::try_from(scaled).expect("a bounded value fits"),
+                1_000_000_000_000_000,
+            )
         })
     }
 
@@ -37,13 +40,18 @@ impl Curve {
     fn small_at(&self, h: Fraction) -> Option<Fraction> {
         let (p, q) = (h.numerator(), h.denominator());
         if self.c[2] == 0 {
-            let numerator = self.c[0].checked_mul(q)?.checked_add(self.c[1].checked_mul(p)?)?;
+            let numerator = self.c[0]
+                .checked_mul(q)?
+                .checked_add(self.c[1].checked_mul(p)?)?;
             return Some(Fraction::new(numerator, self.scale.checked_mul(q)?));
         }
         let square = q.checked_mul(q)?;
         let linear = self.c[1].checked_mul(p.checked_mul(q)?)?;
         let quadratic = self.c[2].checked_mul(p.checked_mul(p)?)?;
-        let numerator = self.c[0].checked_mul(square)?.checked_add(linear)?.checked_add(quadratic)?;
+        let numerator = self.c[0]
+            .checked_mul(square)?
+            .checked_add(linear)?
+            .checked_add(quadratic)?;
         Some(Fraction::new(numerator, self.scale.checked_mul(square)?))
     }
 
@@ -52,7 +60,9 @@ impl Curve {
     /// # Panics
     /// Where the common scale does not fit; scales are bounded when a program is made.
     pub fn total<'c>(curves: impl Iterator<Item = (i128, &'c Curve)> + Clone) -> Curve {
-        let scale = curves.clone().fold(1i128, |s, (_, c)| s / gcd(s, c.scale) * c.scale);
+        let scale = curves
+            .clone()
+            .fold(1i128, |s, (_, c)| s / gcd(s, c.scale) * c.scale);
         let mut c = [0i128; 3];
         for (weight, curve) in curves {
             let by = weight * (scale / curve.scale);
@@ -67,7 +77,11 @@ impl Curve {
     pub fn crosses(&self, level: Fraction, from: Fraction, to: Fraction) -> Option<Fraction> {
         let fine = 1_000_000i128;
         let level = (level * Fraction::whole(fine)).floor();
-        let poly = [self.c[0] * fine - level * self.scale, self.c[1] * fine, self.c[2] * fine];
+        let poly = [
+            self.c[0] * fine - level * self.scale,
+            self.c[1] * fine,
+            self.c[2] * fine,
+        ];
         let common = gcd(gcd(poly[0], poly[1]), poly[2]).max(1);
         next_change(&poly.map(|v| v / common), from, to)
     }
@@ -107,7 +121,9 @@ pub(super) fn sign_at(c: &Poly, h: Fraction) -> Ordering {
         Some(value) => value.cmp(&0),
         None => {
             let (p, q) = (BigInt::from(p), BigInt::from(q));
-            let value = BigInt::from(c[0]) * &q * &q + BigInt::from(c[1]) * &p * &q + BigInt::from(c[2]) * &p * &p;
+            let value = BigInt::from(c[0]) * &q * &q
+                + BigInt::from(c[1]) * &p * &q
+                + BigInt::from(c[2]) * &p * &p;
             value.cmp(&BigInt::from(0))
         }
     }
@@ -163,7 +179,8 @@ pub(super) fn next_change(c: &Poly, h: Fraction, end: Fraction) -> Option<Fracti
 /// The root in (from, to] of a quadratic that is monotone there.
 fn crossing(c: &Poly, from: Fraction, to: Fraction, start: Ordering) -> Fraction {
     // A perfect square under the root makes the root rational.
-    let disc = BigInt::from(c[1]) * BigInt::from(c[1]) - BigInt::from(4) * BigInt::from(c[0]) * BigInt::from(c[2]);
+    let disc = BigInt::from(c[1]) * BigInt::from(c[1])
+        - BigInt::from(4) * BigInt::from(c[0]) * BigInt::from(c[2]);
     if disc >= BigInt::from(0) {
         let root = disc.sqrt();
         if &root * &root == disc {
@@ -179,7 +196,10 @@ fn crossing(c: &Poly, from: Fraction, to: Fraction, start: Ordering) -> Fraction
             }
         }
     }
-    let (mut low, mut high) = ((from * Fraction::whole(FINE)).floor(), (to * Fraction::whole(FINE)).ceil());
+    let (mut low, mut high) = (
+        (from * Fraction::whole(FINE)).floor(),
+        (to * Fraction::whole(FINE)).ceil(),
+    );
     while high - low > 1 {
         let middle = low + (high - low) / 2;
         let at = Fraction::new(middle, FINE);

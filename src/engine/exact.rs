@@ -18,7 +18,11 @@ impl Special<'_> {
             .iter()
             .map(|item| {
                 let value = values[item.reg.position()];
-                let scaled = if item.kind == ItemKind::Passport { value } else { value * Fraction::whole(100) };
+                let scaled = if item.kind == ItemKind::Passport {
+                    value
+                } else {
+                    value * Fraction::whole(100)
+                };
                 // Every item ends rounded to the minor unit, so this is whole.
                 Money(i64::try_from(scaled.floor()).expect("an item is bounded"))
             })
@@ -34,11 +38,15 @@ impl Special<'_> {
         let power = |at: usize| machine.powers[at] as usize;
         for at in &machine.varying {
             let up = |n: i128, by: i128, from: usize, to: usize| -> Option<i128> {
-                n.checked_mul(by)?.checked_mul((*powers_of_q.get(to - from)?)?)
+                n.checked_mul(by)?
+                    .checked_mul((*powers_of_q.get(to - from)?)?)
             };
             let pair = |a: usize, by_a: i128, b: usize, by_b: i128| -> Option<(i128, i128)> {
                 let top = power(a).max(power(b));
-                Some((up(v[a], by_a, power(a), top)?, up(v[b], by_b, power(b), top)?))
+                Some((
+                    up(v[a], by_a, power(a), top)?,
+                    up(v[b], by_b, power(b), top)?,
+                ))
             };
             v[*at] = match &machine.exact[*at] {
                 Code::Constant(value) => *value,
@@ -62,16 +70,39 @@ impl Special<'_> {
                     let (x, y) = pair(*a, *by_a, *b, *by_b)?;
                     x.max(y)
                 }
-                Code::Choose { when, then, by_then, otherwise, by_otherwise } => {
+                Code::Choose {
+                    when,
+                    then,
+                    by_then,
+                    otherwise,
+                    by_otherwise,
+                } => {
                     let (x, y) = pair(*then, *by_then, *otherwise, *by_otherwise)?;
                     if v[*when] != 0 { x } else { y }
                 }
-                Code::Round { a, numerator, denominator, unit, direction, .. } => {
+                Code::Round {
+                    a,
+                    numerator,
+                    denominator,
+                    unit,
+                    direction,
+                    ..
+                } => {
                     let below = denominator.checked_mul((*powers_of_q.get(power(*a))?)?)?;
                     divide_rounded(v[*a].checked_mul(*numerator)?, below, *direction) * unit
                 }
-                Code::Divide { a, b, numerator, denominator, unit, direction } => {
-                    let below = v[*b].checked_mul(*denominator)?.max(1).checked_mul((*powers_of_q.get(power(*a))?)?)?;
+                Code::Divide {
+                    a,
+                    b,
+                    numerator,
+                    denominator,
+                    unit,
+                    direction,
+                } => {
+                    let below = v[*b]
+                        .checked_mul(*denominator)?
+                        .max(1)
+                        .checked_mul((*powers_of_q.get(power(*a))?)?)?;
                     divide_rounded(v[*a].checked_mul(*numerator)?, below, *direction) * unit
                 }
                 Code::AtLeast { a, by_a, b, by_b } => {
@@ -98,8 +129,12 @@ impl Special<'_> {
     pub(super) fn fractions_at(&self, hours: Fraction) -> Vec<Fraction> {
         let machine = self.machine;
         let program = &machine.program;
-        let mut v: Vec<Fraction> =
-            self.values.iter().zip(program.steps.iter()).map(|(n, step)| Fraction::new(*n, step.scale.exact)).collect();
+        let mut v: Vec<Fraction> = self
+            .values
+            .iter()
+            .zip(program.steps.iter())
+            .map(|(n, step)| Fraction::new(*n, step.scale.exact))
+            .collect();
         let truth = |yes: bool| Fraction::whole(i128::from(yes));
         for at in &machine.varying {
             let step = &program.steps[Id::new(*at)];
@@ -116,14 +151,36 @@ impl Special<'_> {
                 Op::Times(a, by) => get(a) * *by,
                 Op::Smaller(a, b) => get(a).min(get(b)),
                 Op::Larger(a, b) => get(a).max(get(b)),
-                Op::Choose { when, then, otherwise } => if get(when).is_zero() { get(otherwise) } else { get(then) },
-                Op::Round { of, unit, direction, .. } => {
-                    let x = get(of) / *unit;
-                    Fraction::whole(divide_rounded(x.numerator(), x.denominator(), *direction)) * *unit
+                Op::Choose {
+                    when,
+                    then,
+                    otherwise,
+                } => {
+                    if get(when).is_zero() {
+                        get(otherwise)
+                    } else {
+                        get(then)
+                    }
                 }
-                Op::Divide { of, by, unit, direction } => {
+                Op::Round {
+                    of,
+                    unit,
+                    direction,
+                    ..
+                } => {
+                    let x = get(of) / *unit;
+                    Fraction::whole(divide_rounded(x.numerator(), x.denominator(), *direction))
+                        * *unit
+                }
+                Op::Divide {
+                    of,
+                    by,
+                    unit,
+                    direction,
+                } => {
                     let x = get(of) / get(by) / *unit;
-                    Fraction::whole(divide_rounded(x.numerator(), x.denominator(), *direction)) * *unit
+                    Fraction::whole(divide_rounded(x.numerator(), x.denominator(), *direction))
+                        * *unit
                 }
                 Op::AtLeast(a, b) => truth(get(a) >= get(b)),
                 Op::Above(a, b) => truth(get(a) > get(b)),
@@ -155,10 +212,13 @@ pub(super) fn powers(codes: &[Code]) -> Vec<u32> {
             | Code::Lookup { .. }
             | Code::Years { .. } => 0,
             Code::Hours => 1,
-            Code::Add { a, b, .. } | Code::Subtract { a, b, .. } | Code::Smaller { a, b, .. } | Code::Larger { a, b, .. } => {
-                powers[*a].max(powers[*b])
-            }
-            Code::Choose { then, otherwise, .. } => powers[*then].max(powers[*otherwise]),
+            Code::Add { a, b, .. }
+            | Code::Subtract { a, b, .. }
+            | Code::Smaller { a, b, .. }
+            | Code::Larger { a, b, .. } => powers[*a].max(powers[*b]),
+            Code::Choose {
+                then, otherwise, ..
+            } => powers[*then].max(powers[*otherwise]),
             Code::Multiply { a, b } => powers[*a] + powers[*b],
             Code::Times { a, .. } => powers[*a],
         };

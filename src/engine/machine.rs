@@ -11,25 +11,101 @@ pub(super) enum Code {
     Constant(i128),
     Fact(usize),
     Hours,
-    Add { a: usize, by_a: i128, b: usize, by_b: i128 },
-    Subtract { a: usize, by_a: i128, b: usize, by_b: i128 },
-    Multiply { a: usize, b: usize },
-    Times { a: usize, by: i128 },
-    Smaller { a: usize, by_a: i128, b: usize, by_b: i128 },
-    Larger { a: usize, by_a: i128, b: usize, by_b: i128 },
-    Choose { when: usize, then: usize, by_then: i128, otherwise: usize, by_otherwise: i128 },
+    Add {
+        a: usize,
+        by_a: i128,
+        b: usize,
+        by_b: i128,
+    },
+    Subtract {
+        a: usize,
+        by_a: i128,
+        b: usize,
+        by_b: i128,
+    },
+    Multiply {
+        a: usize,
+        b: usize,
+    },
+    Times {
+        a: usize,
+        by: i128,
+    },
+    Smaller {
+        a: usize,
+        by_a: i128,
+        b: usize,
+        by_b: i128,
+    },
+    Larger {
+        a: usize,
+        by_a: i128,
+        b: usize,
+        by_b: i128,
+    },
+    Choose {
+        when: usize,
+        then: usize,
+        by_then: i128,
+        otherwise: usize,
+        by_otherwise: i128,
+    },
     /// The result is `units × unit` where units = a × numerator / denominator, rounded.
-    Round { a: usize, numerator: i128, denominator: i128, unit: i128, direction: Direction, manner: Manner },
+    Round {
+        a: usize,
+        numerator: i128,
+        denominator: i128,
+        unit: i128,
+        direction: Direction,
+        manner: Manner,
+    },
     /// The same for a quotient: units = a × numerator / (b × denominator).
-    Divide { a: usize, b: usize, numerator: i128, denominator: i128, unit: i128, direction: Direction },
-    AtLeast { a: usize, by_a: i128, b: usize, by_b: i128 },
-    Above { a: usize, by_a: i128, b: usize, by_b: i128 },
-    Same { a: usize, by_a: i128, b: usize, by_b: i128 },
-    Both { a: usize, b: usize },
-    Either { a: usize, b: usize },
-    Not { a: usize },
-    Lookup { table: Id<Table>, keys: Vec<usize>, scale: i128 },
-    Years { from: usize, to: usize },
+    Divide {
+        a: usize,
+        b: usize,
+        numerator: i128,
+        denominator: i128,
+        unit: i128,
+        direction: Direction,
+    },
+    AtLeast {
+        a: usize,
+        by_a: i128,
+        b: usize,
+        by_b: i128,
+    },
+    Above {
+        a: usize,
+        by_a: i128,
+        b: usize,
+        by_b: i128,
+    },
+    Same {
+        a: usize,
+        by_a: i128,
+        b: usize,
+        by_b: i128,
+    },
+    Both {
+        a: usize,
+        b: usize,
+    },
+    Either {
+        a: usize,
+        b: usize,
+    },
+    Not {
+        a: usize,
+    },
+    Lookup {
+        table: Id<Table>,
+        keys: Vec<usize>,
+        scale: i128,
+    },
+    Years {
+        from: usize,
+        to: usize,
+    },
 }
 
 /// A program ready to run for any household of its shape.
@@ -72,7 +148,10 @@ fn code(program: &Program, at: usize, scale_of: impl Fn(Scales) -> i128) -> Code
             Code::Subtract { a, by_a, b, by_b }
         }
         Op::Multiply(a, b) => Code::Multiply { a: p(*a), b: p(*b) },
-        Op::Times(a, by) => Code::Times { a: p(*a), by: by.numerator() / gcd(by.numerator(), scale(*a)) },
+        Op::Times(a, by) => Code::Times {
+            a: p(*a),
+            by: by.numerator() / gcd(by.numerator(), scale(*a)),
+        },
         Op::Smaller(a, b) => {
             let (a, by_a, b, by_b) = pair(*a, *b);
             Code::Smaller { a, by_a, b, by_b }
@@ -81,11 +160,26 @@ fn code(program: &Program, at: usize, scale_of: impl Fn(Scales) -> i128) -> Code
             let (a, by_a, b, by_b) = pair(*a, *b);
             Code::Larger { a, by_a, b, by_b }
         }
-        Op::Choose { when, then, otherwise } => {
+        Op::Choose {
+            when,
+            then,
+            otherwise,
+        } => {
             let (then, by_then, otherwise, by_otherwise) = pair(*then, *otherwise);
-            Code::Choose { when: p(*when), then, by_then, otherwise, by_otherwise }
+            Code::Choose {
+                when: p(*when),
+                then,
+                by_then,
+                otherwise,
+                by_otherwise,
+            }
         }
-        Op::Round { of, unit, direction, manner } => {
+        Op::Round {
+            of,
+            unit,
+            direction,
+            manner,
+        } => {
             let ratio = Fraction::new(unit.denominator(), scale(*of) * unit.numerator());
             Code::Round {
                 a: p(*of),
@@ -96,8 +190,16 @@ fn code(program: &Program, at: usize, scale_of: impl Fn(Scales) -> i128) -> Code
                 manner: *manner,
             }
         }
-        Op::Divide { of, by, unit, direction } => {
-            let ratio = Fraction::new(scale(*by) * unit.denominator(), scale(*of) * unit.numerator());
+        Op::Divide {
+            of,
+            by,
+            unit,
+            direction,
+        } => {
+            let ratio = Fraction::new(
+                scale(*by) * unit.denominator(),
+                scale(*of) * unit.numerator(),
+            );
             Code::Divide {
                 a: p(*of),
                 b: p(*by),
@@ -122,8 +224,15 @@ fn code(program: &Program, at: usize, scale_of: impl Fn(Scales) -> i128) -> Code
         Op::Both(a, b) => Code::Both { a: p(*a), b: p(*b) },
         Op::Either(a, b) => Code::Either { a: p(*a), b: p(*b) },
         Op::Not(a) => Code::Not { a: p(*a) },
-        Op::Lookup { table, keys } => Code::Lookup { table: *table, keys: keys.iter().map(|k| p(*k)).collect(), scale: own },
-        Op::Years { from, to } => Code::Years { from: p(*from), to: p(*to) },
+        Op::Lookup { table, keys } => Code::Lookup {
+            table: *table,
+            keys: keys.iter().map(|k| p(*k)).collect(),
+            scale: own,
+        },
+        Op::Years { from, to } => Code::Years {
+            from: p(*from),
+            to: p(*to),
+        },
     }
 }
 
@@ -131,8 +240,14 @@ impl Machine {
     /// Makes a program ready.
     pub fn new(program: Program) -> Machine {
         let all = 0..program.steps.len();
-        let exact = all.clone().map(|at| code(&program, at, |s| s.exact)).collect();
-        let smooth = all.clone().map(|at| code(&program, at, |s| s.smooth)).collect();
+        let exact = all
+            .clone()
+            .map(|at| code(&program, at, |s| s.exact))
+            .collect();
+        let smooth = all
+            .clone()
+            .map(|at| code(&program, at, |s| s.smooth))
+            .collect();
         let (varying, steady) = all.partition(|at| program.steps[Id::new(*at)].varies);
         let exact: Vec<Code> = exact;
         let powers = super::exact::powers(&exact);
@@ -143,7 +258,15 @@ impl Machine {
                 read[factor.position()] = true;
             }
         }
-        Machine { program, exact, smooth, varying, steady, powers, read }
+        Machine {
+            program,
+            exact,
+            smooth,
+            varying,
+            steady,
+            powers,
+            read,
+        }
     }
 
     /// The program.
@@ -158,7 +281,10 @@ impl Machine {
         for at in &self.steady {
             values[*at] = self.run(*at, &values, facts, 0);
         }
-        Special { machine: self, values }
+        Special {
+            machine: self,
+            values,
+        }
     }
 
     /// One step with the law's roundings. `hours` are hundredths.
@@ -170,22 +296,58 @@ impl Machine {
             Code::Constant(value) => *value,
             Code::Fact(input) => i128::from(facts[*input]),
             Code::Hours => hours,
-            Code::Add { a, by_a, b, by_b } => v[*a].wrapping_mul(*by_a).wrapping_add(v[*b].wrapping_mul(*by_b)),
-            Code::Subtract { a, by_a, b, by_b } => v[*a].wrapping_mul(*by_a).wrapping_sub(v[*b].wrapping_mul(*by_b)),
+            Code::Add { a, by_a, b, by_b } => v[*a]
+                .wrapping_mul(*by_a)
+                .wrapping_add(v[*b].wrapping_mul(*by_b)),
+            Code::Subtract { a, by_a, b, by_b } => v[*a]
+                .wrapping_mul(*by_a)
+                .wrapping_sub(v[*b].wrapping_mul(*by_b)),
             Code::Multiply { a, b } => v[*a].wrapping_mul(v[*b]),
             Code::Times { a, by } => v[*a].wrapping_mul(*by),
-            Code::Smaller { a, by_a, b, by_b } => v[*a].wrapping_mul(*by_a).min(v[*b].wrapping_mul(*by_b)),
-            Code::Larger { a, by_a, b, by_b } => v[*a].wrapping_mul(*by_a).max(v[*b].wrapping_mul(*by_b)),
-            Code::Choose { when, then, by_then, otherwise, by_otherwise } => {
-                if v[*when] != 0 { v[*then].wrapping_mul(*by_then) } else { v[*otherwise].wrapping_mul(*by_otherwise) }
+            Code::Smaller { a, by_a, b, by_b } => {
+                v[*a].wrapping_mul(*by_a).min(v[*b].wrapping_mul(*by_b))
             }
-            Code::Round { a, numerator, denominator, unit, direction, .. } => divide_rounded(v[*a] * numerator, *denominator, *direction) * unit,
-            Code::Divide { a, b, numerator, denominator, unit, direction } => {
-                divide_rounded(v[*a] * numerator, (v[*b] * denominator).max(1), *direction) * unit
+            Code::Larger { a, by_a, b, by_b } => {
+                v[*a].wrapping_mul(*by_a).max(v[*b].wrapping_mul(*by_b))
             }
-            Code::AtLeast { a, by_a, b, by_b } => i128::from(v[*a].wrapping_mul(*by_a) >= v[*b].wrapping_mul(*by_b)),
-            Code::Above { a, by_a, b, by_b } => i128::from(v[*a].wrapping_mul(*by_a) > v[*b].wrapping_mul(*by_b)),
-            Code::Same { a, by_a, b, by_b } => i128::from(v[*a].wrapping_mul(*by_a) == v[*b].wrapping_mul(*by_b)),
+            Code::Choose {
+                when,
+                then,
+                by_then,
+                otherwise,
+                by_otherwise,
+            } => {
+                if v[*when] != 0 {
+                    v[*then].wrapping_mul(*by_then)
+                } else {
+                    v[*otherwise].wrapping_mul(*by_otherwise)
+                }
+            }
+            Code::Round {
+                a,
+                numerator,
+                denominator,
+                unit,
+                direction,
+                ..
+            } => divide_rounded(v[*a] * numerator, *denominator, *direction) * unit,
+            Code::Divide {
+                a,
+                b,
+                numerator,
+                denominator,
+                unit,
+                direction,
+            } => divide_rounded(v[*a] * numerator, (v[*b] * denominator).max(1), *direction) * unit,
+            Code::AtLeast { a, by_a, b, by_b } => {
+                i128::from(v[*a].wrapping_mul(*by_a) >= v[*b].wrapping_mul(*by_b))
+            }
+            Code::Above { a, by_a, b, by_b } => {
+                i128::from(v[*a].wrapping_mul(*by_a) > v[*b].wrapping_mul(*by_b))
+            }
+            Code::Same { a, by_a, b, by_b } => {
+                i128::from(v[*a].wrapping_mul(*by_a) == v[*b].wrapping_mul(*by_b))
+            }
             Code::Both { a, b } => v[*a] & v[*b],
             Code::Either { a, b } => v[*a] | v[*b],
             Code::Not { a } => 1 - v[*a],
@@ -200,10 +362,12 @@ impl Machine {
     /// A value of a table; a key outside takes the nearest end.
     pub(super) fn looked_up(&self, table: Id<Table>, keys: impl Iterator<Item = i128>) -> Fraction {
         let table = &self.program.tables[table];
-        let index = keys.zip(&table.keys).fold(0usize, |index, (key, (low, n))| {
-            let place = (key - i128::from(*low)).clamp(0, *n as i128 - 1);
-            index * n + usize::try_from(place).expect("a clamped key is a position")
-        });
+        let index = keys
+            .zip(&table.keys)
+            .fold(0usize, |index, (key, (low, n))| {
+                let place = (key - i128::from(*low)).clamp(0, *n as i128 - 1);
+                index * n + usize::try_from(place).expect("a clamped key is a position")
+            });
         table.values[index]
     }
 }
@@ -211,9 +375,15 @@ impl Machine {
 /// Full years from one day to another (days since 1970-01-01), at least zero. Somebody born on 29 February is a year older on 1 March.
 pub(super) fn full_years(from: i128, to: i128) -> i128 {
     use chrono::{Datelike, NaiveDate};
-    let date = |days: i128| i32::try_from(days).ok().and_then(NaiveDate::from_epoch_days).unwrap_or_default();
+    let date = |days: i128| {
+        i32::try_from(days)
+            .ok()
+            .and_then(NaiveDate::from_epoch_days)
+            .unwrap_or_default()
+    };
     let (from, to) = (date(from), date(to));
-    let years = to.year() - from.year() - i32::from((to.month(), to.day()) < (from.month(), from.day()));
+    let years =
+        to.year() - from.year() - i32::from((to.month(), to.day()) < (from.month(), from.day()));
     i128::from(years.max(0))
 }
 
@@ -246,7 +416,17 @@ impl<'m> Special<'m> {
 
     pub(super) fn items(&self, values: &[i128]) -> Vec<Money> {
         let program = &self.machine.program;
-        program.items.iter().map(|item| item_money(item, values[item.reg.position()], program.steps[item.reg].scale.exact)).collect()
+        program
+            .items
+            .iter()
+            .map(|item| {
+                item_money(
+                    item,
+                    values[item.reg.position()],
+                    program.steps[item.reg].scale.exact,
+                )
+            })
+            .collect()
     }
 
     /// Items that would be due at these hours and are not claimed: position and sum.
@@ -254,7 +434,9 @@ impl<'m> Special<'m> {
         let mut values = Vec::new();
         self.fill(hours, &mut values);
         let program = &self.machine.program;
-        let money = |item: &Item, reg: crate::program::Reg| item_money(item, values[reg.position()], program.steps[reg].scale.exact);
+        let money = |item: &Item, reg: crate::program::Reg| {
+            item_money(item, values[reg.position()], program.steps[reg].scale.exact)
+        };
         let items = program.items.iter().enumerate();
         items
             .filter_map(|(at, item)| Some((at, money(item, item.due?), money(item, item.reg))))
@@ -268,7 +450,12 @@ impl<'m> Special<'m> {
         let mut values = Vec::new();
         self.fill(hours, &mut values);
         let program = &self.machine.program;
-        program.guards.iter().filter(|g| values[g.reg.position()] != 0).map(|g| g.because.clone()).collect()
+        program
+            .guards
+            .iter()
+            .filter(|g| values[g.reg.position()] != 0)
+            .map(|g| g.because.clone())
+            .collect()
     }
 
     /// Names of the notes that hold at these hours.
@@ -276,11 +463,20 @@ impl<'m> Special<'m> {
         let mut values = Vec::new();
         self.fill(hours, &mut values);
         let program = &self.machine.program;
-        program.notes.iter().filter(|n| values[n.reg.position()] != 0).map(|n| n.name.clone()).collect()
+        program
+            .notes
+            .iter()
+            .filter(|n| values[n.reg.position()] != 0)
+            .map(|n| n.name.clone())
+            .collect()
     }
 }
 
 fn item_money(item: &Item, value: i128, scale: i128) -> Money {
-    let scaled = if item.kind == crate::program::ItemKind::Passport { value } else { value * 100 / scale };
+    let scaled = if item.kind == crate::program::ItemKind::Passport {
+        value
+    } else {
+        value * 100 / scale
+    };
     Money(i64::try_from(scaled).expect("an item is bounded"))
 }

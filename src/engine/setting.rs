@@ -31,9 +31,17 @@ pub struct Setting<'h> {
 /// # Panics
 /// Where the adult has no main job; readers give each adult one.
 pub fn shape_of(household: &Household, adult: usize) -> Shape {
-    let owners = household.instances.iter().map(|kind| kind.iter().map(|i| i.owner as u32).collect()).collect();
+    let owners = household
+        .instances
+        .iter()
+        .map(|kind| kind.iter().map(|i| i.owner as u32).collect())
+        .collect();
     let varied = main_job(household, adult).expect("each adult has a main job");
-    Shape { owners, earner: adult as u32, varied_job: varied as u32 }
+    Shape {
+        owners,
+        earner: adult as u32,
+        varied_job: varied as u32,
+    }
 }
 
 fn main_job(household: &Household, adult: usize) -> Option<usize> {
@@ -52,9 +60,18 @@ impl<'h> Setting<'h> {
         let shape = shape_of(household, adult);
         let varied = match choice {
             JobChoice::Today => &household.instances[JOB][shape.varied_job as usize],
-            JobChoice::Offer(at) => household.offers.get(at).filter(|offer| offer.owner == adult)?,
+            JobChoice::Offer(at) => household
+                .offers
+                .get(at)
+                .filter(|offer| offer.owner == adult)?,
         };
-        Some(Setting { household, shape, varied, alone: false, partner_hours: None })
+        Some(Setting {
+            household,
+            shape,
+            varied,
+            alone: false,
+            partner_hours: None,
+        })
     }
 
     /// The same with the earner's further jobs ended.
@@ -92,7 +109,11 @@ impl<'h> Setting<'h> {
             .inputs
             .iter()
             .map(|input| {
-                let (kind, instance, fact) = (input.fact.kind as usize, input.fact.instance as usize, input.fact.fact as usize);
+                let (kind, instance, fact) = (
+                    input.fact.kind as usize,
+                    input.fact.instance as usize,
+                    input.fact.fact as usize,
+                );
                 let record = &self.household.instances[kind][instance];
                 if kind == JOB {
                     if instance == self.shape.varied_job as usize {
@@ -102,7 +123,12 @@ impl<'h> Setting<'h> {
                     if fact == 0 && earners && self.alone {
                         return 0;
                     }
-                    if let (0, false, JobRole::Today, Some(hours)) = (fact, earners, self.household.job_roles[instance], self.partner_hours) {
+                    if let (0, false, JobRole::Today, Some(hours)) = (
+                        fact,
+                        earners,
+                        self.household.job_roles[instance],
+                        self.partner_hours,
+                    ) {
                         return hours.0;
                     }
                 }
@@ -117,10 +143,20 @@ pub fn fact_text(ty: &FactType, value: i64) -> String {
     let decimals = |units: i64, least: usize| {
         let places = if units == 10_000 { 4 } else { 2 };
         let text = crate::num::Fraction::new(i128::from(value), i128::from(units)).decimal(places);
-        let Some((whole, part)) = text.split_once('.') else { return text };
+        let Some((whole, part)) = text.split_once('.') else {
+            return text;
+        };
         let kept = part.trim_end_matches('0');
-        let kept = if kept.len() < least { &part[..least] } else { kept };
-        if kept.is_empty() { whole.to_owned() } else { format!("{whole}.{kept}") }
+        let kept = if kept.len() < least {
+            &part[..least]
+        } else {
+            kept
+        };
+        if kept.is_empty() {
+            whole.to_owned()
+        } else {
+            format!("{whole}.{kept}")
+        }
     };
     match ty {
         FactType::Money(_) => decimals(ty.units(), 2),
@@ -133,6 +169,10 @@ pub fn fact_text(ty: &FactType, value: i64) -> String {
             .and_then(chrono::NaiveDate::from_epoch_days)
             .map_or_else(String::new, |d| d.format("%Y-%m-%d").to_string()),
         FactType::YesNo => if value == 0 { "no" } else { "yes" }.to_owned(),
-        FactType::Choice(words) => usize::try_from(value).ok().and_then(|at| words.get(at)).cloned().unwrap_or_default(),
+        FactType::Choice(words) => usize::try_from(value)
+            .ok()
+            .and_then(|at| words.get(at))
+            .cloned()
+            .unwrap_or_default(),
     }
 }

@@ -36,21 +36,41 @@ impl Special<'_> {
                 reached[reg.position()] = true;
                 let mut want = |r: &Reg| here[r.position()] = true;
                 match &step.op {
-                    Op::Choose { when, then, otherwise } => {
+                    Op::Choose {
+                        when,
+                        then,
+                        otherwise,
+                    } => {
                         want(when);
-                        want(if values[when.position()] != 0 { then } else { otherwise });
+                        want(if values[when.position()] != 0 {
+                            then
+                        } else {
+                            otherwise
+                        });
                     }
                     // Nothing times something rests on the nothing alone.
-                    Op::Multiply(a, b) if values[a.position()] == 0 && values[b.position()] != 0 => want(a),
-                    Op::Multiply(a, b) if values[b.position()] == 0 && values[a.position()] != 0 => want(b),
+                    Op::Multiply(a, b)
+                        if values[a.position()] == 0 && values[b.position()] != 0 =>
+                    {
+                        want(a)
+                    }
+                    Op::Multiply(a, b)
+                        if values[b.position()] == 0 && values[a.position()] != 0 =>
+                    {
+                        want(b)
+                    }
                     Op::Both(a, _) if values[a.position()] == 0 => want(a),
                     Op::Either(a, _) if values[a.position()] != 0 => want(a),
                     // A fixed limit that did not bite reached nothing.
                     Op::Smaller(a, b) | Op::Larger(a, b) => {
                         let code = &self.machine.exact[reg.position()];
                         let a_wins = match code {
-                            Code::Smaller { a, by_a, b, by_b } => values[*a] * by_a <= values[*b] * by_b,
-                            Code::Larger { a, by_a, b, by_b } => values[*a] * by_a >= values[*b] * by_b,
+                            Code::Smaller { a, by_a, b, by_b } => {
+                                values[*a] * by_a <= values[*b] * by_b
+                            }
+                            Code::Larger { a, by_a, b, by_b } => {
+                                values[*a] * by_a >= values[*b] * by_b
+                            }
                             _ => unreachable!("a step and its code do the same"),
                         };
                         let fixed = |r: &Reg| matches!(program.steps[*r].op, Op::Constant(_));
@@ -62,7 +82,9 @@ impl Special<'_> {
                         }
                     }
                     // Nothing lies above the limit here, so neither the limit nor the rate reached anything.
-                    Op::Times(a, _) if values[a.position()] == 0 && matches!(program.steps[*a].op, Op::Larger(..)) => {}
+                    Op::Times(a, _)
+                        if values[a.position()] == 0
+                            && matches!(program.steps[*a].op, Op::Larger(..)) => {}
                     Op::Times(a, _) => {
                         want(a);
                         step.factor.iter().for_each(&mut want);
@@ -82,7 +104,11 @@ impl Special<'_> {
                     | Op::Round { .. }
                     | Op::Divide { .. }
                     | Op::Lookup { .. }
-                    | Op::Years { .. } => super::walk::operands(&self.machine.exact[reg.position()], &mut |r| here[r] = true),
+                    | Op::Years { .. } => {
+                        super::walk::operands(&self.machine.exact[reg.position()], &mut |r| {
+                            here[r] = true
+                        })
+                    }
                 }
             }
         }
@@ -93,7 +119,11 @@ impl Special<'_> {
                 continue;
             }
             if let Op::Fact(input) = &step.op {
-                let FactRef { kind, instance, fact } = program.inputs[*input].fact;
+                let FactRef {
+                    kind,
+                    instance,
+                    fact,
+                } = program.inputs[*input].fact;
                 used.facts.insert((kind, instance, fact));
             }
             lines.extend(step.line.map(Id::position));
@@ -103,9 +133,15 @@ impl Special<'_> {
             let line = &program.lines[Id::new(at)];
             for amount in &line.amounts {
                 let name = &program.amounts[*amount].name;
-                let reg = line.inputs.iter().find(|e| e.name == *name).map(|e| e.reg.position());
+                let reg = line
+                    .inputs
+                    .iter()
+                    .find(|e| e.name == *name)
+                    .map(|e| e.reg.position());
                 if reg.is_none_or(|r| reached[r] || !self.machine.read[r]) {
-                    used.amounts.entry(amount.position()).or_insert_with(|| line.part.clone());
+                    used.amounts
+                        .entry(amount.position())
+                        .or_insert_with(|| line.part.clone());
                 }
             }
         }

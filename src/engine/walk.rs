@@ -65,15 +65,25 @@ impl<'m> Special<'m> {
     /// Walks from zero hours to `up_to`.
     pub fn walk(&self, up_to: Fraction) -> Walk {
         let steady: Vec<Poly> = self.values.iter().map(|v| [*v, 0, 0]).collect();
-        let mut walker =
-            Walker { special: self, polys: steady.clone(), before: steady, turning: Vec::new(), next: up_to, end: up_to };
+        let mut walker = Walker {
+            special: self,
+            polys: steady.clone(),
+            before: steady,
+            turning: Vec::new(),
+            next: up_to,
+            end: up_to,
+        };
         walker.run()
     }
 }
 
 impl Walker<'_, '_> {
     fn run(&mut self) -> Walk {
-        let mut walk = Walk { pieces: Vec::new(), bends: Vec::new(), passes: 0 };
+        let mut walk = Walk {
+            pieces: Vec::new(),
+            bends: Vec::new(),
+            passes: 0,
+        };
         let mut here = Fraction::ZERO;
         self.pass(here, Side::At);
         self.before.clone_from(&self.polys);
@@ -83,8 +93,12 @@ impl Walker<'_, '_> {
             self.pass(here, Side::Right);
             walk.passes += 1;
             let curves = self.curves();
-            let changed: Vec<usize> =
-                (0..curves.len()).filter(|k| walk.pieces.is_empty() && curves[*k].at(here) != last[*k].at(here) || !walk.pieces.is_empty() && !curves[*k].same(&last[*k])).collect();
+            let changed: Vec<usize> = (0..curves.len())
+                .filter(|k| {
+                    walk.pieces.is_empty() && curves[*k].at(here) != last[*k].at(here)
+                        || !walk.pieces.is_empty() && !curves[*k].same(&last[*k])
+                })
+                .collect();
             let starts = walk.pieces.is_empty();
             let joins = !starts && changed.is_empty();
             if !changed.is_empty() {
@@ -92,14 +106,26 @@ impl Walker<'_, '_> {
                 let after = std::mem::take(&mut self.turning);
                 let next = self.next;
                 let right = self.polys.clone();
-                let values = if starts { last.iter().map(|c| c.at(here)).collect() } else { self.values_at(here) };
+                let values = if starts {
+                    last.iter().map(|c| c.at(here)).collect()
+                } else {
+                    self.values_at(here)
+                };
                 self.polys = right;
                 (self.turning, self.next) = (after, next);
-                walk.bends.push(Bend { at: here, values, causes });
+                walk.bends.push(Bend {
+                    at: here,
+                    values,
+                    causes,
+                });
             }
             match walk.pieces.last_mut() {
                 Some(piece) if joins => piece.to = self.next,
-                _ => walk.pieces.push(Piece { from: here, to: self.next, items: curves.clone() }),
+                _ => walk.pieces.push(Piece {
+                    from: here,
+                    to: self.next,
+                    items: curves.clone(),
+                }),
             }
             if self.next >= self.end {
                 return walk;
@@ -118,8 +144,15 @@ impl Walker<'_, '_> {
             .items
             .iter()
             .map(|item| {
-                let scale = if item.kind == ItemKind::Passport { 1 } else { program.steps[item.reg].scale.smooth };
-                Curve { c: self.polys[item.reg.position()], scale }
+                let scale = if item.kind == ItemKind::Passport {
+                    1
+                } else {
+                    program.steps[item.reg].scale.smooth
+                };
+                Curve {
+                    c: self.polys[item.reg.position()],
+                    scale,
+                }
             })
             .collect()
     }
@@ -148,7 +181,9 @@ impl Walker<'_, '_> {
             {
                 lines.push(line);
             }
-            operands(&self.special.machine.smooth[*at], &mut |reg| wanted[reg] = true);
+            operands(&self.special.machine.smooth[*at], &mut |reg| {
+                wanted[reg] = true
+            });
         }
         lines.sort();
         lines
@@ -168,7 +203,11 @@ impl Walker<'_, '_> {
     /// The builder's bounds hold for the sum of the sizes of a polynomial's terms up to 168 hours, so nothing here can wrap.
     fn scaled(&self, reg: usize, by: i128) -> Poly {
         let p = &self.polys[reg];
-        if by == 1 { *p } else { p.map(|c| c.wrapping_mul(by)) }
+        if by == 1 {
+            *p
+        } else {
+            p.map(|c| c.wrapping_mul(by))
+        }
     }
 
     /// Sign of a difference at or right of the place, noting where it next changes.
@@ -198,25 +237,70 @@ impl Walker<'_, '_> {
             }
             Code::Hours => [0, 100, 0],
             Code::Add { a, by_a, b, by_b } => sum(&self.scaled(*a, *by_a), &self.scaled(*b, *by_b)),
-            Code::Subtract { a, by_a, b, by_b } => difference(&self.scaled(*a, *by_a), &self.scaled(*b, *by_b)),
+            Code::Subtract { a, by_a, b, by_b } => {
+                difference(&self.scaled(*a, *by_a), &self.scaled(*b, *by_b))
+            }
             Code::Multiply { a, b } => product(&self.polys[*a], &self.polys[*b]),
             Code::Times { a, by } => self.scaled(*a, *by),
             Code::Smaller { a, by_a, b, by_b } => {
                 let (x, y) = (self.scaled(*a, *by_a), self.scaled(*b, *by_b));
-                if self.sign(at, &difference(&x, &y), here, side) == Ordering::Greater { y } else { x }
+                if self.sign(at, &difference(&x, &y), here, side) == Ordering::Greater {
+                    y
+                } else {
+                    x
+                }
             }
             Code::Larger { a, by_a, b, by_b } => {
                 let (x, y) = (self.scaled(*a, *by_a), self.scaled(*b, *by_b));
-                if self.sign(at, &difference(&x, &y), here, side) == Ordering::Less { y } else { x }
+                if self.sign(at, &difference(&x, &y), here, side) == Ordering::Less {
+                    y
+                } else {
+                    x
+                }
             }
-            Code::Choose { when, then, by_then, otherwise, by_otherwise } => {
-                if self.polys[*when][0] != 0 { self.scaled(*then, *by_then) } else { self.scaled(*otherwise, *by_otherwise) }
+            Code::Choose {
+                when,
+                then,
+                by_then,
+                otherwise,
+                by_otherwise,
+            } => {
+                if self.polys[*when][0] != 0 {
+                    self.scaled(*then, *by_then)
+                } else {
+                    self.scaled(*otherwise, *by_otherwise)
+                }
             }
-            Code::Round { a, manner: Manner::Minor | Manner::Slope, .. } => self.polys[*a],
-            Code::Round { a, numerator, denominator, unit, direction, manner: Manner::Steps } => {
-                self.stairs(at, *a, *numerator, *denominator, *unit, *direction, here, side)
-            }
-            Code::Divide { a, b, numerator, denominator, unit, direction } => {
+            Code::Round {
+                a,
+                manner: Manner::Minor | Manner::Slope,
+                ..
+            } => self.polys[*a],
+            Code::Round {
+                a,
+                numerator,
+                denominator,
+                unit,
+                direction,
+                manner: Manner::Steps,
+            } => self.stairs(
+                at,
+                *a,
+                *numerator,
+                *denominator,
+                *unit,
+                *direction,
+                here,
+                side,
+            ),
+            Code::Divide {
+                a,
+                b,
+                numerator,
+                denominator,
+                unit,
+                direction,
+            } => {
                 let by = (self.special.values[*b] * denominator).max(1);
                 self.stairs(at, *a, *numerator, by, *unit, *direction, here, side)
             }
@@ -240,7 +324,17 @@ impl Walker<'_, '_> {
 
     /// A staircase: the step that holds at or right of the place, turning at the next step either way.
     #[expect(clippy::too_many_arguments, reason = "the parts of one rounding")]
-    fn stairs(&mut self, at: usize, a: usize, numerator: i128, denominator: i128, unit: i128, direction: Direction, here: Fraction, side: Side) -> Poly {
+    fn stairs(
+        &mut self,
+        at: usize,
+        a: usize,
+        numerator: i128,
+        denominator: i128,
+        unit: i128,
+        direction: Direction,
+        here: Fraction,
+        side: Side,
+    ) -> Poly {
         // In units: x(h) = c(h) × numerator / (denominator × q²) with h = p/q.
         let c = self.polys[a];
         let x = Curve { c, scale: 1 }.at(here) * Fraction::new(numerator, denominator);
@@ -256,21 +350,43 @@ impl Walker<'_, '_> {
         let on_edge = shifted.denominator() == 1;
         let rising = {
             let first = sign_at(&[c[1], 2 * c[2], 0], here);
-            if first == Ordering::Equal { c[2].cmp(&0) } else { first }
+            if first == Ordering::Equal {
+                c[2].cmp(&0)
+            } else {
+                first
+            }
         };
         // The whole number k of the stair: values from k - shift to k + 1 - shift (or, where steps end there, from k - 1 to k).
         // What neither rises nor falls stays on the edge, on the side where the edge itself belongs.
-        let stand = if rising == Ordering::Equal { Side::At } else { side };
+        let stand = if rising == Ordering::Equal {
+            Side::At
+        } else {
+            side
+        };
         let k = match (on_edge, stand, ends) {
             (false, _, false) => shifted.floor(),
             (false, _, true) => shifted.ceil() - if shift.is_zero() { 0 } else { 1 },
             (true, Side::At, false) => {
-                if direction == Direction::HalfEven && shifted.floor().rem_euclid(2) == 1 { shifted.floor() - 1 } else { shifted.floor() }
+                if direction == Direction::HalfEven && shifted.floor().rem_euclid(2) == 1 {
+                    shifted.floor() - 1
+                } else {
+                    shifted.floor()
+                }
             }
             (true, Side::At, true) => shifted.floor() - if shift.is_zero() { 0 } else { 1 },
-            (true, Side::Right, false) => if rising == Ordering::Less { shifted.floor() - 1 } else { shifted.floor() },
+            (true, Side::Right, false) => {
+                if rising == Ordering::Less {
+                    shifted.floor() - 1
+                } else {
+                    shifted.floor()
+                }
+            }
             (true, Side::Right, true) => {
-                let top = if rising == Ordering::Greater { shifted.floor() + 1 } else { shifted.floor() };
+                let top = if rising == Ordering::Greater {
+                    shifted.floor() + 1
+                } else {
+                    shifted.floor()
+                };
                 top - if shift.is_zero() { 0 } else { 1 }
             }
         };
@@ -305,13 +421,22 @@ fn difference(x: &Poly, y: &Poly) -> Poly {
 }
 
 fn product(x: &Poly, y: &Poly) -> Poly {
-    [x[0] * y[0], x[0] * y[1] + x[1] * y[0], x[0] * y[2] + x[1] * y[1] + x[2] * y[0]]
+    [
+        x[0] * y[0],
+        x[0] * y[1] + x[1] * y[0],
+        x[0] * y[2] + x[1] * y[1] + x[2] * y[0],
+    ]
 }
 
 /// Whether a step can turn.
 fn is_branch(code: &Code) -> bool {
     match code {
-        Code::Smaller { .. } | Code::Larger { .. } | Code::AtLeast { .. } | Code::Above { .. } | Code::Same { .. } | Code::Divide { .. } => true,
+        Code::Smaller { .. }
+        | Code::Larger { .. }
+        | Code::AtLeast { .. }
+        | Code::Above { .. }
+        | Code::Same { .. }
+        | Code::Divide { .. } => true,
         Code::Round { manner, .. } => *manner == Manner::Steps,
         Code::Constant(_)
         | Code::Fact(_)
@@ -349,7 +474,12 @@ pub(super) fn operands(code: &Code, call: &mut dyn FnMut(usize)) {
             call(*b);
         }
         Code::Times { a, .. } | Code::Round { a, .. } | Code::Not { a } => call(*a),
-        Code::Choose { when, then, otherwise, .. } => {
+        Code::Choose {
+            when,
+            then,
+            otherwise,
+            ..
+        } => {
             call(*when);
             call(*then);
             call(*otherwise);

@@ -34,7 +34,12 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
     special.fill(hours, &mut values);
     let program = special.program();
     let needed = needed(special);
-    let mut lines: Vec<&Line> = program.lines.iter_with_id().filter(|(id, _)| needed.contains(&id.position())).map(|(_, l)| l).collect();
+    let mut lines: Vec<&Line> = program
+        .lines
+        .iter_with_id()
+        .filter(|(id, _)| needed.contains(&id.position()))
+        .map(|(_, l)| l)
+        .collect();
     lines.sort_by_key(|l| (l.order, l.instance));
     let exact = |reg: Reg| Fraction::new(values[reg.position()], program.steps[reg].scale.exact);
     lines
@@ -43,12 +48,20 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
             let reg = line.reg?;
             Some(Worked {
                 part: line.part.clone(),
-                name: if line.as_if { format!("{} as if", line.name) } else { line.name.clone() },
+                name: if line.as_if {
+                    format!("{} as if", line.name)
+                } else {
+                    line.name.clone()
+                },
                 of: (line.kind as usize, line.instance as usize),
                 exact: exact(reg),
                 value: shown(exact(reg), &line.unit, &line.words),
                 span: line.span,
-                inputs: line.inputs.iter().map(|e| format!("{} = {}", e.name, shown(exact(e.reg), &e.unit, &e.words))).collect(),
+                inputs: line
+                    .inputs
+                    .iter()
+                    .map(|e| format!("{} = {}", e.name, shown(exact(e.reg), &e.unit, &e.words)))
+                    .collect(),
                 law: line.law.clone(),
                 amounts: line.amounts.iter().map(|a| a.position()).collect(),
             })
@@ -67,14 +80,22 @@ fn needed(special: &Special<'_>) -> BTreeSet<usize> {
         }
     }
     let mut lines = BTreeSet::new();
-    for (reg, step) in program.steps.iter_with_id().collect::<Vec<_>>().into_iter().rev() {
+    for (reg, step) in program
+        .steps
+        .iter_with_id()
+        .collect::<Vec<_>>()
+        .into_iter()
+        .rev()
+    {
         if !wanted[reg.position()] {
             continue;
         }
         if let Some(line) = step.line {
             lines.insert(line.position());
         }
-        super::walk::operands(&special.machine.exact[reg.position()], &mut |r| wanted[r] = true);
+        super::walk::operands(&special.machine.exact[reg.position()], &mut |r| {
+            wanted[r] = true
+        });
     }
     // A line whose register was folded into a constant or is another line's belongs to nobody's steps; it is needed where a
     // needed line names it.
@@ -105,14 +126,25 @@ fn needed(special: &Special<'_>) -> BTreeSet<usize> {
 /// A value with its unit: `1,048.00 a month` is written `1048.00 a month`.
 fn shown(value: Fraction, unit: &str, words: &[String]) -> String {
     if !words.is_empty() {
-        return usize::try_from(value.floor()).ok().and_then(|at| words.get(at)).cloned().unwrap_or_default();
+        return usize::try_from(value.floor())
+            .ok()
+            .and_then(|at| words.get(at))
+            .cloned()
+            .unwrap_or_default();
     }
     let trimmed = |places: u32| {
         let text = value.decimal(places);
-        if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.').to_owned() } else { text }
+        if text.contains('.') {
+            text.trim_end_matches('0').trim_end_matches('.').to_owned()
+        } else {
+            text
+        }
     };
     match unit {
-        "date" => super::fact_text(&crate::case::FactType::Date, i64::try_from(value.floor()).unwrap_or(0)),
+        "date" => super::fact_text(
+            &crate::case::FactType::Date,
+            i64::try_from(value.floor()).unwrap_or(0),
+        ),
         "yesno" => if value.is_zero() { "no" } else { "yes" }.to_owned(),
         "rate" => {
             let percent = value * Fraction::whole(100);
@@ -123,7 +155,11 @@ fn shown(value: Fraction, unit: &str, words: &[String]) -> String {
         "money" => value.decimal(2),
         _ if unit.starts_with("money") => {
             let exact_pennies = (value * Fraction::whole(100)).denominator() == 1;
-            format!("{} {}", value.decimal(if exact_pennies { 2 } else { 6 }), &unit[6..])
+            format!(
+                "{} {}",
+                value.decimal(if exact_pennies { 2 } else { 6 }),
+                &unit[6..]
+            )
         }
         _ => trimmed(6),
     }

@@ -25,37 +25,73 @@ pub fn check_pack(pack: &PackFiles) -> Result<Pack, (Sources, Vec<Diagnostic>)> 
         if line.is_empty() || line.starts_with('#') {
             continue;
         }
-        let place = Span { file: order, start: start as u32, end: (start + line.len()) as u32 };
+        let place = Span {
+            file: order,
+            start: start as u32,
+            end: (start + line.len()) as u32,
+        };
         if pack.files.text(line).is_none() {
-            let fault = Diagnostic::fault(place, format!("there is no file `{line}`")).expected("a `.rules` file of the pack");
-            let near = nearest(line, pack.files.texts().map(|(name, _)| name).filter(|name| name.ends_with(".rules")));
+            let fault = Diagnostic::fault(place, format!("there is no file `{line}`"))
+                .expected("a `.rules` file of the pack");
+            let near = nearest(
+                line,
+                pack.files
+                    .texts()
+                    .map(|(name, _)| name)
+                    .filter(|name| name.ends_with(".rules")),
+            );
             faults.push(match near {
                 Some(near) => fault.hint(format!("did you mean `{near}`?")),
                 None => fault,
             });
         } else if names.iter().any(|n| n == line) {
-            faults.push(Diagnostic::fault(place, format!("`{line}` stands twice")).expected("each `.rules` file once"));
+            faults.push(
+                Diagnostic::fault(place, format!("`{line}` stands twice"))
+                    .expected("each `.rules` file once"),
+            );
         } else {
             names.push(line.to_owned());
         }
     }
     for (name, _) in pack.files.texts() {
         if name.ends_with(".rules") && !names.iter().any(|n| n == name) {
-            faults.push(Diagnostic::general(format!("`{name}` does not stand in `order.txt`")).expected("each `.rules` file once, in the order of the law"));
+            faults.push(
+                Diagnostic::general(format!("`{name}` does not stand in `order.txt`"))
+                    .expected("each `.rules` file once, in the order of the law"),
+            );
         }
     }
-    let rules = names.iter().map(|name| sources.add(name.clone(), text(name))).collect();
-    let amounts = pack.files.text("amounts.csv").map(|text| sources.add("amounts.csv", text));
+    let rules = names
+        .iter()
+        .map(|name| sources.add(name.clone(), text(name)))
+        .collect();
+    let amounts = pack
+        .files
+        .text("amounts.csv")
+        .map(|text| sources.add("amounts.csv", text));
     let (mut tables, mut labels) = (Vec::new(), Vec::new());
     for (name, text) in pack.files.texts() {
-        if let Some(table) = name.strip_prefix("tables/").and_then(|n| n.strip_suffix(".csv")) {
+        if let Some(table) = name
+            .strip_prefix("tables/")
+            .and_then(|n| n.strip_suffix(".csv"))
+        {
             tables.push((table.to_owned(), sources.add(name, text)));
         }
-        if let Some(language) = name.strip_prefix("labels.").and_then(|n| n.strip_suffix(".csv")) {
+        if let Some(language) = name
+            .strip_prefix("labels.")
+            .and_then(|n| n.strip_suffix(".csv"))
+        {
             labels.push((language.to_owned(), sources.add(name, text)));
         }
     }
-    let result = check(PackTexts { sources, manifest, rules, amounts, tables, labels });
+    let result = check(PackTexts {
+        sources,
+        manifest,
+        rules,
+        amounts,
+        tables,
+        labels,
+    });
     match result {
         Ok(pack) if faults.is_empty() => Ok(pack),
         Ok(pack) => Err((pack.sources, faults)),
@@ -71,14 +107,20 @@ pub fn schema_of(pack: &Pack) -> Schema {
     let kinds = pack
         .kinds
         .iter()
-        .map(|kind| KindSpec { name: kind.name.clone(), owner: kind.owner, facts: kind.facts.iter().map(fact).collect() })
+        .map(|kind| KindSpec {
+            name: kind.name.clone(),
+            owner: kind.owner,
+            facts: kind.facts.iter().map(fact).collect(),
+        })
         .collect();
     Schema { kinds }
 }
 
 fn fact(decl: &FactDecl) -> FactSpec {
     let ty = match &decl.kind {
-        FactKind::Money(period) => FactType::Money(period.map_or_else(String::new, |p| p.word().to_owned())),
+        FactKind::Money(period) => {
+            FactType::Money(period.map_or_else(String::new, |p| p.word().to_owned()))
+        }
         FactKind::Rate => FactType::Rate,
         FactKind::Hours => FactType::Hours,
         FactKind::Number => FactType::Number,
@@ -89,9 +131,22 @@ fn fact(decl: &FactDecl) -> FactSpec {
     };
     let scaled = |value: Fraction| {
         let units = value * Fraction::whole(i128::from(ty.units()));
-        i64::try_from(units.floor()).unwrap_or(if units.is_negative() { i64::MIN } else { i64::MAX })
+        i64::try_from(units.floor()).unwrap_or(if units.is_negative() {
+            i64::MIN
+        } else {
+            i64::MAX
+        })
     };
     let (min, max) = (scaled(decl.range.0), scaled(decl.range.1));
-    let need = decl.default.map_or(Need::Required, |value| Need::Default(scaled(value)));
-    FactSpec { name: decl.name.clone(), min, max, need, ask: decl.ask.clone(), ty }
+    let need = decl
+        .default
+        .map_or(Need::Required, |value| Need::Default(scaled(value)));
+    FactSpec {
+        name: decl.name.clone(),
+        min,
+        max,
+        need,
+        ask: decl.ask.clone(),
+        ty,
+    }
 }

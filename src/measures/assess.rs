@@ -4,7 +4,10 @@ use super::couple::couple;
 use super::line::{Asked, Worked, work_out};
 use super::points::{Sums, Totals, point};
 use super::split::{Quarters, rise};
-use super::types::{AmountUse, Assessment, EarnerResult, FactUse, ItemInfo, JobTerms, OfferMeasures, Unclaimed, WorkingLine};
+use super::types::{
+    AmountUse, Assessment, EarnerResult, FactUse, ItemInfo, JobTerms, OfferMeasures, Unclaimed,
+    WorkingLine,
+};
 use crate::case::{ADULT, Household, Instance, JOB, Known, Schema};
 use crate::engine::{JobChoice, Machine, Setting, Special, Used, fact_text, working};
 use crate::num::{Hours, Money};
@@ -34,7 +37,11 @@ pub struct Request {
 
 impl Default for Request {
     fn default() -> Self {
-        Request { grid_to: Hours::whole(48), grid_step: Hours::whole(1), more: Hours::whole(4) }
+        Request {
+            grid_to: Hours::whole(48),
+            grid_step: Hours::whole(1),
+            more: Hours::whole(4),
+        }
     }
 }
 
@@ -66,7 +73,9 @@ pub fn assess(
     let mut unclaimed = Vec::new();
     let mut gathered = Gathered::default();
     for adult in 0..household.instances[ADULT].len() {
-        let Some(setting) = Setting::new(household, adult, JobChoice::Today) else { continue };
+        let Some(setting) = Setting::new(household, adult, JobChoice::Today) else {
+            continue;
+        };
         let machine = programs.machine(&setting.shape)?;
         let program = machine.program();
         let special = machine.special(&setting.facts(program));
@@ -75,7 +84,9 @@ pub fn assess(
         add_new(&mut notes, special.notes(today));
         // An offer has facts of its own, which the rules may not cover either.
         for (offer, _) in offers_of(household, adult) {
-            let Some(other) = Setting::new(household, adult, JobChoice::Offer(offer)) else { continue };
+            let Some(other) = Setting::new(household, adult, JobChoice::Offer(offer)) else {
+                continue;
+            };
             let special = machine.special(&other.facts(program));
             add_new(&mut reasons, special.holds(other.own_hours()));
             add_new(&mut notes, special.notes(other.own_hours()));
@@ -86,10 +97,22 @@ pub fn assess(
         if items.is_empty() {
             items = item_infos(&special);
             table = couple(household, &machine);
-            unclaimed = special.unclaimed(today).into_iter().map(|(item, due)| Unclaimed { item, due }).collect();
+            unclaimed = special
+                .unclaimed(today)
+                .into_iter()
+                .map(|(item, due)| Unclaimed { item, due })
+                .collect();
             gathered.add(&special, &special.used(&[Hours(0), today]));
         }
-        if let Some(result) = earner(household, &machine, &special, &setting, request, wanted, &mut gathered) {
+        if let Some(result) = earner(
+            household,
+            &machine,
+            &special,
+            &setting,
+            request,
+            wanted,
+            &mut gathered,
+        ) {
             earners.push(result);
         }
     }
@@ -97,12 +120,25 @@ pub fn assess(
         return Ok(Verdict::Held(reasons));
     }
     let (facts, amounts) = gathered.finish(household, schema);
-    Ok(Verdict::Assessed(Box::new(Assessment { reference: household.reference.clone(), items, earners, couple: table, unclaimed, notes, facts, amounts })))
+    Ok(Verdict::Assessed(Box::new(Assessment {
+        reference: household.reference.clone(),
+        items,
+        earners,
+        couple: table,
+        unclaimed,
+        notes,
+        facts,
+        amounts,
+    })))
 }
 
 /// The offers of an adult, with their positions in the household.
 fn offers_of(household: &Household, adult: usize) -> impl Iterator<Item = (usize, &Instance)> {
-    household.offers.iter().enumerate().filter(move |(_, offer)| offer.owner == adult)
+    household
+        .offers
+        .iter()
+        .enumerate()
+        .filter(move |(_, offer)| offer.owner == adult)
 }
 
 /// Adds what is not there yet.
@@ -134,7 +170,10 @@ fn item_infos(special: &Special<'_>) -> Vec<ItemInfo> {
 
 /// Hours of the grid: from 0 by the step, with every named number of hours in it.
 fn grid(request: &Request, up_to: Hours, named: &[Hours]) -> Vec<Hours> {
-    let mut hours: Vec<Hours> = (0..).map(|n| Hours(n * request.grid_step.0.max(1))).take_while(|h| *h <= up_to).collect();
+    let mut hours: Vec<Hours> = (0..)
+        .map(|n| Hours(n * request.grid_step.0.max(1)))
+        .take_while(|h| *h <= up_to)
+        .collect();
     hours.extend(named);
     hours.push(up_to);
     hours.sort_unstable();
@@ -160,45 +199,106 @@ fn earner(
     }
     let sums = Sums::new(special, setting.shape.earner);
     // Y(0): all jobs of the earner ended.
-    let further = household.instances[JOB].iter().filter(|job| job.owner == adult).count() > 1;
+    let further = household.instances[JOB]
+        .iter()
+        .filter(|job| job.owner == adult)
+        .count()
+        > 1;
     let mut values = Vec::new();
     let zero_items = if further {
-        machine.special(&setting.clone().without_further_jobs().facts(machine.program())).at(Hours(0), &mut values)
+        machine
+            .special(
+                &setting
+                    .clone()
+                    .without_further_jobs()
+                    .facts(machine.program()),
+            )
+            .at(Hours(0), &mut values)
     } else {
         special.at(Hours(0), &mut values)
     };
     let at_zero: Totals = sums.totals(&zero_items);
     let not_in_work = point(&sums, Hours(0), zero_items, &at_zero, None);
     let offered = offers.iter().map(|o| Hours(household.offers[*o].values[0]));
-    let named: Vec<Hours> = offered.chain([today, Hours(today.0 + request.more.0)]).map(|h| Hours(h.0.min(16_800))).collect();
+    let named: Vec<Hours> = offered
+        .chain([today, Hours(today.0 + request.more.0)])
+        .map(|h| Hours(h.0.min(16_800)))
+        .collect();
     let widest = named.iter().copied().max().unwrap_or_default();
-    let up_to = request.grid_to.max(Hours(widest.0.div_euclid(100) * 100 + if widest.0 % 100 == 0 { 0 } else { 100 }));
+    let up_to = request.grid_to.max(Hours(
+        widest.0.div_euclid(100) * 100 + if widest.0 % 100 == 0 { 0 } else { 100 },
+    ));
     let hours = grid(request, up_to, &named);
     let mut lines: Vec<Worked> = Vec::new();
     let mut target_hours = None;
     if has_job {
-        let terms = JobTerms { offer: String::new(), reference: String::new(), wage: setting.wage(), hours: today };
+        let terms = JobTerms {
+            offer: String::new(),
+            reference: String::new(),
+            wage: setting.wage(),
+            hours: today,
+        };
         let step_to = Hours((today.0 + request.more.0).min(16_800));
-        lines.push(work_out(special, setting, Asked { terms, grid: &hours, step_to, up_to, at_zero: &at_zero }));
+        lines.push(work_out(
+            special,
+            setting,
+            Asked {
+                terms,
+                grid: &hours,
+                step_to,
+                up_to,
+                at_zero: &at_zero,
+            },
+        ));
         gathered.add_line(special, lines.last());
         target_hours = wanted.map(|sum| Quarters::new(special, &sums, up_to).target(sum));
     }
     let mut measures = Vec::new();
     for offer in offers {
-        let Some(other) = Setting::new(household, adult, JobChoice::Offer(offer)) else { continue };
+        let Some(other) = Setting::new(household, adult, JobChoice::Offer(offer)) else {
+            continue;
+        };
         let special = machine.special(&other.facts(machine.program()));
         let record = &household.offers[offer];
         let own = other.own_hours();
-        let terms = JobTerms { offer: offer_words(record, measures.len() + 1), reference: record.reference.clone(), wage: other.wage(), hours: own };
-        let worked = work_out(&special, &other, Asked { terms, grid: &hours, step_to: own, up_to, at_zero: &at_zero });
+        let terms = JobTerms {
+            offer: offer_words(record, measures.len() + 1),
+            reference: record.reference.clone(),
+            wage: other.wage(),
+            hours: own,
+        };
+        let worked = work_out(
+            &special,
+            &other,
+            Asked {
+                terms,
+                grid: &hours,
+                step_to: own,
+                up_to,
+                at_zero: &at_zero,
+            },
+        );
         gathered.add_line(&special, Some(&worked));
         let mut quarters = Quarters::new(&special, &sums, up_to);
         if target_hours.is_none() {
             target_hours = wanted.map(|sum| quarters.target(sum));
         }
-        let kept = lines.first().filter(|_| has_job).map_or(not_in_work.after_costs, |line| line.line.grid[line.line.own].after_costs);
-        let split = if has_job { lines.first().and_then(|old| rise(old, &worked, today)) } else { None };
-        measures.push(OfferMeasures { line: lines.len(), holding: quarters.stays(kept), rise: split });
+        let kept = lines
+            .first()
+            .filter(|_| has_job)
+            .map_or(not_in_work.after_costs, |line| {
+                line.line.grid[line.line.own].after_costs
+            });
+        let split = if has_job {
+            lines.first().and_then(|old| rise(old, &worked, today))
+        } else {
+            None
+        };
+        measures.push(OfferMeasures {
+            line: lines.len(),
+            holding: quarters.stays(kept),
+            rise: split,
+        });
         lines.push(worked);
     }
     Some(EarnerResult {
@@ -247,15 +347,28 @@ impl Gathered {
         self.facts.extend(used.facts.iter().copied());
         for (at, part) in &used.amounts {
             let amount = special.amount(*at);
-            self.amounts.entry(amount.name.clone()).or_insert_with(|| amount_use(amount, part));
+            self.amounts
+                .entry(amount.name.clone())
+                .or_insert_with(|| amount_use(amount, part));
         }
     }
 
     /// Adds what a whole line rests on: each stretch between turning points by its first hours, and the points named.
     fn add_line(&mut self, special: &Special<'_>, worked: Option<&Worked>) {
-        let Some(Worked { line, .. }) = worked else { return };
-        let mut hours: Vec<Hours> = line.turns.iter().map(|turn| turn.hours.min(line.up_to)).collect();
-        hours.extend([Hours(0), line.grid[line.own].hours, line.grid[line.step_to].hours, line.up_to]);
+        let Some(Worked { line, .. }) = worked else {
+            return;
+        };
+        let mut hours: Vec<Hours> = line
+            .turns
+            .iter()
+            .map(|turn| turn.hours.min(line.up_to))
+            .collect();
+        hours.extend([
+            Hours(0),
+            line.grid[line.own].hours,
+            line.grid[line.step_to].hours,
+            line.up_to,
+        ]);
         hours.sort_unstable();
         hours.dedup();
         self.add(special, &special.used(&hours));
@@ -279,11 +392,25 @@ impl Gathered {
                     return None;
                 }
                 let spec = &schema.kinds[kind].facts[fact];
-                let owner = if kind == JOB { household.instances[ADULT].get(record.owner) } else { Some(record) };
-                let of = owner.map_or("", |r| if r.label.is_empty() { r.reference.as_str() } else { r.label.as_str() });
+                let owner = if kind == JOB {
+                    household.instances[ADULT].get(record.owner)
+                } else {
+                    Some(record)
+                };
+                let of = owner.map_or("", |r| {
+                    if r.label.is_empty() {
+                        r.reference.as_str()
+                    } else {
+                        r.label.as_str()
+                    }
+                });
                 Some(FactUse {
                     kind: schema.kinds[kind].name.clone(),
-                    of: if kind == crate::case::HOUSEHOLD { String::new() } else { of.to_owned() },
+                    of: if kind == crate::case::HOUSEHOLD {
+                        String::new()
+                    } else {
+                        of.to_owned()
+                    },
                     name: spec.name.clone(),
                     value: fact_text(&spec.ty, record.values[fact]),
                     known: match record.known[fact] {
@@ -311,16 +438,34 @@ pub fn working_at(
     hours: Hours,
     rule: &dyn Fn(crate::source::Span) -> String,
 ) -> Result<Vec<WorkingLine>, String> {
-    let setting = Setting::new(household, adult, choice).ok_or_else(|| "there is no such adult or offer".to_owned())?;
+    let setting = Setting::new(household, adult, choice)
+        .ok_or_else(|| "there is no such adult or offer".to_owned())?;
     let machine = programs.machine(&setting.shape)?;
     let special = machine.special(&setting.facts(machine.program()));
     Ok(working(&special, hours)
         .into_iter()
         .map(|line| {
             let (kind, instance) = line.of;
-            let of = if kind == crate::case::HOUSEHOLD { String::new() } else { format!("{} {}", schema.kinds[kind].name, instance + 1) };
-            let amounts = line.amounts.iter().map(|at| amount_use(special.amount(*at), &line.part)).collect();
-            WorkingLine { part: line.part, name: line.name, of, value: line.value, formula: rule(line.span), inputs: line.inputs, law: line.law, amounts }
+            let of = if kind == crate::case::HOUSEHOLD {
+                String::new()
+            } else {
+                format!("{} {}", schema.kinds[kind].name, instance + 1)
+            };
+            let amounts = line
+                .amounts
+                .iter()
+                .map(|at| amount_use(special.amount(*at), &line.part))
+                .collect();
+            WorkingLine {
+                part: line.part,
+                name: line.name,
+                of,
+                value: line.value,
+                formula: rule(line.span),
+                inputs: line.inputs,
+                law: line.law,
+                amounts,
+            }
         })
         .collect())
 }

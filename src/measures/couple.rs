@@ -21,7 +21,11 @@ pub(super) fn couple(household: &Household, machine: &Machine) -> Option<CoupleT
         return None;
     }
     let hours = |setting: &Setting<'_>| {
-        let mut hours: Vec<Hours> = HOURS.iter().map(|h| Hours::whole(*h)).chain([setting.own_hours()]).collect();
+        let mut hours: Vec<Hours> = HOURS
+            .iter()
+            .map(|h| Hours::whole(*h))
+            .chain([setting.own_hours()])
+            .collect();
         hours.sort_unstable();
         hours.dedup();
         hours
@@ -31,7 +35,12 @@ pub(super) fn couple(household: &Household, machine: &Machine) -> Option<CoupleT
     let mut after_costs = net.clone();
     let mut values = Vec::new();
     for column in &columns {
-        let special = machine.special(&first.clone().with_partner_at(*column).facts(machine.program()));
+        let special = machine.special(
+            &first
+                .clone()
+                .with_partner_at(*column)
+                .facts(machine.program()),
+        );
         let sums = Sums::new(&special, 0);
         for (row, hours) in rows.iter().enumerate() {
             let totals = sums.totals(&special.at(*hours, &mut values));
@@ -39,5 +48,11 @@ pub(super) fn couple(household: &Household, machine: &Machine) -> Option<CoupleT
             after_costs[row].push(totals.after_costs);
         }
     }
-    Some(CoupleTable { own: (first.own_hours(), second.own_hours()), first: rows, second: columns, net, after_costs })
+    Some(CoupleTable {
+        own: (first.own_hours(), second.own_hours()),
+        first: rows,
+        second: columns,
+        net,
+        after_costs,
+    })
 }

@@ -27,7 +27,11 @@ pub(super) struct Asked<'a> {
 pub(super) fn work_out(special: &Special<'_>, setting: &Setting<'_>, asked: Asked<'_>) -> Worked {
     let sums = Sums::new(special, setting.shape.earner);
     let walk = special.walk(asked.up_to.as_fraction());
-    let stretches: Vec<Stretch> = walk.pieces.iter().map(|piece| Stretch::new(&sums, piece)).collect();
+    let stretches: Vec<Stretch> = walk
+        .pieces
+        .iter()
+        .map(|piece| Stretch::new(&sums, piece))
+        .collect();
     let mut values = Vec::new();
     let mut at = 0;
     let mut grid = Vec::with_capacity(asked.grid.len());
@@ -42,11 +46,23 @@ pub(super) fn work_out(special: &Special<'_>, setting: &Setting<'_>, asked: Aske
         let stretch = stretches.get(at).filter(|s| here < s.to);
         grid.push(point(&sums, *hours, items, asked.at_zero, stretch));
     }
-    let place = |hours: Hours| asked.grid.iter().position(|h| *h == hours).expect("the grid holds the job's own hours");
+    let place = |hours: Hours| {
+        asked
+            .grid
+            .iter()
+            .position(|h| *h == hours)
+            .expect("the grid holds the job's own hours")
+    };
     let (own, step_to) = (place(asked.terms.hours), place(asked.step_to));
     let first = stretches.first();
     let leading = |s: &Stretch| if has_costs { s.after_costs } else { s.net };
-    let zero = grid.first().map_or(Fraction::ZERO, |p| if has_costs { p.after_costs.in_units() } else { p.net.in_units() });
+    let zero = grid.first().map_or(Fraction::ZERO, |p| {
+        if has_costs {
+            p.after_costs.in_units()
+        } else {
+            p.net.in_units()
+        }
+    });
     let line = BudgetLine {
         first_minute: first.map_or(Money::ZERO, |s| minor(s.net.at(s.from))),
         turns: turns(special, &sums, &walk, &stretches),
@@ -97,5 +113,9 @@ fn segments(sums: &Sums, walk: &Walk, stretches: &[Stretch]) -> Vec<Segment> {
 
 /// For a segment of the second degree the intercept is that of the tangent at its start: V = Y(h) − Y′(h) h = c0 − c2 h².
 fn virtual_shift(s: &Stretch) -> Fraction {
-    if s.net.c[2] == 0 { Fraction::ZERO } else { -(Fraction::new(s.net.c[2], s.net.scale) * s.from * s.from) }
+    if s.net.c[2] == 0 {
+        Fraction::ZERO
+    } else {
+        -(Fraction::new(s.net.c[2], s.net.scale) * s.from * s.from)
+    }
 }

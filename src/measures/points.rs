@@ -23,7 +23,15 @@ pub(super) struct Totals {
 
 impl Sums {
     pub(super) fn new(special: &Special<'_>, earner: u32) -> Sums {
-        Sums { kinds: special.program().items.iter().map(|i| (i.kind, i.adult)).collect(), earner }
+        Sums {
+            kinds: special
+                .program()
+                .items
+                .iter()
+                .map(|i| (i.kind, i.adult))
+                .collect(),
+            earner,
+        }
     }
 
     fn mine(&self, adult: Option<u32>) -> bool {
@@ -73,13 +81,25 @@ impl Sums {
     }
 
     fn weighted(&self, piece: &[Curve], weight: impl Fn(ItemKind, Option<u32>) -> i64) -> Curve {
-        let weights: Vec<i64> = self.kinds.iter().map(|(kind, adult)| weight(*kind, *adult)).collect();
-        Curve::total(weights.iter().zip(piece).filter(|(w, _)| **w != 0).map(|(w, c)| (i128::from(*w), c)))
+        let weights: Vec<i64> = self
+            .kinds
+            .iter()
+            .map(|(kind, adult)| weight(*kind, *adult))
+            .collect();
+        Curve::total(
+            weights
+                .iter()
+                .zip(piece)
+                .filter(|(w, _)| **w != 0)
+                .map(|(w, c)| (i128::from(*w), c)),
+        )
     }
 
     /// E as a curve.
     pub(super) fn pay_curve(&self, items: &[Curve]) -> Curve {
-        self.weighted(items, |kind, adult| i64::from(kind == ItemKind::Pay && self.mine(adult)))
+        self.weighted(items, |kind, adult| {
+            i64::from(kind == ItemKind::Pay && self.mine(adult))
+        })
     }
 
     /// Y as a curve.
@@ -89,17 +109,28 @@ impl Sums {
 
     /// After costs as a curve.
     pub(super) fn after_costs_curve(&self, items: &[Curve]) -> Curve {
-        self.weighted(items, |kind, _| if kind == ItemKind::Cost { -1 } else { kind.sign_in_net() })
+        self.weighted(items, |kind, _| {
+            if kind == ItemKind::Cost {
+                -1
+            } else {
+                kind.sign_in_net()
+            }
+        })
     }
 
     /// The earner's own pension payments as a curve.
     pub(super) fn pension_curve(&self, items: &[Curve]) -> Curve {
-        self.weighted(items, |kind, adult| i64::from(kind == ItemKind::Pension && self.mine(adult)))
+        self.weighted(items, |kind, adult| {
+            i64::from(kind == ItemKind::Pension && self.mine(adult))
+        })
     }
 
     /// Whether any item of this kind is above zero.
     pub(super) fn has(&self, kind: ItemKind, items: &[Money]) -> bool {
-        self.kinds.iter().zip(items).any(|((k, _), amount)| *k == kind && amount.0 != 0)
+        self.kinds
+            .iter()
+            .zip(items)
+            .any(|((k, _), amount)| *k == kind && amount.0 != 0)
     }
 }
 
@@ -135,7 +166,9 @@ impl Stretch {
 
 /// Participation tax rate, 1 − [Y(h) − Y(0)] / E(h) (OECD, effective tax rate on entering employment); none without pay.
 pub(super) fn participation_rate(net: Money, net_at_zero: Money, pay: Money) -> Option<Fraction> {
-    (pay.0 > 0).then(|| Fraction::ONE - Fraction::new(i128::from((net - net_at_zero).0), i128::from(pay.0)))
+    (pay.0 > 0).then(|| {
+        Fraction::ONE - Fraction::new(i128::from((net - net_at_zero).0), i128::from(pay.0))
+    })
 }
 
 /// Replacement rate, Y(0) / Y(h); none where Y(h) is not above zero.
@@ -144,7 +177,13 @@ pub(super) fn replacement_rate(net: Money, net_at_zero: Money) -> Option<Fractio
 }
 
 /// A whole point. `stretch` is the one that starts at or before the hours; none on the last point.
-pub(super) fn point(sums: &Sums, hours: Hours, items: Vec<Money>, at_zero: &Totals, stretch: Option<&Stretch>) -> Point {
+pub(super) fn point(
+    sums: &Sums,
+    hours: Hours,
+    items: Vec<Money>,
+    at_zero: &Totals,
+    stretch: Option<&Stretch>,
+) -> Point {
     let t = sums.totals(&items);
     let here = hours.as_fraction();
     Point {

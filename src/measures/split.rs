@@ -17,23 +17,39 @@ pub(super) struct Quarters<'a, 'm> {
 
 impl<'a, 'm> Quarters<'a, 'm> {
     pub(super) fn new(special: &'a Special<'m>, sums: &'a Sums, up_to: Hours) -> Self {
-        Quarters { special, sums, last: up_to.0 / 25, values: Vec::new() }
+        Quarters {
+            special,
+            sums,
+            last: up_to.0 / 25,
+            values: Vec::new(),
+        }
     }
 
     fn left(&mut self, quarter: i64) -> Money {
-        self.sums.totals(&self.special.at(Hours(quarter * 25), &mut self.values)).after_costs
+        self.sums
+            .totals(&self.special.at(Hours(quarter * 25), &mut self.values))
+            .after_costs
     }
 
     /// The fewest quarter hours from which a sum stays reached to the end of the line; for what is left today they are the holding hours.
     pub(super) fn stays(&mut self, sum: Money) -> Option<Hours> {
-        let below = (0..=self.last).rev().find(|quarter| self.left(*quarter) < sum).map_or(0, |at| at + 1);
+        let below = (0..=self.last)
+            .rev()
+            .find(|quarter| self.left(*quarter) < sum)
+            .map_or(0, |at| at + 1);
         (below <= self.last).then_some(Hours(below * 25))
     }
 
     /// Target hours for a sum.
     pub(super) fn target(&mut self, sum: Money) -> TargetHours {
-        let first = (0..=self.last).find(|quarter| self.left(*quarter) >= sum).map(|at| Hours(at * 25));
-        TargetHours { sum, first, stays: self.stays(sum) }
+        let first = (0..=self.last)
+            .find(|quarter| self.left(*quarter) >= sum)
+            .map(|at| Hours(at * 25));
+        TargetHours {
+            sum,
+            first,
+            stays: self.stays(sum),
+        }
     }
 }
 
@@ -45,9 +61,28 @@ fn stretch_at(stretches: &[Stretch], at: Fraction) -> Option<&Stretch> {
 /// (methods section 10.3 gives κ; no behaviour is predicted).
 pub(super) fn rise(old: &Worked, new: &Worked, today: Hours) -> Option<RiseSplit> {
     let at = today.as_fraction();
-    let (before, after) = (stretch_at(&old.stretches, at)?, stretch_at(&new.stretches, at)?);
-    let net = |worked: &Worked| worked.line.grid.iter().find(|p| p.hours == today).map(|p| p.net);
+    let (before, after) = (
+        stretch_at(&old.stretches, at)?,
+        stretch_at(&new.stretches, at)?,
+    );
+    let net = |worked: &Worked| {
+        worked
+            .line
+            .grid
+            .iter()
+            .find(|p| p.hours == today)
+            .map(|p| p.net)
+    };
     let near = Fraction::new(1, 100);
-    let fragile = old.line.turns.iter().chain(&new.line.turns).any(|t| t.at - at <= near && at - t.at <= near);
-    Some(RiseSplit { price: after.net.slope(at) - before.net.slope(at), income: net(new)? - net(old)?, fragile })
+    let fragile = old
+        .line
+        .turns
+        .iter()
+        .chain(&new.line.turns)
+        .any(|t| t.at - at <= near && at - t.at <= near);
+    Some(RiseSplit {
+        price: after.net.slope(at) - before.net.slope(at),
+        income: net(new)? - net(old)?,
+        fragile,
+    })
 }

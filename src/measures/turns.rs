@@ -6,8 +6,16 @@ use crate::engine::{Bend, Special, Walk};
 use crate::num::{Fraction, Hours, Money};
 
 /// All turning points of a walk.
-pub(super) fn turns(special: &Special<'_>, sums: &Sums, walk: &Walk, stretches: &[Stretch]) -> Vec<Turn> {
-    walk.bends.iter().filter_map(|bend| turn(special, sums, walk, stretches, bend)).collect()
+pub(super) fn turns(
+    special: &Special<'_>,
+    sums: &Sums,
+    walk: &Walk,
+    stretches: &[Stretch],
+) -> Vec<Turn> {
+    walk.bends
+        .iter()
+        .filter_map(|bend| turn(special, sums, walk, stretches, bend))
+        .collect()
 }
 
 /// A sum in currency units as whole minor units, half up.
@@ -20,11 +28,19 @@ pub(super) fn hours_up(at: Fraction) -> Hours {
     Hours(i64::try_from((at * Fraction::whole(100)).ceil()).expect("hours are bounded"))
 }
 
-fn turn(special: &Special<'_>, sums: &Sums, walk: &Walk, stretches: &[Stretch], bend: &Bend) -> Option<Turn> {
+fn turn(
+    special: &Special<'_>,
+    sums: &Sums,
+    walk: &Walk,
+    stretches: &[Stretch],
+    bend: &Bend,
+) -> Option<Turn> {
     let at = bend.at;
     let right_at = walk.pieces.iter().position(|p| p.from == at)?;
     let (right, right_piece) = (&stretches[right_at], &walk.pieces[right_at]);
-    let left = right_at.checked_sub(1).map(|l| (&stretches[l], &walk.pieces[l]));
+    let left = right_at
+        .checked_sub(1)
+        .map(|l| (&stretches[l], &walk.pieces[l]));
     let mut effects = Vec::new();
     let (mut jump_net, mut jump_costs) = (Fraction::ZERO, Fraction::ZERO);
     let same_pay = left.is_some_and(|(s, _)| s.pay.slope(at) == right.pay.slope(at));
@@ -42,16 +58,26 @@ fn turn(special: &Special<'_>, sums: &Sums, walk: &Walk, stretches: &[Stretch], 
         let jump = after.at(at) - before_value;
         if kind == ItemKind::Passport {
             if !jump.is_zero() {
-                effects.push(Effect { item, jump: Money(if jump.is_negative() { -1 } else { 1 }), slope: Fraction::ZERO });
+                effects.push(Effect {
+                    item,
+                    jump: Money(if jump.is_negative() { -1 } else { 1 }),
+                    slope: Fraction::ZERO,
+                });
             }
             continue;
         }
         let per_pay = |stretch: &Stretch, slope: Fraction| {
             let pay = stretch.pay.slope(at);
-            if pay.is_zero() { Fraction::ZERO } else { slope / pay }
+            if pay.is_zero() {
+                Fraction::ZERO
+            } else {
+                slope / pay
+            }
         };
         let slope = match left {
-            Some((stretch, piece)) => per_pay(right, after.slope(at)) - per_pay(stretch, piece.items[item].slope(at)),
+            Some((stretch, piece)) => {
+                per_pay(right, after.slope(at)) - per_pay(stretch, piece.items[item].slope(at))
+            }
             None => Fraction::ZERO,
         };
         match kind {
@@ -60,14 +86,24 @@ fn turn(special: &Special<'_>, sums: &Sums, walk: &Walk, stretches: &[Stretch], 
             _ => jump_net = jump_net + jump * sign,
         }
         if !jump.is_zero() || !slope.is_zero() {
-            effects.push(Effect { item, jump: minor(jump * sign), slope: slope * sign });
+            effects.push(Effect {
+                item,
+                jump: minor(jump * sign),
+                slope: slope * sign,
+            });
         }
     }
     let half_minor = Fraction::new(1, 200);
     let jumps = |value: Fraction| value > half_minor || value < -half_minor;
-    let (metr_before, metr_after) = (left.and_then(|(s, _)| s.metr(&s.net, at)), right.metr(&right.net, at));
-    let costs_slope = left.is_some_and(|(s, _)| s.metr(&s.after_costs, at) != right.metr(&right.after_costs, at));
-    let passport = effects.iter().any(|e| sums.kind(e.item) == ItemKind::Passport);
+    let (metr_before, metr_after) = (
+        left.and_then(|(s, _)| s.metr(&s.net, at)),
+        right.metr(&right.net, at),
+    );
+    let costs_slope =
+        left.is_some_and(|(s, _)| s.metr(&s.after_costs, at) != right.metr(&right.after_costs, at));
+    let passport = effects
+        .iter()
+        .any(|e| sums.kind(e.item) == ItemKind::Passport);
     let kind = if jumps(jump_net) {
         TurnKind::Cliff
     } else if jumps(jump_costs) {
@@ -83,7 +119,10 @@ fn turn(special: &Special<'_>, sums: &Sums, walk: &Walk, stretches: &[Stretch], 
     let mut causes: Vec<Cause> = bend
         .causes
         .iter()
-        .map(|line| Cause { part: program.lines[*line].part.clone(), line: program.lines[*line].name.clone() })
+        .map(|line| Cause {
+            part: program.lines[*line].part.clone(),
+            line: program.lines[*line].name.clone(),
+        })
         .collect();
     causes.sort();
     causes.dedup();
@@ -98,7 +137,11 @@ fn turn(special: &Special<'_>, sums: &Sums, walk: &Walk, stretches: &[Stretch], 
         net_after: print.after.0,
         after_costs_before: print.before.1,
         after_costs_after: print.after.1,
-        size: if kind == TurnKind::Cliff { print.after.0 - print.before.0 } else { Money::ZERO },
+        size: if kind == TurnKind::Cliff {
+            print.after.0 - print.before.0
+        } else {
+            Money::ZERO
+        },
         metr_before,
         metr_after,
         causes,
@@ -119,10 +162,19 @@ const WINDOW: i128 = 400;
 
 /// What is printed of a turning point, from exact evaluations. A jump is printed at the first payable whole-penny pay from which the
 /// new branch stays: from there on exact values are nearer to the right curve than to the left one.
-fn printed(special: &Special<'_>, sums: &Sums, bend: &Bend, left: Option<&Stretch>, right: &Stretch, kind: TurnKind) -> Printed {
+fn printed(
+    special: &Special<'_>,
+    sums: &Sums,
+    bend: &Bend,
+    left: Option<&Stretch>,
+    right: &Stretch,
+    kind: TurnKind,
+) -> Printed {
     let at = bend.at;
     let smooth = || {
-        let before = left.map_or((right.net.at(at), right.after_costs.at(at)), |s| (s.net.at(at), s.after_costs.at(at)));
+        let before = left.map_or((right.net.at(at), right.after_costs.at(at)), |s| {
+            (s.net.at(at), s.after_costs.at(at))
+        });
         Printed {
             hours: hours_up(at),
             pay: minor(right.pay.at(at)),
@@ -133,7 +185,10 @@ fn printed(special: &Special<'_>, sums: &Sums, bend: &Bend, left: Option<&Stretc
     let slope = right.pay.slope(at);
     let start = Fraction::new(right.pay.c[0], right.pay.scale);
     // Pay is a straight line in hours except where a pack makes it of the second degree.
-    if slope.is_zero() || right.pay.c[2] != 0 || left.is_some_and(|s| s.pay.at(at) != right.pay.at(at)) {
+    if slope.is_zero()
+        || right.pay.c[2] != 0
+        || left.is_some_and(|s| s.pay.at(at) != right.pay.at(at))
+    {
         return smooth();
     }
     let exact = |pence: i128| -> Option<(Fraction, (Money, Money))> {
@@ -152,7 +207,12 @@ fn printed(special: &Special<'_>, sums: &Sums, bend: &Bend, left: Option<&Stretc
     let place = (right.pay.at(at) * Fraction::whole(100)).ceil();
     if kind == TurnKind::Kink || kind == TurnKind::Passport {
         return match exact(place) {
-            Some((hours, sums)) => Printed { hours: hours_up(hours), pay: Money(place as i64), before: sums, after: sums },
+            Some((hours, sums)) => Printed {
+                hours: hours_up(hours),
+                pay: Money(place as i64),
+                before: sums,
+                after: sums,
+            },
             None => smooth(),
         };
     }
@@ -162,10 +222,24 @@ fn printed(special: &Special<'_>, sums: &Sums, bend: &Bend, left: Option<&Stretc
     });
     let measured = |t: (Money, Money)| if kind == TurnKind::CostStep { t.1 } else { t.0 };
     let is_new = |pence: i128| -> bool {
-        let Some((hours, found)) = exact(pence) else { return false };
-        let curve = |s: &Stretch| if kind == TurnKind::CostStep { s.after_costs.at(hours) } else { s.net.at(hours) };
+        let Some((hours, found)) = exact(pence) else {
+            return false;
+        };
+        let curve = |s: &Stretch| {
+            if kind == TurnKind::CostStep {
+                s.after_costs.at(hours)
+            } else {
+                s.net.at(hours)
+            }
+        };
         let value = measured(found).in_units();
-        let distance = |other: Fraction| if value > other { value - other } else { other - value };
+        let distance = |other: Fraction| {
+            if value > other {
+                value - other
+            } else {
+                other - value
+            }
+        };
         let old = match (left, before_at_zero) {
             (Some(s), _) => curve(s),
             (None, Some(zero)) => measured(zero).in_units(),
@@ -189,9 +263,13 @@ fn printed(special: &Special<'_>, sums: &Sums, bend: &Bend, left: Option<&Stretc
         }
     }
     match (exact(pence), before_at_zero, exact(pence - 1)) {
-        (Some((hours, after)), Some(before), _) | (Some((hours, after)), None, Some((_, before))) => {
-            Printed { hours: hours_up(hours), pay: Money(pence as i64), before, after }
-        }
+        (Some((hours, after)), Some(before), _)
+        | (Some((hours, after)), None, Some((_, before))) => Printed {
+            hours: hours_up(hours),
+            pay: Money(pence as i64),
+            before,
+            after,
+        },
         _ => smooth(),
     }
 }

@@ -99,15 +99,25 @@ impl Fraction {
     pub fn checked_add(self, other: Fraction) -> Option<Fraction> {
         let common = gcd(self.denominator, other.denominator);
         let (left, right) = (other.denominator / common, self.denominator / common);
-        let numerator = (self.numerator.checked_mul(left)?).checked_add(other.numerator.checked_mul(right)?)?;
-        Some(Fraction::new(numerator, self.denominator.checked_mul(left)?))
+        let numerator =
+            (self.numerator.checked_mul(left)?).checked_add(other.numerator.checked_mul(right)?)?;
+        Some(Fraction::new(
+            numerator,
+            self.denominator.checked_mul(left)?,
+        ))
     }
 
     /// The product, or none where it does not fit.
     pub fn checked_mul(self, other: Fraction) -> Option<Fraction> {
-        let (first, second) = (gcd(self.numerator, other.denominator).max(1), gcd(other.numerator, self.denominator).max(1));
+        let (first, second) = (
+            gcd(self.numerator, other.denominator).max(1),
+            gcd(other.numerator, self.denominator).max(1),
+        );
         let numerator = (self.numerator / first).checked_mul(other.numerator / second)?;
-        Some(Fraction::new(numerator, (self.denominator / second).checked_mul(other.denominator / first)?))
+        Some(Fraction::new(
+            numerator,
+            (self.denominator / second).checked_mul(other.denominator / first)?,
+        ))
     }
 
     /// The point half way to the other.
@@ -209,11 +219,17 @@ impl Ord for Fraction {
     fn cmp(&self, other: &Self) -> Ordering {
         let common = gcd(self.denominator, other.denominator);
         let (left, right) = (other.denominator / common, self.denominator / common);
-        if let (Some(a), Some(b)) = (self.numerator.checked_mul(left), other.numerator.checked_mul(right)) {
+        if let (Some(a), Some(b)) = (
+            self.numerator.checked_mul(left),
+            other.numerator.checked_mul(right),
+        ) {
             return a.cmp(&b);
         }
         // Whole parts first, then what is left, turned over: nothing grows, so nothing can overflow.
-        let (mut a, mut b) = ((self.numerator, self.denominator), (other.numerator, other.denominator));
+        let (mut a, mut b) = (
+            (self.numerator, self.denominator),
+            (other.numerator, other.denominator),
+        );
         loop {
             let wholes = a.0.div_euclid(a.1).cmp(&b.0.div_euclid(b.1));
             if wholes != Ordering::Equal {
@@ -264,16 +280,48 @@ mod tests {
     fn any_two_compare() {
         let huge = i128::MAX;
         let t = |a: Fraction, b: Fraction, expected: Ordering| {
-            assert_eq!((a.cmp(&b), b.cmp(&a)), (expected, expected.reverse()), "{a:?} {b:?}");
+            assert_eq!(
+                (a.cmp(&b), b.cmp(&a)),
+                (expected, expected.reverse()),
+                "{a:?} {b:?}"
+            );
         };
         // 1 − 1/n grows with n.
-        t(Fraction::new(huge - 2, huge - 1), Fraction::new(huge - 1, huge), Ordering::Less);
-        t(Fraction::new(-huge + 2, huge - 1), Fraction::new(-huge + 1, huge), Ordering::Greater);
-        t(Fraction::new(huge, huge - 1), Fraction::new(huge - 1, huge), Ordering::Greater);
-        t(Fraction::new(huge, 3), Fraction::new(huge, 2), Ordering::Less);
-        t(Fraction::new(huge, 2), Fraction::new(huge, 2), Ordering::Equal);
-        t(Fraction::new(huge, 2), Fraction::whole(huge / 2), Ordering::Greater);
-        t(Fraction::new(-1, huge), Fraction::new(1, huge - 1), Ordering::Less);
+        t(
+            Fraction::new(huge - 2, huge - 1),
+            Fraction::new(huge - 1, huge),
+            Ordering::Less,
+        );
+        t(
+            Fraction::new(-huge + 2, huge - 1),
+            Fraction::new(-huge + 1, huge),
+            Ordering::Greater,
+        );
+        t(
+            Fraction::new(huge, huge - 1),
+            Fraction::new(huge - 1, huge),
+            Ordering::Greater,
+        );
+        t(
+            Fraction::new(huge, 3),
+            Fraction::new(huge, 2),
+            Ordering::Less,
+        );
+        t(
+            Fraction::new(huge, 2),
+            Fraction::new(huge, 2),
+            Ordering::Equal,
+        );
+        t(
+            Fraction::new(huge, 2),
+            Fraction::whole(huge / 2),
+            Ordering::Greater,
+        );
+        t(
+            Fraction::new(-1, huge),
+            Fraction::new(1, huge - 1),
+            Ordering::Less,
+        );
     }
 
     #[test]
@@ -281,10 +329,19 @@ mod tests {
         let large = Fraction::whole(i128::MAX);
         assert_eq!(large.checked_add(Fraction::ONE), None);
         assert_eq!(large.checked_mul(Fraction::whole(2)), None);
-        assert_eq!(Fraction::new(1, i128::MAX).checked_mul(Fraction::new(1, 2)), None);
+        assert_eq!(
+            Fraction::new(1, i128::MAX).checked_mul(Fraction::new(1, 2)),
+            None
+        );
         // What cancels still fits.
-        assert_eq!(large.checked_mul(Fraction::new(1, i128::MAX)), Some(Fraction::ONE));
-        assert_eq!(Fraction::new(1, 6).checked_add(Fraction::new(1, 3)), Some(Fraction::new(1, 2)));
+        assert_eq!(
+            large.checked_mul(Fraction::new(1, i128::MAX)),
+            Some(Fraction::ONE)
+        );
+        assert_eq!(
+            Fraction::new(1, 6).checked_add(Fraction::new(1, 3)),
+            Some(Fraction::new(1, 2))
+        );
     }
 
     #[test]

@@ -26,7 +26,10 @@ pub fn divide_rounded(numerator: i128, denominator: i128, direction: Direction) 
     // Most numbers are small, and a division of 64 bits is several times faster.
     let (floor, rest) = match (i64::try_from(numerator), i64::try_from(denominator)) {
         (Ok(n), Ok(d)) => (i128::from(n.div_euclid(d)), i128::from(n.rem_euclid(d))),
-        (_, _) => (numerator.div_euclid(denominator), numerator.rem_euclid(denominator)),
+        (_, _) => (
+            numerator.div_euclid(denominator),
+            numerator.rem_euclid(denominator),
+        ),
     };
     if rest == 0 {
         return floor;

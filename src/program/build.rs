@@ -1,6 +1,8 @@
 //! Builds a program step by step, working out scales, bounds and degrees, and folding what is fixed.
 
-use super::{Amount, Guard, Input, Item, Line, Manner, Note, Op, Program, Reg, Scales, Shape, Step, Table};
+use super::{
+    Amount, Guard, Input, Item, Line, Manner, Note, Op, Program, Reg, Scales, Shape, Step, Table,
+};
 use crate::index::{Id, IdVec};
 use crate::num::{Direction, Fraction, divide_rounded};
 use std::collections::HashMap;
@@ -37,7 +39,10 @@ fn scaled(limit: u128, scale: i128) -> Option<u128> {
 }
 
 fn size(value: Fraction) -> u128 {
-    value.numerator().unsigned_abs().div_ceil(value.denominator().unsigned_abs())
+    value
+        .numerator()
+        .unsigned_abs()
+        .div_ceil(value.denominator().unsigned_abs())
 }
 
 impl Builder {
@@ -162,7 +167,14 @@ impl Builder {
         self.step(reg).varies
     }
 
-    fn push(&mut self, op: Op, scale: Option<Scales>, limit: Option<u128>, degree: u8, varies: bool) -> Reg {
+    fn push(
+        &mut self,
+        op: Op,
+        scale: Option<Scales>,
+        limit: Option<u128>,
+        degree: u8,
+        varies: bool,
+    ) -> Reg {
         let fits = match (scale, limit) {
             (Some(scale), Some(limit)) => [scale.exact, scale.smooth]
                 .iter()
@@ -172,10 +184,21 @@ impl Builder {
         if !fits {
             self.overflow();
         }
-        let scale = scale.unwrap_or(Scales { exact: 1, smooth: 1 });
+        let scale = scale.unwrap_or(Scales {
+            exact: 1,
+            smooth: 1,
+        });
         let shared = matches!(op, Op::Constant(_) | Op::Fact(_) | Op::Hours);
         let line = if shared { None } else { self.line };
-        self.program.steps.push(Step { op, scale, limit: limit.unwrap_or(0), degree, varies, line, factor: None })
+        self.program.steps.push(Step {
+            op,
+            scale,
+            limit: limit.unwrap_or(0),
+            degree,
+            varies,
+            line,
+            factor: None,
+        })
     }
 
     /// A fixed number that was worked out; none where it did not fit.
@@ -202,7 +225,16 @@ impl Builder {
             return *reg;
         }
         let scale = value.denominator();
-        let reg = self.push(Op::Constant(value), Some(Scales { exact: scale, smooth: scale }), Some(size(value)), 0, false);
+        let reg = self.push(
+            Op::Constant(value),
+            Some(Scales {
+                exact: scale,
+                smooth: scale,
+            }),
+            Some(size(value)),
+            0,
+            false,
+        );
         self.constants.insert(value, reg);
         reg
     }
@@ -217,9 +249,22 @@ impl Builder {
         if let Some(reg) = self.facts.get(&fact) {
             return *reg;
         }
-        let id = self.program.inputs.push(Input { fact, units, reg: Id::new(0) });
+        let id = self.program.inputs.push(Input {
+            fact,
+            units,
+            reg: Id::new(0),
+        });
         let scale = i128::from(units);
-        let reg = self.push(Op::Fact(id), Some(Scales { exact: scale, smooth: scale }), Some(limit), 0, false);
+        let reg = self.push(
+            Op::Fact(id),
+            Some(Scales {
+                exact: scale,
+                smooth: scale,
+            }),
+            Some(limit),
+            0,
+            false,
+        );
         self.program.inputs[id].reg = reg;
         self.facts.insert(fact, reg);
         reg
@@ -230,14 +275,26 @@ impl Builder {
         if let Some(reg) = self.hours {
             return reg;
         }
-        let reg = self.push(Op::Hours, Some(Scales { exact: 100, smooth: 100 }), Some(MOST_HOURS), 1, true);
+        let reg = self.push(
+            Op::Hours,
+            Some(Scales {
+                exact: 100,
+                smooth: 100,
+            }),
+            Some(MOST_HOURS),
+            1,
+            true,
+        );
         self.hours = Some(reg);
         reg
     }
 
     fn joint_scale(&self, a: Reg, b: Reg) -> Option<Scales> {
         let (a, b) = (self.step(a).scale, self.step(b).scale);
-        Some(Scales { exact: common(a.exact, b.exact)?, smooth: common(a.smooth, b.smooth)? })
+        Some(Scales {
+            exact: common(a.exact, b.exact)?,
+            smooth: common(a.smooth, b.smooth)?,
+        })
     }
 
     fn pair(&mut self, op: Op, a: Reg, b: Reg, limit: impl Fn(u128, u128) -> Option<u128>) -> Reg {
@@ -255,11 +312,23 @@ impl Builder {
             Op::AtLeast(a, b) | Op::Above(a, b) | Op::Same(a, b) => {
                 let joint = self.joint_scale(a, b);
                 let limit = self.step(a).limit.max(self.step(b).limit).max(1);
-                joint.filter(|s| [s.exact, s.smooth].iter().all(|s| limit.checked_mul(s.unsigned_abs()).is_some_and(|v| v >> BITS == 0)))
+                joint.filter(|s| {
+                    [s.exact, s.smooth].iter().all(|s| {
+                        limit
+                            .checked_mul(s.unsigned_abs())
+                            .is_some_and(|v| v >> BITS == 0)
+                    })
+                })
             }
-            _ => Some(Scales { exact: 1, smooth: 1 }),
+            _ => Some(Scales {
+                exact: 1,
+                smooth: 1,
+            }),
         };
-        let scale = scale.map(|_| Scales { exact: 1, smooth: 1 });
+        let scale = scale.map(|_| Scales {
+            exact: 1,
+            smooth: 1,
+        });
         self.push(op, scale, Some(1), 0, varies)
     }
 
@@ -331,7 +400,12 @@ impl Builder {
             let common = crate::num::gcd(by.numerator(), scale);
             (scale / common).checked_mul(by.denominator())
         };
-        let scale = (|| Some(Scales { exact: shrunk(step.scale.exact)?, smooth: shrunk(step.scale.smooth)? }))();
+        let scale = (|| {
+            Some(Scales {
+                exact: shrunk(step.scale.exact)?,
+                smooth: shrunk(step.scale.smooth)?,
+            })
+        })();
         let limit = step
             .limit
             .checked_mul(by.numerator().unsigned_abs())
@@ -370,7 +444,17 @@ impl Builder {
         let (w, x, y) = (self.step(when), self.step(then), self.step(otherwise));
         let limit = x.limit.max(y.limit);
         let (degree, varies) = (x.degree.max(y.degree), w.varies || x.varies || y.varies);
-        self.push(Op::Choose { when, then, otherwise }, scale, Some(limit), degree, varies)
+        self.push(
+            Op::Choose {
+                when,
+                then,
+                otherwise,
+            },
+            scale,
+            Some(limit),
+            degree,
+            varies,
+        )
     }
 
     /// The multiple of a unit.
@@ -395,36 +479,87 @@ impl Builder {
             Manner::Minor | Manner::Slope if step.varies => step.scale.smooth,
             Manner::Minor | Manner::Slope => unit.denominator(),
         };
-        let scale = Some(Scales { exact: unit.denominator(), smooth });
+        let scale = Some(Scales {
+            exact: unit.denominator(),
+            smooth,
+        });
         // What is rounded is first brought to the unit, and must fit there too.
         let units = [step.scale.exact, step.scale.smooth].iter().all(|scale| {
             let common = crate::num::gcd(unit.denominator(), *scale).unsigned_abs();
             let by = unit.denominator().unsigned_abs() / common;
-            let below = (scale.unsigned_abs() / common).checked_mul(unit.numerator().unsigned_abs());
-            below.is_some_and(|b| b >> BITS == 0) && scaled(step.limit, *scale).and_then(|n| n.checked_mul(by)).is_some_and(|n| n >> BITS == 0)
+            let below =
+                (scale.unsigned_abs() / common).checked_mul(unit.numerator().unsigned_abs());
+            below.is_some_and(|b| b >> BITS == 0)
+                && scaled(step.limit, *scale)
+                    .and_then(|n| n.checked_mul(by))
+                    .is_some_and(|n| n >> BITS == 0)
         });
         let limit = step.limit.checked_add(size(unit)).filter(|_| units);
-        let degree = if manner == Manner::Steps { 0 } else { step.degree };
+        let degree = if manner == Manner::Steps {
+            0
+        } else {
+            step.degree
+        };
         let varies = step.varies;
-        self.push(Op::Round { of, unit, direction, manner }, scale, limit, degree, varies)
+        self.push(
+            Op::Round {
+                of,
+                unit,
+                direction,
+                manner,
+            },
+            scale,
+            limit,
+            degree,
+            varies,
+        )
     }
 
     /// A quotient rounded at once. The divisor is above zero and does not vary with hours.
     pub fn divide(&mut self, of: Reg, by: Reg, unit: Fraction, direction: Direction) -> Reg {
-        let scale = Some(Scales { exact: unit.denominator(), smooth: unit.denominator() });
+        let scale = Some(Scales {
+            exact: unit.denominator(),
+            smooth: unit.denominator(),
+        });
         // A divisor above zero is at least one of its smallest units.
         let (of_step, by_step) = (self.step(of), self.step(by));
         let units = (|| {
-            let above = by_step.scale.exact.unsigned_abs().checked_mul(unit.denominator().unsigned_abs())?;
-            let below = of_step.scale.exact.unsigned_abs().checked_mul(unit.numerator().unsigned_abs())?;
-            let fits = |limit: u128, scale: i128, by: u128| scaled(limit, scale).and_then(|n| n.checked_mul(by)).filter(|n| n >> BITS == 0);
+            let above = by_step
+                .scale
+                .exact
+                .unsigned_abs()
+                .checked_mul(unit.denominator().unsigned_abs())?;
+            let below = of_step
+                .scale
+                .exact
+                .unsigned_abs()
+                .checked_mul(unit.numerator().unsigned_abs())?;
+            let fits = |limit: u128, scale: i128, by: u128| {
+                scaled(limit, scale)
+                    .and_then(|n| n.checked_mul(by))
+                    .filter(|n| n >> BITS == 0)
+            };
             fits(of_step.limit, of_step.scale.exact, above)?;
             fits(by_step.limit, by_step.scale.exact, below)
         })();
-        let limit = of_step.limit.checked_mul(by_step.scale.exact.unsigned_abs()).and_then(|l| l.checked_add(size(unit)));
+        let limit = of_step
+            .limit
+            .checked_mul(by_step.scale.exact.unsigned_abs())
+            .and_then(|l| l.checked_add(size(unit)));
         let limit = limit.filter(|_| units.is_some());
         let varies = self.varies(of);
-        self.push(Op::Divide { of, by, unit, direction }, scale, limit, 0, varies)
+        self.push(
+            Op::Divide {
+                of,
+                by,
+                unit,
+                direction,
+            },
+            scale,
+            limit,
+            0,
+            varies,
+        )
     }
 
     /// Whether the left is at least the right.
@@ -454,8 +589,20 @@ impl Builder {
     /// Whether both are yes.
     pub fn both(&mut self, a: Reg, b: Reg) -> Reg {
         match (self.fixed(a), self.fixed(b)) {
-            (Some(x), _) => if x.is_zero() { a } else { b },
-            (None, Some(y)) => if y.is_zero() { b } else { a },
+            (Some(x), _) => {
+                if x.is_zero() {
+                    a
+                } else {
+                    b
+                }
+            }
+            (None, Some(y)) => {
+                if y.is_zero() {
+                    b
+                } else {
+                    a
+                }
+            }
             (None, None) => self.truth(Op::Both(a, b), &[a, b]),
         }
     }
@@ -463,8 +610,20 @@ impl Builder {
     /// Whether one is yes.
     pub fn either(&mut self, a: Reg, b: Reg) -> Reg {
         match (self.fixed(a), self.fixed(b)) {
-            (Some(x), _) => if x.is_zero() { b } else { a },
-            (None, Some(y)) => if y.is_zero() { a } else { b },
+            (Some(x), _) => {
+                if x.is_zero() {
+                    b
+                } else {
+                    a
+                }
+            }
+            (None, Some(y)) => {
+                if y.is_zero() {
+                    a
+                } else {
+                    b
+                }
+            }
             (None, None) => self.truth(Op::Either(a, b), &[a, b]),
         }
     }
@@ -480,13 +639,33 @@ impl Builder {
     /// A value of a table.
     pub fn lookup(&mut self, table: Id<Table>, keys: Vec<Reg>) -> Reg {
         let values = &self.program.tables[table].values;
-        let scale = values.iter().try_fold(1i128, |s, v| common(s, v.denominator()));
+        let scale = values
+            .iter()
+            .try_fold(1i128, |s, v| common(s, v.denominator()));
         let limit = values.iter().map(|v| size(*v)).max();
-        self.push(Op::Lookup { table, keys }, scale.map(|s| Scales { exact: s, smooth: s }), limit.or(Some(0)), 0, false)
+        self.push(
+            Op::Lookup { table, keys },
+            scale.map(|s| Scales {
+                exact: s,
+                smooth: s,
+            }),
+            limit.or(Some(0)),
+            0,
+            false,
+        )
     }
 
     /// Full years from one day to another.
     pub fn years(&mut self, from: Reg, to: Reg) -> Reg {
-        self.push(Op::Years { from, to }, Some(Scales { exact: 1, smooth: 1 }), Some(10_000), 0, false)
+        self.push(
+            Op::Years { from, to },
+            Some(Scales {
+                exact: 1,
+                smooth: 1,
+            }),
+            Some(10_000),
+            0,
+            false,
+        )
     }
 }

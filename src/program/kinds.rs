@@ -42,12 +42,25 @@ impl ItemKind {
         ItemKind::Housing,
     ];
     /// The words of the rule language for the kinds.
-    pub const WORDS: [&'static str; 10] =
-        ["pay", "income", "tax", "contribution", "pension", "loan", "benefit", "passport", "cost", "housing"];
+    pub const WORDS: [&'static str; 10] = [
+        "pay",
+        "income",
+        "tax",
+        "contribution",
+        "pension",
+        "loan",
+        "benefit",
+        "passport",
+        "cost",
+        "housing",
+    ];
 
     /// The kind with this word.
     pub fn from_word(word: &str) -> Option<ItemKind> {
-        Self::WORDS.iter().position(|w| *w == word).map(|at| Self::ALL[at])
+        Self::WORDS
+            .iter()
+            .position(|w| *w == word)
+            .map(|at| Self::ALL[at])
     }
 
     /// The word of the rule language.
@@ -67,8 +80,16 @@ impl ItemKind {
     /// Whether it is part of take-home pay.
     pub fn in_take_home(self) -> bool {
         match self {
-            ItemKind::Pay | ItemKind::Tax | ItemKind::Contribution | ItemKind::Pension | ItemKind::Loan => true,
-            ItemKind::Income | ItemKind::Benefit | ItemKind::Passport | ItemKind::Cost | ItemKind::Housing => false,
+            ItemKind::Pay
+            | ItemKind::Tax
+            | ItemKind::Contribution
+            | ItemKind::Pension
+            | ItemKind::Loan => true,
+            ItemKind::Income
+            | ItemKind::Benefit
+            | ItemKind::Passport
+            | ItemKind::Cost
+            | ItemKind::Housing => false,
         }
     }
 }

@@ -28,9 +28,23 @@ impl fmt::Display for Program {
                 Op::Times(a, by) => write!(f, "r{a:?} * {by:?}")?,
                 Op::Smaller(a, b) => write!(f, "smaller of r{a:?}, r{b:?}")?,
                 Op::Larger(a, b) => write!(f, "larger of r{a:?}, r{b:?}")?,
-                Op::Choose { when, then, otherwise } => write!(f, "where r{when:?} give r{then:?} otherwise r{otherwise:?}")?,
-                Op::Round { of, unit, direction, manner } => write!(f, "r{of:?} rounded {direction:?} to {unit:?} as {manner:?}")?,
-                Op::Divide { of, by, unit, direction } => write!(f, "r{of:?} / r{by:?} rounded {direction:?} to {unit:?}")?,
+                Op::Choose {
+                    when,
+                    then,
+                    otherwise,
+                } => write!(f, "where r{when:?} give r{then:?} otherwise r{otherwise:?}")?,
+                Op::Round {
+                    of,
+                    unit,
+                    direction,
+                    manner,
+                } => write!(f, "r{of:?} rounded {direction:?} to {unit:?} as {manner:?}")?,
+                Op::Divide {
+                    of,
+                    by,
+                    unit,
+                    direction,
+                } => write!(f, "r{of:?} / r{by:?} rounded {direction:?} to {unit:?}")?,
                 Op::AtLeast(a, b) => write!(f, "r{a:?} at least r{b:?}")?,
                 Op::Above(a, b) => write!(f, "r{a:?} above r{b:?}")?,
                 Op::Same(a, b) => write!(f, "r{a:?} is r{b:?}")?,
@@ -40,7 +54,11 @@ impl fmt::Display for Program {
                 Op::Lookup { table, keys } => write!(f, "{}{keys:?}", self.tables[*table].name)?,
                 Op::Years { from, to } => write!(f, "years from r{from:?} to r{to:?}")?,
             }
-            writeln!(f, "   [scale {} / {}, degree {}]", step.scale.exact, step.scale.smooth, step.degree)?;
+            writeln!(
+                f,
+                "   [scale {} / {}, degree {}]",
+                step.scale.exact, step.scale.smooth, step.degree
+            )?;
         }
         Ok(())
     }

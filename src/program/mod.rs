@@ -14,4 +14,7 @@ mod step;
 
 pub use build::{Builder, TooLarge};
 pub use kinds::{ItemKind, Shape};
-pub use step::{Amount, Entered, FactRef, Guard, Input, Item, Line, Manner, Note, Op, Program, Reg, Scales, Step, Table};
+pub use step::{
+    Amount, Entered, FactRef, Guard, Input, Item, Line, Manner, Note, Op, Program, Reg, Scales,
+    Step, Table,
+};

@@ -35,17 +35,58 @@ pub(super) struct Statement {
 
 #[derive(Clone, Debug)]
 pub(super) enum StatementKind {
-    Record { name: Ident, owner: Ident },
-    Choice { name: Ident, words: Vec<Ident> },
+    Record {
+        name: Ident,
+        owner: Ident,
+    },
+    Choice {
+        name: Ident,
+        words: Vec<Ident>,
+    },
     Fact(Box<FactStatement>),
-    Conversion { name: Ident, from: Ident, to: Ident, times: Fraction },
-    Table { name: Ident, keys: Vec<Ident>, gives: TypeName },
-    Bands { name: Ident, of: TypeName, bands: Vec<Band> },
-    Scale { name: Ident, of: TypeName, gives: TypeName, steps: Vec<ScaleStep> },
-    Figure { name: Ident, ty: TypeName, expr: Expr, law: Option<String> },
-    Item { name: Ident, kind: ItemKind, expr: Expr, claimed: Option<Expr>, law: String },
-    Hold { when: Expr, because: String },
-    Note { name: Ident, when: Expr },
+    Conversion {
+        name: Ident,
+        from: Ident,
+        to: Ident,
+        times: Fraction,
+    },
+    Table {
+        name: Ident,
+        keys: Vec<Ident>,
+        gives: TypeName,
+    },
+    Bands {
+        name: Ident,
+        of: TypeName,
+        bands: Vec<Band>,
+    },
+    Scale {
+        name: Ident,
+        of: TypeName,
+        gives: TypeName,
+        steps: Vec<ScaleStep>,
+    },
+    Figure {
+        name: Ident,
+        ty: TypeName,
+        expr: Expr,
+        law: Option<String>,
+    },
+    Item {
+        name: Ident,
+        kind: ItemKind,
+        expr: Expr,
+        claimed: Option<Expr>,
+        law: String,
+    },
+    Hold {
+        when: Expr,
+        because: String,
+    },
+    Note {
+        name: Ident,
+        when: Expr,
+    },
 }
 
 #[derive(Clone, Debug)]
@@ -141,25 +182,89 @@ pub(super) enum ExprKind {
     Day(i64),
     YesNo(bool),
     Name(Ident),
-    Of { name: Ident, whose: Ident, failing: Option<Box<Expr>> },
-    Lookup { table: Ident, keys: Vec<Expr> },
-    Where { when: Box<Expr>, give: Box<Expr>, otherwise: Box<Expr> },
-    Extreme { larger: bool, list: Vec<Expr> },
-    SumOver { kind: Ident, with: Option<Box<Expr>>, body: Box<Expr> },
-    CountOf { kind: Ident, with: Option<Box<Expr>> },
-    AnyEvery { every: bool, kind: Ident, with: Box<Expr> },
-    First { kind: Ident, by: Ident, down: bool, with: Option<Box<Expr>>, give: Box<Expr>, failing: Box<Expr> },
-    Place { by: Ident, down: bool, with: Option<Box<Expr>> },
-    Years { from: Box<Expr>, to: Box<Expr> },
+    Of {
+        name: Ident,
+        whose: Ident,
+        failing: Option<Box<Expr>>,
+    },
+    Lookup {
+        table: Ident,
+        keys: Vec<Expr>,
+    },
+    Where {
+        when: Box<Expr>,
+        give: Box<Expr>,
+        otherwise: Box<Expr>,
+    },
+    Extreme {
+        larger: bool,
+        list: Vec<Expr>,
+    },
+    SumOver {
+        kind: Ident,
+        with: Option<Box<Expr>>,
+        body: Box<Expr>,
+    },
+    CountOf {
+        kind: Ident,
+        with: Option<Box<Expr>>,
+    },
+    AnyEvery {
+        every: bool,
+        kind: Ident,
+        with: Box<Expr>,
+    },
+    First {
+        kind: Ident,
+        by: Ident,
+        down: bool,
+        with: Option<Box<Expr>>,
+        give: Box<Expr>,
+        failing: Box<Expr>,
+    },
+    Place {
+        by: Ident,
+        down: bool,
+        with: Option<Box<Expr>>,
+    },
+    Years {
+        from: Box<Expr>,
+        to: Box<Expr>,
+    },
     Missing(Ident),
     /// A figure worked out once more under changed facts.
-    AsIf { name: Ident, changes: Vec<(Ident, Expr)> },
-    Binary { op: BinaryOp, left: Box<Expr>, right: Box<Expr> },
-    Round { of: Box<Expr>, direction: Direction, unit: Fraction, manner: Option<Manner> },
-    Convert { of: Box<Expr>, by: Ident },
-    Charge { of: Box<Expr>, by: Ident },
-    PlaceOn { of: Box<Expr>, on: Ident },
-    Compare { op: CompareOp, left: Box<Expr>, right: Box<Expr> },
+    AsIf {
+        name: Ident,
+        changes: Vec<(Ident, Expr)>,
+    },
+    Binary {
+        op: BinaryOp,
+        left: Box<Expr>,
+        right: Box<Expr>,
+    },
+    Round {
+        of: Box<Expr>,
+        direction: Direction,
+        unit: Fraction,
+        manner: Option<Manner>,
+    },
+    Convert {
+        of: Box<Expr>,
+        by: Ident,
+    },
+    Charge {
+        of: Box<Expr>,
+        by: Ident,
+    },
+    PlaceOn {
+        of: Box<Expr>,
+        on: Ident,
+    },
+    Compare {
+        op: CompareOp,
+        left: Box<Expr>,
+        right: Box<Expr>,
+    },
     Not(Box<Expr>),
     Both(Box<Expr>, Box<Expr>),
     Either(Box<Expr>, Box<Expr>),
@@ -177,17 +282,30 @@ impl ExprKind {
             | ExprKind::YesNo(_)
             | ExprKind::Name(_)
             | ExprKind::Missing(_) => {}
-            ExprKind::Of { failing: one, .. } | ExprKind::CountOf { with: one, .. } | ExprKind::Place { with: one, .. } => {
+            ExprKind::Of { failing: one, .. }
+            | ExprKind::CountOf { with: one, .. }
+            | ExprKind::Place { with: one, .. } => {
                 one.iter().for_each(|e| call(e));
             }
             ExprKind::AsIf { changes, .. } => changes.iter().for_each(|(_, value)| call(value)),
-            ExprKind::Lookup { keys: list, .. } | ExprKind::Extreme { list, .. } => list.iter().for_each(call),
-            ExprKind::Where { when, give, otherwise } => [when, give, otherwise].into_iter().for_each(|e| call(e)),
+            ExprKind::Lookup { keys: list, .. } | ExprKind::Extreme { list, .. } => {
+                list.iter().for_each(call)
+            }
+            ExprKind::Where {
+                when,
+                give,
+                otherwise,
+            } => [when, give, otherwise].into_iter().for_each(|e| call(e)),
             ExprKind::SumOver { with, body, .. } => {
                 with.iter().for_each(|e| call(e));
                 call(body);
             }
-            ExprKind::First { with, give, failing, .. } => {
+            ExprKind::First {
+                with,
+                give,
+                failing,
+                ..
+            } => {
                 with.iter().for_each(|e| call(e));
                 call(give);
                 call(failing);
@@ -199,8 +317,12 @@ impl ExprKind {
             | ExprKind::PlaceOn { of, .. }
             | ExprKind::Not(of) => call(of),
             ExprKind::Years { from: a, to: b }
-            | ExprKind::Binary { left: a, right: b, .. }
-            | ExprKind::Compare { left: a, right: b, .. }
+            | ExprKind::Binary {
+                left: a, right: b, ..
+            }
+            | ExprKind::Compare {
+                left: a, right: b, ..
+            }
             | ExprKind::Both(a, b)
             | ExprKind::Either(a, b) => {
                 call(a);

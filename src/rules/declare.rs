@@ -4,7 +4,9 @@ use super::amounts::AmountDecl;
 use super::ast::{Ident, Part, StatementKind, TypeName};
 use super::bodies::{Body, BodyOf};
 use super::manifest::Manifest;
-use super::pack::{ADULT, CHILD, ChoiceDecl, ConversionDecl, HOUSEHOLD, KindDecl, OTHER, Pack, TableDecl};
+use super::pack::{
+    ADULT, CHILD, ChoiceDecl, ConversionDecl, HOUSEHOLD, KindDecl, OTHER, Pack, TableDecl,
+};
 use super::tree::{BandsDecl, Definition, ScaleDecl};
 use super::types::{Period, Ty};
 use crate::diag::{Diagnostic, nearest};
@@ -17,7 +19,11 @@ pub(super) fn kinds_of_word(kinds: &[KindDecl], word: &str) -> Vec<usize> {
     match word {
         "unit" => vec![HOUSEHOLD],
         "member" => vec![ADULT, CHILD, OTHER],
-        _ => kinds.iter().position(|k| k.name == word).into_iter().collect(),
+        _ => kinds
+            .iter()
+            .position(|k| k.name == word)
+            .into_iter()
+            .collect(),
     }
 }
 
@@ -39,14 +45,28 @@ pub(super) fn declare(
     broken: BTreeSet<String>,
     faults: &mut Vec<Diagnostic>,
 ) -> Pack {
-    let kind = |name: &str, owner| KindDecl { name: name.to_owned(), owner, facts: Vec::new(), span: None };
+    let kind = |name: &str, owner| KindDecl {
+        name: name.to_owned(),
+        owner,
+        facts: Vec::new(),
+        span: None,
+    };
     let pack = Pack {
         manifest,
-        kinds: vec![kind("household", None), kind("adult", Some(0)), kind("child", Some(0)), kind("other", Some(0)), kind("job", Some(ADULT))],
+        kinds: vec![
+            kind("household", None),
+            kind("adult", Some(0)),
+            kind("child", Some(0)),
+            kind("other", Some(0)),
+            kind("job", Some(ADULT)),
+        ],
         labels,
         sources: Sources::new(),
         warnings: Vec::new(),
-        parts: parts.iter().map(|p| (p.title.clone(), p.law.clone())).collect(),
+        parts: parts
+            .iter()
+            .map(|p| (p.title.clone(), p.law.clone()))
+            .collect(),
         choices: Vec::new(),
         conversions: Vec::new(),
         amounts,
@@ -57,8 +77,17 @@ pub(super) fn declare(
         holds: Vec::new(),
         notes: Vec::new(),
     };
-    let broken = parts.iter().flat_map(|p| p.broken.iter().cloned()).chain(broken).collect();
-    let mut declarer = Declarer { pack, faults, spans: HashMap::new(), broken };
+    let broken = parts
+        .iter()
+        .flat_map(|p| p.broken.iter().cloned())
+        .chain(broken)
+        .collect();
+    let mut declarer = Declarer {
+        pack,
+        faults,
+        spans: HashMap::new(),
+        broken,
+    };
     declarer.built_in_facts();
     for part in &parts {
         declarer.kinds_and_choices(part);
@@ -79,7 +108,10 @@ impl Declarer<'_> {
     pub(super) fn fresh(&mut self, space: &str, name: &Ident) -> bool {
         let key = format!("{space}:{}", name.text);
         if self.spans.insert(key, name.span).is_some() {
-            self.faults.push(Diagnostic::fault(name.span, format!("`{}` is declared twice", name.text)).expected("a name of its own"));
+            self.faults.push(
+                Diagnostic::fault(name.span, format!("`{}` is declared twice", name.text))
+                    .expected("a name of its own"),
+            );
             return false;
         }
         true
@@ -87,31 +119,62 @@ impl Declarer<'_> {
 
     fn kinds_and_choices(&mut self, part: &Part) {
         if part.title.is_empty() {
-            self.faults.push(Diagnostic::fault(part.title_span, "this file names no instrument").expected("`part \"…\" dated by …` at its start"));
+            self.faults.push(
+                Diagnostic::fault(part.title_span, "this file names no instrument")
+                    .expected("`part \"…\" dated by …` at its start"),
+            );
         }
         for statement in &part.statements {
             match &statement.what {
                 StatementKind::Record { name, owner } if self.fresh("kind", name) => {
-                    let taken = self.pack.kinds.iter().any(|k| k.name == name.text) || ["unit", "member"].contains(&name.text.as_str());
+                    let taken = self.pack.kinds.iter().any(|k| k.name == name.text)
+                        || ["unit", "member"].contains(&name.text.as_str());
                     if taken {
-                        self.faults.push(Diagnostic::fault(name.span, format!("`{}` is a kind already", name.text)).expected("a name of its own"));
+                        self.faults.push(
+                            Diagnostic::fault(
+                                name.span,
+                                format!("`{}` is a kind already", name.text),
+                            )
+                            .expected("a name of its own"),
+                        );
                     } else if let Some(at) = self.owner(owner) {
-                        self.pack.kinds.push(KindDecl { name: name.text.clone(), owner: Some(at), facts: Vec::new(), span: Some(name.span) });
+                        self.pack.kinds.push(KindDecl {
+                            name: name.text.clone(),
+                            owner: Some(at),
+                            facts: Vec::new(),
+                            span: Some(name.span),
+                        });
                     } else {
                         self.broken.insert(name.text.clone());
                     }
                 }
                 StatementKind::Choice { name, words } if self.fresh("choice", name) => {
                     if Ty::WORDS.contains(&name.text.as_str()) {
-                        self.faults.push(Diagnostic::fault(name.span, format!("`{}` is a type already", name.text)).expected("a name of its own"));
+                        self.faults.push(
+                            Diagnostic::fault(
+                                name.span,
+                                format!("`{}` is a type already", name.text),
+                            )
+                            .expected("a name of its own"),
+                        );
                     }
                     for (at, word) in words.iter().enumerate() {
                         if words[..at].iter().any(|before| before.text == word.text) {
-                            self.faults.push(Diagnostic::fault(word.span, format!("`{}` stands twice", word.text)).expected("each word once"));
+                            self.faults.push(
+                                Diagnostic::fault(
+                                    word.span,
+                                    format!("`{}` stands twice", word.text),
+                                )
+                                .expected("each word once"),
+                            );
                         }
                     }
                     let words = words.iter().map(|w| w.text.clone()).collect();
-                    self.pack.choices.push(ChoiceDecl { name: name.text.clone(), span: name.span, words });
+                    self.pack.choices.push(ChoiceDecl {
+                        name: name.text.clone(),
+                        span: name.span,
+                        words,
+                    });
                 }
                 _ => {}
             }
@@ -127,7 +190,8 @@ impl Declarer<'_> {
                 None
             }
             [..] => {
-                self.faults.push(several(word, "one kind that it belongs to"));
+                self.faults
+                    .push(several(word, "one kind that it belongs to"));
                 None
             }
         }
@@ -139,7 +203,8 @@ impl Declarer<'_> {
         }
         let mut known: Vec<&str> = self.pack.kinds.iter().map(|k| k.name.as_str()).collect();
         known.extend(["unit", "member"]);
-        let mut fault = Diagnostic::fault(word.span, format!("`{}` is not a kind", word.text)).expected(format!("one of {}", known.join(", ")));
+        let mut fault = Diagnostic::fault(word.span, format!("`{}` is not a kind", word.text))
+            .expected(format!("one of {}", known.join(", ")));
         if let Some(near) = nearest(&word.text, known) {
             fault = fault.hint(format!("did you mean `{near}`?"));
         }
@@ -154,13 +219,23 @@ impl Declarer<'_> {
                 Some(found) => Ty::Money(Some(found)),
                 None => {
                     self.faults.push(
-                        Diagnostic::fault(period.span, format!("`{}` is not a period", period.text)).expected(format!("one of {}", Period::WORDS.join(", "))),
+                        Diagnostic::fault(
+                            period.span,
+                            format!("`{}` is not a period", period.text),
+                        )
+                        .expected(format!("one of {}", Period::WORDS.join(", "))),
                     );
                     return None;
                 }
             },
-            (_, Some(period)) if Ty::WORDS.contains(&word) || self.pack.choices.iter().any(|c| c.name == word) => {
-                self.faults.push(Diagnostic::fault(period.span, format!("`{word}` has no period")).expected("a period only after `money a`"));
+            (_, Some(period))
+                if Ty::WORDS.contains(&word)
+                    || self.pack.choices.iter().any(|c| c.name == word) =>
+            {
+                self.faults.push(
+                    Diagnostic::fault(period.span, format!("`{word}` has no period"))
+                        .expected("a period only after `money a`"),
+                );
                 return None;
             }
             ("rate", _) => Ty::Rate,
@@ -175,7 +250,9 @@ impl Declarer<'_> {
                 None => {
                     let mut known: Vec<&str> = Ty::WORDS.to_vec();
                     known.extend(self.pack.choices.iter().map(|c| c.name.as_str()));
-                    let mut fault = Diagnostic::fault(written.word.span, format!("`{word}` is not a type")).expected("a type or the name of a choice");
+                    let mut fault =
+                        Diagnostic::fault(written.word.span, format!("`{word}` is not a type"))
+                            .expected("a type or the name of a choice");
                     if let Some(near) = nearest(word, known) {
                         fault = fault.hint(format!("did you mean `{near}`?"));
                     }
@@ -191,25 +268,42 @@ impl Declarer<'_> {
         for statement in &part.statements {
             match &statement.what {
                 StatementKind::Fact(fact) => self.fact(fact),
-                StatementKind::Conversion { name, from, to, times } if self.fresh("conversion", name) => {
+                StatementKind::Conversion {
+                    name,
+                    from,
+                    to,
+                    times,
+                } if self.fresh("conversion", name) => {
                     let periods = [from, to].map(|word| {
                         let found = Period::from_word(&word.text);
                         if found.is_none() {
                             self.faults.push(
-                                Diagnostic::fault(word.span, format!("`{}` is not a period", word.text)).expected(format!("one of {}", Period::WORDS.join(", "))),
+                                Diagnostic::fault(
+                                    word.span,
+                                    format!("`{}` is not a period", word.text),
+                                )
+                                .expected(format!("one of {}", Period::WORDS.join(", "))),
                             );
                         }
                         found
                     });
                     if let [Some(from), Some(to)] = periods {
-                        self.pack.conversions.push(ConversionDecl { name: name.text.clone(), span: name.span, from, to, times: *times });
+                        self.pack.conversions.push(ConversionDecl {
+                            name: name.text.clone(),
+                            span: name.span,
+                            from,
+                            to,
+                            times: *times,
+                        });
                     } else {
                         self.broken.insert(name.text.clone());
                     }
                 }
                 StatementKind::Table { name, keys, gives } if self.fresh("table", name) => {
                     self.broken.insert(name.text.clone());
-                    let Some(gives) = self.ty(gives) else { continue };
+                    let Some(gives) = self.ty(gives) else {
+                        continue;
+                    };
                     let mut found = Vec::new();
                     for key in keys {
                         match self.pack.choices.iter().position(|c| c.name == key.text) {
@@ -217,9 +311,18 @@ impl Declarer<'_> {
                             None if key.text == "count" => found.push(None),
                             None if self.broken.contains(&key.text) => {}
                             None => {
-                                let near = nearest(&key.text, self.pack.choices.iter().map(|c| c.name.as_str()));
-                                let fault = Diagnostic::fault(key.span, format!("`{}` cannot be a key", key.text));
-                                self.faults.push(with_near(fault.expected("the name of a choice, or `count`"), near));
+                                let near = nearest(
+                                    &key.text,
+                                    self.pack.choices.iter().map(|c| c.name.as_str()),
+                                );
+                                let fault = Diagnostic::fault(
+                                    key.span,
+                                    format!("`{}` cannot be a key", key.text),
+                                );
+                                self.faults.push(with_near(
+                                    fault.expected("the name of a choice, or `count`"),
+                                    near,
+                                ));
                             }
                         }
                     }
@@ -229,14 +332,33 @@ impl Declarer<'_> {
                                 Ty::Choice(at) => self.pack.choices[at].words.clone(),
                                 _ => Vec::new(),
                             };
-                            let rows = super::amounts::read_table(*file, text, keys.len(), gives, &words, self.faults);
+                            let rows = super::amounts::read_table(
+                                *file,
+                                text,
+                                keys.len(),
+                                gives,
+                                &words,
+                                self.faults,
+                            );
                             self.broken.remove(&name.text);
                             let header = text.lines().next().map_or(0, str::len) as u32;
-                            self.pack.tables.push(TableDecl { name: name.text.clone(), span: name.span, file: *file, header, keys: found, gives, rows });
+                            self.pack.tables.push(TableDecl {
+                                name: name.text.clone(),
+                                span: name.span,
+                                file: *file,
+                                header,
+                                keys: found,
+                                gives,
+                                rows,
+                            });
                         }
                         Some(_) => {}
                         None => self.faults.push(
-                            Diagnostic::fault(name.span, format!("the table `{}` has no file", name.text)).expected(format!("`tables/{}.csv`", name.text)),
+                            Diagnostic::fault(
+                                name.span,
+                                format!("the table `{}` has no file", name.text),
+                            )
+                            .expected(format!("`tables/{}.csv`", name.text)),
                         ),
                     }
                 }
@@ -249,18 +371,31 @@ impl Declarer<'_> {
     pub(super) fn clash(&mut self, name: &Ident, what: &str) {
         let taken = if self.pack.amounts.iter().any(|a| a.name == name.text) {
             "an amount"
-        } else if name.text == "date" || self.pack.manifest.dates.iter().any(|(date, _)| *date == name.text) {
+        } else if name.text == "date"
+            || self
+                .pack
+                .manifest
+                .dates
+                .iter()
+                .any(|(date, _)| *date == name.text)
+        {
             "a date of the list"
         } else {
             return;
         };
-        self.faults.push(Diagnostic::fault(name.span, format!("`{}` is {taken} already", name.text)).expected(format!("a name of its own for the {what}")));
+        self.faults.push(
+            Diagnostic::fault(name.span, format!("`{}` is {taken} already", name.text))
+                .expected(format!("a name of its own for the {what}")),
+        );
     }
 
     /// Declares figures, items, bands and scales, without their expressions. Remembers which statement each came from.
     fn heads(&mut self, at: usize, part: &Part, bodies: &mut Vec<Body>) {
         for (position, statement) in part.statements.iter().enumerate() {
-            let household = Ident { text: "household".to_owned(), span: statement.span };
+            let household = Ident {
+                text: "household".to_owned(),
+                span: statement.span,
+            };
             let per = statement.per.as_ref().unwrap_or(&household);
             let kinds = kinds_of_word(&self.pack.kinds, &per.text);
             let place = (at, position);
@@ -270,26 +405,77 @@ impl Declarer<'_> {
                         self.broken.insert(name.text.clone());
                         continue;
                     };
-                    let law = law.as_deref().map_or_else(String::new, |law| in_law(part, law));
-                    self.definition(name, &kinds, per, ty, &law, None, place, bodies, statement.span);
+                    let law = law
+                        .as_deref()
+                        .map_or_else(String::new, |law| in_law(part, law));
+                    self.definition(
+                        name,
+                        &kinds,
+                        per,
+                        ty,
+                        &law,
+                        None,
+                        place,
+                        bodies,
+                        statement.span,
+                    );
                 }
-                StatementKind::Item { name, kind, law, .. } => {
-                    let ty = if *kind == ItemKind::Passport { Ty::YesNo } else { Ty::Money(Some(self.pack.manifest.period)) };
+                StatementKind::Item {
+                    name, kind, law, ..
+                } => {
+                    let ty = if *kind == ItemKind::Passport {
+                        Ty::YesNo
+                    } else {
+                        Ty::Money(Some(self.pack.manifest.period))
+                    };
                     let law = in_law(part, law);
-                    self.definition(name, &kinds, per, ty, &law, Some(*kind), place, bodies, statement.span);
+                    self.definition(
+                        name,
+                        &kinds,
+                        per,
+                        ty,
+                        &law,
+                        Some(*kind),
+                        place,
+                        bodies,
+                        statement.span,
+                    );
                 }
                 StatementKind::Bands { name, of, .. } if self.fresh("bands", name) => {
                     if let (Some(ty), Some(kind)) = (self.ty(of), self.one_kind(per, &kinds)) {
-                        bodies.push(Body { place, what: BodyOf::Bands(self.pack.bands.len()) });
-                        self.pack.bands.push(BandsDecl { name: name.text.clone(), span: name.span, kind, ty, bands: Vec::new() });
+                        bodies.push(Body {
+                            place,
+                            what: BodyOf::Bands(self.pack.bands.len()),
+                        });
+                        self.pack.bands.push(BandsDecl {
+                            name: name.text.clone(),
+                            span: name.span,
+                            kind,
+                            ty,
+                            bands: Vec::new(),
+                        });
                     } else {
                         self.broken.insert(name.text.clone());
                     }
                 }
-                StatementKind::Scale { name, of, gives, .. } if self.fresh("scale", name) => {
-                    if let (Some(ty), Some(gives), Some(kind)) = (self.ty(of), self.ty(gives), self.one_kind(per, &kinds)) {
-                        bodies.push(Body { place, what: BodyOf::Scale(self.pack.scales.len()) });
-                        self.pack.scales.push(ScaleDecl { name: name.text.clone(), span: name.span, kind, ty, gives, steps: Vec::new() });
+                StatementKind::Scale {
+                    name, of, gives, ..
+                } if self.fresh("scale", name) => {
+                    if let (Some(ty), Some(gives), Some(kind)) =
+                        (self.ty(of), self.ty(gives), self.one_kind(per, &kinds))
+                    {
+                        bodies.push(Body {
+                            place,
+                            what: BodyOf::Scale(self.pack.scales.len()),
+                        });
+                        self.pack.scales.push(ScaleDecl {
+                            name: name.text.clone(),
+                            span: name.span,
+                            kind,
+                            ty,
+                            gives,
+                            steps: Vec::new(),
+                        });
                     } else {
                         self.broken.insert(name.text.clone());
                     }
@@ -299,7 +485,10 @@ impl Declarer<'_> {
                         self.unknown_kind(per);
                     }
                     for kind in kinds {
-                        bodies.push(Body { place, what: BodyOf::Condition(kind) });
+                        bodies.push(Body {
+                            place,
+                            what: BodyOf::Condition(kind),
+                        });
                     }
                 }
                 _ => {}
@@ -316,13 +505,17 @@ impl Declarer<'_> {
                 None
             }
             [..] => {
-                self.faults.push(several(per, "one kind to work bands and scales out for"));
+                self.faults
+                    .push(several(per, "one kind to work bands and scales out for"));
                 None
             }
         }
     }
 
-    #[expect(clippy::too_many_arguments, reason = "one call each for figures and items")]
+    #[expect(
+        clippy::too_many_arguments,
+        reason = "one call each for figures and items"
+    )]
     fn definition(
         &mut self,
         name: &Ident,
@@ -341,11 +534,20 @@ impl Declarer<'_> {
         }
         self.clash(name, if item.is_some() { "item" } else { "figure" });
         for kind in kinds {
-            let is_fact = self.pack.kinds[*kind].facts.iter().any(|f| f.name == name.text);
+            let is_fact = self.pack.kinds[*kind]
+                .facts
+                .iter()
+                .any(|f| f.name == name.text);
             if is_fact {
-                self.faults.push(Diagnostic::fault(name.span, format!("`{}` is a fact already", name.text)).expected("a name of its own"));
+                self.faults.push(
+                    Diagnostic::fault(name.span, format!("`{}` is a fact already", name.text))
+                        .expected("a name of its own"),
+                );
             } else if self.fresh(&format!("{kind}"), name) {
-                bodies.push(Body { place, what: BodyOf::Definition(self.pack.definitions.len()) });
+                bodies.push(Body {
+                    place,
+                    what: BodyOf::Definition(self.pack.definitions.len()),
+                });
                 self.pack.definitions.push(Definition {
                     name: name.text.clone(),
                     kind: *kind,
@@ -361,17 +563,23 @@ impl Declarer<'_> {
             }
         }
     }
-
 }
-
 
 /// The law of a file before a reference to it.
 fn in_law(part: &Part, see: &str) -> String {
-    if part.law.is_empty() { see.to_owned() } else { format!("{}, {see}", part.law) }
+    if part.law.is_empty() {
+        see.to_owned()
+    } else {
+        format!("{}, {see}", part.law)
+    }
 }
 
 fn several(word: &Ident, expected: &str) -> Diagnostic {
-    Diagnostic::fault(word.span, format!("`{}` stands for several kinds", word.text)).expected(expected)
+    Diagnostic::fault(
+        word.span,
+        format!("`{}` stands for several kinds", word.text),
+    )
+    .expected(expected)
 }
 
 pub(super) fn with_near(fault: Diagnostic, near: Option<&str>) -> Diagnostic {

@@ -26,12 +26,18 @@ impl Parser<'_> {
         if height >= HIGHEST {
             self.faults.push(
                 Diagnostic::fault(span, "this has too many parts")
-                    .expected(format!("at most {HIGHEST} operators that follow or hold each other"))
+                    .expected(format!(
+                        "at most {HIGHEST} operators that follow or hold each other"
+                    ))
                     .hint("give a part a `figure` of its own"),
             );
             return Err(GaveUp);
         }
-        Ok(Expr { kind, span, height: height + 1 })
+        Ok(Expr {
+            kind,
+            span,
+            height: height + 1,
+        })
     }
 
     fn either(&mut self) -> Parsed<Expr> {
@@ -82,13 +88,24 @@ impl Parser<'_> {
                 return self.unexpected("`least` or `most`");
             }
         } else if self.take_word("is") {
-            if self.take_word("not") { CompareOp::IsNot } else { CompareOp::Is }
+            if self.take_word("not") {
+                CompareOp::IsNot
+            } else {
+                CompareOp::Is
+            }
         } else {
             return Ok(left);
         };
         let right = self.shaped()?;
         let span = left.span.to(right.span);
-        self.made(ExprKind::Compare { op, left: Box::new(left), right: Box::new(right) }, span)
+        self.made(
+            ExprKind::Compare {
+                op,
+                left: Box::new(left),
+                right: Box::new(right),
+            },
+            span,
+        )
     }
 
     fn shaped(&mut self) -> Parsed<Expr> {
@@ -106,10 +123,21 @@ impl Parser<'_> {
                     let convert = self.at_word("converted");
                     self.next();
                     self.word("by")?;
-                    let by = self.any_word(if convert { "the name of a conversion" } else { "the name of bands" })?;
+                    let by = self.any_word(if convert {
+                        "the name of a conversion"
+                    } else {
+                        "the name of bands"
+                    })?;
                     let span = left.span.to(by.span);
                     let of = Box::new(left);
-                    left = self.made(if convert { ExprKind::Convert { of, by } } else { ExprKind::Charge { of, by } }, span)?;
+                    left = self.made(
+                        if convert {
+                            ExprKind::Convert { of, by }
+                        } else {
+                            ExprKind::Charge { of, by }
+                        },
+                        span,
+                    )?;
                     continue;
                 }
                 Some("placed") => {
@@ -117,7 +145,13 @@ impl Parser<'_> {
                     self.word("on")?;
                     let on = self.any_word("the name of a scale")?;
                     let span = left.span.to(on.span);
-                    left = self.made(ExprKind::PlaceOn { of: Box::new(left), on }, span)?;
+                    left = self.made(
+                        ExprKind::PlaceOn {
+                            of: Box::new(left),
+                            on,
+                        },
+                        span,
+                    )?;
                     continue;
                 }
                 _ => return Ok(left),
@@ -157,7 +191,10 @@ impl Parser<'_> {
             unit = unit / Fraction::whole(100);
         }
         if unit.is_zero() {
-            self.faults.push(Diagnostic::fault(at, "a rounding needs a unit above zero").expected("a number such as 1 or 0.01"));
+            self.faults.push(
+                Diagnostic::fault(at, "a rounding needs a unit above zero")
+                    .expected("a number such as 1 or 0.01"),
+            );
             unit = Fraction::ONE;
         }
         let mut end = at;
@@ -175,7 +212,15 @@ impl Parser<'_> {
             None
         };
         let span = of.span.to(end);
-        self.made(ExprKind::Round { of: Box::new(of), direction, unit, manner }, span)
+        self.made(
+            ExprKind::Round {
+                of: Box::new(of),
+                direction,
+                unit,
+                manner,
+            },
+            span,
+        )
     }
 
     pub(super) fn sum_expression(&mut self) -> Parsed<Expr> {
@@ -209,8 +254,10 @@ impl Parser<'_> {
     pub(super) fn value(&mut self) -> Parsed<Expr> {
         self.depth += 1;
         let result = if self.depth > DEEPEST {
-            let fault = Diagnostic::fault(self.peek().span, "this is nested too deep").expected(format!("at most {DEEPEST} values inside each other"));
-            self.faults.push(fault.hint("give the inner part a `figure` of its own"));
+            let fault = Diagnostic::fault(self.peek().span, "this is nested too deep")
+                .expected(format!("at most {DEEPEST} values inside each other"));
+            self.faults
+                .push(fault.hint("give the inner part a `figure` of its own"));
             Err(GaveUp)
         } else {
             self.inner_value()
@@ -241,10 +288,15 @@ impl Parser<'_> {
                 self.next();
                 let inner = self.expression()?;
                 let end = self.sign(')')?;
-                return Ok(Expr { span: span.to(end), ..inner });
+                return Ok(Expr {
+                    span: span.to(end),
+                    ..inner
+                });
             }
             TokenKind::Word(word) => return self.word_value(&word),
-            TokenKind::Text(_) | TokenKind::Sign(_) | TokenKind::End => return self.unexpected("a value"),
+            TokenKind::Text(_) | TokenKind::Sign(_) | TokenKind::End => {
+                return self.unexpected("a value");
+            }
         };
         self.made(kind, span)
     }
@@ -261,8 +313,11 @@ impl Parser<'_> {
                 let minus = self.take_sign('-');
                 let value = self.number()?;
                 let value = if minus { -value } else { value };
-                let period =
-                    if self.take_word("a") || self.take_word("an") { Some(self.any_word("a period")?) } else { None };
+                let period = if self.take_word("a") || self.take_word("an") {
+                    Some(self.any_word("a period")?)
+                } else {
+                    None
+                };
                 ExprKind::Money(value, period)
             }
             "where" => {
@@ -273,7 +328,14 @@ impl Parser<'_> {
                 self.word("otherwise")?;
                 let otherwise = Box::new(self.expression()?);
                 let span = start.to(otherwise.span);
-                return self.made(ExprKind::Where { when, give, otherwise }, span);
+                return self.made(
+                    ExprKind::Where {
+                        when,
+                        give,
+                        otherwise,
+                    },
+                    span,
+                );
             }
             "larger" | "smaller" => {
                 self.next();
@@ -284,7 +346,13 @@ impl Parser<'_> {
                     list.push(self.expression()?);
                 }
                 let end = self.sign(')')?;
-                return self.made(ExprKind::Extreme { larger: word == "larger", list }, start.to(end));
+                return self.made(
+                    ExprKind::Extreme {
+                        larger: word == "larger",
+                        list,
+                    },
+                    start.to(end),
+                );
             }
             "sum" => {
                 self.next();
@@ -294,19 +362,33 @@ impl Parser<'_> {
                 self.word("of")?;
                 let body = self.value()?;
                 let span = start.to(body.span);
-                return self.made(ExprKind::SumOver { kind, with, body: Box::new(body) }, span);
+                return self.made(
+                    ExprKind::SumOver {
+                        kind,
+                        with,
+                        body: Box::new(body),
+                    },
+                    span,
+                );
             }
             "count" => {
                 self.next();
                 self.word("of")?;
                 let kind = self.any_word("a kind")?;
-                ExprKind::CountOf { kind, with: self.with()? }
+                ExprKind::CountOf {
+                    kind,
+                    with: self.with()?,
+                }
             }
             "any" | "every" => {
                 self.next();
                 let kind = self.any_word("a kind")?;
                 match self.with()? {
-                    Some(with) => ExprKind::AnyEvery { every: word == "every", kind, with },
+                    Some(with) => ExprKind::AnyEvery {
+                        every: word == "every",
+                        kind,
+                        with,
+                    },
                     None => return self.unexpected("`with (…)`"),
                 }
             }
@@ -319,19 +401,33 @@ impl Parser<'_> {
                 let give = Box::new(self.value()?);
                 self.word("failing")?;
                 let failing = Box::new(self.value()?);
-                ExprKind::First { kind, by, down, with, give, failing }
+                ExprKind::First {
+                    kind,
+                    by,
+                    down,
+                    with,
+                    give,
+                    failing,
+                }
             }
             "place" => {
                 self.next();
                 let (by, down) = self.order()?;
-                ExprKind::Place { by, down, with: self.with()? }
+                ExprKind::Place {
+                    by,
+                    down,
+                    with: self.with()?,
+                }
             }
             "years" => {
                 self.next();
                 self.word("from")?;
                 let from = Box::new(self.value()?);
                 self.word("to")?;
-                ExprKind::Years { from, to: Box::new(self.value()?) }
+                ExprKind::Years {
+                    from,
+                    to: Box::new(self.value()?),
+                }
             }
             "missing" => {
                 self.next();
@@ -345,7 +441,9 @@ impl Parser<'_> {
 
     /// A name, with `of …` or `[…]` behind it.
     fn named(&mut self) -> Parsed<Expr> {
-        let is_name = self.peek_word().is_some_and(|w| w == "hours" || super::token::can_name(w));
+        let is_name = self
+            .peek_word()
+            .is_some_and(|w| w == "hours" || super::token::can_name(w));
         if !is_name {
             return self.unexpected("a value");
         }
@@ -353,8 +451,16 @@ impl Parser<'_> {
         let start = name.span;
         let kind = if self.take_word("of") {
             let whose = self.any_word("`partner` or a kind")?;
-            let failing = if self.take_word("failing") { Some(Box::new(self.value()?)) } else { None };
-            ExprKind::Of { name, whose, failing }
+            let failing = if self.take_word("failing") {
+                Some(Box::new(self.value()?))
+            } else {
+                None
+            };
+            ExprKind::Of {
+                name,
+                whose,
+                failing,
+            }
         } else if self.take_sign('[') {
             let mut keys = vec![self.expression()?];
             while self.take_sign(',') {
@@ -401,6 +507,13 @@ impl Parser<'_> {
 
     fn binary(&mut self, op: BinaryOp, left: Expr, right: Expr) -> Parsed<Expr> {
         let span = left.span.to(right.span);
-        self.made(ExprKind::Binary { op, left: Box::new(left), right: Box::new(right) }, span)
+        self.made(
+            ExprKind::Binary {
+                op,
+                left: Box::new(left),
+                right: Box::new(right),
+            },
+            span,
+        )
     }
 }

@@ -19,11 +19,29 @@ impl Declarer<'_> {
             span: None,
         };
         for member in [ADULT, CHILD, OTHER] {
-            self.pack.kinds[member].facts.push(fact("birth", FactKind::Date, (-40_000, 60_000), "What is the date of birth?", Ty::Date));
+            self.pack.kinds[member].facts.push(fact(
+                "birth",
+                FactKind::Date,
+                (-40_000, 60_000),
+                "What is the date of birth?",
+                Ty::Date,
+            ));
         }
         let job = &mut self.pack.kinds[JOB].facts;
-        job.push(fact("hours", FactKind::Hours, (0, 168), "How many hours a week are paid?", Ty::Hours));
-        job.push(fact("wage", FactKind::Money(Some(Period::Hour)), (0, 2000), "What is the basic pay an hour?", Ty::Money(Some(Period::Hour))));
+        job.push(fact(
+            "hours",
+            FactKind::Hours,
+            (0, 168),
+            "How many hours a week are paid?",
+            Ty::Hours,
+        ));
+        job.push(fact(
+            "wage",
+            FactKind::Money(Some(Period::Hour)),
+            (0, 2000),
+            "What is the basic pay an hour?",
+            Ty::Money(Some(Period::Hour)),
+        ));
     }
 
     pub(super) fn fact(&mut self, fact: &FactStatement) {
@@ -40,12 +58,21 @@ impl Declarer<'_> {
             self.unknown_kind(&fact.of);
         }
         let (kind, widest) = match ty {
-            Ty::Money(period) => (FactKind::Money(period), (Fraction::ZERO, Fraction::whole(10_000_000))),
+            Ty::Money(period) => (
+                FactKind::Money(period),
+                (Fraction::ZERO, Fraction::whole(10_000_000)),
+            ),
             Ty::Rate => (FactKind::Rate, (Fraction::ZERO, Fraction::ONE)),
             Ty::Hours => (FactKind::Hours, (Fraction::ZERO, Fraction::whole(168))),
-            Ty::Number => (FactKind::Number, (Fraction::ZERO, Fraction::whole(1_000_000))),
+            Ty::Number => (
+                FactKind::Number,
+                (Fraction::ZERO, Fraction::whole(1_000_000)),
+            ),
             Ty::Count => (FactKind::Count, (Fraction::ZERO, Fraction::whole(10_000))),
-            Ty::Date => (FactKind::Date, (Fraction::whole(-40_000), Fraction::whole(60_000))),
+            Ty::Date => (
+                FactKind::Date,
+                (Fraction::whole(-40_000), Fraction::whole(60_000)),
+            ),
             Ty::YesNo => (FactKind::YesNo, (Fraction::ZERO, Fraction::ONE)),
             Ty::Choice(at) => {
                 let words = self.pack.choices[at].words.clone();
@@ -56,12 +83,23 @@ impl Declarer<'_> {
         let range = match fact.range {
             Some((low, high, span)) if low > high => {
                 self.faults.push(
-                    Diagnostic::fault(span, format!("the range goes from {} to {}", shown(low, ty), shown(high, ty))).expected("the smaller number first"),
+                    Diagnostic::fault(
+                        span,
+                        format!(
+                            "the range goes from {} to {}",
+                            shown(low, ty),
+                            shown(high, ty)
+                        ),
+                    )
+                    .expected("the smaller number first"),
                 );
                 widest
             }
             Some((_, _, span)) if !ty.is_quantity() => {
-                self.faults.push(Diagnostic::fault(span, format!("{} has no range", ty.words())).expected("`from … to …` only for money, rates, hours and numbers"));
+                self.faults.push(
+                    Diagnostic::fault(span, format!("{} has no range", ty.words()))
+                        .expected("`from … to …` only for money, rates, hours and numbers"),
+                );
                 widest
             }
             Some((low, high, _)) => (low, high),
@@ -72,26 +110,43 @@ impl Declarer<'_> {
             Some(expr) => match self.default_value(expr, ty) {
                 Some(value) if ty.is_quantity() && (value < range.0 || value > range.1) => {
                     self.faults.push(
-                        Diagnostic::fault(expr.span, format!("the default {} is outside the range", shown(value, ty)))
-                            .expected(format!("a value from {} to {}", shown(range.0, ty), shown(range.1, ty))),
+                        Diagnostic::fault(
+                            expr.span,
+                            format!("the default {} is outside the range", shown(value, ty)),
+                        )
+                        .expected(format!(
+                            "a value from {} to {}",
+                            shown(range.0, ty),
+                            shown(range.1, ty)
+                        )),
                     );
                     Some(value)
                 }
                 Some(value) => Some(value),
                 None => {
-                    self.faults.push(Diagnostic::fault(expr.span, "this cannot be the default").expected(self.shown(ty)));
+                    self.faults.push(
+                        Diagnostic::fault(expr.span, "this cannot be the default")
+                            .expected(self.shown(ty)),
+                    );
                     None
                 }
             },
         };
         let finest = kind.units();
-        for (value, span) in [(Some(range.0), fact.range), (Some(range.1), fact.range), (default, None)] {
-            let span = span.map(|(.., span)| span).or(fact.default.as_ref().map(|e| e.span));
+        for (value, span) in [
+            (Some(range.0), fact.range),
+            (Some(range.1), fact.range),
+            (default, None),
+        ] {
+            let span = span
+                .map(|(.., span)| span)
+                .or(fact.default.as_ref().map(|e| e.span));
             if let (Some(value), Some(span)) = (value, span)
                 && (value * Fraction::whole(i128::from(finest))).denominator() != 1
             {
                 self.faults.push(
-                    Diagnostic::fault(span, format!("a list cannot hold {}", shown(value, ty))).expected(decimals(&kind)),
+                    Diagnostic::fault(span, format!("a list cannot hold {}", shown(value, ty)))
+                        .expected(decimals(&kind)),
                 );
                 break;
             }
@@ -102,9 +157,20 @@ impl Declarer<'_> {
             return None;
         }
         for of in kinds {
-            if self.pack.kinds[of].facts.iter().any(|f| f.name == name.text) {
+            if self.pack.kinds[of]
+                .facts
+                .iter()
+                .any(|f| f.name == name.text)
+            {
                 self.faults.push(
-                    Diagnostic::fault(name.span, format!("`{}` is a fact of `{}` already", name.text, self.pack.kinds[of].name)).expected("a name of its own"),
+                    Diagnostic::fault(
+                        name.span,
+                        format!(
+                            "`{}` is a fact of `{}` already",
+                            name.text, self.pack.kinds[of].name
+                        ),
+                    )
+                    .expected("a name of its own"),
                 );
             } else if self.fresh(&format!("{of}"), name) {
                 self.pack.kinds[of].facts.push(FactDecl {
@@ -129,9 +195,11 @@ impl Declarer<'_> {
             (ExprKind::Money(value, _), Ty::Money(_)) => Some(*value),
             (ExprKind::Day(day), Ty::Date) => Some(Fraction::whole(i128::from(*day))),
             (ExprKind::YesNo(value), Ty::YesNo) => Some(Fraction::whole(i128::from(*value))),
-            (ExprKind::Name(word), Ty::Choice(at)) => {
-                self.pack.choices[at].words.iter().position(|w| *w == word.text).map(|at| Fraction::whole(at as i128))
-            }
+            (ExprKind::Name(word), Ty::Choice(at)) => self.pack.choices[at]
+                .words
+                .iter()
+                .position(|w| *w == word.text)
+                .map(|at| Fraction::whole(at as i128)),
             _ => None,
         }
     }
@@ -145,7 +213,11 @@ impl Declarer<'_> {
 }
 
 fn shown(value: Fraction, ty: Ty) -> String {
-    let (value, sign) = if ty == Ty::Rate { (value * Fraction::whole(100), "%") } else { (value, "") };
+    let (value, sign) = if ty == Ty::Rate {
+        (value * Fraction::whole(100), "%")
+    } else {
+        (value, "")
+    };
     let text = value.decimal(6);
     format!("{}{sign}", text.trim_end_matches('0').trim_end_matches('.'))
 }
@@ -156,6 +228,8 @@ fn decimals(kind: &FactKind) -> &'static str {
         FactKind::Money(Some(Period::Hour)) => "at most 4 decimals",
         FactKind::Money(_) | FactKind::Hours | FactKind::Number => "at most 2 decimals",
         FactKind::Rate => "a percentage with at most 2 decimals",
-        FactKind::Count | FactKind::Date | FactKind::YesNo | FactKind::Choice(_) => "a whole number",
+        FactKind::Count | FactKind::Date | FactKind::YesNo | FactKind::Choice(_) => {
+            "a whole number"
+        }
     }
 }

@@ -18,7 +18,10 @@ struct Course {
 
 impl Course {
     fn with(self, other: Course) -> Course {
-        Course { degree: self.degree.max(other.degree), varies: self.varies || other.varies }
+        Course {
+            degree: self.degree.max(other.degree),
+            varies: self.varies || other.varies,
+        }
     }
 }
 
@@ -64,7 +67,14 @@ fn needs(pack: &Pack, node: &Node) -> Vec<usize> {
     let mut out = Vec::new();
     let mut lists = Vec::new();
     node.visit(&mut |node| match &node.what {
-        What::Name { target: Target::Figure(at), .. } | What::Partner { target: Target::Figure(at), .. } => out.push(*at),
+        What::Name {
+            target: Target::Figure(at),
+            ..
+        }
+        | What::Partner {
+            target: Target::Figure(at),
+            ..
+        } => out.push(*at),
         What::Charge { bands, .. } => lists.extend(pack.bands[*bands].nodes()),
         What::PlaceOn { scale, .. } => lists.extend(pack.scales[*scale].nodes()),
         _ => {}
@@ -72,7 +82,15 @@ fn needs(pack: &Pack, node: &Node) -> Vec<usize> {
     // Bands and scales hold no further bands and scales.
     for node in lists {
         node.visit(&mut |node| {
-            if let What::Name { target: Target::Figure(at), .. } | What::Partner { target: Target::Figure(at), .. } = &node.what {
+            if let What::Name {
+                target: Target::Figure(at),
+                ..
+            }
+            | What::Partner {
+                target: Target::Figure(at),
+                ..
+            } = &node.what
+            {
                 out.push(*at);
             }
         });
@@ -83,11 +101,31 @@ fn needs(pack: &Pack, node: &Node) -> Vec<usize> {
 }
 
 /// Notes the figures and facts that a node rests on, those of its bands and scales included.
-pub(super) fn rests_on(pack: &Pack, node: &Node, figures: &mut Vec<usize>, facts: &mut std::collections::BTreeSet<(usize, usize)>) {
+pub(super) fn rests_on(
+    pack: &Pack,
+    node: &Node,
+    figures: &mut Vec<usize>,
+    facts: &mut std::collections::BTreeSet<(usize, usize)>,
+) {
     let mut lists = Vec::new();
     let mut note = |node: &Node, lists: &mut Vec<usize>| match &node.what {
-        What::Name { target: Target::Figure(at), .. } | What::Partner { target: Target::Figure(at), .. } | What::AsIf { figure: at, .. } => figures.push(*at),
-        What::Name { target: Target::Fact { kind, fact }, .. } | What::Partner { target: Target::Fact { kind, fact }, .. } => {
+        What::Name {
+            target: Target::Figure(at),
+            ..
+        }
+        | What::Partner {
+            target: Target::Figure(at),
+            ..
+        }
+        | What::AsIf { figure: at, .. } => figures.push(*at),
+        What::Name {
+            target: Target::Fact { kind, fact },
+            ..
+        }
+        | What::Partner {
+            target: Target::Fact { kind, fact },
+            ..
+        } => {
             facts.insert((*kind, *fact));
         }
         What::Charge { bands, .. } => lists.push(*bands),
@@ -96,7 +134,11 @@ pub(super) fn rests_on(pack: &Pack, node: &Node, figures: &mut Vec<usize>, facts
     };
     node.visit(&mut |node| note(node, &mut lists));
     for list in lists {
-        let nodes = if list < pack.bands.len() { pack.bands[list].nodes() } else { pack.scales[list - pack.bands.len()].nodes() };
+        let nodes = if list < pack.bands.len() {
+            pack.bands[list].nodes()
+        } else {
+            pack.scales[list - pack.bands.len()].nodes()
+        };
         for node in nodes {
             node.visit(&mut |node| note(node, &mut Vec::new()));
         }
@@ -112,7 +154,17 @@ struct Order<'a> {
 
 impl<'a> Order<'a> {
     fn new(pack: &'a Pack) -> Self {
-        let needs = pack.definitions.iter().map(|d| d.body.iter().chain(&d.claimed).flat_map(|node| needs(pack, node)).collect()).collect();
+        let needs = pack
+            .definitions
+            .iter()
+            .map(|d| {
+                d.body
+                    .iter()
+                    .chain(&d.claimed)
+                    .flat_map(|node| needs(pack, node))
+                    .collect()
+            })
+            .collect();
         Order { pack, needs }
     }
 
@@ -147,7 +199,10 @@ impl<'a> Order<'a> {
                         path.push((need, 0));
                     }
                     State::Open => {
-                        let from = path.iter().position(|(d, _)| *d == need).expect("an open definition is on the path");
+                        let from = path
+                            .iter()
+                            .position(|(d, _)| *d == need)
+                            .expect("an open definition is on the path");
                         let circle: Vec<usize> = path[from..].iter().map(|(d, _)| *d).collect();
                         // Figures that already stand in a reported circle would only repeat it.
                         if circle.iter().all(|d| !in_circle.contains(d)) {
@@ -164,7 +219,13 @@ impl<'a> Order<'a> {
 
     fn report(&self, circle: &[usize], faults: &mut Vec<Diagnostic>) {
         let start = (0..circle.len()).min_by_key(|at| circle[*at]).unwrap_or(0);
-        let mut names: Vec<&str> = circle.iter().cycle().skip(start).take(circle.len()).map(|d| self.pack.definitions[*d].name.as_str()).collect();
+        let mut names: Vec<&str> = circle
+            .iter()
+            .cycle()
+            .skip(start)
+            .take(circle.len())
+            .map(|d| self.pack.definitions[*d].name.as_str())
+            .collect();
         names.push(names[0]);
         if names.len() > 8 {
             names.splice(5..names.len() - 2, ["…"]);
@@ -183,22 +244,44 @@ fn depths(pack: &Pack, order: &[usize], faults: &mut Vec<Diagnostic>) {
     let mut depths = vec![0usize; pack.definitions.len()];
     for at in order {
         let definition = &pack.definitions[*at];
-        let Some(body) = &definition.body else { continue };
-        let deepest = needs(pack, body).into_iter().map(|need| depths[need]).max().unwrap_or(0);
+        let Some(body) = &definition.body else {
+            continue;
+        };
+        let deepest = needs(pack, body)
+            .into_iter()
+            .map(|need| depths[need])
+            .max()
+            .unwrap_or(0);
         let mut own = 0;
         body.visit(&mut |node| {
             own = own.max(match &node.what {
-                What::Charge { bands, .. } => pack.bands[*bands].nodes().iter().map(|n| n.height()).max().unwrap_or(0),
-                What::PlaceOn { scale, .. } => pack.scales[*scale].nodes().iter().map(|n| n.height()).max().unwrap_or(0),
+                What::Charge { bands, .. } => pack.bands[*bands]
+                    .nodes()
+                    .iter()
+                    .map(|n| n.height())
+                    .max()
+                    .unwrap_or(0),
+                What::PlaceOn { scale, .. } => pack.scales[*scale]
+                    .nodes()
+                    .iter()
+                    .map(|n| n.height())
+                    .max()
+                    .unwrap_or(0),
                 _ => 0,
             });
         });
         depths[*at] = deepest + own + body.height();
         if depths[*at] > DEEPEST {
             faults.push(
-                Diagnostic::fault(definition.name_span, format!("`{}` needs figures that need figures, {} operators deep", definition.name, depths[*at]))
-                    .expected(format!("at most {DEEPEST}"))
-                    .hint("let some figures use facts and amounts in place of other figures"),
+                Diagnostic::fault(
+                    definition.name_span,
+                    format!(
+                        "`{}` needs figures that need figures, {} operators deep",
+                        definition.name, depths[*at]
+                    ),
+                )
+                .expected(format!("at most {DEEPEST}"))
+                .hint("let some figures use facts and amounts in place of other figures"),
             );
             // What needs it is not reported again.
             depths[*at] = 0;
@@ -209,70 +292,127 @@ fn depths(pack: &Pack, order: &[usize], faults: &mut Vec<Diagnostic>) {
 impl Graph<'_> {
     fn definition(&mut self, at: usize) {
         let definition = &self.pack.definitions[at];
-        let course = definition.body.as_ref().map_or(Course::default(), |body| self.course(body));
+        let course = definition
+            .body
+            .as_ref()
+            .map_or(Course::default(), |body| self.course(body));
         if course.degree > 2 {
             self.faults.push(
-                Diagnostic::fault(definition.name_span, format!("`{}` is of degree {} in hours", definition.name, course.degree))
-                    .expected("degree two at the most")
-                    .hint("multiply what varies with hours at most once"),
+                Diagnostic::fault(
+                    definition.name_span,
+                    format!(
+                        "`{}` is of degree {} in hours",
+                        definition.name, course.degree
+                    ),
+                )
+                .expected("degree two at the most")
+                .hint("multiply what varies with hours at most once"),
             );
         }
         // The degree is reported once, not again for everything that uses it.
-        self.courses[at] = Course { degree: course.degree.min(2), ..course };
+        self.courses[at] = Course {
+            degree: course.degree.min(2),
+            ..course
+        };
     }
 
     fn target(&mut self, target: Target) -> Course {
         match target {
             Target::Figure(at) => self.courses[at],
-            Target::Fact { kind: JOB, fact: 0 } => Course { degree: 1, varies: true },
+            Target::Fact { kind: JOB, fact: 0 } => Course {
+                degree: 1,
+                varies: true,
+            },
             Target::Fact { .. } => Course::default(),
         }
     }
 
     fn over(&mut self, over: &Over) -> Course {
-        [&over.with, &over.body, &over.by].into_iter().flatten().fold(Course::default(), |c, node| c.with(self.course(node)))
+        [&over.with, &over.body, &over.by]
+            .into_iter()
+            .flatten()
+            .fold(Course::default(), |c, node| c.with(self.course(node)))
     }
 
     fn fixed(&mut self, node: &Node, why: &str, hint: &str) {
         if self.course(node).varies {
-            let fault = Diagnostic::fault(node.span, "this varies with hours").expected(format!("something that does not, as {why}"));
+            let fault = Diagnostic::fault(node.span, "this varies with hours")
+                .expected(format!("something that does not, as {why}"));
             self.faults.push(fault.hint(hint));
         }
     }
 
     fn course(&mut self, node: &Node) -> Course {
         match &node.what {
-            What::Fixed(_) | What::Amount { .. } | What::Missing { .. } | What::Dated(_) => Course::default(),
+            What::Fixed(_) | What::Amount { .. } | What::Missing { .. } | What::Dated(_) => {
+                Course::default()
+            }
             What::Name { target, .. } => self.target(*target),
             // What it needs may come later in the order: under changed facts a figure may need itself. Where it is not known yet, the
             // program's own bounds still hold when it is made.
-            What::AsIf { figure, changes, .. } => {
-                let varies = Course { degree: 1, varies: true };
-                changes.iter().fold(self.courses[*figure].with(varies), |c, change| c.with(self.course(&change.value)))
+            What::AsIf {
+                figure, changes, ..
+            } => {
+                let varies = Course {
+                    degree: 1,
+                    varies: true,
+                };
+                changes
+                    .iter()
+                    .fold(self.courses[*figure].with(varies), |c, change| {
+                        c.with(self.course(&change.value))
+                    })
             }
-            What::Partner { target, failing, .. } => {
+            What::Partner {
+                target, failing, ..
+            } => {
                 let course = self.target(*target);
-                failing.as_ref().map_or(course, |f| course.with(self.course(f)))
+                failing
+                    .as_ref()
+                    .map_or(course, |f| course.with(self.course(f)))
             }
             What::Lookup { keys, .. } => {
                 for key in keys {
-                    self.fixed(key, "it is the key of a table", "place what varies on a `scale`");
+                    self.fixed(
+                        key,
+                        "it is the key of a table",
+                        "place what varies on a `scale`",
+                    );
                 }
                 Course::default()
             }
-            What::Where { when, give, otherwise } => {
+            What::Where {
+                when,
+                give,
+                otherwise,
+            } => {
                 let when = self.course(when);
                 let course = self.course(give).with(self.course(otherwise));
-                Course { degree: course.degree, varies: course.varies || when.varies }
+                Course {
+                    degree: course.degree,
+                    varies: course.varies || when.varies,
+                }
             }
-            What::Extreme { list, .. } => list.iter().fold(Course::default(), |c, n| c.with(self.course(n))),
-            What::Sum(over) => over.iter().fold(Course::default(), |c, o| c.with(self.over(o))),
+            What::Extreme { list, .. } => list
+                .iter()
+                .fold(Course::default(), |c, n| c.with(self.course(n))),
+            What::Sum(over) => over
+                .iter()
+                .fold(Course::default(), |c, o| c.with(self.over(o))),
             What::Count(over) | What::Any { over, .. } => {
-                let course = over.iter().fold(Course::default(), |c, o| c.with(self.over(o)));
-                Course { degree: 0, varies: course.varies }
+                let course = over
+                    .iter()
+                    .fold(Course::default(), |c, o| c.with(self.over(o)));
+                Course {
+                    degree: 0,
+                    varies: course.varies,
+                }
             }
             What::First { over, failing, .. } => self.over(over).with(self.course(failing)),
-            What::Place { over, .. } => Course { degree: 0, varies: self.over(over).varies },
+            What::Place { over, .. } => Course {
+                degree: 0,
+                varies: self.over(over).varies,
+            },
             What::Years { from, to } => {
                 self.fixed(from, "it is a day", "let the day come from a fact");
                 self.fixed(to, "it is a day", "let the day come from a fact");
@@ -281,50 +421,86 @@ impl Graph<'_> {
             What::Binary { op, left, right } => {
                 let (l, r) = (self.course(left), self.course(right));
                 match op {
-                    BinaryOp::Multiply => Course { degree: l.degree + r.degree, varies: l.varies || r.varies },
-                    BinaryOp::Add | BinaryOp::Subtract | BinaryOp::Divide | BinaryOp::Beyond | BinaryOp::LimitedTo | BinaryOp::RaisedTo => l.with(r),
+                    BinaryOp::Multiply => Course {
+                        degree: l.degree + r.degree,
+                        varies: l.varies || r.varies,
+                    },
+                    BinaryOp::Add
+                    | BinaryOp::Subtract
+                    | BinaryOp::Divide
+                    | BinaryOp::Beyond
+                    | BinaryOp::LimitedTo
+                    | BinaryOp::RaisedTo => l.with(r),
                 }
             }
             What::Convert { of, .. } => self.course(of),
-            What::Round { of, unit, manner, .. } => {
+            What::Round {
+                of, unit, manner, ..
+            } => {
                 let course = self.course(of);
                 let minor = matches!(node.ty, Ty::Money(_)) && *unit == Fraction::new(1, 100);
                 if course.varies && manner.is_none() && !minor {
                     self.faults.push(
-                        Diagnostic::fault(node.span, "this rounding varies with hours and does not say how it is drawn")
-                            .expected("`as steps` or `as a slope`"),
+                        Diagnostic::fault(
+                            node.span,
+                            "this rounding varies with hours and does not say how it is drawn",
+                        )
+                        .expected("`as steps` or `as a slope`"),
                     );
                 }
                 let steps = *manner == Some(Manner::Steps);
-                Course { degree: if steps { 0 } else { course.degree }, varies: course.varies }
+                Course {
+                    degree: if steps { 0 } else { course.degree },
+                    varies: course.varies,
+                }
             }
             What::DivideRounded { of, by, manner, .. } => {
                 self.fixed(by, "it divides", "multiply out");
                 let course = self.course(of);
                 if course.varies && *manner != Some(Manner::Steps) {
                     self.faults.push(
-                        Diagnostic::fault(of.span, "this varies with hours and is divided by a fact")
-                            .expected("something that does not vary, or a quotient rounded `as steps`")
-                            .hint("multiply out"),
+                        Diagnostic::fault(
+                            of.span,
+                            "this varies with hours and is divided by a fact",
+                        )
+                        .expected("something that does not vary, or a quotient rounded `as steps`")
+                        .hint("multiply out"),
                     );
                 }
-                Course { degree: 0, varies: course.varies }
+                Course {
+                    degree: 0,
+                    varies: course.varies,
+                }
             }
             What::Charge { of, bands } => {
                 let course = self.course(of);
                 let inner = self.bands_course(*bands);
-                Course { degree: course.degree.max(inner.degree), varies: course.varies || inner.varies }
+                Course {
+                    degree: course.degree.max(inner.degree),
+                    varies: course.varies || inner.varies,
+                }
             }
             What::PlaceOn { of, scale } => {
                 let course = self.course(of);
                 let inner = self.scale_course(*scale);
-                Course { degree: inner.degree, varies: course.varies || inner.varies }
+                Course {
+                    degree: inner.degree,
+                    varies: course.varies || inner.varies,
+                }
             }
-            What::Compare { left, right, .. } | What::Both(left, right) | What::Either(left, right) => {
+            What::Compare { left, right, .. }
+            | What::Both(left, right)
+            | What::Either(left, right) => {
                 let course = self.course(left).with(self.course(right));
-                Course { degree: 0, varies: course.varies }
+                Course {
+                    degree: 0,
+                    varies: course.varies,
+                }
             }
-            What::Not(inner) => Course { degree: 0, varies: self.course(inner).varies },
+            What::Not(inner) => Course {
+                degree: 0,
+                varies: self.course(inner).varies,
+            },
         }
     }
 
@@ -335,7 +511,11 @@ impl Graph<'_> {
         self.bands[at] = Some(Course::default());
         let mut course = Course::default();
         for (rate, limit) in &self.pack.bands[at].bands {
-            self.fixed(rate, "it is the rate of a band", "use a figure of its own for each rate");
+            self.fixed(
+                rate,
+                "it is the rate of a band",
+                "use a figure of its own for each rate",
+            );
             if let Some(limit) = limit {
                 course = course.with(self.course(limit));
             }
@@ -353,7 +533,9 @@ impl Graph<'_> {
         for (value, limit) in &self.pack.scales[at].steps {
             course = course.with(self.course(value));
             match limit {
-                Limit::UpTo(limit) | Limit::Below(limit) => course.varies |= self.course(limit).varies,
+                Limit::UpTo(limit) | Limit::Below(limit) => {
+                    course.varies |= self.course(limit).varies
+                }
                 Limit::Beyond => {}
             }
         }

@@ -7,7 +7,14 @@ use crate::source::{FileId, Span};
 
 /// All tokens of a text, the last of them [`TokenKind::End`].
 pub(super) fn tokens(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> Vec<Token> {
-    Lexer { file, text, at: 0, line_start: true, out: Vec::new() }.run(faults)
+    Lexer {
+        file,
+        text,
+        at: 0,
+        line_start: true,
+        out: Vec::new(),
+    }
+    .run(faults)
 }
 
 struct Lexer<'a> {
@@ -55,12 +62,20 @@ impl Lexer<'_> {
     }
 
     fn span(&self, start: usize) -> Span {
-        Span { file: self.file, start: start as u32, end: self.at as u32 }
+        Span {
+            file: self.file,
+            start: start as u32,
+            end: self.at as u32,
+        }
     }
 
     fn push(&mut self, kind: TokenKind, start: usize) {
         let first = std::mem::replace(&mut self.line_start, false);
-        self.out.push(Token { kind, span: self.span(start), first });
+        self.out.push(Token {
+            kind,
+            span: self.span(start),
+            first,
+        });
     }
 
     fn skip_while(&mut self, keep: impl Fn(char) -> bool) {
@@ -77,7 +92,8 @@ impl Lexer<'_> {
         let word = &self.text[start..self.at];
         let lower = word.to_ascii_lowercase();
         if lower != word {
-            let fault = Diagnostic::fault(self.span(start), format!("`{word}` has capitals")).expected("lower case letters, digits and `_`");
+            let fault = Diagnostic::fault(self.span(start), format!("`{word}` has capitals"))
+                .expected("lower case letters, digits and `_`");
             faults.push(fault.hint(format!("write `{lower}`")));
         }
         self.push(TokenKind::Word(lower), start);
@@ -87,7 +103,10 @@ impl Lexer<'_> {
     fn number(&mut self, start: usize, faults: &mut Vec<Diagnostic>) {
         self.skip_while(|c| c.is_ascii_digit());
         let rest = &self.text.as_bytes()[self.at..];
-        if self.at - start == 4 && rest.first() == Some(&b'-') && rest.get(1).is_some_and(u8::is_ascii_digit) {
+        if self.at - start == 4
+            && rest.first() == Some(&b'-')
+            && rest.get(1).is_some_and(u8::is_ascii_digit)
+        {
             self.skip_while(|c| c.is_ascii_digit() || c == '-');
             let words = &self.text[start..self.at];
             match super::amounts::day(words) {
@@ -110,7 +129,10 @@ impl Lexer<'_> {
         match super::amounts::decimal(words) {
             Some(value) => self.push(TokenKind::Number(value), start),
             None => {
-                faults.push(Diagnostic::fault(self.span(start), format!("`{words}` is too long")).expected("a number of at most 18 digits"));
+                faults.push(
+                    Diagnostic::fault(self.span(start), format!("`{words}` is too long"))
+                        .expected("a number of at most 18 digits"),
+                );
                 self.push(TokenKind::Number(Fraction::ONE), start);
             }
         }
@@ -123,7 +145,10 @@ impl Lexer<'_> {
         if self.peek() == Some('"') {
             self.at += 1;
         } else {
-            faults.push(Diagnostic::fault(self.span(start), "this text is not closed").expected("a `\"` on the same line"));
+            faults.push(
+                Diagnostic::fault(self.span(start), "this text is not closed")
+                    .expected("a `\"` on the same line"),
+            );
         }
         self.push(TokenKind::Text(inside), start);
     }

@@ -8,7 +8,9 @@ use super::types::Ty;
 use crate::diag::{Diagnostic, nearest};
 use crate::index::Id;
 use crate::num::{Direction, Fraction};
-use crate::program::{Amount, Builder, FactRef, Guard, Item, ItemKind, Line, Manner, Note, Program, Reg, Shape, Table};
+use crate::program::{
+    Amount, Builder, FactRef, Guard, Item, ItemKind, Line, Manner, Note, Program, Reg, Shape, Table,
+};
 use std::collections::{BTreeMap, BTreeSet, HashMap};
 
 /// Facts that stand changed: kind, record and fact.
@@ -46,13 +48,22 @@ pub(super) struct Lowering<'a> {
 const LARGEST_ITEM: u128 = 1_000_000_000_000;
 
 /// Checks dates and changed amounts of a list.
-pub(super) fn accepts(pack: &Pack, dates: &[i64], changes: &[Change]) -> Result<(), Vec<Diagnostic>> {
+pub(super) fn accepts(
+    pack: &Pack,
+    dates: &[i64],
+    changes: &[Change],
+) -> Result<(), Vec<Diagnostic>> {
     let mut faults = Vec::new();
     for ((name, _), day) in pack.manifest.dates.iter().zip(dates) {
         if *day < pack.manifest.from || *day > pack.manifest.to {
             faults.push(
-                Diagnostic::general(format!("the date `{name}` is {}", day_text(*day)))
-                    .expected(format!("a day from {} to {}, which the pack covers", day_text(pack.manifest.from), day_text(pack.manifest.to))),
+                Diagnostic::general(format!("the date `{name}` is {}", day_text(*day))).expected(
+                    format!(
+                        "a day from {} to {}, which the pack covers",
+                        day_text(pack.manifest.from),
+                        day_text(pack.manifest.to)
+                    ),
+                ),
             );
         }
     }
@@ -60,7 +71,9 @@ pub(super) fn accepts(pack: &Pack, dates: &[i64], changes: &[Change]) -> Result<
         if let Some(amount) = pack.amounts.iter().find(|a| a.name == change.amount) {
             faults.extend(unfit(amount.ty, change));
         } else {
-            let fault = Diagnostic::general(format!("`{}` is not an amount of the pack", change.amount)).expected("a name of `amounts.csv`");
+            let fault =
+                Diagnostic::general(format!("`{}` is not an amount of the pack", change.amount))
+                    .expected("a name of `amounts.csv`");
             let near = nearest(&change.amount, pack.amounts.iter().map(|a| a.name.as_str()));
             faults.push(match near {
                 Some(near) => fault.hint(format!("did you mean `{near}`?")),
@@ -68,29 +81,51 @@ pub(super) fn accepts(pack: &Pack, dates: &[i64], changes: &[Change]) -> Result<
             });
         }
     }
-    if faults.is_empty() { Ok(()) } else { Err(faults) }
+    if faults.is_empty() {
+        Ok(())
+    } else {
+        Err(faults)
+    }
 }
 
 /// What is wrong with the value of a changed amount.
 fn unfit(ty: Ty, change: &Change) -> Option<Diagnostic> {
     let expected = match ty {
         Ty::Count if change.value.denominator() != 1 => "a whole number",
-        Ty::YesNo if !change.value.is_zero() && change.value != Fraction::ONE => "1 for yes or 0 for no",
+        Ty::YesNo if !change.value.is_zero() && change.value != Fraction::ONE => {
+            "1 for yes or 0 for no"
+        }
         Ty::Date | Ty::Choice(_) => "another amount: days and words cannot be changed by a list",
         Ty::Count | Ty::YesNo | Ty::Money(_) | Ty::Rate | Ty::Hours | Ty::Number => return None,
     };
-    Some(Diagnostic::general(format!("`{}` is {ty} and the list changes it to {}", change.amount, plain(change.value))).expected(expected))
+    Some(
+        Diagnostic::general(format!(
+            "`{}` is {ty} and the list changes it to {}",
+            change.amount,
+            plain(change.value)
+        ))
+        .expected(expected),
+    )
 }
 
 /// Makes programs of a small and a large household: what a list's changed amounts and its dates together upset shows here, before the first
 /// household is read.
-pub(super) fn try_out(pack: &Pack, dates: &[i64], changes: &[Change]) -> Result<(), Vec<Diagnostic>> {
+pub(super) fn try_out(
+    pack: &Pack,
+    dates: &[i64],
+    changes: &[Change],
+) -> Result<(), Vec<Diagnostic>> {
     program(pack, dates, changes, &small(pack))?;
     program(pack, dates, changes, &large(pack)).map(|_| ())
 }
 
 /// Makes the program.
-pub(super) fn program(pack: &Pack, dates: &[i64], changes: &[Change], shape: &Shape) -> Result<Program, Vec<Diagnostic>> {
+pub(super) fn program(
+    pack: &Pack,
+    dates: &[i64],
+    changes: &[Change],
+    shape: &Shape,
+) -> Result<Program, Vec<Diagnostic>> {
     accepts(pack, dates, changes)?;
     let mut lowering = Lowering {
         pack,
@@ -110,8 +145,13 @@ pub(super) fn program(pack: &Pack, dates: &[i64], changes: &[Change], shape: &Sh
         part: 0,
     };
     lowering.everything();
-    let lines: Vec<(String, crate::source::Span)> =
-        lowering.builder.program().lines.iter().map(|line| (line.name.clone(), line.span)).collect();
+    let lines: Vec<(String, crate::source::Span)> = lowering
+        .builder
+        .program()
+        .lines
+        .iter()
+        .map(|line| (line.name.clone(), line.span))
+        .collect();
     let faults = lowering.faults;
     match lowering.builder.finish() {
         Ok(program) if faults.is_empty() => Ok(program),
@@ -136,7 +176,13 @@ pub(super) fn program(pack: &Pack, dates: &[i64], changes: &[Change], shape: &Sh
 pub(super) fn probe(pack: &Pack, faults: &mut Vec<Diagnostic>) {
     let mut days: Vec<i64> = vec![pack.manifest.from, pack.manifest.to];
     for amount in &pack.amounts {
-        days.extend(amount.rows.iter().map(|row| row.from).filter(|day| *day > pack.manifest.from && *day <= pack.manifest.to));
+        days.extend(
+            amount
+                .rows
+                .iter()
+                .map(|row| row.from)
+                .filter(|day| *day > pack.manifest.from && *day <= pack.manifest.to),
+        );
     }
     for table in &pack.tables {
         days.extend(super::tables::days(pack, table));
@@ -148,9 +194,16 @@ pub(super) fn probe(pack: &Pack, faults: &mut Vec<Diagnostic>) {
             let dates = vec![day; pack.manifest.dates.len()];
             if let Err(found) = program(pack, &dates, &[], &shape) {
                 for fault in found {
-                    if !faults.iter().any(|f| f.span == fault.span && f.message == fault.message) {
+                    if !faults
+                        .iter()
+                        .any(|f| f.span == fault.span && f.message == fault.message)
+                    {
                         let later = day > pack.manifest.from;
-                        faults.push(if later { fault.hint(format!("it is so from {}", day_text(day))) } else { fault });
+                        faults.push(if later {
+                            fault.hint(format!("it is so from {}", day_text(day)))
+                        } else {
+                            fault
+                        });
                     }
                 }
             }
@@ -163,27 +216,55 @@ fn small(pack: &Pack) -> Shape {
     owners[HOUSEHOLD] = vec![0];
     owners[ADULT] = vec![0];
     owners[JOB] = vec![0];
-    Shape { owners, earner: 0, varied_job: 0 }
+    Shape {
+        owners,
+        earner: 0,
+        varied_job: 0,
+    }
 }
 
 fn large(pack: &Pack) -> Shape {
-    let mut owners: Vec<Vec<u32>> = pack.kinds.iter().map(|kind| if kind.owner == Some(ADULT) { vec![0, 1, 1] } else { vec![0; 3] }).collect();
+    let mut owners: Vec<Vec<u32>> = pack
+        .kinds
+        .iter()
+        .map(|kind| {
+            if kind.owner == Some(ADULT) {
+                vec![0, 1, 1]
+            } else {
+                vec![0; 3]
+            }
+        })
+        .collect();
     owners[HOUSEHOLD] = vec![0];
     owners[ADULT] = vec![0, 0];
-    Shape { owners, earner: 1, varied_job: 1 }
+    Shape {
+        owners,
+        earner: 1,
+        varied_job: 1,
+    }
 }
 
 impl Lowering<'_> {
     fn everything(&mut self) {
         let pack = self.pack;
         for (at, definition) in pack.definitions.iter().enumerate() {
-            let Some(kind) = definition.item else { continue };
+            let Some(kind) = definition.item else {
+                continue;
+            };
             for instance in 0..self.count(definition.kind) {
                 let reg = self.figure(at, instance);
-                let adult = self.climb(definition.kind, instance, ADULT).map(|at| at as u32);
+                let adult = self
+                    .climb(definition.kind, instance, ADULT)
+                    .map(|at| at as u32);
                 let line = self.line_of(at, instance);
                 let due = self.due.get(&(at, instance)).copied();
-                self.builder.item(Item { kind, line, reg, adult, due });
+                self.builder.item(Item {
+                    kind,
+                    line,
+                    reg,
+                    adult,
+                    due,
+                });
             }
         }
         for (conditions, hold) in [(&pack.holds, true), (&pack.notes, false)] {
@@ -196,9 +277,15 @@ impl Lowering<'_> {
                 }
                 let Some(reg) = any else { continue };
                 if hold {
-                    self.builder.guard(Guard { reg, because: condition.text.clone() });
+                    self.builder.guard(Guard {
+                        reg,
+                        because: condition.text.clone(),
+                    });
                 } else {
-                    self.builder.note(Note { reg, name: condition.text.clone() });
+                    self.builder.note(Note {
+                        reg,
+                        name: condition.text.clone(),
+                    });
                 }
             }
         }
@@ -221,13 +308,15 @@ impl Lowering<'_> {
 
     fn line_of(&self, definition: usize, instance: usize) -> Id<Line> {
         let name = &self.pack.definitions[definition];
-        let found = self
-            .builder
-            .program()
-            .lines
-            .iter_with_id()
-            .find(|(_, l)| !l.as_if && l.name == name.name && l.kind == name.kind as u32 && l.instance == instance as u32);
-        found.map(|(id, _)| id).expect("a figure that was worked out has a line")
+        let found = self.builder.program().lines.iter_with_id().find(|(_, l)| {
+            !l.as_if
+                && l.name == name.name
+                && l.kind == name.kind as u32
+                && l.instance == instance as u32
+        });
+        found
+            .map(|(id, _)| id)
+            .expect("a figure that was worked out has a line")
     }
 
     /// The register of a figure or item of one record.
@@ -236,10 +325,23 @@ impl Lowering<'_> {
         if let Some(reg) = self.done.get(&(world, at, instance)) {
             return *reg;
         }
-        if self.open.contains(&(world, at, instance)) || self.open.iter().filter(|(_, d, i)| (*d, *i) == (at, instance)).count() > DEEPEST_WORLDS {
+        if self.open.contains(&(world, at, instance))
+            || self
+                .open
+                .iter()
+                .filter(|(_, d, i)| (*d, *i) == (at, instance))
+                .count()
+                > DEEPEST_WORLDS
+        {
             let definition = &self.pack.definitions[at];
-            let fault = Diagnostic::fault(definition.name_span, format!("`{}` needs itself even as if the facts were changed", definition.name))
-                .expected("changed facts under which it does not need itself");
+            let fault = Diagnostic::fault(
+                definition.name_span,
+                format!(
+                    "`{}` needs itself even as if the facts were changed",
+                    definition.name
+                ),
+            )
+            .expected("changed facts under which it does not need itself");
             if !self.faults.contains(&fault) {
                 self.faults.push(fault);
             }
@@ -249,7 +351,10 @@ impl Lowering<'_> {
         let before_world = std::mem::replace(&mut self.world, world);
         let pack = self.pack;
         let definition = &pack.definitions[at];
-        let body = definition.body.as_ref().expect("a checked pack has no empty figure");
+        let body = definition
+            .body
+            .as_ref()
+            .expect("a checked pack has no empty figure");
         let (title, _) = &pack.parts[definition.part];
         let words = match definition.ty {
             Ty::Choice(choice) => pack.choices[choice].words.clone(),
@@ -272,8 +377,13 @@ impl Lowering<'_> {
             as_if: world != 0,
         });
         let mut reg = self.node(body, &mut vec![(definition.kind, instance)]);
-        if definition.item.is_some_and(|kind| kind != ItemKind::Passport) {
-            reg = self.builder.round(reg, Fraction::new(1, 100), Direction::HalfUp, Manner::Minor);
+        if definition
+            .item
+            .is_some_and(|kind| kind != ItemKind::Passport)
+        {
+            reg = self
+                .builder
+                .round(reg, Fraction::new(1, 100), Direction::HalfUp, Manner::Minor);
         }
         if definition.item.is_some() && self.builder.limit(reg) > LARGEST_ITEM {
             self.builder.overflow();
@@ -300,15 +410,22 @@ impl Lowering<'_> {
             return 0;
         }
         let rests_on = self.rests_on(at).clone();
-        let world: World = self.worlds[self.world].iter().filter(|((kind, _, fact), _)| rests_on.contains(&(*kind, *fact))).map(|(k, v)| (*k, *v)).collect();
+        let world: World = self.worlds[self.world]
+            .iter()
+            .filter(|((kind, _, fact), _)| rests_on.contains(&(*kind, *fact)))
+            .map(|(k, v)| (*k, *v))
+            .collect();
         self.world_of(world)
     }
 
     fn world_of(&mut self, world: World) -> usize {
-        self.worlds.iter().position(|w| *w == world).unwrap_or_else(|| {
-            self.worlds.push(world);
-            self.worlds.len() - 1
-        })
+        self.worlds
+            .iter()
+            .position(|w| *w == world)
+            .unwrap_or_else(|| {
+                self.worlds.push(world);
+                self.worlds.len() - 1
+            })
     }
 
     /// The world at hand with further facts changed.
@@ -344,9 +461,18 @@ impl Lowering<'_> {
             return self.builder.hours();
         }
         let decl = &self.pack.kinds[kind].facts[fact];
-        let largest = |value: Fraction| value.numerator().unsigned_abs().div_ceil(value.denominator().unsigned_abs());
+        let largest = |value: Fraction| {
+            value
+                .numerator()
+                .unsigned_abs()
+                .div_ceil(value.denominator().unsigned_abs())
+        };
         let limit = largest(decl.range.0).max(largest(decl.range.1));
-        let place = FactRef { kind: kind as u32, instance: instance as u32, fact: fact as u32 };
+        let place = FactRef {
+            kind: kind as u32,
+            instance: instance as u32,
+            fact: fact as u32,
+        };
         self.builder.fact(place, decl.kind.units(), limit)
     }
 
@@ -365,12 +491,17 @@ impl Lowering<'_> {
             Some(change) => change.value,
             None => row.and_then(|row| row.value).unwrap_or(Fraction::ZERO),
         };
-        let shown = change.map_or_else(|| row.map_or_else(String::new, |r| r.shown.clone()), |c| plain(c.value));
+        let shown = change.map_or_else(
+            || row.map_or_else(String::new, |r| r.shown.clone()),
+            |c| plain(c.value),
+        );
         let entry = Amount {
             name: decl.name.clone(),
             value: format!("{shown} {}", decl.unit).trim().to_owned(),
             from: row.map_or_else(String::new, |r| day_text(r.from)),
-            to: row.filter(|r| r.to != i64::MAX).map_or_else(String::new, |r| day_text(r.to)),
+            to: row
+                .filter(|r| r.to != i64::MAX)
+                .map_or_else(String::new, |r| day_text(r.to)),
             source: row.map_or_else(String::new, |r| r.source.clone()),
             locator: row.map_or_else(String::new, |r| r.locator.clone()),
             confirmed: row.is_some_and(|r| r.confirmed),
@@ -387,7 +518,10 @@ impl Lowering<'_> {
     pub(super) fn is_missing(&self, amount: usize, dated: usize) -> bool {
         let decl = &self.pack.amounts[amount];
         let changed = self.changes.iter().any(|c| c.amount == decl.name);
-        !changed && decl.on(self.dates[dated]).is_none_or(|row| row.value.is_none())
+        !changed
+            && decl
+                .on(self.dates[dated])
+                .is_none_or(|row| row.value.is_none())
     }
 
     /// A keyed table on its date. The check of the pack found a value for every key.
@@ -396,14 +530,27 @@ impl Lowering<'_> {
             return *id;
         }
         let decl = &self.pack.tables[at];
-        let dense = super::tables::dense(self.pack, decl, self.dates[dated]).expect("a checked table has rows on every day covered");
-        let values = dense.values.into_iter().map(|v| v.unwrap_or(Fraction::ZERO)).collect();
-        let id = self.builder.table(Table { name: decl.name.clone(), keys: dense.keys, values });
+        let dense = super::tables::dense(self.pack, decl, self.dates[dated])
+            .expect("a checked table has rows on every day covered");
+        let values = dense
+            .values
+            .into_iter()
+            .map(|v| v.unwrap_or(Fraction::ZERO))
+            .collect();
+        let id = self.builder.table(Table {
+            name: decl.name.clone(),
+            keys: dense.keys,
+            values,
+        });
         self.tables.insert((at, dated), id);
         id
     }
 }
 
 fn plain(value: Fraction) -> String {
-    value.decimal(6).trim_end_matches('0').trim_end_matches('.').to_owned()
+    value
+        .decimal(6)
+        .trim_end_matches('0')
+        .trim_end_matches('.')
+        .to_owned()
 }

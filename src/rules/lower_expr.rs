@@ -28,17 +28,33 @@ impl Lowering<'_> {
                 let missing = self.is_missing(*amount, *dated);
                 self.builder.yes_no(missing)
             }
-            What::Dated(at) => self.builder.constant(Fraction::whole(i128::from(self.dates[*at]))),
-            What::Name { target, kind, level, text } => {
+            What::Dated(at) => self
+                .builder
+                .constant(Fraction::whole(i128::from(self.dates[*at]))),
+            What::Name {
+                target,
+                kind,
+                level,
+                text,
+            } => {
                 let (from, instance) = scopes[*level];
-                let instance = self.climb(from, instance, *kind).expect("a checked name can be reached");
+                let instance = self
+                    .climb(from, instance, *kind)
+                    .expect("a checked name can be reached");
                 let reg = self.target(*target, *kind, instance);
                 self.went_in(text.clone(), reg, node.ty);
                 reg
             }
-            What::Partner { target, level, failing, text } => {
+            What::Partner {
+                target,
+                level,
+                failing,
+                text,
+            } => {
                 let (from, instance) = scopes[*level];
-                let adult = self.climb(from, instance, ADULT).expect("a checked partner can be reached");
+                let adult = self
+                    .climb(from, instance, ADULT)
+                    .expect("a checked partner can be reached");
                 let other = (0..self.count(ADULT)).find(|a| *a != adult);
                 let reg = match (other, failing) {
                     (Some(other), _) => self.target(*target, ADULT, other),
@@ -48,17 +64,30 @@ impl Lowering<'_> {
                 self.went_in(format!("{text} of partner"), reg, node.ty);
                 reg
             }
-            What::AsIf { figure, kind, level, changes, text } => {
+            What::AsIf {
+                figure,
+                kind,
+                level,
+                changes,
+                text,
+            } => {
                 let changes = changes
                     .iter()
                     .map(|change| {
                         let (from, instance) = scopes[change.level];
-                        let record = self.climb(from, instance, change.kind).expect("a checked fact can be reached");
-                        ((change.kind, record, change.fact), self.node(&change.value, scopes))
+                        let record = self
+                            .climb(from, instance, change.kind)
+                            .expect("a checked fact can be reached");
+                        (
+                            (change.kind, record, change.fact),
+                            self.node(&change.value, scopes),
+                        )
                     })
                     .collect();
                 let (from, instance) = scopes[*level];
-                let instance = self.climb(from, instance, *kind).expect("a checked figure can be reached");
+                let instance = self
+                    .climb(from, instance, *kind)
+                    .expect("a checked figure can be reached");
                 let changed = self.changed(changes);
                 let before = std::mem::replace(&mut self.world, changed);
                 let reg = self.figure(*figure, instance);
@@ -71,7 +100,11 @@ impl Lowering<'_> {
                 let id = self.table(*table, *dated);
                 self.builder.lookup(id, keys)
             }
-            What::Where { when, give, otherwise } => {
+            What::Where {
+                when,
+                give,
+                otherwise,
+            } => {
                 let when = self.node(when, scopes);
                 if self.builder.is_fixed(when) {
                     // The other branch is not needed, so that nothing unused is worked out.
@@ -84,7 +117,13 @@ impl Lowering<'_> {
             What::Extreme { larger, list } => {
                 let regs: Vec<Reg> = list.iter().map(|n| self.node(n, scopes)).collect();
                 regs.into_iter()
-                    .reduce(|a, b| if *larger { self.builder.larger(a, b) } else { self.builder.smaller(a, b) })
+                    .reduce(|a, b| {
+                        if *larger {
+                            self.builder.larger(a, b)
+                        } else {
+                            self.builder.smaller(a, b)
+                        }
+                    })
                     .expect("a list has an entry")
             }
             What::Sum(over) => {
@@ -104,7 +143,9 @@ impl Lowering<'_> {
                 let mut total = self.builder.constant(Fraction::ZERO);
                 for part in over {
                     for instance in self.among(part.kind, scopes) {
-                        let one = self.counted(part, instance, scopes, |me, _| me.builder.constant(Fraction::ONE));
+                        let one = self.counted(part, instance, scopes, |me, _| {
+                            me.builder.constant(Fraction::ONE)
+                        });
                         total = self.builder.add(total, one);
                     }
                 }
@@ -115,12 +156,20 @@ impl Lowering<'_> {
                 for part in over {
                     for instance in self.among(part.kind, scopes) {
                         let condition = self.condition(part, instance, scopes);
-                        all = if *every { self.builder.both(all, condition) } else { self.builder.either(all, condition) };
+                        all = if *every {
+                            self.builder.both(all, condition)
+                        } else {
+                            self.builder.either(all, condition)
+                        };
                     }
                 }
                 all
             }
-            What::First { down, over, failing } => self.first(*down, over, failing, scopes),
+            What::First {
+                down,
+                over,
+                failing,
+            } => self.first(*down, over, failing, scopes),
             What::Place { down, over } => {
                 let (kind, me) = *scopes.last().expect("a place is said of a record");
                 let others: Vec<usize> = (0..self.count(kind)).filter(|i| *i != me).collect();
@@ -129,7 +178,10 @@ impl Lowering<'_> {
                     let eligible = self.condition(over, other, scopes);
                     let ahead = self.ahead(over, other, me, *down, scopes);
                     let counts = self.builder.both(eligible, ahead);
-                    let (one, none) = (self.builder.constant(Fraction::ONE), self.builder.constant(Fraction::ZERO));
+                    let (one, none) = (
+                        self.builder.constant(Fraction::ONE),
+                        self.builder.constant(Fraction::ZERO),
+                    );
                     let one = self.builder.choose(counts, one, none);
                     place = self.builder.add(place, one);
                 }
@@ -148,13 +200,24 @@ impl Lowering<'_> {
                 let times = self.pack.conversions[*conversion].times;
                 self.builder.times(of, times)
             }
-            What::Round { of, direction, unit, manner } => {
+            What::Round {
+                of,
+                direction,
+                unit,
+                manner,
+            } => {
                 let minor = matches!(node.ty, Ty::Money(_)) && *unit == Fraction::new(1, 100);
                 let of = self.node(of, scopes);
                 let manner = manner.unwrap_or(if minor { Manner::Minor } else { Manner::Slope });
                 self.builder.round(of, *unit, *direction, manner)
             }
-            What::DivideRounded { of, by, direction, unit, .. } => {
+            What::DivideRounded {
+                of,
+                by,
+                direction,
+                unit,
+                ..
+            } => {
                 let (of, by) = (self.node(of, scopes), self.node(by, scopes));
                 self.builder.divide(of, by, *unit, *direction)
             }
@@ -203,7 +266,12 @@ impl Lowering<'_> {
             Ty::Choice(choice) => self.pack.choices[choice].words.clone(),
             _ => Vec::new(),
         };
-        self.builder.went_in(Entered { name, reg, unit: ty.to_string(), words });
+        self.builder.went_in(Entered {
+            name,
+            reg,
+            unit: ty.to_string(),
+            words,
+        });
     }
 
     fn target(&mut self, target: Target, kind: usize, instance: usize) -> Reg {
@@ -216,8 +284,13 @@ impl Lowering<'_> {
     /// The records that a sum goes over: those that belong to the record at hand, else all of the kind.
     fn among(&self, kind: usize, scopes: &Scopes) -> Vec<usize> {
         let (here, at) = *scopes.last().expect("an expression is said of a record");
-        let below = kind != here && self.pack.kinds[kind].owner.is_some_and(|owner| self.below(owner, here));
-        (0..self.count(kind)).filter(|i| !below || self.climb(kind, *i, here) == Some(at)).collect()
+        let below = kind != here
+            && self.pack.kinds[kind]
+                .owner
+                .is_some_and(|owner| self.below(owner, here));
+        (0..self.count(kind))
+            .filter(|i| !below || self.climb(kind, *i, here) == Some(at))
+            .collect()
     }
 
     fn below(&self, kind: usize, here: usize) -> bool {
@@ -244,7 +317,13 @@ impl Lowering<'_> {
     }
 
     /// A value of one record, or nothing where its condition does not hold.
-    fn counted(&mut self, over: &Over, instance: usize, scopes: &mut Scopes, value: impl FnOnce(&mut Self, &mut Scopes) -> Reg) -> Reg {
+    fn counted(
+        &mut self,
+        over: &Over,
+        instance: usize,
+        scopes: &mut Scopes,
+        value: impl FnOnce(&mut Self, &mut Scopes) -> Reg,
+    ) -> Reg {
         let condition = self.condition(over, instance, scopes);
         let none = self.builder.constant(Fraction::ZERO);
         if condition == self.builder.yes_no(false) {
@@ -268,7 +347,11 @@ impl Lowering<'_> {
         let (x, y) = (self.key(over, a, scopes), self.key(over, b, scopes));
         let (x, y) = if down { (y, x) } else { (x, y) };
         // The smaller key is ahead; the earlier record wins a tie.
-        if a < b { self.builder.at_least(y, x) } else { self.builder.above(y, x) }
+        if a < b {
+            self.builder.at_least(y, x)
+        } else {
+            self.builder.above(y, x)
+        }
     }
 
     fn first(&mut self, down: bool, over: &Over, failing: &Node, scopes: &mut Scopes) -> Reg {
@@ -306,7 +389,10 @@ impl Lowering<'_> {
             BinaryOp::Divide => match self.builder.fixed_value(right) {
                 Some(value) if !value.is_zero() => self.builder.times(left, Fraction::ONE / value),
                 _ => {
-                    self.faults.push(Diagnostic::fault(node.span, "this divides by nothing").expected("a divisor other than zero"));
+                    self.faults.push(
+                        Diagnostic::fault(node.span, "this divides by nothing")
+                            .expected("a divisor other than zero"),
+                    );
                     left
                 }
             },
@@ -321,7 +407,9 @@ impl Lowering<'_> {
         let of = self.node(of, scopes);
         let of = self.builder.larger(of, none);
         let (from, at) = *scopes.last().expect("bands are said of a record");
-        let own = self.climb(from, at, decl.kind).expect("checked bands can be reached");
+        let own = self
+            .climb(from, at, decl.kind)
+            .expect("checked bands can be reached");
         let mut inner = vec![(decl.kind, own)];
         let mut low = none;
         let mut total = none;
@@ -331,8 +419,10 @@ impl Lowering<'_> {
                 None => None,
                 Some(limit) => {
                     let high = self.node(limit, &mut inner);
-                    if let (Some(before), Some(value)) = (self.builder.fixed_value(low), self.builder.fixed_value(high))
-                        && (value < before || value == before && at > 0)
+                    if let (Some(before), Some(value)) = (
+                        self.builder.fixed_value(low),
+                        self.builder.fixed_value(high),
+                    ) && (value < before || value == before && at > 0)
                     {
                         self.faults.push(falls(limit.span, &decl.name));
                     }
@@ -342,7 +432,11 @@ impl Lowering<'_> {
             };
             let upper = high.map_or(of, |high| self.builder.smaller(of, high));
             let inside = self.builder.subtract(upper, low);
-            let inside = if at == 0 { inside } else { self.builder.larger(inside, none) };
+            let inside = if at == 0 {
+                inside
+            } else {
+                self.builder.larger(inside, none)
+            };
             let share = self.builder.multiply(inside, rate);
             total = self.builder.add(total, share);
             low = high.unwrap_or(low);
@@ -356,7 +450,9 @@ impl Lowering<'_> {
         let decl = &pack.scales[scale];
         let of = self.node(of, scopes);
         let (from, at) = *scopes.last().expect("a scale is said of a record");
-        let own = self.climb(from, at, decl.kind).expect("a checked scale can be reached");
+        let own = self
+            .climb(from, at, decl.kind)
+            .expect("a checked scale can be reached");
         let mut inner = vec![(decl.kind, own)];
         let mut result: Option<Reg> = None;
         // The limit after the one at hand, whether it is included, and where it stands.
@@ -394,5 +490,9 @@ impl Lowering<'_> {
 }
 
 fn falls(span: Span, name: &str) -> Diagnostic {
-    Diagnostic::fault(span, format!("this limit of `{name}` is not above the one before")).expected("limits that rise, so that nothing lies in two lines")
+    Diagnostic::fault(
+        span,
+        format!("this limit of `{name}` is not above the one before"),
+    )
+    .expected("limits that rise, so that nothing lies in two lines")
 }

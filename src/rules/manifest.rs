@@ -2,8 +2,8 @@
 
 use super::types::Period;
 use crate::diag::Diagnostic;
-use crate::source::{FileId, Span};
 use crate::diag::nearest;
+use crate::source::{FileId, Span};
 use serde::Deserialize;
 use std::collections::BTreeMap;
 use toml::Spanned;
@@ -50,55 +50,95 @@ struct Covers {
 
 /// Reads it. None where it is no TOML, lacks a key or has no dates; other faults leave something to go on with.
 pub(super) fn read(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> Option<Manifest> {
-    let place = |range: std::ops::Range<usize>| Span { file, start: range.start as u32, end: range.end as u32 };
+    let place = |range: std::ops::Range<usize>| Span {
+        file,
+        start: range.start as u32,
+        end: range.end as u32,
+    };
     let written: Written = match toml::from_str(text) {
         Ok(written) => written,
         Err(error) => {
             let span = place(error.span().unwrap_or(0..0));
             let message = error.message().trim().replace('\n', ", ");
-            let (found, expected) = message.split_once(", expected ").unwrap_or((&message, "title, area, currency, period, covers and dates"));
+            let (found, expected) = message
+                .split_once(", expected ")
+                .unwrap_or((&message, "title, area, currency, period, covers and dates"));
             faults.push(Diagnostic::fault(span, found).expected(expected));
             return None;
         }
     };
     for (what, text) in [("title", &written.title), ("area", &written.area)] {
         if text.get_ref().trim().is_empty() {
-            faults.push(Diagnostic::fault(place(text.span()), format!("the {what} is empty")).expected(format!("the pack's {what} as statements print it")));
+            faults.push(
+                Diagnostic::fault(place(text.span()), format!("the {what} is empty"))
+                    .expected(format!("the pack's {what} as statements print it")),
+            );
         }
     }
-    let period = Period::from_word(written.period.get_ref()).filter(|p| *p != Period::Hour).unwrap_or_else(|| {
-        let fault = Diagnostic::fault(place(written.period.span()), format!("the period is `{}`", written.period.get_ref()));
-        let words = &Period::WORDS[1..];
-        let fault = fault.expected(format!("one of {}", words.join(", ")));
-        faults.push(super::declare::with_near(fault, nearest(written.period.get_ref(), words.iter().copied())));
-        Period::Month
-    });
+    let period = Period::from_word(written.period.get_ref())
+        .filter(|p| *p != Period::Hour)
+        .unwrap_or_else(|| {
+            let fault = Diagnostic::fault(
+                place(written.period.span()),
+                format!("the period is `{}`", written.period.get_ref()),
+            );
+            let words = &Period::WORDS[1..];
+            let fault = fault.expected(format!("one of {}", words.join(", ")));
+            faults.push(super::declare::with_near(
+                fault,
+                nearest(written.period.get_ref(), words.iter().copied()),
+            ));
+            Period::Month
+        });
     let currency = written.currency.get_ref();
     if currency.len() != 3 || !currency.bytes().all(|b| b.is_ascii_uppercase()) {
-        faults.push(Diagnostic::fault(place(written.currency.span()), format!("the currency is `{currency}`")).expected("an ISO 4217 code such as GBP"));
+        faults.push(
+            Diagnostic::fault(
+                place(written.currency.span()),
+                format!("the currency is `{currency}`"),
+            )
+            .expected("an ISO 4217 code such as GBP"),
+        );
     }
     let mut day = |d: &Spanned<Datetime>| {
         let found = super::amounts::day(&d.get_ref().to_string());
         if found.is_none() {
-            faults.push(Diagnostic::fault(place(d.span()), format!("`{}` is not a whole day", d.get_ref())).expected("a day such as 2024-04-08"));
+            faults.push(
+                Diagnostic::fault(
+                    place(d.span()),
+                    format!("`{}` is not a whole day", d.get_ref()),
+                )
+                .expected("a day such as 2024-04-08"),
+            );
         }
         found.unwrap_or(0)
     };
     let (from, to) = (day(&written.covers.from), day(&written.covers.to));
     if from > to {
-        faults.push(Diagnostic::fault(place(written.covers.to.span()), "`covers` ends before it starts").expected("`to` on or after `from`"));
+        faults.push(
+            Diagnostic::fault(
+                place(written.covers.to.span()),
+                "`covers` ends before it starts",
+            )
+            .expected("`to` on or after `from`"),
+        );
     }
     // TOML tables come sorted by name; the order of the text decides which date is the first.
     let whole = written.dates.span();
     let mut dates: Vec<_> = written.dates.into_inner().into_iter().collect();
     dates.sort_by_key(|(name, _)| name.span().start);
     if dates.is_empty() {
-        faults.push(Diagnostic::fault(place(whole), "`dates` is empty").expected("at least one date, such as `assessment = \"first day of the period\"`"));
+        faults.push(
+            Diagnostic::fault(place(whole), "`dates` is empty")
+                .expected("at least one date, such as `assessment = \"first day of the period\"`"),
+        );
         return None;
     }
     for (name, meaning) in &dates {
         let word = name.get_ref();
-        let lower = word.bytes().all(|b| b.is_ascii_lowercase() || b.is_ascii_digit() || b == b'_');
+        let lower = word
+            .bytes()
+            .all(|b| b.is_ascii_lowercase() || b.is_ascii_digit() || b == b'_');
         let letter = word.starts_with(|c: char| c.is_ascii_lowercase());
         if !lower || !letter || !super::token::can_name(word) {
             faults.push(
@@ -107,7 +147,13 @@ pub(super) fn read(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> Op
             );
         }
         if meaning.get_ref().trim().is_empty() {
-            faults.push(Diagnostic::fault(place(meaning.span()), format!("the date `{word}` has no meaning")).expected("what the date is, in a few words"));
+            faults.push(
+                Diagnostic::fault(
+                    place(meaning.span()),
+                    format!("the date `{word}` has no meaning"),
+                )
+                .expected("what the date is, in a few words"),
+            );
         }
     }
     Some(Manifest {
@@ -118,6 +164,9 @@ pub(super) fn read(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> Op
         from,
         to,
         date_spans: dates.iter().map(|(name, _)| place(name.span())).collect(),
-        dates: dates.into_iter().map(|(name, meaning)| (name.into_inner(), meaning.into_inner())).collect(),
+        dates: dates
+            .into_iter()
+            .map(|(name, meaning)| (name.into_inner(), meaning.into_inner()))
+            .collect(),
     })
 }

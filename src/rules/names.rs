@@ -21,25 +21,44 @@ pub(super) struct Names {
 
 impl Names {
     pub(super) fn new(pack: &Pack, broken: HashSet<String>) -> Names {
-        let mut by_kind: Vec<HashMap<String, (Target, Ty)>> = vec![HashMap::new(); pack.kinds.len()];
+        let mut by_kind: Vec<HashMap<String, (Target, Ty)>> =
+            vec![HashMap::new(); pack.kinds.len()];
         for (kind, decl) in pack.kinds.iter().enumerate() {
             for (fact, f) in decl.facts.iter().enumerate() {
                 by_kind[kind].insert(f.name.clone(), (Target::Fact { kind, fact }, f.ty));
             }
         }
         for (at, definition) in pack.definitions.iter().enumerate() {
-            by_kind[definition.kind].insert(definition.name.clone(), (Target::Figure(at), definition.ty));
+            by_kind[definition.kind]
+                .insert(definition.name.clone(), (Target::Figure(at), definition.ty));
         }
-        let amounts = pack.amounts.iter().enumerate().map(|(at, a)| (a.name.clone(), at)).collect();
-        Names { by_kind, amounts, broken }
+        let amounts = pack
+            .amounts
+            .iter()
+            .enumerate()
+            .map(|(at, a)| (a.name.clone(), at))
+            .collect();
+        Names {
+            by_kind,
+            amounts,
+            broken,
+        }
     }
 }
 
 impl Context<'_> {
     /// Reports a name of something that the pack does not declare.
-    pub(super) fn absent<'n, T>(&self, name: &Ident, what: &str, expected: &str, known: impl Iterator<Item = &'n str>, faults: &mut Faults) -> Option<T> {
+    pub(super) fn absent<'n, T>(
+        &self,
+        name: &Ident,
+        what: &str,
+        expected: &str,
+        known: impl Iterator<Item = &'n str>,
+        faults: &mut Faults,
+    ) -> Option<T> {
         if !self.names.broken.contains(&name.text) {
-            let fault = Diagnostic::fault(name.span, format!("`{}` {what}", name.text)).expected(expected);
+            let fault =
+                Diagnostic::fault(name.span, format!("`{}` {what}", name.text)).expected(expected);
             faults.push(with_near(fault, nearest(&name.text, known)));
         }
         None
@@ -48,7 +67,10 @@ impl Context<'_> {
     /// The date of the instrument that picks its amounts.
     pub(super) fn picked(&self, span: Span, faults: &mut Faults) -> Option<usize> {
         if self.dated.is_none() {
-            faults.push(Diagnostic::fault(span, "an amount is used, but no date picks it").expected("`part \"…\" dated by …` at the start of the file"));
+            faults.push(
+                Diagnostic::fault(span, "an amount is used, but no date picks it")
+                    .expected("`part \"…\" dated by …` at the start of the file"),
+            );
         }
         self.dated
     }
@@ -70,19 +92,50 @@ impl Context<'_> {
     pub(super) fn name(&self, name: &Ident, hint: Option<Ty>, faults: &mut Faults) -> Option<Node> {
         let span = name.span;
         if let Some((level, kind, target, ty)) = self.find(&name.text) {
-            return Some(Node { ty, span, what: What::Name { target, kind, level, text: name.text.clone() } });
+            return Some(Node {
+                ty,
+                span,
+                what: What::Name {
+                    target,
+                    kind,
+                    level,
+                    text: name.text.clone(),
+                },
+            });
         }
         if let Some(Ty::Choice(at)) = hint
-            && let Some(word) = self.pack.choices[at].words.iter().position(|w| *w == name.text)
+            && let Some(word) = self.pack.choices[at]
+                .words
+                .iter()
+                .position(|w| *w == name.text)
         {
-            return Some(Node { ty: Ty::Choice(at), span, what: What::Fixed(Fraction::whole(word as i128)) });
+            return Some(Node {
+                ty: Ty::Choice(at),
+                span,
+                what: What::Fixed(Fraction::whole(word as i128)),
+            });
         }
         if let Some(at) = self.names.amounts.get(&name.text) {
             let dated = self.picked(span, faults)?;
-            return Some(Node { ty: self.pack.amounts[*at].ty, span, what: What::Amount { amount: *at, dated } });
+            return Some(Node {
+                ty: self.pack.amounts[*at].ty,
+                span,
+                what: What::Amount { amount: *at, dated },
+            });
         }
-        if let Some(at) = self.pack.manifest.dates.iter().position(|(date, _)| *date == name.text).or((name.text == "date").then_some(0)) {
-            return Some(Node { ty: Ty::Date, span, what: What::Dated(at) });
+        if let Some(at) = self
+            .pack
+            .manifest
+            .dates
+            .iter()
+            .position(|(date, _)| *date == name.text)
+            .or((name.text == "date").then_some(0))
+        {
+            return Some(Node {
+                ty: Ty::Date,
+                span,
+                what: What::Dated(at),
+            });
         }
         self.unknown(name, hint, faults);
         None
@@ -107,43 +160,90 @@ impl Context<'_> {
             }
         }
         known.extend(self.names.amounts.keys().map(String::as_str));
-        known.extend(self.pack.manifest.dates.iter().map(|(name, _)| name.as_str()));
+        known.extend(
+            self.pack
+                .manifest
+                .dates
+                .iter()
+                .map(|(name, _)| name.as_str()),
+        );
         let mut expected = "a figure, fact or amount".to_owned();
         if let Some(Ty::Choice(at)) = hint {
             known.extend(self.pack.choices[at].words.iter().map(String::as_str));
             expected = format!("one of {}", self.pack.choices[at].words.join(", "));
         }
-        let mut fault = Diagnostic::fault(name.span, format!("`{}` is not known here", name.text)).expected(expected);
-        let elsewhere = self.names.by_kind.iter().position(|names| names.contains_key(&name.text));
+        let mut fault = Diagnostic::fault(name.span, format!("`{}` is not known here", name.text))
+            .expected(expected);
+        let elsewhere = self
+            .names
+            .by_kind
+            .iter()
+            .position(|names| names.contains_key(&name.text));
         if let Some(kind) = elsewhere {
-            fault = fault.hint(format!("it belongs to `{}`; say it under `per {0}`, or sum over it", self.pack.kinds[kind].name));
+            fault = fault.hint(format!(
+                "it belongs to `{}`; say it under `per {0}`, or sum over it",
+                self.pack.kinds[kind].name
+            ));
         } else {
             fault = with_near(fault, nearest(&name.text, known));
         }
         faults.push(fault);
     }
 
-    pub(super) fn of(&mut self, name: &Ident, whose: &Ident, failing: Option<&Expr>, span: Span, faults: &mut Faults) -> Option<Node> {
-        let kind = if whose.text == "partner" { ADULT } else {
+    pub(super) fn of(
+        &mut self,
+        name: &Ident,
+        whose: &Ident,
+        failing: Option<&Expr>,
+        span: Span,
+        faults: &mut Faults,
+    ) -> Option<Node> {
+        let kind = if whose.text == "partner" {
+            ADULT
+        } else {
             match kinds_of_word(&self.pack.kinds, &whose.text).as_slice() {
                 [one] => *one,
                 [] => {
-                    let known = self.pack.kinds.iter().map(|k| k.name.as_str()).chain(["partner"]);
-                    return self.absent(whose, "is not a kind", "`partner`, or the kind of an owner", known, faults);
+                    let known = self
+                        .pack
+                        .kinds
+                        .iter()
+                        .map(|k| k.name.as_str())
+                        .chain(["partner"]);
+                    return self.absent(
+                        whose,
+                        "is not a kind",
+                        "`partner`, or the kind of an owner",
+                        known,
+                        faults,
+                    );
                 }
                 [..] => {
                     faults.push(
-                        Diagnostic::fault(whose.span, format!("`{}` stands for several kinds", whose.text)).expected("`partner`, or the kind of an owner"),
+                        Diagnostic::fault(
+                            whose.span,
+                            format!("`{}` stands for several kinds", whose.text),
+                        )
+                        .expected("`partner`, or the kind of an owner"),
                     );
                     return None;
                 }
             }
         };
-        let level = self.scopes.iter().enumerate().rev().find(|(_, start)| self.climbs(**start, kind)).map(|(level, _)| level);
+        let level = self
+            .scopes
+            .iter()
+            .enumerate()
+            .rev()
+            .find(|(_, start)| self.climbs(**start, kind))
+            .map(|(level, _)| level);
         let Some(level) = level else {
             faults.push(
                 Diagnostic::fault(whose.span, format!("there is no `{}` here", whose.text))
-                    .expected(format!("a place under `per {}`", self.pack.kinds[kind].name)),
+                    .expected(format!(
+                        "a place under `per {}`",
+                        self.pack.kinds[kind].name
+                    )),
             );
             return None;
         };
@@ -151,20 +251,44 @@ impl Context<'_> {
             if self.names.broken.contains(&name.text) {
                 return None;
             }
-            let near = nearest(&name.text, self.names.by_kind[kind].keys().map(String::as_str));
-            let fault = Diagnostic::fault(name.span, format!("`{}` is not known of `{}`", name.text, self.pack.kinds[kind].name));
-            faults.push(with_near(fault.expected("one of its figures or facts"), near));
+            let near = nearest(
+                &name.text,
+                self.names.by_kind[kind].keys().map(String::as_str),
+            );
+            let fault = Diagnostic::fault(
+                name.span,
+                format!(
+                    "`{}` is not known of `{}`",
+                    name.text, self.pack.kinds[kind].name
+                ),
+            );
+            faults.push(with_near(
+                fault.expected("one of its figures or facts"),
+                near,
+            ));
             return None;
         };
         if whose.text != "partner" {
             if let Some(failing) = failing {
                 faults.push(
-                    Diagnostic::fault(failing.span, format!("`failing` stands after `of {}`", whose.text))
-                        .expected("`failing` only after `of partner`, as an owner is always there"),
+                    Diagnostic::fault(
+                        failing.span,
+                        format!("`failing` stands after `of {}`", whose.text),
+                    )
+                    .expected("`failing` only after `of partner`, as an owner is always there"),
                 );
                 return None;
             }
-            return Some(Node { ty, span, what: What::Name { target, kind, level, text: name.text.clone() } });
+            return Some(Node {
+                ty,
+                span,
+                what: What::Name {
+                    target,
+                    kind,
+                    level,
+                    text: name.text.clone(),
+                },
+            });
         }
         let failing = match failing {
             Some(expr) => {
@@ -173,12 +297,22 @@ impl Context<'_> {
             }
             None => {
                 faults.push(
-                    Diagnostic::fault(span, "nothing stands in where there is no partner").expected(format!("`{} of partner failing …`", name.text)),
+                    Diagnostic::fault(span, "nothing stands in where there is no partner")
+                        .expected(format!("`{} of partner failing …`", name.text)),
                 );
                 return None;
             }
         };
-        Some(Node { ty, span, what: What::Partner { target, level, failing, text: name.text.clone() } })
+        Some(Node {
+            ty,
+            span,
+            what: What::Partner {
+                target,
+                level,
+                failing,
+                text: name.text.clone(),
+            },
+        })
     }
 
     /// Whether `kind` is `start` or one of its owners.
@@ -195,34 +329,68 @@ impl Context<'_> {
 
     /// Bands and scales must be said where their own kind can be reached.
     pub(super) fn reaches(&self, kind: usize, name: &Ident, faults: &mut Faults) -> Option<()> {
-        if self.scopes.last().is_some_and(|here| self.climbs(*here, kind)) {
+        if self
+            .scopes
+            .last()
+            .is_some_and(|here| self.climbs(*here, kind))
+        {
             return Some(());
         }
         faults.push(
-            Diagnostic::fault(name.span, format!("`{}` is declared per {}", name.text, self.pack.kinds[kind].name))
-                .expected(format!("a place under `per {}`", self.pack.kinds[kind].name)),
+            Diagnostic::fault(
+                name.span,
+                format!(
+                    "`{}` is declared per {}",
+                    name.text, self.pack.kinds[kind].name
+                ),
+            )
+            .expected(format!(
+                "a place under `per {}`",
+                self.pack.kinds[kind].name
+            )),
         );
         None
     }
 
     /// The place of `yes` or `no` among the words of a choice that is wanted here.
     pub(super) fn yes_no_word(&self, value: bool, hint: Option<Ty>) -> Option<usize> {
-        let Some(Ty::Choice(at)) = hint else { return None };
-        self.pack.choices[at].words.iter().position(|w| w == if value { "yes" } else { "no" })
+        let Some(Ty::Choice(at)) = hint else {
+            return None;
+        };
+        self.pack.choices[at]
+            .words
+            .iter()
+            .position(|w| w == if value { "yes" } else { "no" })
     }
 
     /// A figure once more under changed facts.
-    pub(super) fn as_if(&mut self, name: &Ident, changes: &[(Ident, Expr)], span: Span, faults: &mut Faults) -> Option<Node> {
+    pub(super) fn as_if(
+        &mut self,
+        name: &Ident,
+        changes: &[(Ident, Expr)],
+        span: Span,
+        faults: &mut Faults,
+    ) -> Option<Node> {
         let mut changed = Vec::new();
         let mut whole = true;
         for (fact, value) in changes {
             match self.find(&fact.text) {
-                Some((level, _, Target::Fact { kind, fact: at }, ty)) => match self.wanted(value, ty, faults) {
-                    Some(value) => changed.push(Changed { kind, fact: at, level, value }),
-                    None => whole = false,
-                },
+                Some((level, _, Target::Fact { kind, fact: at }, ty)) => {
+                    match self.wanted(value, ty, faults) {
+                        Some(value) => changed.push(Changed {
+                            kind,
+                            fact: at,
+                            level,
+                            value,
+                        }),
+                        None => whole = false,
+                    }
+                }
                 Some((_, _, Target::Figure(_), _)) => {
-                    faults.push(Diagnostic::fault(fact.span, format!("`{}` is a figure", fact.text)).expected("a fact to change"));
+                    faults.push(
+                        Diagnostic::fault(fact.span, format!("`{}` is a figure", fact.text))
+                            .expected("a fact to change"),
+                    );
                     whole = false;
                 }
                 None => {
@@ -232,12 +400,23 @@ impl Context<'_> {
             }
         }
         match self.find(&name.text) {
-            Some((level, kind, Target::Figure(figure), ty)) if whole => {
-                Some(Node { ty, span, what: What::AsIf { figure, kind, level, changes: changed, text: name.text.clone() } })
-            }
+            Some((level, kind, Target::Figure(figure), ty)) if whole => Some(Node {
+                ty,
+                span,
+                what: What::AsIf {
+                    figure,
+                    kind,
+                    level,
+                    changes: changed,
+                    text: name.text.clone(),
+                },
+            }),
             Some((_, _, Target::Figure(_), _)) => None,
             Some((_, _, Target::Fact { .. }, _)) => {
-                faults.push(Diagnostic::fault(name.span, format!("`{}` is a fact", name.text)).expected("a figure or item to work out once more"));
+                faults.push(
+                    Diagnostic::fault(name.span, format!("`{}` is a fact", name.text))
+                        .expected("a figure or item to work out once more"),
+                );
                 None
             }
             None => {
@@ -247,27 +426,66 @@ impl Context<'_> {
         }
     }
 
-    pub(super) fn lookup(&mut self, table: &Ident, keys: &[Expr], span: Span, faults: &mut Faults) -> Option<Node> {
+    pub(super) fn lookup(
+        &mut self,
+        table: &Ident,
+        keys: &[Expr],
+        span: Span,
+        faults: &mut Faults,
+    ) -> Option<Node> {
         let Some(at) = self.pack.tables.iter().position(|t| t.name == table.text) else {
             let known = self.pack.tables.iter().map(|t| t.name.as_str());
-            return self.absent(table, "is not a table", "the name of a `table`", known, faults);
+            return self.absent(
+                table,
+                "is not a table",
+                "the name of a `table`",
+                known,
+                faults,
+            );
         };
         let dated = self.picked(span, faults)?;
         let decl = &self.pack.tables[at];
         if decl.keys.len() != keys.len() {
             faults.push(
-                Diagnostic::fault(span, format!("`{}` is looked up by {}", table.text, count_of(keys.len()))).expected(count_of(decl.keys.len())),
+                Diagnostic::fault(
+                    span,
+                    format!("`{}` is looked up by {}", table.text, count_of(keys.len())),
+                )
+                .expected(count_of(decl.keys.len())),
             );
             return None;
         }
-        let wanted: Vec<Ty> = decl.keys.iter().map(|k| k.map_or(Ty::Count, Ty::Choice)).collect();
+        let wanted: Vec<Ty> = decl
+            .keys
+            .iter()
+            .map(|k| k.map_or(Ty::Count, Ty::Choice))
+            .collect();
         let gives = decl.gives;
-        let nodes: Vec<Option<Node>> = keys.iter().zip(wanted).map(|(e, ty)| self.wanted(e, ty, faults)).collect();
-        Some(Node { ty: gives, span, what: What::Lookup { table: at, dated, keys: nodes.into_iter().collect::<Option<_>>()? } })
+        let nodes: Vec<Option<Node>> = keys
+            .iter()
+            .zip(wanted)
+            .map(|(e, ty)| self.wanted(e, ty, faults))
+            .collect();
+        Some(Node {
+            ty: gives,
+            span,
+            what: What::Lookup {
+                table: at,
+                dated,
+                keys: nodes.into_iter().collect::<Option<_>>()?,
+            },
+        })
     }
 
     /// The kinds that a sum goes over, each with its own reading of condition and body.
-    pub(super) fn over(&mut self, kind: &Ident, with: Option<&Expr>, body: Option<(&Expr, Option<Ty>)>, by: Option<&Ident>, faults: &mut Faults) -> Option<Vec<Over>> {
+    pub(super) fn over(
+        &mut self,
+        kind: &Ident,
+        with: Option<&Expr>,
+        body: Option<(&Expr, Option<Ty>)>,
+        by: Option<&Ident>,
+        faults: &mut Faults,
+    ) -> Option<Vec<Over>> {
         if self.scopes.len() > MOST_LOOPS {
             faults.push(
                 Diagnostic::fault(kind.span, "this goes over records inside records")
@@ -279,7 +497,13 @@ impl Context<'_> {
         let kinds = kinds_of_word(&self.pack.kinds, &kind.text);
         if kinds.is_empty() {
             let known = self.pack.kinds.iter().map(|k| k.name.as_str());
-            return self.absent(kind, "is not a kind", "a kind such as `child` or `job`", known, faults);
+            return self.absent(
+                kind,
+                "is not a kind",
+                "a kind such as `child` or `job`",
+                known,
+                faults,
+            );
         }
         let mut out = Vec::new();
         let mut whole = true;
@@ -289,17 +513,35 @@ impl Context<'_> {
             let inner = body.map(|(e, hint)| self.node(e, hint, faults));
             let key = by.map(|name| self.name(name, None, faults));
             self.scopes.pop();
-            whole &= condition.as_ref().is_none_or(Option::is_some) && inner.as_ref().is_none_or(Option::is_some) && key.as_ref().is_none_or(Option::is_some);
-            out.push(Over { kind, with: condition.flatten(), body: inner.flatten(), by: key.flatten() });
+            whole &= condition.as_ref().is_none_or(Option::is_some)
+                && inner.as_ref().is_none_or(Option::is_some)
+                && key.as_ref().is_none_or(Option::is_some);
+            out.push(Over {
+                kind,
+                with: condition.flatten(),
+                body: inner.flatten(),
+                by: key.flatten(),
+            });
         }
         whole.then_some(out)
     }
 
-    pub(super) fn one_kind(&self, kind: &Ident, over: &mut Vec<Over>, faults: &mut Faults) -> Option<Over> {
+    pub(super) fn one_kind(
+        &self,
+        kind: &Ident,
+        over: &mut Vec<Over>,
+        faults: &mut Faults,
+    ) -> Option<Over> {
         if over.len() == 1 {
             return over.pop();
         }
-        faults.push(Diagnostic::fault(kind.span, format!("`{}` stands for several kinds", kind.text)).expected("one kind to put in order"));
+        faults.push(
+            Diagnostic::fault(
+                kind.span,
+                format!("`{}` stands for several kinds", kind.text),
+            )
+            .expected("one kind to put in order"),
+        );
         None
     }
 }
@@ -308,5 +550,9 @@ impl Context<'_> {
 const MOST_LOOPS: usize = 3;
 
 fn count_of(keys: usize) -> String {
-    if keys == 1 { "1 key".to_owned() } else { format!("{keys} keys") }
+    if keys == 1 {
+        "1 key".to_owned()
+    } else {
+        format!("{keys} keys")
+    }
 }

@@ -175,15 +175,32 @@ pub struct Pack {
 pub fn check(texts: PackTexts) -> Result<Pack, (Sources, Vec<Diagnostic>)> {
     let mut faults = Vec::new();
     let sources = texts.sources;
-    let manifest = super::manifest::read(texts.manifest, &sources.get(texts.manifest).text, &mut faults);
-    let parts: Vec<Part> =
-        texts.rules.iter().map(|file| super::parser::parse(*file, &sources.get(*file).text, &mut faults)).collect();
-    let Some(manifest) = manifest else { return Err((sources, faults)) };
+    let manifest = super::manifest::read(
+        texts.manifest,
+        &sources.get(texts.manifest).text,
+        &mut faults,
+    );
+    let parts: Vec<Part> = texts
+        .rules
+        .iter()
+        .map(|file| super::parser::parse(*file, &sources.get(*file).text, &mut faults))
+        .collect();
+    let Some(manifest) = manifest else {
+        return Err((sources, faults));
+    };
     let clean_rules = faults.is_empty();
     let mut broken = BTreeSet::new();
     let amounts = texts
         .amounts
-        .map(|file| super::amounts::read(file, &sources.get(file).text, &manifest.currency, &mut broken, &mut faults))
+        .map(|file| {
+            super::amounts::read(
+                file,
+                &sources.get(file).text,
+                &manifest.currency,
+                &mut broken,
+                &mut faults,
+            )
+        })
         .unwrap_or_default();
     let clean_amounts = clean_rules && faults.is_empty();
     let mut labels = BTreeMap::new();
@@ -192,10 +209,21 @@ pub fn check(texts: PackTexts) -> Result<Pack, (Sources, Vec<Diagnostic>)> {
             labels.insert(language.clone(), texts);
         }
     }
-    let table_texts: Vec<(String, FileId, String)> =
-        texts.tables.iter().map(|(name, file)| (name.clone(), *file, sources.get(*file).text.clone())).collect();
+    let table_texts: Vec<(String, FileId, String)> = texts
+        .tables
+        .iter()
+        .map(|(name, file)| (name.clone(), *file, sources.get(*file).text.clone()))
+        .collect();
     let before = faults.len();
-    let pack = super::declare::declare(manifest, parts, amounts, labels, &table_texts, broken, &mut faults);
+    let pack = super::declare::declare(
+        manifest,
+        parts,
+        amounts,
+        labels,
+        &table_texts,
+        broken,
+        &mut faults,
+    );
     // Circles and unused names would only echo a statement that was given up.
     if clean_rules && faults.len() == before {
         super::graph::check(&pack, &mut faults);
@@ -209,8 +237,18 @@ pub fn check(texts: PackTexts) -> Result<Pack, (Sources, Vec<Diagnostic>)> {
     }
     faults.sort_by_key(|f| f.span.map(|s| (s.file, s.start)));
     faults.dedup();
-    let (faults, warnings): (Vec<_>, Vec<_>) = faults.into_iter().partition(|f| f.severity == Severity::Fault);
-    if faults.is_empty() { Ok(Pack { sources, warnings, ..pack }) } else { Err((sources, faults)) }
+    let (faults, warnings): (Vec<_>, Vec<_>) = faults
+        .into_iter()
+        .partition(|f| f.severity == Severity::Fault);
+    if faults.is_empty() {
+        Ok(Pack {
+            sources,
+            warnings,
+            ..pack
+        })
+    } else {
+        Err((sources, faults))
+    }
 }
 
 impl Pack {
@@ -218,7 +256,12 @@ impl Pack {
     ///
     /// # Errors
     /// A date outside the pack, a change of an unknown amount, a number that could overflow.
-    pub fn program(&self, dates: &[i64], changes: &[Change], shape: &Shape) -> Result<Program, Vec<Diagnostic>> {
+    pub fn program(
+        &self,
+        dates: &[i64],
+        changes: &[Change],
+        shape: &Shape,
+    ) -> Result<Program, Vec<Diagnostic>> {
         super::lower::program(self, dates, changes, shape)
     }
 

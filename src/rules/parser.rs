@@ -1,7 +1,10 @@
 //! Tokens to statements. One token of lookahead; after a fault it goes on at the next statement, so
 //! that one reading reports every fault. Expressions are in `expressions`.
 
-use super::ast::{Band, ExprKind, FactStatement, Ident, Part, ScaleStep, Statement, StatementKind, StepLimit, TypeName};
+use super::ast::{
+    Band, ExprKind, FactStatement, Ident, Part, ScaleStep, Statement, StatementKind, StepLimit,
+    TypeName,
+};
 use super::token::{STATEMENTS, Token, TokenKind, can_name};
 use crate::diag::{Diagnostic, nearest};
 use crate::num::Fraction;
@@ -27,8 +30,18 @@ pub(super) struct Parser<'a> {
 pub(super) fn parse(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> Part {
     let before = faults.len();
     let tokens = super::lexer::tokens(file, text, faults);
-    let unread = faults[before..].iter().filter_map(|f| f.span.map(|s| s.start)).collect();
-    Parser { tokens, unread, at: 0, faults, depth: 0 }.part(file)
+    let unread = faults[before..]
+        .iter()
+        .filter_map(|f| f.span.map(|s| s.start))
+        .collect();
+    Parser {
+        tokens,
+        unread,
+        at: 0,
+        faults,
+        depth: 0,
+    }
+    .part(file)
 }
 
 impl Parser<'_> {
@@ -83,29 +96,43 @@ impl Parser<'_> {
     /// Reports the token at hand and gives the statement up.
     pub(super) fn unexpected<T>(&mut self, expected: &str) -> Parsed<T> {
         let token = self.peek();
-        let ends = token.kind == TokenKind::End || token.first && self.peek_word().is_some_and(|w| STATEMENTS.contains(&w));
+        let ends = token.kind == TokenKind::End
+            || token.first && self.peek_word().is_some_and(|w| STATEMENTS.contains(&w));
         let fault = if ends && self.at > 0 {
-            Diagnostic::fault(self.previous_span(), "the statement ends here").expected(format!("{expected} after it"))
+            Diagnostic::fault(self.previous_span(), "the statement ends here")
+                .expected(format!("{expected} after it"))
         } else {
-            Diagnostic::fault(token.span, format!("found {}", token.kind.shown())).expected(expected)
+            Diagnostic::fault(token.span, format!("found {}", token.kind.shown()))
+                .expected(expected)
         };
         self.faults.push(fault);
         Err(GaveUp)
     }
 
     pub(super) fn word(&mut self, word: &str) -> Parsed<Span> {
-        if self.at_word(word) { Ok(self.next().span) } else { self.unexpected(&format!("`{word}`")) }
+        if self.at_word(word) {
+            Ok(self.next().span)
+        } else {
+            self.unexpected(&format!("`{word}`"))
+        }
     }
 
     pub(super) fn sign(&mut self, sign: char) -> Parsed<Span> {
-        if self.at_sign(sign) { Ok(self.next().span) } else { self.unexpected(&format!("`{sign}`")) }
+        if self.at_sign(sign) {
+            Ok(self.next().span)
+        } else {
+            self.unexpected(&format!("`{sign}`"))
+        }
     }
 
     /// Any word, keywords included: kinds, periods, choice words and references.
     pub(super) fn any_word(&mut self, what: &str) -> Parsed<Ident> {
         match &self.peek().kind {
             TokenKind::Word(word) => {
-                let ident = Ident { text: word.clone(), span: self.peek().span };
+                let ident = Ident {
+                    text: word.clone(),
+                    span: self.peek().span,
+                };
                 self.next();
                 Ok(ident)
             }
@@ -118,7 +145,12 @@ impl Parser<'_> {
         let ident = self.any_word(what)?;
         if !can_name(&ident.text) {
             self.faults.push(
-                Diagnostic::fault(ident.span, format!("`{}` is a word of the language", ident.text)).expected(what).hint("choose another name"),
+                Diagnostic::fault(
+                    ident.span,
+                    format!("`{}` is a word of the language", ident.text),
+                )
+                .expected(what)
+                .hint("choose another name"),
             );
         }
         Ok(ident)
@@ -130,7 +162,8 @@ impl Parser<'_> {
                 let text = text.clone();
                 let span = self.next().span;
                 if text.trim().is_empty() {
-                    self.faults.push(Diagnostic::fault(span, "this text is empty").expected(what));
+                    self.faults
+                        .push(Diagnostic::fault(span, "this text is empty").expected(what));
                 }
                 Ok(text)
             }
@@ -152,14 +185,19 @@ impl Parser<'_> {
         let minus = self.take_sign('-');
         let value = self.number()?;
         let percent = self.take_sign('%');
-        let value = if percent { value / Fraction::whole(100) } else { value };
+        let value = if percent {
+            value / Fraction::whole(100)
+        } else {
+            value
+        };
         Ok(if minus { -value } else { value })
     }
 
     /// Skips to the next statement.
     fn recover(&mut self) {
         while self.peek().kind != TokenKind::End {
-            let starts = self.peek().first && self.peek_word().is_some_and(|w| STATEMENTS.contains(&w));
+            let starts =
+                self.peek().first && self.peek_word().is_some_and(|w| STATEMENTS.contains(&w));
             if starts {
                 return;
             }
@@ -168,17 +206,28 @@ impl Parser<'_> {
     }
 
     fn part(mut self, file: FileId) -> Part {
-        let start = Span { file, start: 0, end: 0 };
-        let mut part =
-            Part { title: String::new(), title_span: start, dated: None, law: String::new(), statements: Vec::new(), broken: Vec::new() };
+        let start = Span {
+            file,
+            start: 0,
+            end: 0,
+        };
+        let mut part = Part {
+            title: String::new(),
+            title_span: start,
+            dated: None,
+            law: String::new(),
+            statements: Vec::new(),
+            broken: Vec::new(),
+        };
         let mut per = None;
         while self.peek().kind != TokenKind::End {
             let token = self.peek().clone();
             let keyword = match &token.kind {
                 TokenKind::Word(word) if STATEMENTS.contains(&word.as_str()) => word.clone(),
                 TokenKind::Word(word) => {
-                    let mut fault = Diagnostic::fault(token.span, format!("found {}", token.kind.shown()))
-                        .expected("a keyword that starts a statement");
+                    let mut fault =
+                        Diagnostic::fault(token.span, format!("found {}", token.kind.shown()))
+                            .expected("a keyword that starts a statement");
                     if let Some(near) = nearest(word, STATEMENTS) {
                         fault = fault.hint(format!("did you mean `{near}`?"));
                     }
@@ -196,13 +245,17 @@ impl Parser<'_> {
             };
             if !token.first {
                 self.faults.push(
-                    Diagnostic::fault(token.span, format!("`{keyword}` does not start its line")).expected("one statement per line"),
+                    Diagnostic::fault(token.span, format!("`{keyword}` does not start its line"))
+                        .expected("one statement per line"),
                 );
             }
             self.next();
             let named = self.peek_word().map(str::to_owned);
             let before = self.faults.len();
-            if self.statement(&keyword, token.span, &mut per, &mut part).is_err() {
+            if self
+                .statement(&keyword, token.span, &mut per, &mut part)
+                .is_err()
+            {
                 let read = token.span.start..=self.peek().span.start;
                 if self.unread.iter().any(|at| read.contains(at)) {
                     self.faults.truncate(before);
@@ -216,7 +269,13 @@ impl Parser<'_> {
         part
     }
 
-    fn statement(&mut self, keyword: &str, start: Span, per: &mut Option<Ident>, part: &mut Part) -> Parsed<()> {
+    fn statement(
+        &mut self,
+        keyword: &str,
+        start: Span,
+        per: &mut Option<Ident>,
+        part: &mut Part,
+    ) -> Parsed<()> {
         let what = match keyword {
             "part" => {
                 if !part.title.is_empty() {
@@ -244,7 +303,10 @@ impl Parser<'_> {
             "record" => {
                 let name = self.name("a name for the kind of record")?;
                 self.word("of")?;
-                StatementKind::Record { name, owner: self.any_word("the kind that it belongs to")? }
+                StatementKind::Record {
+                    name,
+                    owner: self.any_word("the kind that it belongs to")?,
+                }
             }
             "choice" => {
                 let name = self.name("a name for the choice")?;
@@ -265,19 +327,32 @@ impl Parser<'_> {
                     keys.push(self.any_word("a choice or `count`")?);
                 }
                 self.word("gives")?;
-                StatementKind::Table { name, keys, gives: self.type_name()? }
+                StatementKind::Table {
+                    name,
+                    keys,
+                    gives: self.type_name()?,
+                }
             }
             "bands" => {
                 let name = self.name("a name for the bands")?;
                 self.word("of")?;
-                StatementKind::Bands { name, of: self.type_name()?, bands: Vec::new() }
+                StatementKind::Bands {
+                    name,
+                    of: self.type_name()?,
+                    bands: Vec::new(),
+                }
             }
             "scale" => {
                 let name = self.name("a name for the scale")?;
                 self.word("of")?;
                 let of = self.type_name()?;
                 self.word("gives")?;
-                StatementKind::Scale { name, of, gives: self.type_name()?, steps: Vec::new() }
+                StatementKind::Scale {
+                    name,
+                    of,
+                    gives: self.type_name()?,
+                    steps: Vec::new(),
+                }
             }
             "figure" => {
                 let name = self.name("a name for the figure")?;
@@ -285,24 +360,43 @@ impl Parser<'_> {
                 let ty = self.type_name()?;
                 self.sign('=')?;
                 let expr = self.expression()?;
-                let law = if self.take_word("see") { Some(self.text("a law reference as a text")?) } else { None };
-                StatementKind::Figure { name, ty, expr, law }
+                let law = if self.take_word("see") {
+                    Some(self.text("a law reference as a text")?)
+                } else {
+                    None
+                };
+                StatementKind::Figure {
+                    name,
+                    ty,
+                    expr,
+                    law,
+                }
             }
             "item" => self.item()?,
             "hold" => {
                 self.word("where")?;
                 let when = self.expression()?;
                 self.word("because")?;
-                StatementKind::Hold { when, because: self.text("the reason as a text")? }
+                StatementKind::Hold {
+                    when,
+                    because: self.text("the reason as a text")?,
+                }
             }
             _ => {
                 let name = self.name("a name for the note")?;
                 self.word("where")?;
-                StatementKind::Note { name, when: self.expression()? }
+                StatementKind::Note {
+                    name,
+                    when: self.expression()?,
+                }
             }
         };
         let end = self.previous_span();
-        part.statements.push(Statement { per: per.clone(), what, span: start.to(end) });
+        part.statements.push(Statement {
+            per: per.clone(),
+            what,
+            span: start.to(end),
+        });
         Ok(())
     }
 
@@ -338,7 +432,14 @@ impl Parser<'_> {
         };
         self.word("ask")?;
         let ask = self.text("the question as a text")?;
-        Ok(StatementKind::Fact(Box::new(FactStatement { name, of, ty, range, default, ask })))
+        Ok(StatementKind::Fact(Box::new(FactStatement {
+            name,
+            of,
+            ty,
+            range,
+            default,
+            ask,
+        })))
     }
 
     /// A literal, which may be below zero, or a word of a choice.
@@ -349,7 +450,11 @@ impl Parser<'_> {
         let start = self.next().span;
         let value = -self.number()?;
         let percent = self.take_sign('%');
-        let kind = if percent { ExprKind::Percent(value / Fraction::whole(100)) } else { ExprKind::Number(value) };
+        let kind = if percent {
+            ExprKind::Percent(value / Fraction::whole(100))
+        } else {
+            ExprKind::Number(value)
+        };
         let span = start.to(self.previous_span());
         self.made(kind, span)
     }
@@ -366,7 +471,10 @@ impl Parser<'_> {
         if self.take_sign('/') {
             let by = self.number()?;
             if by.is_zero() {
-                self.faults.push(Diagnostic::fault(span, "a conversion divides by nothing").expected("a number above zero"));
+                self.faults.push(
+                    Diagnostic::fault(span, "a conversion divides by nothing")
+                        .expected("a number above zero"),
+                );
                 return Err(GaveUp);
             }
             times = times / by;
@@ -374,7 +482,12 @@ impl Parser<'_> {
         self.word("see")?;
         // The reference is for whoever reads the pack.
         self.text("a law reference as a text")?;
-        Ok(StatementKind::Conversion { name, from, to, times })
+        Ok(StatementKind::Conversion {
+            name,
+            from,
+            to,
+            times,
+        })
     }
 
     fn item(&mut self) -> Parsed<StatementKind> {
@@ -382,8 +495,9 @@ impl Parser<'_> {
         self.sign(':')?;
         let word = self.any_word("a kind of item")?;
         let Some(kind) = ItemKind::from_word(&word.text) else {
-            let mut fault = Diagnostic::fault(word.span, format!("`{}` is not a kind of item", word.text))
-                .expected(format!("one of {}", ItemKind::WORDS.join(", ")));
+            let mut fault =
+                Diagnostic::fault(word.span, format!("`{}` is not a kind of item", word.text))
+                    .expected(format!("one of {}", ItemKind::WORDS.join(", ")));
             if let Some(near) = nearest(&word.text, ItemKind::WORDS) {
                 fault = fault.hint(format!("did you mean `{near}`?"));
             }
@@ -404,15 +518,24 @@ impl Parser<'_> {
         }
         if !self.at_word("see") {
             self.faults.push(
-                Diagnostic::fault(name.span, format!("the item `{}` has no law reference", name.text))
-                    .expected("`see \"…\"` at the end")
-                    .hint("name the section that it comes from"),
+                Diagnostic::fault(
+                    name.span,
+                    format!("the item `{}` has no law reference", name.text),
+                )
+                .expected("`see \"…\"` at the end")
+                .hint("name the section that it comes from"),
             );
             return Err(GaveUp);
         }
         self.next();
         let law = self.text("a law reference as a text")?;
-        Ok(StatementKind::Item { name, kind, expr, claimed, law })
+        Ok(StatementKind::Item {
+            name,
+            kind,
+            expr,
+            claimed,
+            law,
+        })
     }
 
     /// `band` and `step` lines belong to the `bands` or `scale` right above them.
@@ -426,22 +549,35 @@ impl Parser<'_> {
             below = true;
             limit = Some(self.sum_expression()?);
         } else if !self.take_word("beyond") {
-            return self.unexpected(if keyword == "band" { "`up to` or `beyond`" } else { "`up to`, `below` or `beyond`" });
+            return self.unexpected(if keyword == "band" {
+                "`up to` or `beyond`"
+            } else {
+                "`up to`, `below` or `beyond`"
+            });
         }
         match (keyword, part.statements.last_mut().map(|s| &mut s.what)) {
-            ("band", Some(StatementKind::Bands { bands, .. })) => bands.push(Band { rate: value, up_to: limit, span: start }),
+            ("band", Some(StatementKind::Bands { bands, .. })) => bands.push(Band {
+                rate: value,
+                up_to: limit,
+                span: start,
+            }),
             ("step", Some(StatementKind::Scale { steps, .. })) => {
                 let limit = match (limit, below) {
                     (Some(limit), true) => StepLimit::Below(limit),
                     (Some(limit), false) => StepLimit::UpTo(limit),
                     (None, _) => StepLimit::Beyond,
                 };
-                steps.push(ScaleStep { value, limit, span: start });
+                steps.push(ScaleStep {
+                    value,
+                    limit,
+                    span: start,
+                });
             }
             _ => {
                 let above = if keyword == "band" { "bands" } else { "scale" };
                 self.faults.push(
-                    Diagnostic::fault(start, format!("this `{keyword}` stands under no `{above}`")).expected(format!("a `{above}` statement above it")),
+                    Diagnostic::fault(start, format!("this `{keyword}` stands under no `{above}`"))
+                        .expected(format!("a `{above}` statement above it")),
                 );
             }
         }

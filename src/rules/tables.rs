@@ -19,19 +19,33 @@ pub(super) struct Dense {
 
 /// A table on one day; none where it has no rows or too many keys.
 pub(super) fn dense(pack: &Pack, decl: &TableDecl, day: i64) -> Option<Dense> {
-    let rows: Vec<(Vec<i64>, &Row)> = known(pack, decl).filter(|(_, row)| row.from <= day && day <= row.to).collect();
+    let rows: Vec<(Vec<i64>, &Row)> = known(pack, decl)
+        .filter(|(_, row)| row.from <= day && day <= row.to)
+        .collect();
     let mut keys = Vec::new();
     for (at, key) in decl.keys.iter().enumerate() {
         let (low, high) = match key {
             Some(choice) => (0, pack.choices[*choice].words.len() as i64 - 1),
-            None => (rows.iter().map(|(k, _)| k[at]).min()?, rows.iter().map(|(k, _)| k[at]).max()?),
+            None => (
+                rows.iter().map(|(k, _)| k[at]).min()?,
+                rows.iter().map(|(k, _)| k[at]).max()?,
+            ),
         };
-        keys.push((low, usize::try_from(high.checked_sub(low)?.checked_add(1)?).ok()?));
+        keys.push((
+            low,
+            usize::try_from(high.checked_sub(low)?.checked_add(1)?).ok()?,
+        ));
     }
-    let size = keys.iter().try_fold(1usize, |size, (_, n)| size.checked_mul(*n)).filter(|size| *size <= MOST_KEYS)?;
+    let size = keys
+        .iter()
+        .try_fold(1usize, |size, (_, n)| size.checked_mul(*n))
+        .filter(|size| *size <= MOST_KEYS)?;
     let mut values = vec![None; size];
     for (key, row) in rows {
-        let place = key.iter().zip(&keys).fold(0, |index, (k, (low, n))| index * n + (k - low) as usize);
+        let place = key
+            .iter()
+            .zip(&keys)
+            .fold(0, |index, (k, (low, n))| index * n + (k - low) as usize);
         values[place] = row.value;
     }
     Some(Dense { keys, values })
@@ -41,10 +55,21 @@ pub(super) fn dense(pack: &Pack, decl: &TableDecl, day: i64) -> Option<Dense> {
 fn known<'a>(pack: &'a Pack, decl: &'a TableDecl) -> impl Iterator<Item = (Vec<i64>, &'a Row)> {
     decl.rows.iter().filter_map(|row| {
         let number = |(text, key): (&String, &Option<usize>)| match key {
-            Some(choice) => pack.choices[*choice].words.iter().position(|w| w == text).map(|p| p as i64),
+            Some(choice) => pack.choices[*choice]
+                .words
+                .iter()
+                .position(|w| w == text)
+                .map(|p| p as i64),
             None => text.parse::<u32>().ok().map(i64::from),
         };
-        Some((row.keys.iter().zip(&decl.keys).map(number).collect::<Option<_>>()?, &row.row))
+        Some((
+            row.keys
+                .iter()
+                .zip(&decl.keys)
+                .map(number)
+                .collect::<Option<_>>()?,
+            &row.row,
+        ))
     })
 }
 
@@ -56,12 +81,21 @@ pub(super) fn check(pack: &Pack, decl: &TableDecl, faults: &mut Vec<Diagnostic>)
             match key {
                 Some(choice) if !pack.choices[*choice].words.contains(text) => {
                     let words = &pack.choices[*choice].words;
-                    let fault = Diagnostic::fault(row.row.span, format!("`{text}` is not a word of `{}`", pack.choices[*choice].name));
+                    let fault = Diagnostic::fault(
+                        row.row.span,
+                        format!("`{text}` is not a word of `{}`", pack.choices[*choice].name),
+                    );
                     let fault = fault.expected(format!("one of {}", words.join(", ")));
-                    faults.push(super::declare::with_near(fault, nearest(text, words.iter().map(String::as_str))));
+                    faults.push(super::declare::with_near(
+                        fault,
+                        nearest(text, words.iter().map(String::as_str)),
+                    ));
                 }
                 None if text.parse::<u32>().is_err() => {
-                    faults.push(Diagnostic::fault(row.row.span, format!("`{text}` is not a count")).expected("a whole number from 0 up"));
+                    faults.push(
+                        Diagnostic::fault(row.row.span, format!("`{text}` is not a count"))
+                            .expected("a whole number from 0 up"),
+                    );
                 }
                 Some(_) | None => {}
             }
@@ -80,20 +114,41 @@ pub(super) fn check(pack: &Pack, decl: &TableDecl, faults: &mut Vec<Diagnostic>)
     }
 }
 
-fn gaps(pack: &Pack, decl: &TableDecl, by_key: &BTreeMap<Vec<i64>, Vec<Row>>, faults: &mut Vec<Diagnostic>) {
-    let header = Span { file: decl.file, start: 0, end: decl.header };
+fn gaps(
+    pack: &Pack,
+    decl: &TableDecl,
+    by_key: &BTreeMap<Vec<i64>, Vec<Row>>,
+    faults: &mut Vec<Diagnostic>,
+) {
+    let header = Span {
+        file: decl.file,
+        start: 0,
+        end: decl.header,
+    };
     for day in days(pack, decl) {
         let Some(Dense { keys, values }) = dense(pack, decl, day) else {
-            let empty = !decl.rows.iter().any(|r| r.row.from <= day && day <= r.row.to);
+            let empty = !decl
+                .rows
+                .iter()
+                .any(|r| r.row.from <= day && day <= r.row.to);
             faults.push(if empty {
-                Diagnostic::fault(header, format!("`{}` has no row on {}", decl.name, day_text(day))).expected(all_days(pack))
+                Diagnostic::fault(
+                    header,
+                    format!("`{}` has no row on {}", decl.name, day_text(day)),
+                )
+                .expected(all_days(pack))
             } else {
-                Diagnostic::fault(header, format!("`{}` has too many keys", decl.name))
-                    .expected(format!("at most {MOST_KEYS}, every count between the least and the largest taken"))
+                Diagnostic::fault(header, format!("`{}` has too many keys", decl.name)).expected(
+                    format!(
+                        "at most {MOST_KEYS}, every count between the least and the largest taken"
+                    ),
+                )
             });
             return;
         };
-        let missing: Vec<usize> = (0..values.len()).filter(|at| values[*at].is_none()).collect();
+        let missing: Vec<usize> = (0..values.len())
+            .filter(|at| values[*at].is_none())
+            .collect();
         if let Some(first) = missing.first() {
             let mut rest = *first;
             let mut key = Vec::new();
@@ -106,10 +161,21 @@ fn gaps(pack: &Pack, decl: &TableDecl, by_key: &BTreeMap<Vec<i64>, Vec<Row>>, fa
                 1 => ", and for one more key".to_owned(),
                 n => format!(", and for {n} more keys"),
             };
-            let place = by_key.get(&key).and_then(|rows| rows.iter().rev().find(|row| row.from <= day)).map_or(header, |row| row.span);
+            let place = by_key
+                .get(&key)
+                .and_then(|rows| rows.iter().rev().find(|row| row.from <= day))
+                .map_or(header, |row| row.span);
             faults.push(
-                Diagnostic::fault(place, format!("`{}` has no value for `{}` on {}{others}", decl.name, words_of(pack, decl, &key), day_text(day)))
-                    .expected(all_days(pack)),
+                Diagnostic::fault(
+                    place,
+                    format!(
+                        "`{}` has no value for `{}` on {}{others}",
+                        decl.name,
+                        words_of(pack, decl, &key),
+                        day_text(day)
+                    ),
+                )
+                .expected(all_days(pack)),
             );
             return;
         }
@@ -117,14 +183,22 @@ fn gaps(pack: &Pack, decl: &TableDecl, by_key: &BTreeMap<Vec<i64>, Vec<Row>>, fa
 }
 
 fn all_days(pack: &Pack) -> String {
-    format!("a value for every key and every day from {} to {}", day_text(pack.manifest.from), day_text(pack.manifest.to))
+    format!(
+        "a value for every key and every day from {} to {}",
+        day_text(pack.manifest.from),
+        day_text(pack.manifest.to)
+    )
 }
 
 /// The days on which a table may change, the first day covered among them.
 pub(super) fn days(pack: &Pack, decl: &TableDecl) -> Vec<i64> {
     let mut days = vec![pack.manifest.from];
     for row in &decl.rows {
-        days.extend([row.row.from, row.row.to.saturating_add(1)].into_iter().filter(|d| *d > pack.manifest.from && *d <= pack.manifest.to));
+        days.extend(
+            [row.row.from, row.row.to.saturating_add(1)]
+                .into_iter()
+                .filter(|d| *d > pack.manifest.from && *d <= pack.manifest.to),
+        );
     }
     days.sort_unstable();
     days.dedup();
@@ -133,8 +207,16 @@ pub(super) fn days(pack: &Pack, decl: &TableDecl) -> Vec<i64> {
 
 fn words_of(pack: &Pack, decl: &TableDecl, key: &[i64]) -> String {
     let word = |(at, key): (&i64, &Option<usize>)| match key {
-        Some(choice) => usize::try_from(*at).ok().and_then(|at| pack.choices[*choice].words.get(at)).cloned().unwrap_or_default(),
+        Some(choice) => usize::try_from(*at)
+            .ok()
+            .and_then(|at| pack.choices[*choice].words.get(at))
+            .cloned()
+            .unwrap_or_default(),
         None => at.to_string(),
     };
-    key.iter().zip(&decl.keys).map(word).collect::<Vec<_>>().join(", ")
+    key.iter()
+        .zip(&decl.keys)
+        .map(word)
+        .collect::<Vec<_>>()
+        .join(", ")
 }

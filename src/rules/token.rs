@@ -43,26 +43,81 @@ fn plain(value: Fraction) -> String {
 
 /// The words that start a statement.
 pub(super) const STATEMENTS: [&str; 16] = [
-    "part", "law", "per", "record", "choice", "fact", "conversion", "table", "bands", "band", "scale", "step", "figure", "item", "hold",
+    "part",
+    "law",
+    "per",
+    "record",
+    "choice",
+    "fact",
+    "conversion",
+    "table",
+    "bands",
+    "band",
+    "scale",
+    "step",
+    "figure",
+    "item",
+    "hold",
     "note",
 ];
 
 /// Words that cannot be names because the language uses them inside statements.
 pub(super) const RESERVED: [&str; 44] = [
-    "a", "above", "an", "and", "any", "as", "ask", "at", "because", "below", "beyond", "by", "charged", "claimed", "converted", "count", "dated",
-    "default", "every", "failing", "first", "from", "give", "gives", "half", "if", "is", "larger", "limited", "missing", "money", "not", "of",
-    "or", "otherwise", "over", "partner", "place", "placed", "raised", "required", "rounded", "where", "with",
+    "a",
+    "above",
+    "an",
+    "and",
+    "any",
+    "as",
+    "ask",
+    "at",
+    "because",
+    "below",
+    "beyond",
+    "by",
+    "charged",
+    "claimed",
+    "converted",
+    "count",
+    "dated",
+    "default",
+    "every",
+    "failing",
+    "first",
+    "from",
+    "give",
+    "gives",
+    "half",
+    "if",
+    "is",
+    "larger",
+    "limited",
+    "missing",
+    "money",
+    "not",
+    "of",
+    "or",
+    "otherwise",
+    "over",
+    "partner",
+    "place",
+    "placed",
+    "raised",
+    "required",
+    "rounded",
+    "where",
+    "with",
 ];
 
 /// Words that stand inside statements only where no name can stand, and yet are no names, so that text reads well.
-const INSIDE: [&str; 15] =
-    ["see", "smaller", "sum", "times", "to", "up", "down", "years", "yes", "no", "most", "least", "slope", "steps", "hours"];
+const INSIDE: [&str; 15] = [
+    "see", "smaller", "sum", "times", "to", "up", "down", "years", "yes", "no", "most", "least",
+    "slope", "steps", "hours",
+];
 
 /// Whether a word may be the name of a figure, item, fact or record.
 pub(super) fn can_name(word: &str) -> bool {
-    !STATEMENTS.contains(&word)
-        && !RESERVED.contains(&word)
-        && !INSIDE.contains(&word)
+    !STATEMENTS.contains(&word) && !RESERVED.contains(&word) && !INSIDE.contains(&word)
 }
 
 #[cfg(test)]
@@ -73,7 +128,10 @@ mod tests {
     fn the_grammar_of_the_reference_has_every_word() {
         let reference = include_str!("../../rules/README.md");
         for word in STATEMENTS.iter().chain(&RESERVED).chain(&INSIDE) {
-            assert!(reference.contains(&format!("\"{word}\"")), "`{word}` stands in no rule of the grammar");
+            assert!(
+                reference.contains(&format!("\"{word}\"")),
+                "`{word}` stands in no rule of the grammar"
+            );
         }
     }
 }

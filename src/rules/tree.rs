@@ -36,35 +36,109 @@ pub(super) struct Over {
 pub(super) enum What {
     Fixed(Fraction),
     /// An amount, picked by a date of the pack.
-    Amount { amount: usize, dated: usize },
+    Amount {
+        amount: usize,
+        dated: usize,
+    },
     /// Whether an amount is absent on that date.
-    Missing { amount: usize, dated: usize },
+    Missing {
+        amount: usize,
+        dated: usize,
+    },
     /// A date of the pack.
     Dated(usize),
     /// A fact or figure of the record that stands at `level` of the scopes, or of its owner of the right kind.
-    Name { target: Target, kind: usize, level: usize, text: String },
+    Name {
+        target: Target,
+        kind: usize,
+        level: usize,
+        text: String,
+    },
     /// The same of the partner; `failing` where there is none.
-    Partner { target: Target, level: usize, failing: Option<Box<Node>>, text: String },
+    Partner {
+        target: Target,
+        level: usize,
+        failing: Option<Box<Node>>,
+        text: String,
+    },
     /// A value of a table on a date of the pack.
     /// A figure of the record at `level`, or of its owner of the right kind, once more under changed facts.
-    AsIf { figure: usize, kind: usize, level: usize, changes: Vec<Changed>, text: String },
-    Lookup { table: usize, dated: usize, keys: Vec<Node> },
-    Where { when: Box<Node>, give: Box<Node>, otherwise: Box<Node> },
-    Extreme { larger: bool, list: Vec<Node> },
+    AsIf {
+        figure: usize,
+        kind: usize,
+        level: usize,
+        changes: Vec<Changed>,
+        text: String,
+    },
+    Lookup {
+        table: usize,
+        dated: usize,
+        keys: Vec<Node>,
+    },
+    Where {
+        when: Box<Node>,
+        give: Box<Node>,
+        otherwise: Box<Node>,
+    },
+    Extreme {
+        larger: bool,
+        list: Vec<Node>,
+    },
     Sum(Vec<Over>),
     Count(Vec<Over>),
-    Any { every: bool, over: Vec<Over> },
-    First { down: bool, over: Box<Over>, failing: Box<Node> },
-    Place { down: bool, over: Box<Over> },
-    Years { from: Box<Node>, to: Box<Node> },
-    Binary { op: BinaryOp, left: Box<Node>, right: Box<Node> },
+    Any {
+        every: bool,
+        over: Vec<Over>,
+    },
+    First {
+        down: bool,
+        over: Box<Over>,
+        failing: Box<Node>,
+    },
+    Place {
+        down: bool,
+        over: Box<Over>,
+    },
+    Years {
+        from: Box<Node>,
+        to: Box<Node>,
+    },
+    Binary {
+        op: BinaryOp,
+        left: Box<Node>,
+        right: Box<Node>,
+    },
     /// A product with a fixed factor of a conversion.
-    Convert { of: Box<Node>, conversion: usize },
-    Round { of: Box<Node>, direction: Direction, unit: Fraction, manner: Option<Manner> },
-    DivideRounded { of: Box<Node>, by: Box<Node>, direction: Direction, unit: Fraction, manner: Option<Manner> },
-    Charge { of: Box<Node>, bands: usize },
-    PlaceOn { of: Box<Node>, scale: usize },
-    Compare { op: CompareOp, left: Box<Node>, right: Box<Node> },
+    Convert {
+        of: Box<Node>,
+        conversion: usize,
+    },
+    Round {
+        of: Box<Node>,
+        direction: Direction,
+        unit: Fraction,
+        manner: Option<Manner>,
+    },
+    DivideRounded {
+        of: Box<Node>,
+        by: Box<Node>,
+        direction: Direction,
+        unit: Fraction,
+        manner: Option<Manner>,
+    },
+    Charge {
+        of: Box<Node>,
+        bands: usize,
+    },
+    PlaceOn {
+        of: Box<Node>,
+        scale: usize,
+    },
+    Compare {
+        op: CompareOp,
+        left: Box<Node>,
+        right: Box<Node>,
+    },
     Not(Box<Node>),
     Both(Box<Node>, Box<Node>),
     Either(Box<Node>, Box<Node>),
@@ -167,31 +241,51 @@ impl Node {
     /// Calls back for every node right below this one.
     fn inner<'a>(&'a self, call: &mut dyn FnMut(&'a Node)) {
         match &self.what {
-            What::Fixed(_) | What::Amount { .. } | What::Missing { .. } | What::Dated(_) | What::Name { .. } => {}
+            What::Fixed(_)
+            | What::Amount { .. }
+            | What::Missing { .. }
+            | What::Dated(_)
+            | What::Name { .. } => {}
             What::AsIf { changes, .. } => changes.iter().for_each(|c| call(&c.value)),
             What::Partner { failing, .. } => {
                 if let Some(failing) = failing {
                     call(failing);
                 }
             }
-            What::Lookup { keys: list, .. } | What::Extreme { list, .. } => list.iter().for_each(call),
-            What::Where { when, give, otherwise } => [when, give, otherwise].into_iter().for_each(|n| call(n)),
-            What::Sum(over) | What::Count(over) | What::Any { over, .. } => over.iter().flat_map(Over::nodes).for_each(call),
+            What::Lookup { keys: list, .. } | What::Extreme { list, .. } => {
+                list.iter().for_each(call)
+            }
+            What::Where {
+                when,
+                give,
+                otherwise,
+            } => [when, give, otherwise].into_iter().for_each(|n| call(n)),
+            What::Sum(over) | What::Count(over) | What::Any { over, .. } => {
+                over.iter().flat_map(Over::nodes).for_each(call)
+            }
             What::First { over, failing, .. } => {
                 over.nodes().for_each(&mut *call);
                 call(failing);
             }
             What::Place { over, .. } => over.nodes().for_each(call),
             What::Years { from: a, to: b }
-            | What::Binary { left: a, right: b, .. }
+            | What::Binary {
+                left: a, right: b, ..
+            }
             | What::DivideRounded { of: a, by: b, .. }
-            | What::Compare { left: a, right: b, .. }
+            | What::Compare {
+                left: a, right: b, ..
+            }
             | What::Both(a, b)
             | What::Either(a, b) => {
                 call(a);
                 call(b);
             }
-            What::Convert { of, .. } | What::Round { of, .. } | What::Charge { of, .. } | What::PlaceOn { of, .. } | What::Not(of) => {
+            What::Convert { of, .. }
+            | What::Round { of, .. }
+            | What::Charge { of, .. }
+            | What::PlaceOn { of, .. }
+            | What::Not(of) => {
                 call(of);
             }
         }
@@ -207,7 +301,10 @@ impl Over {
 impl BandsDecl {
     /// Every expression of its bands.
     pub(super) fn nodes(&self) -> Vec<&Node> {
-        self.bands.iter().flat_map(|(rate, limit)| std::iter::once(rate).chain(limit)).collect()
+        self.bands
+            .iter()
+            .flat_map(|(rate, limit)| std::iter::once(rate).chain(limit))
+            .collect()
     }
 }
 

@@ -23,8 +23,17 @@ impl Period {
 
     /// The period with this word.
     pub fn from_word(word: &str) -> Option<Period> {
-        let all = [Period::Hour, Period::Day, Period::Week, Period::Month, Period::Year];
-        Self::WORDS.iter().position(|w| *w == word).map(|at| all[at])
+        let all = [
+            Period::Hour,
+            Period::Day,
+            Period::Week,
+            Period::Month,
+            Period::Year,
+        ];
+        Self::WORDS
+            .iter()
+            .position(|w| *w == word)
+            .map(|at| all[at])
     }
 
     /// Its word.
@@ -47,7 +56,8 @@ pub(super) enum Ty {
 }
 
 impl Ty {
-    pub(super) const WORDS: [&'static str; 7] = ["money", "rate", "hours", "number", "count", "date", "yesno"];
+    pub(super) const WORDS: [&'static str; 7] =
+        ["money", "rate", "hours", "number", "count", "date", "yesno"];
 
     /// How a message names it.
     pub(super) fn words(self) -> String {
@@ -95,7 +105,9 @@ impl Ty {
         self == wanted
             || match wanted {
                 Ty::Number | Ty::Rate => self.is_scalar(),
-                Ty::Money(_) | Ty::Hours | Ty::Count | Ty::Date | Ty::YesNo | Ty::Choice(_) => false,
+                Ty::Money(_) | Ty::Hours | Ty::Count | Ty::Date | Ty::YesNo | Ty::Choice(_) => {
+                    false
+                }
             }
     }
 }

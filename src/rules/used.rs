@@ -29,13 +29,23 @@ type List<'a> = (&'a str, &'a BTreeSet<usize>, Vec<(Span, &'a str)>);
 
 pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
     if pack.definitions.iter().all(|d| d.item.is_none()) {
-        faults.push(Diagnostic::general("the pack has no item").expected("at least one `item`, as a statement consists of them"));
+        faults.push(
+            Diagnostic::general("the pack has no item")
+                .expected("at least one `item`, as a statement consists of them"),
+        );
         return;
     }
     let used = reached(pack);
     let mut report = |span: Option<Span>, what: &str, name: &str| {
-        let fault = Diagnostic { span, ..Diagnostic::general(format!("nothing needs the {what} `{name}`")) };
-        faults.push(fault.expected("an item, hold or note that does").hint("use it, or remove it"));
+        let fault = Diagnostic {
+            span,
+            ..Diagnostic::general(format!("nothing needs the {what} `{name}`"))
+        };
+        faults.push(
+            fault
+                .expected("an item, hold or note that does")
+                .hint("use it, or remove it"),
+        );
     };
     for (at, definition) in pack.definitions.iter().enumerate() {
         if !used.figures.contains(&at) {
@@ -45,7 +55,11 @@ pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
     for (kind, decl) in pack.kinds.iter().enumerate() {
         for (fact, f) in decl.facts.iter().enumerate() {
             // A fact of every member is used where it is used of one.
-            let used_elsewhere = || used.facts.iter().any(|(k, i)| pack.kinds[*k].facts[*i].span == f.span);
+            let used_elsewhere = || {
+                used.facts
+                    .iter()
+                    .any(|(k, i)| pack.kinds[*k].facts[*i].span == f.span)
+            };
             if f.span.is_some() && !used.facts.contains(&(kind, fact)) && !used_elsewhere() {
                 report(f.span, "fact", &f.name);
             }
@@ -61,10 +75,38 @@ pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
         }
     }
     let lists: [List<'_>; 4] = [
-        ("table", &used.tables, pack.tables.iter().map(|t| (t.span, t.name.as_str())).collect()),
-        ("conversion", &used.conversions, pack.conversions.iter().map(|c| (c.span, c.name.as_str())).collect()),
-        ("bands", &used.bands, pack.bands.iter().map(|b| (b.span, b.name.as_str())).collect()),
-        ("scale", &used.scales, pack.scales.iter().map(|s| (s.span, s.name.as_str())).collect()),
+        (
+            "table",
+            &used.tables,
+            pack.tables
+                .iter()
+                .map(|t| (t.span, t.name.as_str()))
+                .collect(),
+        ),
+        (
+            "conversion",
+            &used.conversions,
+            pack.conversions
+                .iter()
+                .map(|c| (c.span, c.name.as_str()))
+                .collect(),
+        ),
+        (
+            "bands",
+            &used.bands,
+            pack.bands
+                .iter()
+                .map(|b| (b.span, b.name.as_str()))
+                .collect(),
+        ),
+        (
+            "scale",
+            &used.scales,
+            pack.scales
+                .iter()
+                .map(|s| (s.span, s.name.as_str()))
+                .collect(),
+        ),
     ];
     for (what, used, decls) in lists {
         for (at, (span, name)) in decls.into_iter().enumerate() {
@@ -102,7 +144,13 @@ fn choices(pack: &Pack) -> BTreeSet<usize> {
         Ty::Choice(at) => Some(at),
         Ty::Money(_) | Ty::Rate | Ty::Hours | Ty::Number | Ty::Count | Ty::Date | Ty::YesNo => None,
     });
-    of_type.chain(pack.tables.iter().flat_map(|t| t.keys.iter().flatten().copied())).collect()
+    of_type
+        .chain(
+            pack.tables
+                .iter()
+                .flat_map(|t| t.keys.iter().flatten().copied()),
+        )
+        .collect()
 }
 
 /// Everything that items, holds and notes need.
@@ -112,7 +160,9 @@ fn reached(pack: &Pack) -> Used {
     for (at, definition) in pack.definitions.iter().enumerate() {
         by_span.entry(definition.span).or_default().push(at);
     }
-    let mut waiting: Vec<usize> = (0..pack.definitions.len()).filter(|at| pack.definitions[*at].item.is_some()).collect();
+    let mut waiting: Vec<usize> = (0..pack.definitions.len())
+        .filter(|at| pack.definitions[*at].item.is_some())
+        .collect();
     for condition in pack.holds.iter().chain(&pack.notes) {
         used.kinds.insert(condition.kind);
         note(pack, &condition.when, &mut used, &mut waiting);
@@ -141,7 +191,9 @@ fn note(pack: &Pack, node: &Node, used: &mut Used, waiting: &mut Vec<usize>) {
                 used.facts.insert((*kind, *fact));
             }
         },
-        What::AsIf { figure, changes, .. } => {
+        What::AsIf {
+            figure, changes, ..
+        } => {
             waiting.push(*figure);
             used.facts.extend(changes.iter().map(|c| (c.kind, c.fact)));
         }
@@ -173,7 +225,9 @@ fn note(pack: &Pack, node: &Node, used: &mut Used, waiting: &mut Vec<usize>) {
                 inner.extend(pack.scales[*scale].nodes());
             }
         }
-        What::Sum(over) | What::Count(over) | What::Any { over, .. } => used.kinds.extend(over.iter().map(|o| o.kind)),
+        What::Sum(over) | What::Count(over) | What::Any { over, .. } => {
+            used.kinds.extend(over.iter().map(|o| o.kind))
+        }
         What::First { over, .. } | What::Place { over, .. } => {
             used.kinds.insert(over.kind);
         }
@@ -206,8 +260,11 @@ fn dates(pack: &Pack, amount: &AmountDecl, guarded: bool, faults: &mut Vec<Diagn
         }
         if row.value.is_none() && !guarded {
             faults.push(
-                Diagnostic::fault(row.span, format!("`{}` is absent from {}", amount.name, day_text(row.from)))
-                    .expected(format!("a `hold where … missing {}`", amount.name)),
+                Diagnostic::fault(
+                    row.span,
+                    format!("`{}` is absent from {}", amount.name, day_text(row.from)),
+                )
+                .expected(format!("a `hold where … missing {}`", amount.name)),
             );
         }
         next = row.to.saturating_add(1);
@@ -216,10 +273,22 @@ fn dates(pack: &Pack, amount: &AmountDecl, guarded: bool, faults: &mut Vec<Diagn
         }
     }
     if next <= pack.manifest.to {
-        let place = amount.rows.iter().rev().find(|row| row.from <= next).unwrap_or(&amount.rows[0]);
+        let place = amount
+            .rows
+            .iter()
+            .rev()
+            .find(|row| row.from <= next)
+            .unwrap_or(&amount.rows[0]);
         faults.push(
-            Diagnostic::fault(place.span, format!("`{}` has no value on {}", amount.name, day_text(next)))
-                .expected(format!("a value for every day from {} to {}", day_text(pack.manifest.from), day_text(pack.manifest.to))),
+            Diagnostic::fault(
+                place.span,
+                format!("`{}` has no value on {}", amount.name, day_text(next)),
+            )
+            .expected(format!(
+                "a value for every day from {} to {}",
+                day_text(pack.manifest.from),
+                day_text(pack.manifest.to)
+            )),
         );
     }
 }

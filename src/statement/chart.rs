@@ -208,7 +208,8 @@ fn sum_range(plot: &Plot<'_>) -> (f64, f64, f64) {
     if sums.is_empty() {
         return (0.0, 100.0, 50.0);
     }
-    let from_zero = least >= 0.0 && least <= 0.4 * largest;
+    // A little below nothing, such as the first fare before the first pay, needs no tick of its own.
+    let from_zero = least >= -0.02 * largest && least <= 0.4 * largest;
     let least = if from_zero { 0.0 } else { least };
     let step = round_step((largest - least).max(20.0), 4);
     let bottom = (least / step).floor() * step;
@@ -252,7 +253,7 @@ pub(super) fn draw(plot: &Plot<'_>) -> Chart {
         .iter()
         .map(|(_, text)| width(text, Weight::Regular, size))
         .fold(0.0, f64::max);
-    let height = 52.0 + size * 11.0;
+    let height = 46.0 + size * 10.6;
     let scale = Scale {
         hours: (0.0, last),
         sums: (bottom_sum, top_sum),

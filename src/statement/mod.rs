@@ -6,7 +6,10 @@
 //! characters that the fonts cannot set, undefined names, and values where no text can stand.
 //! Reads no file, clock or environment. Imports `measures`, `diag`, `num`.
 
-#![expect(clippy::float_arithmetic, reason = "places on a page are floats; sums of money never are")]
+#![expect(
+    clippy::float_arithmetic,
+    reason = "places on a page are floats; sums of money never are"
+)]
 
 mod bars;
 mod build;
@@ -29,6 +32,7 @@ pub use chart::{Chart, Dot, Label, Run, Tick};
 pub use context::{FactShape, LetterContext, LetterDelivery, Office, missing_labels};
 pub use error::StatementError;
 pub use money::{Currency, Decimals};
+pub use room::{probable_length, probable_pages};
 pub use templates::TemplateSet;
 pub use texts::Texts;
 pub use typeset::{PAGE_LIMIT, Typeset, Typesetter, typeset};

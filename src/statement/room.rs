@@ -8,7 +8,7 @@ use super::view::{AnswerWeight, LetterView, Part, Section, Table};
 /// A millimetre in points.
 const MM: f64 = 72.0 / 25.4;
 /// Height of a line, and the distance between lines, in sizes of print.
-const LINE: (f64, f64) = (0.714, 0.54);
+const LINE: (f64, f64) = (0.714, 0.52);
 /// Width of the column of names and of the gutter beside it, in sizes of print.
 const NAMES: (f64, f64) = (8.2, 0.8);
 /// Sizes above this one are large print, set in one column.
@@ -55,7 +55,7 @@ impl Sheet {
 
     /// Height of a rule and the heading under it.
     fn headed(&self) -> f64 {
-        0.55 * self.size + self.lines(1) + 0.6 * self.size
+        0.5 * self.size + self.lines(1) + 0.5 * self.size
     }
 
     /// Something that stays on one page, so many sizes of print below what stands before it.
@@ -64,7 +64,12 @@ impl Sheet {
             self.pages += 1;
             self.used = high;
         } else {
-            self.used += high + if self.used > 0.0 { above * self.size } else { 0.0 };
+            self.used += high
+                + if self.used > 0.0 {
+                    above * self.size
+                } else {
+                    0.0
+                };
         }
     }
 
@@ -79,17 +84,25 @@ impl Sheet {
 
     fn part(&mut self, part: &Part) {
         let wide = self.beside();
-        let texts = part.lines.iter().map(|line| self.text(&format!("{} {}", line.lead, line.text), wide));
+        let texts = part
+            .lines
+            .iter()
+            .map(|line| self.text(&format!("{} {}", line.lead, line.text), wide));
         let body: f64 = texts.map(|high| high + 0.7 * self.size).sum();
-        let high = 0.55 * self.size + self.row(self.lines(1), body - 0.7 * self.size);
-        if part.keep == 1 { self.whole(0.8, high) } else { self.flow(0.8, high) }
+        let high = 0.5 * self.size + self.row(self.lines(1), body - 0.7 * self.size);
+        if part.keep == 1 {
+            self.whole(0.7, high)
+        } else {
+            self.flow(0.7, high)
+        }
     }
 
     fn table(&mut self, table: &Table) {
         let words = |text: &str| text.split(' ').count();
-        let head = table.columns.iter().map(|column| {
-            words(&column.name).div_ceil(3) + usize::from(!column.hours.is_empty())
-        });
+        let head = table
+            .columns
+            .iter()
+            .map(|column| words(&column.name).div_ceil(3) + usize::from(!column.hours.is_empty()));
         let head = self.lines(head.max().unwrap_or(1)) + 0.6 * self.size;
         let rows = table.rows.len() as f64 * (LINE.0 + 0.6) * self.size;
         self.whole(0.4, head + rows);
@@ -110,7 +123,11 @@ impl Sheet {
             let body = self.lines(kept) * scale + gap * self.size + self.text(&answer.detail, wide);
             let name = self.lines(1) + 0.45 * self.size;
             let about = self.text(&answer.about, names) + LINE.1 * self.size;
-            let name = if answer.about.is_empty() { name } else { name + about };
+            let name = if answer.about.is_empty() {
+                name
+            } else {
+                name + about
+            };
             let high = self.row(name, body);
             self.whole(above, high);
         }
@@ -119,23 +136,30 @@ impl Sheet {
     fn section(&mut self, section: &Section) {
         let wide = self.beside();
         if section.bars.height > 0 {
-            self.whole(0.8, self.headed() + section.bars.height as f64 / 100.0);
+            self.whole(0.7, self.headed() + section.bars.height as f64 / 100.0);
         }
-        self.flow(0.8, self.headed());
+        self.flow(0.7, self.headed());
         if !section.turns_lead.is_empty() {
             self.flow(0.0, self.text(&section.turns_lead, self.wide));
         }
         for turn in &section.turns {
             let place = self.text(&turn.place, NAMES.0 * self.size);
-            let pay = if turn.pay.is_empty() { 0.0 } else { self.lines(2) - self.lines(1) };
+            let pay = if turn.pay.is_empty() {
+                0.0
+            } else {
+                self.lines(2) - self.lines(1)
+            };
             let high = self.row(place + pay, self.text(&turn.what, wide));
             self.whole(0.7, high);
         }
         if !section.turns_note.is_empty() {
             self.flow(0.6, self.text(&section.turns_note, self.wide));
         }
+        for part in &section.help {
+            self.part(part);
+        }
         if !section.tables.is_empty() {
-            self.flow(0.8, self.headed());
+            self.flow(0.7, self.headed());
         }
         for table in &section.tables {
             self.table(table);
@@ -147,13 +171,22 @@ impl Sheet {
 }
 
 /// Pages that a letter will probably take.
-pub(super) fn pages(view: &LetterView) -> usize {
+pub fn probable_pages(view: &LetterView) -> usize {
+    probable_length(view).ceil() as usize
+}
+
+/// Pages that a letter will probably fill, the last one by its part: 2.25 is two pages and a quarter of the third.
+pub fn probable_length(view: &LetterView) -> f64 {
     let size = f64::from(view.print_size);
-    let paper = if view.paper == "us-letter" { 792.0 } else { 841.89 };
+    let paper = if view.paper == "us-letter" {
+        792.0
+    } else {
+        841.89
+    };
     let mut sheet = Sheet {
         pages: 1,
         used: 0.0,
-        high: paper - 29.0 * MM - size,
+        high: paper - 27.0 * MM - size,
         wide: super::build::text_width(&view.paper),
         size,
     };
@@ -172,9 +205,12 @@ pub(super) fn pages(view: &LetterView) -> usize {
             sheet.flow(1.2, 0.6 * size + sheet.headed());
         }
         sheet.answers(section);
+        if !section.measure.is_empty() {
+            sheet.flow(0.6, sheet.text(&section.measure, sheet.beside()));
+        }
         if place == 0 {
-            let estimate = format!("{} {}", section.measure, view.estimate.join(" "));
-            sheet.flow(0.9, sheet.text(&estimate, sheet.beside()));
+            let estimate = view.estimate.join(" ");
+            sheet.flow(0.8, sheet.text(&estimate, sheet.beside()));
         }
         if section.chart.height > 0 {
             sheet.whole(0.9, sheet.headed() + section.chart.height as f64 / 100.0);
@@ -189,7 +225,7 @@ pub(super) fn pages(view: &LetterView) -> usize {
         sheet.section(section);
     }
     for part in &view.closing {
-        sheet.flow(0.75, sheet.headed());
+        sheet.flow(0.7, sheet.headed());
         for line in &part.lines {
             let text = format!("{} {}", line.lead, line.text);
             sheet.flow(0.6, sheet.text(&text, sheet.wide));
@@ -197,5 +233,5 @@ pub(super) fn pages(view: &LetterView) -> usize {
         // No distance before the first.
         sheet.used -= 0.6 * size;
     }
-    sheet.pages
+    sheet.pages as f64 - 1.0 + sheet.used / sheet.high
 }

@@ -3,7 +3,7 @@
 use super::build::Detail;
 use super::context::LetterContext;
 use super::error::StatementError;
-use super::room;
+use super::room::probable_length;
 use super::templates::{Filler, TemplateSet, check_glyphs};
 use super::texts::Texts;
 use super::view::LetterView;
@@ -193,11 +193,13 @@ fn frame_text(frame: &Frame) -> String {
     out
 }
 
-/// Pages that an ordinary letter has.
-const ORDINARY_PAGES: usize = 2;
+/// Numbers of pages that are tried, the fewest first: an ordinary letter has two.
+const TRIED: [usize; 2] = [2, 3];
+/// What a probable length must leave free of the last page, in pages, for lines that the typesetter keeps together.
+const SPARE: f64 = 0.03;
 
-/// Builds and typesets one client letter: with every detail; shorter where that fits on two pages, or where the letter would be
-/// longer than [`PAGE_LIMIT`] pages.
+/// Builds and typesets one client letter: with as much detail as two pages hold; where nothing fits on two, as three hold; else with
+/// every detail, and briefly where that would be longer than [`PAGE_LIMIT`] pages.
 ///
 /// # Errors
 /// As for [`super::letter_view`] and [`Typesetter::letter`].
@@ -207,20 +209,33 @@ pub fn typeset(
     context: &LetterContext,
 ) -> Result<Typeset, StatementError> {
     let mut set = |view: &LetterView| typesetter.letter(view, &context.texts, context.issued);
-    let full = super::letter_view(assessment, context, Detail::Full)?;
-    if full.print_size <= ORDINARY_PRINT && room::pages(&full) > ORDINARY_PAGES {
-        let short = super::letter_view(assessment, context, Detail::Short)?;
-        if room::pages(&short) <= ORDINARY_PAGES {
-            let made = set(&short)?;
-            if made.pages <= ORDINARY_PAGES {
+    let mut views = vec![];
+    for detail in [Detail::Full, Detail::Plain, Detail::Short, Detail::Bare] {
+        let view = super::letter_view(assessment, context, detail)?;
+        let length = probable_length(&view);
+        views.push((view, length));
+        // The first that fits is the one with the most detail; nothing shorter is needed.
+        if views[0].0.print_size > ORDINARY_PRINT || length + SPARE <= TRIED[0] as f64 {
+            break;
+        }
+    }
+    for pages in TRIED {
+        for (view, length) in &views {
+            if length + SPARE > pages as f64 {
+                continue;
+            }
+            let made = set(view)?;
+            if made.pages <= pages {
                 return Ok(made);
             }
         }
     }
-    match set(&full) {
-        Err(StatementError::TooLong { .. }) => {
+    let full = views.first().map(|(view, _)| set(view));
+    match full {
+        Some(Ok(made)) => Ok(made),
+        Some(Err(StatementError::TooLong { .. })) | None => {
             set(&super::letter_view(assessment, context, Detail::Brief)?)
         }
-        other => other,
+        Some(Err(other)) => Err(other),
     }
 }

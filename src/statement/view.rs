@@ -136,11 +136,13 @@ pub struct Section {
     pub turns_lead: String,
     /// That there are more; may be empty.
     pub turns_note: String,
+    /// Help in kind that is won, lost or kept; at most one part.
+    pub help: Vec<Part>,
     /// Heading of the table.
     pub table_heading: String,
     /// The short table, in as many pieces as fit side by side.
     pub tables: Vec<Table>,
-    /// Further parts: passported help, if the job ends.
+    /// Further parts: if the job ends.
     pub parts: Vec<Part>,
 }
 

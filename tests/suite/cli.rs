@@ -469,7 +469,10 @@ fn an_offer_that_the_rules_do_not_cover_holds_the_household() {
             "print cases --to {to} --no-statements --issued 2026-05-05"
         ))
     };
-    desk.write("cases/jobs.csv", &jobs_with("ni_category", "", "category_a"));
+    desk.write(
+        "cases/jobs.csv",
+        &jobs_with("ni_category", "", "category_a"),
+    );
     run("covered");
     assert!(!desk.read("covered/held.csv").contains("HA-01"));
     desk.write(
@@ -544,10 +547,7 @@ fn an_adult_without_a_job_has_nothing_that_could_be_seen() {
     let members = desk.read("cases/members.csv");
     desk.write(
         "cases/members.csv",
-        &members.replace(
-            "HA-01,C,",
-            "HA-01,B,adult,Ida Quill,1991-02-03,\nHA-01,C,",
-        ),
+        &members.replace("HA-01,C,", "HA-01,B,adult,Ida Quill,1991-02-03,\nHA-01,C,"),
     );
     desk.write(
         "cases/jobs.csv",

@@ -16,8 +16,13 @@ mod reader;
 mod small_packs;
 mod text;
 mod united_kingdom;
+mod worked;
 
 /// How many times as much is asked.
 fn times() -> usize {
-    if std::env::var_os("HOURWORTH_MORE").is_some_and(|v| v == "1") { 50 } else { 1 }
+    if std::env::var_os("HOURWORTH_MORE").is_some_and(|v| v == "1") {
+        50
+    } else {
+        1
+    }
 }

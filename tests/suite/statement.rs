@@ -7,5 +7,7 @@ mod chart;
 mod invented;
 #[path = "statement/letter.rs"]
 mod letter;
+#[path = "statement/real.rs"]
+mod real;
 #[path = "statement/templates.rs"]
 mod templates;

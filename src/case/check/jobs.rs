@@ -75,8 +75,14 @@ impl Work<'_> {
         // Tables, commands and letters must be able to name each offer.
         for at in 0..jobs.offers.len() {
             if jobs.offers[at].reference.is_empty() {
-                let taken = |name: &str| jobs.offers.iter().any(|offer| offer.reference.eq_ignore_ascii_case(name));
-                let free = (at + 1..).map(|n| format!("offer-{n}")).find(|name| !taken(name));
+                let taken = |name: &str| {
+                    jobs.offers
+                        .iter()
+                        .any(|offer| offer.reference.eq_ignore_ascii_case(name))
+                };
+                let free = (at + 1..)
+                    .map(|n| format!("offer-{n}"))
+                    .find(|name| !taken(name));
                 jobs.offers[at].reference = free.unwrap_or_default();
             }
         }

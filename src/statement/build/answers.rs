@@ -1,5 +1,6 @@
 //! The first answers: what is kept of each named step, and the hours that a sum needs.
 
+use super::Detail;
 use super::steps::Step;
 use super::words::{Measure, Words, hours_text};
 use crate::measures::{EarnerResult, ItemKind, Point};
@@ -22,15 +23,24 @@ pub(super) fn answers(
     let offered = |step: &&Step<'_>| step.offer.is_some();
     let asked = steps.iter().any(|step| step.offer.is_some());
     let mut first = true;
-    let ordered = steps.iter().filter(offered).chain(steps.iter().filter(|step| !offered(step)));
+    let ordered = steps
+        .iter()
+        .filter(offered)
+        .chain(steps.iter().filter(|step| !offered(step)));
     for step in ordered {
+        if words.detail == Detail::Bare && asked && step.offer.is_none() {
+            continue;
+        }
         let weight = if asked && step.offer.is_none() {
             AnswerWeight::Beside
         } else {
             AnswerWeight::Lead
         };
         let mut answer = answer(words, earner, step, (measure, weight))?;
-        if first && let Some(near) = near(words, earner, step, measure)? {
+        if first
+            && words.detail != Detail::Bare
+            && let Some(near) = near(words, earner, step, measure)?
+        {
             answer.detail.push(' ');
             answer.detail.push_str(&near);
         }
@@ -79,7 +89,11 @@ fn detail(
     let today = Words::today(earner);
     let rise = step.to.pay - today.pay;
     let wage = words.currency.wage(step.line.terms.wage);
-    let wage_key = if step.has_premium() { "step.wage_premium" } else { "step.wage" };
+    let wage_key = if step.has_premium() {
+        "step.wage_premium"
+    } else {
+        "step.wage"
+    };
     let rate = if earner.has_job && rise.0 > 0 {
         let share = Fraction::new(i128::from(gain.0), i128::from(rise.0));
         Some(Fraction::ONE - share)
@@ -132,8 +146,15 @@ fn near(
     let grid = &step.line.grid;
     let at = step.to.hours.0;
     let close = |point: &&Point| (point.hours.0 - at).abs() < 2 * NEAR && point.hours.0 > 0;
-    let less = grid.iter().rev().filter(close).find(|point| point.hours.0 <= at - NEAR);
-    let more = grid.iter().filter(close).find(|point| point.hours.0 >= at + NEAR);
+    let less = grid
+        .iter()
+        .rev()
+        .filter(close)
+        .find(|point| point.hours.0 <= at - NEAR);
+    let more = grid
+        .iter()
+        .filter(close)
+        .find(|point| point.hours.0 >= at + NEAR);
     let (Some(less), Some(more)) = (less, more) else {
         return Ok(None);
     };
@@ -186,7 +207,10 @@ fn target(
     };
     if !line.terms.offer.is_empty() {
         let wage = words.currency.wage(line.terms.wage);
-        detail = format!("{} {detail}", words.say("step.target_wage", &[("wage", &wage)])?);
+        detail = format!(
+            "{} {detail}",
+            words.say("step.target_wage", &[("wage", &wage)])?
+        );
     }
     if measure == Measure::AfterCosts {
         detail = format!("{detail} {}", words.plain("step.target_net")?);

@@ -67,7 +67,11 @@ pub(super) fn notes(words: &Words<'_>) -> Result<Vec<Part>, StatementError> {
     if lines.is_empty() {
         return Ok(vec![]);
     }
-    Ok(vec![words.part("notes.heading", PartKind::Paragraphs, lines)?])
+    Ok(vec![words.part(
+        "notes.heading",
+        PartKind::Paragraphs,
+        lines,
+    )?])
 }
 
 /// The pack's labels of one group, in the order of their keys, with what follows the group's name in the key.
@@ -77,7 +81,12 @@ fn grouped<'a>(words: &'a Words<'_>, group: &'a str) -> impl Iterator<Item = (&'
         .labels
         .range(group.to_owned()..)
         .take_while(move |(key, _)| key.starts_with(group))
-        .filter_map(move |(key, _)| Some((key[group.len()..].trim_start_matches('.'), words.label(key)?)))
+        .filter_map(move |(key, _)| {
+            Some((
+                key[group.len()..].trim_start_matches('.'),
+                words.label(key)?,
+            ))
+        })
 }
 
 /// Whether an item of this name concerns the household.

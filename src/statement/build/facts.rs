@@ -9,6 +9,8 @@ use crate::statement::money::{Decimals, readable};
 use crate::statement::view::Line;
 use chrono::NaiveDate;
 
+/// The kind of record of which a person can have several without a name.
+const JOB: &str = "job";
 /// The label of a fact that is not worth a word where it is no or none.
 const UNSAID: &str = "-";
 /// Facts that were assumed to be no or none are named up to this many.
@@ -41,13 +43,12 @@ pub(super) fn facts(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
 
 /// Whether a fact may be printed: not another adult's where the letter is for one, and none that gives a folded item away.
 fn is_shown(words: &Words<'_>, fact: &FactUse) -> bool {
-    let others = |only: usize| {
-        words
-            .assessment
-            .earners
-            .iter()
-            .any(|earner| earner.adult != only && !earner.name.is_empty() && earner.name == fact.of)
-    };
+    let others =
+        |only: usize| {
+            words.assessment.earners.iter().any(|earner| {
+                earner.adult != only && !earner.name.is_empty() && earner.name == fact.of
+            })
+        };
     let reveals = ["fact", "said"].iter().any(|kind| {
         let label = words.context.labels.get(&format!("{kind}.{}", fact.name));
         label.is_some_and(|label| words.reveals(label))
@@ -72,14 +73,12 @@ fn push(
     }
     let mut groups = vec![];
     for owner in owners {
-        let mut said = vec![];
-        for fact in facts.iter().filter(|fact| fact.of == owner) {
-            let text = fact_text(words, fact)?;
-            if !said.contains(&text) {
-                said.push(text);
-            }
-        }
-        let list = enumerated(&said);
+        let of_owner: Vec<&FactUse> = facts
+            .iter()
+            .copied()
+            .filter(|fact| fact.of == owner)
+            .collect();
+        let list = owned(words, &of_owner)?;
         groups.push(if owner.is_empty() {
             list
         } else {
@@ -93,6 +92,37 @@ fn push(
         });
     }
     Ok(())
+}
+
+/// The facts of one person; those of each further job apart.
+fn owned(words: &Words<'_>, facts: &[&FactUse]) -> Result<String, StatementError> {
+    let mut list = String::new();
+    let mut said: Vec<String> = vec![];
+    let mut names: Vec<&str> = vec![];
+    for fact in facts {
+        if fact.kind == JOB && names.contains(&fact.name.as_str()) {
+            list = joined(words, list, &said)?;
+            said.clear();
+            names.clear();
+        }
+        if fact.kind == JOB {
+            names.push(&fact.name);
+        }
+        let text = fact_text(words, fact)?;
+        if !said.contains(&text) {
+            said.push(text);
+        }
+    }
+    joined(words, list, &said)
+}
+
+/// What was said before, and of a further job.
+fn joined(words: &Words<'_>, list: String, said: &[String]) -> Result<String, StatementError> {
+    let more = enumerated(said);
+    if list.is_empty() {
+        return Ok(more);
+    }
+    words.say("facts.again", &[("list", &list), ("more", &more)])
 }
 
 /// Adds the facts that were assumed to be no or none: the names of some, people's own first, each once; and how many more.
@@ -115,7 +145,7 @@ fn push_none(
     }
     let most = match words.detail {
         Detail::Full => NAMED_NONE,
-        Detail::Short | Detail::Brief => NAMED_NONE / 2,
+        Detail::Plain | Detail::Short | Detail::Bare | Detail::Brief => NAMED_NONE / 2,
     };
     let more = names.len().saturating_sub(most);
     if more > 1 {
@@ -173,7 +203,10 @@ fn value(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError> {
         return Ok(word);
     }
     let raw = fact.value.as_str();
-    let shape = words.context.facts.get(&format!("{}.{}", fact.kind, fact.name));
+    let shape = words
+        .context
+        .facts
+        .get(&format!("{}.{}", fact.kind, fact.name));
     match shape.unwrap_or(&FactShape::Plain) {
         FactShape::Money(period) => {
             let decimals = if period == "hour" {
@@ -189,9 +222,7 @@ fn value(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError> {
             }
             words.say(&format!("per.{period}"), &[("sum", &sum)])
         }
-        FactShape::Hours => {
-            words.say("facts.hours", &[("hours", figure(fact))])
-        }
+        FactShape::Hours => words.say("facts.hours", &[("hours", figure(fact))]),
         FactShape::Date => Ok(NaiveDate::parse_from_str(raw, "%Y-%m-%d")
             .map_or_else(|_| raw.to_owned(), |day| words.day(day))),
         FactShape::YesNo => match raw {

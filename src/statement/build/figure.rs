@@ -65,7 +65,11 @@ pub(super) fn chart(
     let mut named = vec![];
     for turn in &drops {
         let size = jump(turn, measure);
-        let key = if size.0 < 0 { "chart.drop" } else { "chart.rise" };
+        let key = if size.0 < 0 {
+            "chart.drop"
+        } else {
+            "chart.rise"
+        };
         let (size, at) = (words.currency.whole(size), hours_text(turn.hours));
         named.push(Drop {
             hours: place(turn.at),
@@ -296,7 +300,10 @@ fn title(
             for ten in &said {
                 list = match list.as_str() {
                     "" => ten.clone(),
-                    first => words.say("chart.title_slopes_then", &[("first", first), ("next", ten)])?,
+                    first => words.say(
+                        "chart.title_slopes_then",
+                        &[("first", first), ("next", ten)],
+                    )?,
                 };
             }
             words.say("chart.title_slopes", &[("list", &list)])

@@ -24,7 +24,10 @@ pub(super) fn particulars(words: &Words<'_>) -> Result<Vec<Particular>, Statemen
         ("issued", words.day(context.issued)),
         ("assessed", words.day(context.assessed)),
         ("area", context.area.clone()),
-        ("rules", rules.unwrap_or_else(|| context.rules_title.clone())),
+        (
+            "rules",
+            rules.unwrap_or_else(|| context.rules_title.clone()),
+        ),
         ("rules_until", words.day(context.rules_until)),
     ]
     .into_iter()
@@ -38,7 +41,10 @@ pub(super) fn particulars(words: &Words<'_>) -> Result<Vec<Particular>, Statemen
 }
 
 /// Whose statement it is.
-pub(super) fn whose(words: &Words<'_>, earners: &[&EarnerResult]) -> Result<String, StatementError> {
+pub(super) fn whose(
+    words: &Words<'_>,
+    earners: &[&EarnerResult],
+) -> Result<String, StatementError> {
     let names: Vec<&str> = earners
         .iter()
         .map(|earner| earner.name.as_str())
@@ -59,7 +65,10 @@ pub(super) fn check_address(address: &[String]) -> Result<(), StatementError> {
     let mut lines = 0;
     for (position, line) in address.iter().enumerate() {
         let rows = wrapped(line, Weight::Regular, SIZE, WIDE);
-        if let Some(word) = rows.iter().find(|row| width(row, Weight::Regular, SIZE) > WIDE) {
+        if let Some(word) = rows
+            .iter()
+            .find(|row| width(row, Weight::Regular, SIZE) > WIDE)
+        {
             return Err(StatementError::Room {
                 field: format!("address[{position}]"),
                 found: format!("more than 84 mm for `{word}`"),

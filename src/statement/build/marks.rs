@@ -70,7 +70,9 @@ impl Marks {
     /// Whether the household has a benefit at one of the points that are shown.
     pub fn has_benefits(&self, assessment: &Assessment) -> bool {
         let items = assessment.items.iter().zip(&self.present);
-        items.into_iter().any(|(item, present)| *present && item.kind == ItemKind::Benefit)
+        items
+            .into_iter()
+            .any(|(item, present)| *present && item.kind == ItemKind::Benefit)
     }
 
     /// The sign for sums at these points, of the items that a test picks; empty where none rests on an unconfirmed amount.
@@ -98,7 +100,10 @@ impl Marks {
     /// The sign for what is kept on a segment.
     pub fn of_segment(&self, segment: &Segment) -> &'static str {
         let shares = segment.shares.iter().zip(&self.starred);
-        if shares.into_iter().any(|(share, starred)| *starred && !share.is_zero()) {
+        if shares
+            .into_iter()
+            .any(|(share, starred)| *starred && !share.is_zero())
+        {
             STAR
         } else {
             ""

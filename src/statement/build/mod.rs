@@ -23,15 +23,19 @@ use words::Words;
 
 pub(super) use figure::text_width;
 
-/// How much a letter says.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+/// How much a letter says; each says less than the one before.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
 pub enum Detail {
     /// Everything.
     Full,
-    /// For letters that fit on two pages without the bars, the words explained, and the longer list of facts that were
-    /// assumed to be none.
+    /// Without the words explained, and with fewer names among the facts that were assumed to be none.
+    Plain,
+    /// Also without the bars and without turning points that lie beyond the steps, where there are others.
     Short,
-    /// For letters that would be too long: as short, and the chart of the leading person alone, three turning points a person.
+    /// Also without an answer to four hours more beside an offer, without the sums of an hour less and more, and without a word
+    /// on further turning points.
+    Bare,
+    /// Also the chart of the leading person alone, and three turning points a person.
     Brief,
 }
 
@@ -64,7 +68,11 @@ pub fn letter_view(
         language: context.texts.language().to_owned(),
         paper: context.delivery.paper.clone(),
         print_size: context.delivery.print_size.max(12),
-        title: words.plain(if words.couple() { "title_couple" } else { "title" })?,
+        title: words.plain(if words.couple() {
+            "title_couple"
+        } else {
+            "title"
+        })?,
         number: context.number.clone(),
         office: context.office.name.clone(),
         office_lines,
@@ -128,7 +136,10 @@ fn what_if(words: &Words<'_>) -> Result<Vec<String>, StatementError> {
 fn amount_value(words: &Words<'_>, value: &str) -> String {
     let mut parts = value.splitn(3, ' ');
     let (figure, unit) = (parts.next().unwrap_or_default(), parts.next());
-    let rest = parts.next().map(|rest| format!(" {rest}")).unwrap_or_default();
+    let rest = parts
+        .next()
+        .map(|rest| format!(" {rest}"))
+        .unwrap_or_default();
     let sum = words.currency.typed(figure, Decimals::WhereNeeded);
     match (unit, sum) {
         (Some("percent"), _) => format!("{figure}%{rest}"),

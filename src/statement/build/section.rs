@@ -1,4 +1,4 @@
-//! One earner's section: first answers, chart, bars, turning points, table, passported help, the way back.
+//! One earner's section: first answers, chart, bars, turning points, help in kind, table, the way back.
 //! The section of a second earner without an offer is short: no chart, no bars, no table.
 
 use super::Detail;
@@ -25,14 +25,9 @@ pub(super) fn section(
     let steps = steps(words, earner)?;
     let turns = turns::turns(words, earner, &steps, (measure, place))?;
     let asked = place == 0 || steps.iter().any(|step| step.offer.is_some());
-    let mut parts = vec![];
-    if let Some(help) = passported(words, earner, &steps)? {
-        parts.push(help);
-    }
     let back = Line::from(way_back(words, earner, measure)?);
-    parts.push(words.part("back.heading", PartKind::Paragraphs, vec![back])?);
     let drawn = match words.detail {
-        Detail::Full | Detail::Short => asked,
+        Detail::Full | Detail::Plain | Detail::Short | Detail::Bare => asked,
         Detail::Brief => place == 0,
     };
     Ok(Section {
@@ -52,7 +47,7 @@ pub(super) fn section(
         } else {
             Chart::default()
         },
-        bars: if words.detail == Detail::Full && place == 0 {
+        bars: if words.detail < Detail::Short && place == 0 {
             figure::bars(words, earner, &steps, measure)?
         } else {
             Bars::default()
@@ -61,13 +56,14 @@ pub(super) fn section(
         turns: turns.texts,
         turns_lead: turns.lead,
         turns_note: turns.note,
+        help: passported(words, earner, &steps)?.into_iter().collect(),
         table_heading: words.plain("table.heading")?,
         tables: if asked {
             table::tables(words, earner, &steps)?
         } else {
             vec![]
         },
-        parts,
+        parts: vec![words.part("back.heading", PartKind::Paragraphs, vec![back])?],
     })
 }
 
@@ -133,10 +129,7 @@ fn help_changes(
             let values = [("hours", hours.as_str()), ("pay", &pay)];
             words.say(&format!("passport.{verb}"), &values)
         }
-        Some(_) | None => words.say(
-            &format!("passport.{verb}_step"),
-            &[("step", &step.name)],
-        ),
+        Some(_) | None => words.say(&format!("passport.{verb}_step"), &[("step", &step.name)]),
     }
 }
 

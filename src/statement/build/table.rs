@@ -125,7 +125,12 @@ fn table(words: &Words<'_>, columns: &[(Column, &Point)]) -> Result<Table, State
     for source in &ABOVE_NET {
         push(words, &mut rows, source, &points)?;
     }
-    total(words, &mut rows, "table.net", points.iter().map(|point| point.net))?;
+    total(
+        words,
+        &mut rows,
+        "table.net",
+        points.iter().map(|point| point.net),
+    )?;
     if push(words, &mut rows, &COSTS, &points)? {
         let sums = points.iter().map(|point| point.after_costs);
         total(words, &mut rows, "table.after_costs", sums)?;
@@ -181,11 +186,7 @@ fn push(
 }
 
 /// The name of a row: the one item's own where there is only one, else its kinds'.
-fn name(
-    words: &Words<'_>,
-    source: &Source,
-    points: &[&Point],
-) -> Result<String, StatementError> {
+fn name(words: &Words<'_>, source: &Source, points: &[&Point]) -> Result<String, StatementError> {
     let mut names: Vec<String> = vec![];
     for (position, item) in words.assessment.items.iter().enumerate() {
         let due = points.iter().any(|point| point.items[position].0 != 0);

@@ -151,7 +151,10 @@ pub(super) fn turns(
         });
     }
     for (from, to, text) in range_text(words, main, measure)? {
-        let (first, last) = (super::super::money::hours(from), super::super::money::hours(to));
+        let (first, last) = (
+            super::super::money::hours(from),
+            super::super::money::hours(to),
+        );
         candidates.push(Candidate {
             rank: rank(Way::Falls, first <= range.1 && last >= range.0),
             away: (first.0 - today.0).abs(),
@@ -170,16 +173,16 @@ pub(super) fn turns(
     let all = candidates.len();
     candidates.sort_by(|a, b| (a.rank, a.away, a.at).cmp(&(b.rank, b.away, b.at)));
     candidates.truncate(match (words.detail, place) {
-        (Detail::Full | Detail::Short, 0) => MOST,
-        (Detail::Full | Detail::Short, _) | (Detail::Brief, _) => FILL,
+        (Detail::Full | Detail::Plain | Detail::Short | Detail::Bare, 0) => MOST,
+        (_, _) => FILL,
     });
     let on_the_way = help_on_the_way
         || candidates
             .iter()
             .any(|found| found.rank <= Rank::SlopeOnTheWay);
     let fill = match words.detail {
-        Detail::Full | Detail::Brief => FILL,
-        Detail::Short => 1,
+        Detail::Full | Detail::Plain => FILL,
+        Detail::Short | Detail::Bare | Detail::Brief => 1,
     };
     let mut position = 0;
     candidates.retain(|found| {
@@ -193,6 +196,7 @@ pub(super) fn turns(
         words.plain("turns.none")?
     };
     let note = match all - candidates.len() {
+        _ if words.detail == Detail::Bare => String::new(),
         0 => String::new(),
         1 => words.plain("turns.more_one")?,
         more => words.say("turns.more", &[("count", &more.to_string())])?,

@@ -281,7 +281,7 @@ fn every_file_of_the_built_in_pack_cut_short() {
     let (pack, texts) = uk();
     for (at, (name, text)) in texts.iter().enumerate() {
         // A prime, and another start for each file, so that the cuts fall everywhere in lines.
-        for cut in cuts(text, 211)
+        for cut in cuts(text, 997)
             .into_iter()
             .map(|cut| cut + at % 7)
             .filter(|cut| text.is_char_boundary(*cut))
@@ -296,7 +296,7 @@ fn every_file_of_the_built_in_pack_with_a_word_lost_or_doubled() {
     let (pack, texts) = uk();
     for (at, (name, text)) in texts.iter().enumerate() {
         let words: Vec<&str> = text.split_inclusive([' ', '\n', ',']).collect();
-        for place in (at % 5..words.len()).step_by(47) {
+        for place in (at % 5..words.len()).step_by(211) {
             let mut lost = words.clone();
             lost.remove(place);
             judge(&with(&pack, name, lost.concat()));

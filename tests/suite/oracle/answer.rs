@@ -91,7 +91,9 @@ impl Course {
             (Course::Fixed(Value::Word(one)), Course::Fixed(Value::Word(two))) => one == two,
             (Course::Fixed(Value::Word(_)), _) | (_, Course::Fixed(Value::Word(_))) => false,
             // Yes is 1 and no is 0.
-            (Course::Fixed(one), Course::Fixed(two)) => one.clone().number() == two.clone().number(),
+            (Course::Fixed(one), Course::Fixed(two)) => {
+                one.clone().number() == two.clone().number()
+            }
             (Course::Steady(Some(one)), Course::Steady(Some(two))) => one == two,
             (_, _) => false,
         }
@@ -113,10 +115,20 @@ impl Course {
 /// One of several results, by a condition that may not be known.
 fn either_course(when: &Course, yes: Course, no: Course) -> Course {
     match when {
-        Course::Fixed(known) => if known.clone().truth() { yes } else { no },
+        Course::Fixed(known) => {
+            if known.clone().truth() {
+                yes
+            } else {
+                no
+            }
+        }
         Course::Steady(_) | Course::Varies if yes.same(&no) => yes,
         Course::Steady(_) | Course::Varies => {
-            if [when, &yes, &no].iter().any(|c| **c == Course::Varies) { Course::Varies } else { Course::Steady(None) }
+            if [when, &yes, &no].iter().any(|c| **c == Course::Varies) {
+                Course::Varies
+            } else {
+                Course::Steady(None)
+            }
         }
     }
 }
@@ -147,7 +159,10 @@ impl Place<'_> {
     }
 
     fn here(&self) -> (usize, usize) {
-        *self.scopes.last().expect("an expression is said of a record")
+        *self
+            .scopes
+            .last()
+            .expect("an expression is said of a record")
     }
 }
 
@@ -190,16 +205,30 @@ pub fn rounded(value: &Q, way: Way, unit: &Q) -> Q {
 
 impl<'a> Oracle<'a> {
     pub fn new(book: &'a Book, days: Vec<i64>, home: Home) -> Oracle<'a> {
-        Oracle { book, days, home, base: World::default() }
+        Oracle {
+            book,
+            days,
+            home,
+            base: World::default(),
+        }
     }
 
     /// All items at these hours, in the order of the law.
     pub fn items(&self, hours: &Q, mode: Mode) -> Vec<(ItemOf, Q)> {
         let run = self.run(hours, mode);
         let mut out = Vec::new();
-        for (at, figure) in self.book.figures.iter().enumerate().filter(|(_, f)| f.item.is_some()) {
+        for (at, figure) in self
+            .book
+            .figures
+            .iter()
+            .enumerate()
+            .filter(|(_, f)| f.item.is_some())
+        {
             for record in 0..self.count(figure.kind) {
-                out.push(((figure.name.clone(), figure.kind, record), self.figure(at, record, &self.base, &run).number()));
+                out.push((
+                    (figure.name.clone(), figure.kind, record),
+                    self.figure(at, record, &self.base, &run).number(),
+                ));
             }
         }
         out
@@ -229,7 +258,18 @@ impl<'a> Oracle<'a> {
         let mut out = Vec::new();
         for condition in list {
             for kind in &condition.kinds {
-                let holds = |record| self.value(&condition.when, &Place { world: &self.base, part: condition.part, scopes: &vec![(*kind, record)] }, &run).truth();
+                let holds = |record| {
+                    self.value(
+                        &condition.when,
+                        &Place {
+                            world: &self.base,
+                            part: condition.part,
+                            scopes: &vec![(*kind, record)],
+                        },
+                        &run,
+                    )
+                    .truth()
+                };
                 if (0..self.count(*kind)).any(holds) && !out.contains(&condition.text) {
                     out.push(condition.text.clone());
                 }
@@ -240,7 +280,11 @@ impl<'a> Oracle<'a> {
     }
 
     fn run(&self, hours: &Q, mode: Mode) -> Run {
-        Run { hours: hours.clone(), mode, done: RefCell::default() }
+        Run {
+            hours: hours.clone(),
+            mode,
+            done: RefCell::default(),
+        }
     }
 
     fn count(&self, kind: usize) -> usize {
@@ -252,23 +296,46 @@ impl<'a> Oracle<'a> {
         if kind == wanted {
             return Some(record);
         }
-        self.owner(self.book.kinds[kind].owner?, self.home.records[kind][record].owner, wanted)
+        self.owner(
+            self.book.kinds[kind].owner?,
+            self.home.records[kind][record].owner,
+            wanted,
+        )
     }
 
     fn figure(&self, at: usize, record: usize, world: &World, run: &Run) -> Value {
         let as_it_is = world.changed.is_empty();
         let known = world.done.borrow().get(&(at, record)).cloned();
-        if let Some(value) = known.or_else(|| run.done.borrow().get(&(at, record)).filter(|_| as_it_is).cloned()) {
+        if let Some(value) = known.or_else(|| {
+            run.done
+                .borrow()
+                .get(&(at, record))
+                .filter(|_| as_it_is)
+                .cloned()
+        }) {
             return value;
         }
         let figure = &self.book.figures[at];
         let scopes = vec![(figure.kind, record)];
-        let place = Place { world, part: figure.part, scopes: &scopes };
+        let place = Place {
+            world,
+            part: figure.part,
+            scopes: &scopes,
+        };
         let mut value = self.value(&figure.expr, &place, run);
-        if figure.item.as_deref().is_some_and(|kind| kind != "passport") && (run.mode == Mode::Law || self.course(&figure.expr, &place) != Course::Varies) {
+        if figure
+            .item
+            .as_deref()
+            .is_some_and(|kind| kind != "passport")
+            && (run.mode == Mode::Law || self.course(&figure.expr, &place) != Course::Varies)
+        {
             value = Value::Number(rounded(&value.number(), Way::HalfUp, &q(1, 100)));
         }
-        if figure.claimed.as_ref().is_some_and(|claimed| !self.value(claimed, &place, run).truth()) {
+        if figure
+            .claimed
+            .as_ref()
+            .is_some_and(|claimed| !self.value(claimed, &place, run).truth())
+        {
             value = Value::Number(Q::zero());
         }
         let passes = as_it_is && self.figure_course(at, record, world) == Course::Varies;
@@ -289,7 +356,9 @@ impl<'a> Oracle<'a> {
         let decl = &self.book.kinds[kind].facts[fact];
         match (decl.ty.as_str(), self.book.choices.get(&decl.ty)) {
             ("yesno", _) => Value::Truth(value != 0),
-            (_, Some(words)) => Value::Word(words[usize::try_from(value).expect("a position")].clone()),
+            (_, Some(words)) => {
+                Value::Word(words[usize::try_from(value).expect("a position")].clone())
+            }
             (_, None) => Value::Number(q(i128::from(value), i128::from(decl.units))),
         }
     }
@@ -299,10 +368,14 @@ impl<'a> Oracle<'a> {
         for (kind, record) in scopes.iter().rev() {
             let (mut kind, mut record) = (*kind, *record);
             loop {
-                if self.book.names[kind].contains_key(name) || self.book.kinds[kind].facts.iter().any(|f| f.name == name) {
+                if self.book.names[kind].contains_key(name)
+                    || self.book.kinds[kind].facts.iter().any(|f| f.name == name)
+                {
                     return Some((kind, record));
                 }
-                let Some(owner) = self.book.kinds[kind].owner else { break };
+                let Some(owner) = self.book.kinds[kind].owner else {
+                    break;
+                };
                 record = self.home.records[kind][record].owner;
                 kind = owner;
             }
@@ -315,38 +388,63 @@ impl<'a> Oracle<'a> {
         match self.book.names[kind].get(name) {
             Some(figure) => self.figure(*figure, record, world, run),
             None => {
-                let fact = self.fact_at(name, kind).unwrap_or_else(|| panic!("`{name}` is known"));
+                let fact = self
+                    .fact_at(name, kind)
+                    .unwrap_or_else(|| panic!("`{name}` is known"));
                 self.fact(kind, record, fact, world, run)
             }
         }
     }
 
     fn fact_at(&self, name: &str, kind: usize) -> Option<usize> {
-        self.book.kinds[kind].facts.iter().position(|f| f.name == name)
+        self.book.kinds[kind]
+            .facts
+            .iter()
+            .position(|f| f.name == name)
     }
 
     /// The place at hand with some facts taken otherwise: those of the records at hand, as bare names find them.
-    fn changed(&self, changes: &[(String, Expr)], place: &Place<'_>, value: impl Fn(&Expr, &Course) -> Value) -> World {
+    fn changed(
+        &self,
+        changes: &[(String, Expr)],
+        place: &Place<'_>,
+        value: impl Fn(&Expr, &Course) -> Value,
+    ) -> World {
         let mut changed = place.world.changed.clone();
         for (name, expr) in changes {
-            let (kind, record) = self.nearest(name, place.scopes).expect("the fact is at hand");
+            let (kind, record) = self
+                .nearest(name, place.scopes)
+                .expect("the fact is at hand");
             let fact = self.fact_at(name, kind).expect("it is a fact");
             let course = self.course(expr, place);
             changed.insert((kind, record, fact), (value(expr, &course), course));
         }
-        World { changed, ..World::default() }
+        World {
+            changed,
+            ..World::default()
+        }
     }
 
     /// The row that holds on the date of a part.
     fn picked<'r>(&self, rows: impl Iterator<Item = &'r Row>, part: usize) -> Vec<&'r Row> {
         let day = self.days[self.book.dated[part].expect("a part that uses amounts is dated")];
-        rows.filter(|row| row.from <= day && day <= row.to).collect()
+        rows.filter(|row| row.from <= day && day <= row.to)
+            .collect()
     }
 
     /// The adult of a relation, or the record of a kind, that `of` means.
     fn relation(&self, whose: &str, place: &Place<'_>) -> (usize, Option<usize>) {
-        let kind = if whose == "partner" { ADULT } else { self.book.kinds_of(whose)[0] };
-        let found = place.scopes.iter().rev().find_map(|(k, r)| self.owner(*k, *r, kind)).expect("the relation is at hand");
+        let kind = if whose == "partner" {
+            ADULT
+        } else {
+            self.book.kinds_of(whose)[0]
+        };
+        let found = place
+            .scopes
+            .iter()
+            .rev()
+            .find_map(|(k, r)| self.owner(*k, *r, kind))
+            .expect("the relation is at hand");
         if whose != "partner" {
             return (kind, Some(found));
         }
@@ -356,20 +454,60 @@ impl<'a> Oracle<'a> {
     /// The records that a sum, count or search goes over: those of the record at hand where the kind belongs below it, else all.
     fn among(&self, kind: usize, place: &Place<'_>) -> Vec<usize> {
         let (here, at) = place.here();
-        (0..self.count(kind)).filter(|r| kind == here || self.owner(kind, *r, here).is_none_or(|owner| owner == at)).collect()
+        (0..self.count(kind))
+            .filter(|r| kind == here || self.owner(kind, *r, here).is_none_or(|owner| owner == at))
+            .collect()
     }
 
-    fn eligible(&self, over: &Search, kind: usize, record: usize, place: &Place<'_>, run: &Run) -> bool {
-        over.with.as_ref().is_none_or(|with| self.value(with, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) }, run).truth())
+    fn eligible(
+        &self,
+        over: &Search,
+        kind: usize,
+        record: usize,
+        place: &Place<'_>,
+        run: &Run,
+    ) -> bool {
+        over.with.as_ref().is_none_or(|with| {
+            self.value(
+                with,
+                &Place {
+                    world: place.world,
+                    part: place.part,
+                    scopes: &place.inside(kind, record),
+                },
+                run,
+            )
+            .truth()
+        })
     }
 
     fn key(&self, over: &Search, kind: usize, record: usize, place: &Place<'_>, run: &Run) -> Q {
-        self.name(&over.by, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) }, run).number()
+        self.name(
+            &over.by,
+            &Place {
+                world: place.world,
+                part: place.part,
+                scopes: &place.inside(kind, record),
+            },
+            run,
+        )
+        .number()
     }
 
     /// Whether `a` stands before `b`: the smaller key, `down` the larger; a tie keeps the order of the list.
-    fn before(&self, over: &Search, kind: usize, a: usize, b: usize, place: &Place<'_>, run: &Run) -> bool {
-        let (x, y) = (self.key(over, kind, a, place, run), self.key(over, kind, b, place, run));
+    fn before(
+        &self,
+        over: &Search,
+        kind: usize,
+        a: usize,
+        b: usize,
+        place: &Place<'_>,
+        run: &Run,
+    ) -> bool {
+        let (x, y) = (
+            self.key(over, kind, a, place, run),
+            self.key(over, kind, b, place, run),
+        );
         if x == y {
             a < b
         } else if over.down {
@@ -380,8 +518,18 @@ impl<'a> Oracle<'a> {
     }
 
     /// The one of these that stands before all others.
-    fn leading(&self, over: &Search, kind: usize, list: &[usize], place: &Place<'_>, run: &Run) -> Option<usize> {
-        list.iter().copied().find(|a| list.iter().all(|b| a == b || self.before(over, kind, *a, *b, place, run)))
+    fn leading(
+        &self,
+        over: &Search,
+        kind: usize,
+        list: &[usize],
+        place: &Place<'_>,
+        run: &Run,
+    ) -> Option<usize> {
+        list.iter().copied().find(|a| {
+            list.iter()
+                .all(|b| a == b || self.before(over, kind, *a, *b, place, run))
+        })
     }
 
     /// A bare name.
@@ -391,7 +539,11 @@ impl<'a> Oracle<'a> {
         }
         if let Some(rows) = self.book.amounts.get(name) {
             // Nothing is known on that day: the household is held.
-            return cell(self.picked(rows.iter(), place.part).first().and_then(|row| row.value.as_ref()));
+            return cell(
+                self.picked(rows.iter(), place.part)
+                    .first()
+                    .and_then(|row| row.value.as_ref()),
+            );
         }
         if let Some(date) = self.date(name) {
             return Value::Number(whole(i128::from(self.days[date])));
@@ -400,7 +552,11 @@ impl<'a> Oracle<'a> {
     }
 
     fn date(&self, name: &str) -> Option<usize> {
-        self.book.dates.iter().position(|d| d == name).or((name == "date").then_some(0))
+        self.book
+            .dates
+            .iter()
+            .position(|d| d == name)
+            .or((name == "date").then_some(0))
     }
 
     fn value(&self, expr: &Expr, place: &Place<'_>, run: &Run) -> Value {
@@ -411,7 +567,11 @@ impl<'a> Oracle<'a> {
             Expr::Day(day) => Value::Number(whole(i128::from(*day))),
             Expr::YesNo(yes) => Value::Truth(*yes),
             Expr::Name(name) => self.name(name, place, run),
-            Expr::Of { name, whose, failing } => match self.relation(whose, place) {
+            Expr::Of {
+                name,
+                whose,
+                failing,
+            } => match self.relation(whose, place) {
                 (kind, Some(record)) => self.of_record(name, kind, record, place.world, run),
                 (_, None) => self.value(failing.as_ref().expect("something stands in"), place, run),
             },
@@ -419,34 +579,78 @@ impl<'a> Oracle<'a> {
                 let keys: Vec<Value> = keys.iter().map(|k| self.value(k, place, run)).collect();
                 self.looked_up(table, &keys, place.part)
             }
-            Expr::Where { when, give, otherwise } => self.value(if truth(when) { give } else { otherwise }, place, run),
-            Expr::Larger(list) => Value::Number(list.iter().map(number).max().expect("a list has an entry")),
-            Expr::Smaller(list) => Value::Number(list.iter().map(number).min().expect("a list has an entry")),
+            Expr::Where {
+                when,
+                give,
+                otherwise,
+            } => self.value(if truth(when) { give } else { otherwise }, place, run),
+            Expr::Larger(list) => {
+                Value::Number(list.iter().map(number).max().expect("a list has an entry"))
+            }
+            Expr::Smaller(list) => {
+                Value::Number(list.iter().map(number).min().expect("a list has an entry"))
+            }
             Expr::SumOver { over, body } => {
                 let mut total = Q::zero();
                 for (kind, record) in self.counted(over, place, run) {
-                    total += self.value(body, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) }, run).number();
+                    total += self
+                        .value(
+                            body,
+                            &Place {
+                                world: place.world,
+                                part: place.part,
+                                scopes: &place.inside(kind, record),
+                            },
+                            run,
+                        )
+                        .number();
                 }
                 Value::Number(total)
             }
-            Expr::CountOf(over) => Value::Number(whole(self.counted(over, place, run).len() as i128)),
+            Expr::CountOf(over) => {
+                Value::Number(whole(self.counted(over, place, run).len() as i128))
+            }
             Expr::Any(over) => Value::Truth(!self.counted(over, place, run).is_empty()),
             Expr::Every(over) => {
-                let all: usize = self.book.kinds_of(&over.kind).iter().map(|kind| self.among(*kind, place).len()).sum();
+                let all: usize = self
+                    .book
+                    .kinds_of(&over.kind)
+                    .iter()
+                    .map(|kind| self.among(*kind, place).len())
+                    .sum();
                 Value::Truth(self.counted(over, place, run).len() == all)
             }
-            Expr::First { over, give, failing } => {
+            Expr::First {
+                over,
+                give,
+                failing,
+            } => {
                 let kind = self.book.kinds_of(&over.kind)[0];
-                let list: Vec<usize> = self.among(kind, place).into_iter().filter(|r| self.eligible(over, kind, *r, place, run)).collect();
+                let list: Vec<usize> = self
+                    .among(kind, place)
+                    .into_iter()
+                    .filter(|r| self.eligible(over, kind, *r, place, run))
+                    .collect();
                 match self.leading(over, kind, &list, place, run) {
-                    Some(record) => self.value(give, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) }, run),
+                    Some(record) => self.value(
+                        give,
+                        &Place {
+                            world: place.world,
+                            part: place.part,
+                            scopes: &place.inside(kind, record),
+                        },
+                        run,
+                    ),
                     None => self.value(failing, place, run),
                 }
             }
             Expr::Place(over) => {
                 let (kind, me) = place.here();
                 let others = (0..self.count(kind)).filter(|other| *other != me);
-                let ahead = others.filter(|other| self.eligible(over, kind, *other, place, run) && self.before(over, kind, *other, me, place, run));
+                let ahead = others.filter(|other| {
+                    self.eligible(over, kind, *other, place, run)
+                        && self.before(over, kind, *other, me, place, run)
+                });
                 Value::Number(whole(1 + ahead.count() as i128))
             }
             Expr::Years { from, to } => {
@@ -454,7 +658,9 @@ impl<'a> Oracle<'a> {
                 Value::Number(whole(i128::from(full_years(day(from), day(to)))))
             }
             Expr::AsIf { name, changes } => {
-                let (kind, record) = self.nearest(name, place.scopes).expect("the figure is at hand");
+                let (kind, record) = self
+                    .nearest(name, place.scopes)
+                    .expect("the figure is at hand");
                 let world = self.changed(changes, place, |expr, _| self.value(expr, place, run));
                 self.of_record(name, kind, record, &world, run)
             }
@@ -462,11 +668,23 @@ impl<'a> Oracle<'a> {
                 let row = self.picked(self.book.amounts[name].iter(), place.part);
                 Value::Truth(row.first().is_none_or(|row| row.value.is_none()))
             }
-            Expr::Pair { sign, left, right } => Value::Number(pair(*sign, number(left), number(right))),
-            Expr::Rounded { of, way, unit, steps } => {
+            Expr::Pair { sign, left, right } => {
+                Value::Number(pair(*sign, number(left), number(right)))
+            }
+            Expr::Rounded {
+                of,
+                way,
+                unit,
+                steps,
+            } => {
                 let value = number(of);
-                let left_out = run.mode == Mode::Smooth && !steps && self.course(of, place) == Course::Varies;
-                Value::Number(if left_out { value } else { rounded(&value, *way, unit) })
+                let left_out =
+                    run.mode == Mode::Smooth && !steps && self.course(of, place) == Course::Varies;
+                Value::Number(if left_out {
+                    value
+                } else {
+                    rounded(&value, *way, unit)
+                })
             }
             Expr::Converted { of, by } => Value::Number(number(of) * &self.book.conversions[by]),
             Expr::Charged { of, by } => {
@@ -477,7 +695,9 @@ impl<'a> Oracle<'a> {
                     for (rate, limit) in &ladder.lines {
                         let rate = self.value(rate, inside, run).number();
                         let high = match limit {
-                            Limit::UpTo(limit) | Limit::Below(limit) => self.value(limit, inside, run).number(),
+                            Limit::UpTo(limit) | Limit::Below(limit) => {
+                                self.value(limit, inside, run).number()
+                            }
                             Limit::Beyond => all.clone(),
                         };
                         // What of it lies between the two limits. A limit below the one before it leaves an empty band.
@@ -498,15 +718,24 @@ impl<'a> Oracle<'a> {
                         Limit::Below(limit) => all < self.value(limit, inside, run).number(),
                         Limit::Beyond => true,
                     };
-                    let step = ladder.lines.iter().find(|(_, limit)| holds(limit)).expect("the last step goes beyond");
+                    let step = ladder
+                        .lines
+                        .iter()
+                        .find(|(_, limit)| holds(limit))
+                        .expect("the last step goes beyond");
                     self.value(&step.0, inside, run)
                 })
             }
             Expr::Compared { test, left, right } => {
                 let (left, right) = (self.value(left, place, run), self.value(right, place, run));
                 let same = match (&left, &right) {
-                    (Value::Word(word), other) | (other, Value::Word(word)) => *word == other.clone().word(),
-                    (_, _) => matches!(test, Test::Is | Test::IsNot) && left.clone().number() == right.clone().number(),
+                    (Value::Word(word), other) | (other, Value::Word(word)) => {
+                        *word == other.clone().word()
+                    }
+                    (_, _) => {
+                        matches!(test, Test::Is | Test::IsNot)
+                            && left.clone().number() == right.clone().number()
+                    }
                 };
                 Value::Truth(match test {
                     Test::Is => same,
@@ -526,15 +755,31 @@ impl<'a> Oracle<'a> {
     /// The records that a condition counts, kind by kind.
     fn counted(&self, over: &Search, place: &Place<'_>, run: &Run) -> Vec<(usize, usize)> {
         let kinds = self.book.kinds_of(&over.kind);
-        let all = kinds.into_iter().flat_map(|kind| self.among(kind, place).into_iter().map(move |record| (kind, record)));
-        all.filter(|(kind, record)| self.eligible(over, *kind, *record, place, run)).collect()
+        let all = kinds.into_iter().flat_map(|kind| {
+            self.among(kind, place)
+                .into_iter()
+                .map(move |record| (kind, record))
+        });
+        all.filter(|(kind, record)| self.eligible(over, *kind, *record, place, run))
+            .collect()
     }
 
     /// Evaluates what stands on the lines of bands or a scale where these were declared.
-    fn on_ladder<T>(&self, ladder: &Ladder, place: &Place<'_>, call: impl FnOnce(&Place<'_>) -> T) -> T {
+    fn on_ladder<T>(
+        &self,
+        ladder: &Ladder,
+        place: &Place<'_>,
+        call: impl FnOnce(&Place<'_>) -> T,
+    ) -> T {
         let (kind, record) = place.here();
-        let own = self.owner(kind, record, ladder.kind).expect("a ladder can be reached");
-        call(&Place { world: place.world, part: ladder.part, scopes: &vec![(ladder.kind, own)] })
+        let own = self
+            .owner(kind, record, ladder.kind)
+            .expect("a ladder can be reached");
+        call(&Place {
+            world: place.world,
+            part: ladder.part,
+            scopes: &vec![(ladder.kind, own)],
+        })
     }
 
     /// The row of a table; a count outside takes the nearest end.
@@ -545,10 +790,17 @@ impl<'a> Oracle<'a> {
             let wanted = match key {
                 key if table.keys[at].is_some() => key.clone().word(),
                 count => {
-                    let column = rows.iter().map(|row| row.keys[at].parse::<i64>().expect("a count"));
-                    let (low, high) = (column.clone().min().expect("a table has rows"), column.max().expect("a table has rows"));
+                    let column = rows
+                        .iter()
+                        .map(|row| row.keys[at].parse::<i64>().expect("a count"));
+                    let (low, high) = (
+                        column.clone().min().expect("a table has rows"),
+                        column.max().expect("a table has rows"),
+                    );
                     let count = count.clone().number().to_integer();
-                    count.clamp(BigInt::from(low), BigInt::from(high)).to_string()
+                    count
+                        .clamp(BigInt::from(low), BigInt::from(high))
+                        .to_string()
                 }
             };
             rows.retain(|row| row.keys[at] == wanted);
@@ -562,17 +814,32 @@ impl<'a> Oracle<'a> {
             return course.clone();
         }
         let figure = &self.book.figures[at];
-        let place = Place { world, part: figure.part, scopes: &vec![(figure.kind, record)] };
+        let place = Place {
+            world,
+            part: figure.part,
+            scopes: &vec![(figure.kind, record)],
+        };
         let mut course = self.course(&figure.expr, &place);
         if let (Course::Fixed(value), Some(kind)) = (&course, &figure.item)
             && kind != "passport"
         {
-            course = Course::Fixed(Value::Number(rounded(&value.clone().number(), Way::HalfUp, &q(1, 100))));
+            course = Course::Fixed(Value::Number(rounded(
+                &value.clone().number(),
+                Way::HalfUp,
+                &q(1, 100),
+            )));
         }
         if let Some(claimed) = &figure.claimed {
-            course = either_course(&self.course(claimed, &place), course, Course::Fixed(Value::Number(Q::zero())));
+            course = either_course(
+                &self.course(claimed, &place),
+                course,
+                Course::Fixed(Value::Number(Q::zero())),
+            );
         }
-        world.courses.borrow_mut().insert((at, record), course.clone());
+        world
+            .courses
+            .borrow_mut()
+            .insert((at, record), course.clone());
         course
     }
 
@@ -605,30 +872,53 @@ impl<'a> Oracle<'a> {
     }
 
     /// The most that any of these depends on; the expression's own value where all are fixed.
-    fn joined(&self, expr: &Expr, place: &Place<'_>, parts: impl IntoIterator<Item = Course>) -> Course {
+    fn joined(
+        &self,
+        expr: &Expr,
+        place: &Place<'_>,
+        parts: impl IntoIterator<Item = Course>,
+    ) -> Course {
         match parts.into_iter().max_by_key(Course::rank) {
             Some(Course::Varies) => Course::Varies,
             Some(Course::Steady(_)) => Course::Steady(None),
-            Some(Course::Fixed(_)) | None => Course::Fixed(self.value(expr, place, &self.nowhere())),
+            Some(Course::Fixed(_)) | None => {
+                Course::Fixed(self.value(expr, place, &self.nowhere()))
+            }
         }
     }
 
     fn with_course(&self, over: &Search, kind: usize, record: usize, place: &Place<'_>) -> Course {
         match &over.with {
             None => Course::Fixed(Value::Truth(true)),
-            Some(with) => self.course(with, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) }),
+            Some(with) => self.course(
+                with,
+                &Place {
+                    world: place.world,
+                    part: place.part,
+                    scopes: &place.inside(kind, record),
+                },
+            ),
         }
     }
 
     fn key_course(&self, over: &Search, kind: usize, record: usize, place: &Place<'_>) -> Course {
-        self.name_course(&over.by, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) })
+        self.name_course(
+            &over.by,
+            &Place {
+                world: place.world,
+                part: place.part,
+                scopes: &place.inside(kind, record),
+            },
+        )
     }
 
     /// Whether an expression is made of numbers and amounts alone.
     fn plain(&self, expr: &Expr, place: &Place<'_>) -> bool {
         match expr {
             Expr::Number(_) => true,
-            Expr::Name(name) => self.nearest(name, place.scopes).is_none() && self.book.amounts.contains_key(name),
+            Expr::Name(name) => {
+                self.nearest(name, place.scopes).is_none() && self.book.amounts.contains_key(name)
+            }
             Expr::Pair { left, right, .. } => self.plain(left, place) && self.plain(right, place),
             Expr::Rounded { of, .. } | Expr::Converted { of, .. } => self.plain(of, place),
             Expr::Larger(list) | Expr::Smaller(list) => list.iter().all(|e| self.plain(e, place)),
@@ -640,16 +930,33 @@ impl<'a> Oracle<'a> {
     fn course(&self, expr: &Expr, place: &Place<'_>) -> Course {
         let of = |e: &Expr| self.course(e, place);
         let nothing = Course::Fixed(Value::Number(Q::zero()));
-        let inside = |kind, record, e: &Expr| self.course(e, &Place { world: place.world, part: place.part, scopes: &place.inside(kind, record) });
+        let inside = |kind, record, e: &Expr| {
+            self.course(
+                e,
+                &Place {
+                    world: place.world,
+                    part: place.part,
+                    scopes: &place.inside(kind, record),
+                },
+            )
+        };
         match expr {
-            Expr::Number(_) | Expr::Day(_) | Expr::YesNo(_) | Expr::Missing(_) => self.joined(expr, place, []),
+            Expr::Number(_) | Expr::Day(_) | Expr::YesNo(_) | Expr::Missing(_) => {
+                self.joined(expr, place, [])
+            }
             Expr::Name(name) => self.name_course(name, place),
-            Expr::Of { name, whose, failing } => match self.relation(whose, place) {
+            Expr::Of {
+                name,
+                whose,
+                failing,
+            } => match self.relation(whose, place) {
                 (kind, Some(record)) => self.record_course(name, kind, record, place.world),
                 (_, None) => of(failing.as_ref().expect("something stands in")),
             },
             Expr::AsIf { name, changes } => {
-                let (kind, record) = self.nearest(name, place.scopes).expect("the figure is at hand");
+                let (kind, record) = self
+                    .nearest(name, place.scopes)
+                    .expect("the figure is at hand");
                 // A value that is not fixed is not asked for.
                 let world = self.changed(changes, place, |_, course| match course {
                     Course::Fixed(value) => value.clone(),
@@ -659,14 +966,22 @@ impl<'a> Oracle<'a> {
             }
             // The keys do not vary, by the checker.
             Expr::Lookup { .. } | Expr::Years { .. } => Course::Steady(None),
-            Expr::Where { when, give, otherwise } => match of(when) {
+            Expr::Where {
+                when,
+                give,
+                otherwise,
+            } => match of(when) {
                 known @ Course::Fixed(_) => of(if known.is(true) { give } else { otherwise }),
                 unknown => either_course(&unknown, of(give), of(otherwise)),
             },
             Expr::Larger(list) | Expr::Smaller(list) => {
                 let mut parts: Vec<Course> = list.iter().map(of).collect();
                 // The larger of one value, or of one value twice, is that value.
-                if parts.iter().all(|part| part.same(&parts[0])) { parts.swap_remove(0) } else { self.joined(expr, place, parts) }
+                if parts.iter().all(|part| part.same(&parts[0])) {
+                    parts.swap_remove(0)
+                } else {
+                    self.joined(expr, place, parts)
+                }
             }
             Expr::SumOver { over, body } => {
                 let mut parts = Vec::new();
@@ -674,17 +989,29 @@ impl<'a> Oracle<'a> {
                     for record in self.among(kind, place) {
                         let when = self.with_course(over, kind, record, place);
                         if !when.is(false) {
-                            parts.push(either_course(&when, inside(kind, record, body), nothing.clone()));
+                            parts.push(either_course(
+                                &when,
+                                inside(kind, record, body),
+                                nothing.clone(),
+                            ));
                         }
                     }
                 }
                 parts.retain(|part| !part.is_number(0));
-                if parts.len() == 1 { parts.swap_remove(0) } else { self.joined(expr, place, parts) }
+                if parts.len() == 1 {
+                    parts.swap_remove(0)
+                } else {
+                    self.joined(expr, place, parts)
+                }
             }
             Expr::CountOf(over) => {
                 let mut parts = Vec::new();
                 for kind in self.book.kinds_of(&over.kind) {
-                    parts.extend(self.among(kind, place).into_iter().map(|record| self.with_course(over, kind, record, place)));
+                    parts.extend(
+                        self.among(kind, place)
+                            .into_iter()
+                            .map(|record| self.with_course(over, kind, record, place)),
+                    );
                 }
                 self.joined(expr, place, parts)
             }
@@ -702,17 +1029,34 @@ impl<'a> Oracle<'a> {
                 }
                 self.joined(expr, place, parts)
             }
-            Expr::First { over, give, failing } => {
+            Expr::First {
+                over,
+                give,
+                failing,
+            } => {
                 let kind = self.book.kinds_of(&over.kind)[0];
-                let could: Vec<(usize, Course)> = self.among(kind, place).into_iter().map(|r| (r, self.with_course(over, kind, r, place))).filter(|(_, c)| !c.is(false)).collect();
+                let could: Vec<(usize, Course)> = self
+                    .among(kind, place)
+                    .into_iter()
+                    .map(|r| (r, self.with_course(over, kind, r, place)))
+                    .filter(|(_, c)| !c.is(false))
+                    .collect();
                 let sure = could.iter().all(|(_, c)| c.is(true));
-                let keys: Vec<Course> = could.iter().map(|(r, _)| self.key_course(over, kind, *r, place)).collect();
+                let keys: Vec<Course> = could
+                    .iter()
+                    .map(|(r, _)| self.key_course(over, kind, *r, place))
+                    .collect();
                 if sure && (could.len() < 2 || keys.iter().all(|k| k.rank() == 0)) {
                     let list: Vec<usize> = could.iter().map(|(r, _)| *r).collect();
-                    let led = if list.len() < 2 { list.first().copied() } else { self.leading(over, kind, &list, place, &self.nowhere()) };
+                    let led = if list.len() < 2 {
+                        list.first().copied()
+                    } else {
+                        self.leading(over, kind, &list, place, &self.nowhere())
+                    };
                     return led.map_or_else(|| of(failing), |r| inside(kind, r, give));
                 }
-                let mut parts: Vec<Course> = could.iter().map(|(r, _)| inside(kind, *r, give)).collect();
+                let mut parts: Vec<Course> =
+                    could.iter().map(|(r, _)| inside(kind, *r, give)).collect();
                 parts.push(of(failing));
                 // Whoever leads, it comes to the same.
                 if parts.iter().all(|part| part.same(&parts[0])) {
@@ -732,7 +1076,9 @@ impl<'a> Oracle<'a> {
                     let eligible = self.with_course(over, kind, other, place);
                     let key = self.key_course(over, kind, other, place);
                     let known = mine.rank() == 0 && key.rank() == 0;
-                    if eligible.is(false) || (known && !self.before(over, kind, other, me, place, &self.nowhere())) {
+                    if eligible.is(false)
+                        || (known && !self.before(over, kind, other, me, place, &self.nowhere()))
+                    {
                         continue;
                     }
                     parts.push(eligible);
@@ -767,16 +1113,24 @@ impl<'a> Oracle<'a> {
             Expr::Charged { of: inner, by } => {
                 let ladder = &self.book.bands[by];
                 let mut parts = Vec::new();
+                let all = of(inner);
                 self.on_ladder(ladder, place, |inside| {
                     let mut low = nothing.clone();
                     for (rate, limit) in &ladder.lines {
                         let rate = self.course(rate, inside);
                         let high = match limit {
                             Limit::UpTo(limit) | Limit::Below(limit) => self.course(limit, inside),
-                            Limit::Beyond => nothing.clone(),
+                            Limit::Beyond => all.clone(),
                         };
-                        if !rate.is_number(0) {
-                            parts.extend([of(inner), rate, low, high.clone()]);
+                        let empty = match (&all, &low, &high) {
+                            (Course::Fixed(all), Course::Fixed(low), Course::Fixed(high)) => {
+                                all.clone().number().min(high.clone().number())
+                                    <= low.clone().number()
+                            }
+                            (_, _, _) => false,
+                        };
+                        if !rate.is_number(0) && !empty {
+                            parts.extend([all.clone(), rate, low, high.clone()]);
                         }
                         low = high;
                     }
@@ -794,9 +1148,21 @@ impl<'a> Oracle<'a> {
                             Limit::Beyond => value,
                             Limit::UpTo(e) | Limit::Below(e) => {
                                 let holds = match (&all, self.course(e, inside), limit) {
-                                    (Course::Fixed(all), Course::Fixed(end), Limit::Below(_)) => Course::Fixed(Value::Truth(all.clone().number() < end.number())),
-                                    (Course::Fixed(all), Course::Fixed(end), _) => Course::Fixed(Value::Truth(all.clone().number() <= end.number())),
-                                    (all, end, _) => if all.rank() > end.rank() { all.clone() } else { end },
+                                    (Course::Fixed(all), Course::Fixed(end), Limit::Below(_)) => {
+                                        Course::Fixed(Value::Truth(
+                                            all.clone().number() < end.number(),
+                                        ))
+                                    }
+                                    (Course::Fixed(all), Course::Fixed(end), _) => Course::Fixed(
+                                        Value::Truth(all.clone().number() <= end.number()),
+                                    ),
+                                    (all, end, _) => {
+                                        if all.rank() > end.rank() {
+                                            all.clone()
+                                        } else {
+                                            end
+                                        }
+                                    }
                                 };
                                 either_course(&holds, value, result)
                             }
@@ -814,7 +1180,11 @@ impl<'a> Oracle<'a> {
                     return left;
                 }
                 let right = of(right);
-                if right.is(decides) { right } else { self.joined(expr, place, [left, right]) }
+                if right.is(decides) {
+                    right
+                } else {
+                    self.joined(expr, place, [left, right])
+                }
             }
         }
     }

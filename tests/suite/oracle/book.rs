@@ -115,9 +115,27 @@ impl Book {
     /// Reads the files of a pack that the checker accepted.
     pub fn read(files: &PackFiles) -> Book {
         let text = |name: &str| files.files.text(name).unwrap_or("");
-        let mut book = Book { dates: dates(text("pack.toml")), ..Book::default() };
-        let birth = || Fact { name: "birth".into(), ty: "date".into(), units: 1 };
-        let job = vec![Fact { name: "hours".into(), ty: "hours".into(), units: 100 }, Fact { name: "wage".into(), ty: "money".into(), units: 10_000 }];
+        let mut book = Book {
+            dates: dates(text("pack.toml")),
+            ..Book::default()
+        };
+        let birth = || Fact {
+            name: "birth".into(),
+            ty: "date".into(),
+            units: 1,
+        };
+        let job = vec![
+            Fact {
+                name: "hours".into(),
+                ty: "hours".into(),
+                units: 100,
+            },
+            Fact {
+                name: "wage".into(),
+                ty: "money".into(),
+                units: 10_000,
+            },
+        ];
         for (name, owner, facts) in [
             ("household", None, vec![]),
             ("adult", Some(HOUSEHOLD), vec![birth()]),
@@ -125,9 +143,17 @@ impl Book {
             ("other", Some(HOUSEHOLD), vec![birth()]),
             ("job", Some(ADULT), job),
         ] {
-            book.kinds.push(Kind { name: name.into(), owner, facts });
+            book.kinds.push(Kind {
+                name: name.into(),
+                owner,
+                facts,
+            });
         }
-        let order: Vec<&str> = text("order.txt").lines().map(|l| l.split('#').next().unwrap_or("").trim()).filter(|l| !l.is_empty()).collect();
+        let order: Vec<&str> = text("order.txt")
+            .lines()
+            .map(|l| l.split('#').next().unwrap_or("").trim())
+            .filter(|l| !l.is_empty())
+            .collect();
         // Kinds and choices may be declared after they are named.
         for name in &order {
             book.declarations(text(name));
@@ -138,7 +164,9 @@ impl Book {
         }
         book.read_amounts(text("amounts.csv"));
         for (name, text) in files.files.texts() {
-            if let Some(table) = name.strip_prefix("tables/").and_then(|n| n.strip_suffix(".csv"))
+            if let Some(table) = name
+                .strip_prefix("tables/")
+                .and_then(|n| n.strip_suffix(".csv"))
                 && let Some(table) = book.tables.get_mut(table)
             {
                 let choice = book.choices.contains_key(&table.gives);
@@ -153,7 +181,12 @@ impl Book {
         match word {
             "unit" => vec![HOUSEHOLD],
             "member" => vec![ADULT, CHILD, OTHER],
-            _ => vec![self.kinds.iter().position(|k| k.name == word).unwrap_or_else(|| panic!("`{word}` is a kind"))],
+            _ => vec![
+                self.kinds
+                    .iter()
+                    .position(|k| k.name == word)
+                    .unwrap_or_else(|| panic!("`{word}` is a kind")),
+            ],
         }
     }
 
@@ -167,7 +200,11 @@ impl Book {
             // Neither word can be a name, so they only stand at the start of these statements.
             if word(0) == "record" {
                 let owner = self.kinds_of(word(3))[0];
-                self.kinds.push(Kind { name: word(1).into(), owner: Some(owner), facts: Vec::new() });
+                self.kinds.push(Kind {
+                    name: word(1).into(),
+                    owner: Some(owner),
+                    facts: Vec::new(),
+                });
             } else if word(0) == "choice" {
                 let mut words = vec![word(3).to_owned()];
                 while tokens.get(at + 2 + 2 * words.len()) == Some(&Token::Sign(',')) {
@@ -221,8 +258,17 @@ impl Book {
                         reader.word("gives");
                         type_name(&mut reader);
                     }
-                    let ladder = Ladder { kind: self.kinds_of(&per)[0], part, lines: Vec::new() };
-                    if keyword == "scale" { &mut self.scales } else { &mut self.bands }.insert(name.clone(), ladder);
+                    let ladder = Ladder {
+                        kind: self.kinds_of(&per)[0],
+                        part,
+                        lines: Vec::new(),
+                    };
+                    if keyword == "scale" {
+                        &mut self.scales
+                    } else {
+                        &mut self.bands
+                    }
+                    .insert(name.clone(), ladder);
                     last = (keyword, name);
                 }
                 "band" | "step" => {
@@ -236,8 +282,16 @@ impl Book {
                         reader.word("beyond");
                         Limit::Beyond
                     };
-                    let ladders = if last.0 == "scale" { &mut self.scales } else { &mut self.bands };
-                    ladders.get_mut(&last.1).expect("a line stands under its ladder").lines.push((value, limit));
+                    let ladders = if last.0 == "scale" {
+                        &mut self.scales
+                    } else {
+                        &mut self.bands
+                    };
+                    ladders
+                        .get_mut(&last.1)
+                        .expect("a line stands under its ladder")
+                        .lines
+                        .push((value, limit));
                 }
                 "figure" => {
                     let name = reader.name();
@@ -254,15 +308,29 @@ impl Book {
                     self.figure(name, &per, part, Some(kind), &mut reader);
                 }
                 "hold" | "note" => {
-                    let mut text = if keyword == "note" { reader.name() } else { String::new() };
+                    let mut text = if keyword == "note" {
+                        reader.name()
+                    } else {
+                        String::new()
+                    };
                     reader.word("where");
                     let when = reader.expr();
                     if keyword == "hold" {
                         reader.word("because");
                         text = reader.text();
                     }
-                    let condition = Condition { kinds: self.kinds_of(&per), part, when, text };
-                    if keyword == "hold" { &mut self.holds } else { &mut self.notes }.push(condition);
+                    let condition = Condition {
+                        kinds: self.kinds_of(&per),
+                        part,
+                        when,
+                        text,
+                    };
+                    if keyword == "hold" {
+                        &mut self.holds
+                    } else {
+                        &mut self.notes
+                    }
+                    .push(condition);
                 }
                 other => panic!("`{other}` starts no statement"),
             }
@@ -298,7 +366,11 @@ impl Book {
             _ => 1,
         };
         for kind in self.kinds_of(&of) {
-            self.kinds[kind].facts.push(Fact { name: name.clone(), ty: ty.clone(), units });
+            self.kinds[kind].facts.push(Fact {
+                name: name.clone(),
+                ty: ty.clone(),
+                units,
+            });
         }
     }
 
@@ -331,10 +403,24 @@ impl Book {
         }
         reader.word("gives");
         let gives = type_name(reader).0;
-        self.tables.insert(name, Table { keys, gives, rows: Vec::new() });
+        self.tables.insert(
+            name,
+            Table {
+                keys,
+                gives,
+                rows: Vec::new(),
+            },
+        );
     }
 
-    fn figure(&mut self, name: String, per: &str, part: usize, item: Option<String>, reader: &mut Reader) {
+    fn figure(
+        &mut self,
+        name: String,
+        per: &str,
+        part: usize,
+        item: Option<String>,
+        reader: &mut Reader,
+    ) {
         let expr = reader.expr();
         let claimed = reader.take("claimed").then(|| {
             reader.word("where");
@@ -345,15 +431,32 @@ impl Book {
         }
         for kind in self.kinds_of(per) {
             self.names[kind].insert(name.clone(), self.figures.len());
-            self.figures.push(Figure { name: name.clone(), kind, part, expr: expr.clone(), item: item.clone(), claimed: claimed.clone() });
+            self.figures.push(Figure {
+                name: name.clone(),
+                kind,
+                part,
+                expr: expr.clone(),
+                item: item.clone(),
+                claimed: claimed.clone(),
+            });
         }
     }
 
     fn read_amounts(&mut self, text: &str) {
-        for fields in csv::ReaderBuilder::new().from_reader(text.as_bytes()).records() {
+        for fields in csv::ReaderBuilder::new()
+            .from_reader(text.as_bytes())
+            .records()
+        {
             let fields = fields.expect("the checker read this");
             let cell = |at: usize| fields.get(at).unwrap_or("").trim().to_owned();
-            let row = row(Vec::new(), &cell(1), &cell(2), &cell(3), &cell(8), if cell(4) == "percent" { "rate" } else { "" });
+            let row = row(
+                Vec::new(),
+                &cell(1),
+                &cell(2),
+                &cell(3),
+                &cell(8),
+                if cell(4) == "percent" { "rate" } else { "" },
+            );
             self.amounts.entry(cell(0)).or_default().push(row);
         }
     }
@@ -362,14 +465,25 @@ impl Book {
 /// A type: its word and, for money, its period.
 fn type_name(reader: &mut Reader) -> (String, String) {
     let word = reader.name();
-    let period = if word == "money" && (reader.take("a") || reader.take("an")) { reader.name() } else { String::new() };
+    let period = if word == "money" && (reader.take("a") || reader.take("an")) {
+        reader.name()
+    } else {
+        String::new()
+    };
     (word, period)
 }
 
 /// Names of the dates, in the order of `[dates]`.
 fn dates(manifest: &str) -> Vec<String> {
-    let lines = manifest.lines().skip_while(|line| line.split('#').next().unwrap_or("").trim() != "[dates]").skip(1);
-    lines.take_while(|line| !line.trim().starts_with('[')).filter_map(|line| line.split_once('=')).map(|(name, _)| name.trim().to_owned()).collect()
+    let lines = manifest
+        .lines()
+        .skip_while(|line| line.split('#').next().unwrap_or("").trim() != "[dates]")
+        .skip(1);
+    lines
+        .take_while(|line| !line.trim().starts_with('['))
+        .filter_map(|line| line.split_once('='))
+        .map(|(name, _)| name.trim().to_owned())
+        .collect()
 }
 
 fn row(keys: Vec<String>, from: &str, to: &str, value: &str, status: &str, ty: &str) -> Row {
@@ -380,22 +494,42 @@ fn row(keys: Vec<String>, from: &str, to: &str, value: &str, status: &str, ty: &
         ("no", _, _) => Some(Cell::Number(whole(0))),
         // Rates stand in percent.
         (value, _, "rate") => number(value).map(|v| Cell::Number(v / q(100, 1))),
-        (value, _, _) => number(value).or_else(|| day(value).map(|d| whole(i128::from(d)))).map(Cell::Number),
+        (value, _, _) => number(value)
+            .or_else(|| day(value).map(|d| whole(i128::from(d))))
+            .map(Cell::Number),
     };
     Row {
         keys,
         from: day(from).expect("the checker read this day"),
-        to: if to.is_empty() { i64::MAX } else { day(to).expect("the checker read this day") },
+        to: if to.is_empty() {
+            i64::MAX
+        } else {
+            day(to).expect("the checker read this day")
+        },
         value,
     }
 }
 
 fn read_table(table: &mut Table, choice: bool, text: &str) {
     let keys = table.keys.len();
-    let ty = if choice { "choice" } else { table.gives.as_str() };
-    for fields in csv::ReaderBuilder::new().from_reader(text.as_bytes()).records() {
+    let ty = if choice {
+        "choice"
+    } else {
+        table.gives.as_str()
+    };
+    for fields in csv::ReaderBuilder::new()
+        .from_reader(text.as_bytes())
+        .records()
+    {
         let fields = fields.expect("the checker read this");
         let cell = |at: usize| fields.get(at).unwrap_or("").trim().to_owned();
-        table.rows.push(row((0..keys).map(cell).collect(), &cell(keys), &cell(keys + 1), &cell(keys + 2), &cell(keys + 5), ty));
+        table.rows.push(row(
+            (0..keys).map(cell).collect(),
+            &cell(keys),
+            &cell(keys + 1),
+            &cell(keys + 2),
+            &cell(keys + 5),
+            ty,
+        ));
     }
 }

@@ -34,7 +34,11 @@ fn rounded(units: &Q, direction: Direction) -> Q {
         Direction::HalfDown => (units - half).ceil(),
         Direction::HalfEven => {
             let (low, high) = ((units - &half).ceil(), (units + &half).floor());
-            if (&low / whole(2)).is_integer() { low } else { high }
+            if (&low / whole(2)).is_integer() {
+                low
+            } else {
+                high
+            }
         }
     }
 }
@@ -52,9 +56,17 @@ pub fn bounds(program: &Program, facts: &[i64], hours: &Q) -> Vec<Bounded> {
     let mut v: Vec<Bounded> = Vec::with_capacity(program.steps.len());
     for (_, step) in program.steps.iter_with_id() {
         let get = |reg: &Reg| &v[reg.position()];
-        let sure = |smooth: Q| Bounded { smooth, error: Q::zero(), window: false };
+        let sure = |smooth: Q| Bounded {
+            smooth,
+            error: Q::zero(),
+            window: false,
+        };
         // The result of an operation on two registers.
-        let both = |a: &Reg, b: &Reg, smooth: Q, error: Q| Bounded { smooth, error, window: get(a).window || get(b).window };
+        let both = |a: &Reg, b: &Reg, smooth: Q, error: Q| Bounded {
+            smooth,
+            error,
+            window: get(a).window || get(b).window,
+        };
         let compared = |a: &Reg, b: &Reg, test: &dyn Fn(&Q, &Q) -> bool| {
             let (x, y) = (get(a), get(b));
             let reach = &x.error + &y.error;
@@ -67,60 +79,127 @@ pub fn bounds(program: &Program, facts: &[i64], hours: &Q) -> Vec<Bounded> {
         };
         let stairs = |of: &Reg, by: Q, unit: Fraction, direction: Direction| {
             let x = get(of);
-            let units = |value: Q| rounded(&(value / &by / self::of(unit)), direction) * self::of(unit);
+            let units =
+                |value: Q| rounded(&(value / &by / self::of(unit)), direction) * self::of(unit);
             let smooth = units(x.smooth.clone());
-            let error = [units(&x.smooth - &x.error), units(&x.smooth + &x.error)].into_iter().map(|end| (end - &smooth).abs()).max().expect("two ends");
-            Bounded { window: x.window || !error.is_zero(), smooth, error }
+            let error = [units(&x.smooth - &x.error), units(&x.smooth + &x.error)]
+                .into_iter()
+                .map(|end| (end - &smooth).abs())
+                .max()
+                .expect("two ends");
+            Bounded {
+                window: x.window || !error.is_zero(),
+                smooth,
+                error,
+            }
         };
         v.push(match &step.op {
             Op::Constant(value) => sure(of(*value)),
             Op::Fact(input) => {
                 let input_at = &program.inputs[*input];
-                sure(q(i128::from(facts[input.position()]), i128::from(input_at.units)))
+                sure(q(
+                    i128::from(facts[input.position()]),
+                    i128::from(input_at.units),
+                ))
             }
             Op::Hours => sure(hours.clone()),
-            Op::Add(a, b) => both(a, b, &get(a).smooth + &get(b).smooth, &get(a).error + &get(b).error),
-            Op::Subtract(a, b) => both(a, b, &get(a).smooth - &get(b).smooth, &get(a).error + &get(b).error),
+            Op::Add(a, b) => both(
+                a,
+                b,
+                &get(a).smooth + &get(b).smooth,
+                &get(a).error + &get(b).error,
+            ),
+            Op::Subtract(a, b) => both(
+                a,
+                b,
+                &get(a).smooth - &get(b).smooth,
+                &get(a).error + &get(b).error,
+            ),
             Op::Multiply(a, b) => {
                 let (x, y) = (get(a), get(b));
-                let error = x.smooth.abs() * &y.error + y.smooth.abs() * &x.error + &x.error * &y.error;
+                let error =
+                    x.smooth.abs() * &y.error + y.smooth.abs() * &x.error + &x.error * &y.error;
                 both(a, b, &x.smooth * &y.smooth, error)
             }
             Op::Times(a, by) => {
                 let by = of(*by);
-                Bounded { smooth: &get(a).smooth * &by, error: &get(a).error * by.abs(), window: get(a).window }
+                Bounded {
+                    smooth: &get(a).smooth * &by,
+                    error: &get(a).error * by.abs(),
+                    window: get(a).window,
+                }
             }
             Op::Smaller(a, b) | Op::Larger(a, b) => {
                 let (x, y) = (get(a), get(b));
                 let smaller = matches!(step.op, Op::Smaller(..));
-                let a_wins = if smaller { x.smooth <= y.smooth } else { x.smooth >= y.smooth };
+                let a_wins = if smaller {
+                    x.smooth <= y.smooth
+                } else {
+                    x.smooth >= y.smooth
+                };
                 let winner = if a_wins { x } else { y };
                 let apart = (&x.smooth - &y.smooth).abs();
                 // The other one counts only where it could win.
                 let close = apart <= &x.error + &y.error;
                 Bounded {
                     smooth: winner.smooth.clone(),
-                    error: if close { x.error.clone().max(y.error.clone()) } else { winner.error.clone() },
-                    window: if close { x.window || y.window } else { winner.window },
+                    error: if close {
+                        x.error.clone().max(y.error.clone())
+                    } else {
+                        winner.error.clone()
+                    },
+                    window: if close {
+                        x.window || y.window
+                    } else {
+                        winner.window
+                    },
                 }
             }
-            Op::Choose { when, then, otherwise } => {
-                let (taken, left) = if get(when).smooth.is_zero() { (get(otherwise), get(then)) } else { (get(then), get(otherwise)) };
+            Op::Choose {
+                when,
+                then,
+                otherwise,
+            } => {
+                let (taken, left) = if get(when).smooth.is_zero() {
+                    (get(otherwise), get(then))
+                } else {
+                    (get(then), get(otherwise))
+                };
                 if get(when).error.is_zero() {
                     taken.clone()
                 } else {
                     let other = (&left.smooth - &taken.smooth).abs() + &left.error;
-                    Bounded { smooth: taken.smooth.clone(), error: other.max(taken.error.clone()), window: true }
+                    Bounded {
+                        smooth: taken.smooth.clone(),
+                        error: other.max(taken.error.clone()),
+                        window: true,
+                    }
                 }
             }
-            Op::Round { of: a, unit, direction, manner } => match manner {
+            Op::Round {
+                of: a,
+                unit,
+                direction,
+                manner,
+            } => match manner {
                 Manner::Minor | Manner::Slope if step.varies => {
                     let x = get(a);
-                    Bounded { smooth: x.smooth.clone(), error: &x.error + most(*direction) * of(*unit), window: x.window }
+                    Bounded {
+                        smooth: x.smooth.clone(),
+                        error: &x.error + most(*direction) * of(*unit),
+                        window: x.window,
+                    }
                 }
-                Manner::Minor | Manner::Slope | Manner::Steps => stairs(a, whole(1), *unit, *direction),
+                Manner::Minor | Manner::Slope | Manner::Steps => {
+                    stairs(a, whole(1), *unit, *direction)
+                }
             },
-            Op::Divide { of: a, by, unit, direction } => stairs(a, get(by).smooth.clone(), *unit, *direction),
+            Op::Divide {
+                of: a,
+                by,
+                unit,
+                direction,
+            } => stairs(a, get(by).smooth.clone(), *unit, *direction),
             Op::AtLeast(a, b) => compared(a, b, &|x, y| x >= y),
             Op::Above(a, b) => compared(a, b, &|x, y| x > y),
             Op::Same(a, b) => compared(a, b, &|x, y| x == y),
@@ -128,20 +207,32 @@ pub fn bounds(program: &Program, facts: &[i64], hours: &Q) -> Vec<Bounded> {
                 let decides = whole(i128::from(matches!(step.op, Op::Either(..))));
                 let (x, y) = (get(a), get(b));
                 let settles = |c: &Bounded| c.error.is_zero() && c.smooth == decides;
-                let smooth = if x.smooth == decides || y.smooth == decides { decides.clone() } else { whole(1) - &decides };
+                let smooth = if x.smooth == decides || y.smooth == decides {
+                    decides.clone()
+                } else {
+                    whole(1) - &decides
+                };
                 match (settles(x), settles(y)) {
                     (true, _) => x.clone(),
                     (_, true) => y.clone(),
                     (false, false) => both(a, b, smooth, x.error.clone().max(y.error.clone())),
                 }
             }
-            Op::Not(a) => Bounded { smooth: whole(1) - &get(a).smooth, ..get(a).clone() },
+            Op::Not(a) => Bounded {
+                smooth: whole(1) - &get(a).smooth,
+                ..get(a).clone()
+            },
             Op::Lookup { table, keys } => {
                 let table = &program.tables[*table];
-                let index = keys.iter().zip(&table.keys).fold(0usize, |index, (key, (low, many))| {
-                    let place = get(key).smooth.to_integer().to_i64().expect("a key") - low;
-                    index * many + usize::try_from(place.clamp(0, *many as i64 - 1)).expect("a position")
-                });
+                let index =
+                    keys.iter()
+                        .zip(&table.keys)
+                        .fold(0usize, |index, (key, (low, many))| {
+                            let place = get(key).smooth.to_integer().to_i64().expect("a key") - low;
+                            index * many
+                                + usize::try_from(place.clamp(0, *many as i64 - 1))
+                                    .expect("a position")
+                        });
                 sure(of(table.values[index]))
             }
             Op::Years { from, to } => {

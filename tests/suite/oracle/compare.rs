@@ -7,7 +7,9 @@ use super::bound::{bounds, of};
 use super::luck::Luck;
 use super::text::{Q, q, whole};
 use hourworth::case::{Household, Schema};
-use hourworth::engine::{Curve, ItemKind, JobChoice, Machine, Piece, Setting, Special, Walk, working};
+use hourworth::engine::{
+    Curve, ItemKind, JobChoice, Machine, Piece, Setting, Special, Walk, working,
+};
 use hourworth::num::{Fraction, Hours, Money};
 use hourworth::program::Program;
 use hourworth::rules::Pack;
@@ -75,10 +77,25 @@ fn show(value: &Q) -> String {
 /// The records of a household as the oracle takes them, with the job in question among them.
 fn home(setting: &Setting<'_>, household: &Household) -> Home {
     let varied_job = setting.shape.varied_job as usize;
-    let mut records: Vec<Vec<Record>> =
-        household.instances.iter().map(|kind| kind.iter().map(|r| Record { owner: r.owner, values: r.values.clone() }).collect()).collect();
-    records[JOB][varied_job].values.clone_from(&setting.job().values);
-    Home { records, varied_job }
+    let mut records: Vec<Vec<Record>> = household
+        .instances
+        .iter()
+        .map(|kind| {
+            kind.iter()
+                .map(|r| Record {
+                    owner: r.owner,
+                    values: r.values.clone(),
+                })
+                .collect()
+        })
+        .collect();
+    records[JOB][varied_job]
+        .values
+        .clone_from(&setting.job().values);
+    Home {
+        records,
+        varied_job,
+    }
 }
 
 struct Both<'a> {
@@ -93,13 +110,22 @@ struct Both<'a> {
 /// # Errors
 /// The first difference.
 pub fn compare(subject: &Subject<'_>, asked: Asked, tally: &mut Tally) -> Outcome {
-    let Some(setting) = Setting::new(subject.household, subject.earner, subject.choice) else { return Ok(()) };
+    let Some(setting) = Setting::new(subject.household, subject.earner, subject.choice) else {
+        return Ok(());
+    };
     let program = match subject.pack.program(subject.days, &[], &setting.shape) {
         Ok(program) => program,
         Err(faults) => {
             // A household larger than the one that the checker tries may need larger numbers; it is told so.
-            let words: Vec<String> = faults.iter().map(|f| f.render(&subject.pack.sources, false)).collect();
-            return if words.iter().all(|w| w.contains("too large")) { Ok(()) } else { Err(format!("no program: {}", words.join("\n"))) };
+            let words: Vec<String> = faults
+                .iter()
+                .map(|f| f.render(&subject.pack.sources, false))
+                .collect();
+            return if words.iter().all(|w| w.contains("too large")) {
+                Ok(())
+            } else {
+                Err(format!("no program: {}", words.join("\n")))
+            };
         }
     };
     let facts = setting.facts(&program);
@@ -110,11 +136,22 @@ pub fn compare(subject: &Subject<'_>, asked: Asked, tally: &mut Tally) -> Outcom
         .iter()
         .map(|item| {
             let line = &program.lines[item.line];
-            ((line.name.clone(), line.kind as usize, line.instance as usize), item.kind)
+            (
+                (
+                    line.name.clone(),
+                    line.kind as usize,
+                    line.instance as usize,
+                ),
+                item.kind,
+            )
         })
         .collect();
     let both = Both {
-        oracle: Oracle::new(subject.book, subject.days.to_vec(), home(&setting, subject.household)),
+        oracle: Oracle::new(
+            subject.book,
+            subject.days.to_vec(),
+            home(&setting, subject.household),
+        ),
         special: machine.special(&facts),
         facts,
         names,
@@ -142,10 +179,14 @@ impl Both<'_> {
         for hundredths in hours {
             let at = q(i128::from(hundredths), 100);
             let found = self.special.at(Hours(hundredths), &mut values);
-            let exactly = self.special.exactly_at(Fraction::new(i128::from(hundredths), 100));
+            let exactly = self
+                .special
+                .exactly_at(Fraction::new(i128::from(hundredths), 100));
             self.same_money(&found, &at, "on the grid")?;
             if found != exactly {
-                return Err(format!("at {at} hours the grid has {found:?}, the exact evaluation {exactly:?}"));
+                return Err(format!(
+                    "at {at} hours the grid has {found:?}, the exact evaluation {exactly:?}"
+                ));
             }
             let sorted = |mut list: Vec<String>| {
                 list.sort();
@@ -153,11 +194,21 @@ impl Both<'_> {
                 list
             };
             for (what, mine, theirs) in [
-                ("holds", self.oracle.holds(&at), self.special.holds(Hours(hundredths))),
-                ("notes", self.oracle.notes(&at), self.special.notes(Hours(hundredths))),
+                (
+                    "holds",
+                    self.oracle.holds(&at),
+                    self.special.holds(Hours(hundredths)),
+                ),
+                (
+                    "notes",
+                    self.oracle.notes(&at),
+                    self.special.notes(Hours(hundredths)),
+                ),
             ] {
                 if mine != sorted(theirs.clone()) {
-                    return Err(format!("{what} at {at} hours: the oracle has {mine:?}, the engine {theirs:?}"));
+                    return Err(format!(
+                        "{what} at {at} hours: the oracle has {mine:?}, the engine {theirs:?}"
+                    ));
                 }
             }
             tally.law_points += 1;
@@ -174,11 +225,17 @@ impl Both<'_> {
     fn same_money(&self, found: &[Money], at: &Q, how: &str) -> Outcome {
         let expected = self.oracle.items(at, Mode::Law);
         if expected.len() != found.len() {
-            return Err(format!("the oracle has {} items, the engine {}", expected.len(), found.len()));
+            return Err(format!(
+                "the oracle has {} items, the engine {}",
+                expected.len(),
+                found.len()
+            ));
         }
         for (((name, value), (own, kind)), money) in expected.iter().zip(&self.names).zip(found) {
             if name != own {
-                return Err(format!("the oracle has the item {name:?} where the engine has {own:?}"));
+                return Err(format!(
+                    "the oracle has the item {name:?} where the engine has {own:?}"
+                ));
             }
             let unit = if *kind == ItemKind::Passport { 1 } else { 100 };
             if *value != q(i128::from(money.0), unit) {
@@ -201,9 +258,14 @@ impl Both<'_> {
         let hours = Hours(hundredths.to_integer().to_i64().expect("hours are small"));
         let mut out = String::new();
         for line in working(&self.special, hours) {
-            let mine = self.oracle.figure_by_law(&line.name, line.of.0, line.of.1, at);
+            let mine = self
+                .oracle
+                .figure_by_law(&line.name, line.of.0, line.of.1, at);
             if mine.as_ref().is_some_and(|mine| *mine != of(line.exact)) {
-                out += &format!("figure {} of {:?}: the oracle has {mine:?}, the engine {:?}\n", line.name, line.of, line.exact);
+                out += &format!(
+                    "figure {} of {:?}: the oracle has {mine:?}, the engine {:?}\n",
+                    line.name, line.of, line.exact
+                );
             }
         }
         out
@@ -211,33 +273,65 @@ impl Both<'_> {
 
     /// Items of the oracle with roundings smoothed.
     fn smooth(&self, at: &Q) -> Vec<Q> {
-        self.oracle.items(at, Mode::Smooth).into_iter().map(|(_, value)| value).collect()
+        self.oracle
+            .items(at, Mode::Smooth)
+            .into_iter()
+            .map(|(_, value)| value)
+            .collect()
     }
 
     fn differs(&self, item: usize, at: &Q, how: &str, oracle: &Q, walk: &Q) -> String {
-        format!("{:?} at {} hours {how}: the oracle has {}, the walk {}", self.names[item].0, show(at), show(oracle), show(walk))
+        format!(
+            "{:?} at {} hours {how}: the oracle has {}, the walk {}",
+            self.names[item].0,
+            show(at),
+            show(oracle),
+            show(walk)
+        )
     }
 
     fn on_piece(&self, piece: &Piece, at: &Q, how: &str) -> Outcome {
         for (item, (mine, curve)) in self.smooth(at).iter().zip(&piece.items).enumerate() {
             let theirs = on_curve(curve, at);
             if *mine != theirs {
-                return Err(self.differs(item, at, &format!("{how} of the piece {:?} to {:?}", piece.from, piece.to), mine, &theirs));
+                return Err(self.differs(
+                    item,
+                    at,
+                    &format!("{how} of the piece {:?} to {:?}", piece.from, piece.to),
+                    mine,
+                    &theirs,
+                ));
             }
         }
         Ok(())
     }
 
     /// The walk: no gaps, each piece at both ends from inside and at three places within, each bend, and rationals at random.
-    fn along(&self, walk: &Walk, up_to: &Q, luck: &mut Luck, asked: Asked, tally: &mut Tally) -> Outcome {
-        let Some(first) = walk.pieces.first() else { return Err("a walk without a piece".into()) };
+    fn along(
+        &self,
+        walk: &Walk,
+        up_to: &Q,
+        luck: &mut Luck,
+        asked: Asked,
+        tally: &mut Tally,
+    ) -> Outcome {
+        let Some(first) = walk.pieces.first() else {
+            return Err("a walk without a piece".into());
+        };
         let ends_well = walk.pieces.last().is_some_and(|last| of(last.to) == *up_to);
         if !of(first.from).is_integer() || of(first.from) != whole(0) || !ends_well {
-            return Err(format!("the walk goes from {:?} to {:?}", first.from, walk.pieces.last().map(|p| p.to)));
+            return Err(format!(
+                "the walk goes from {:?} to {:?}",
+                first.from,
+                walk.pieces.last().map(|p| p.to)
+            ));
         }
         for pair in walk.pieces.windows(2) {
             if pair[0].to != pair[1].from || pair[0].from >= pair[0].to {
-                return Err(format!("the piece {:?} to {:?} does not meet the one from {:?}", pair[0].from, pair[0].to, pair[1].from));
+                return Err(format!(
+                    "the piece {:?} to {:?} does not meet the one from {:?}",
+                    pair[0].from, pair[0].to, pair[1].from
+                ));
             }
         }
         let step = walk.pieces.len().div_ceil(asked.most_pieces).max(1);
@@ -251,7 +345,11 @@ impl Both<'_> {
                 let theirs = of(*theirs);
                 // A value that does not fit is given to a thousand million millionth.
                 let fits = mine.numer().to_i128().is_some() && mine.denom().to_i128().is_some();
-                let same = if fits { *mine == theirs } else { (mine - &theirs).abs() <= q(1, 1_000_000_000_000_000) };
+                let same = if fits {
+                    *mine == theirs
+                } else {
+                    (mine - &theirs).abs() <= q(1, 1_000_000_000_000_000)
+                };
                 if !same {
                     return Err(self.differs(item, &at, "at a bend", mine, &theirs));
                 }
@@ -262,7 +360,9 @@ impl Both<'_> {
         for _ in 0..asked.rationals {
             let below = luck.between(1, 10_000);
             let at = q(i128::from(luck.between(0, 168 * below)), i128::from(below));
-            let piece = walk.pieces.iter().find(|p| of(p.from) < at && at < of(p.to) && !(irrational(p.to) && of(p.to) - &at < close()));
+            let piece = walk.pieces.iter().find(|p| {
+                of(p.from) < at && at < of(p.to) && !(irrational(p.to) && of(p.to) - &at < close())
+            });
             if let Some(piece) = piece {
                 self.on_piece(piece, &at, "inside")?;
                 tally.walk_points += 1;
@@ -283,7 +383,10 @@ impl Both<'_> {
         // The true place of an irrational end lies less than this before the end that the walk gives, never behind it.
         let beside = close().min(&length * q(1, 8));
         let inside = [q(1, 4), q(1, 2), q(3, 4)].map(|part| &from + &length * part);
-        for (at, how) in [(&from + &beside, "right of the start"), (&to - &beside, "left of the end")] {
+        for (at, how) in [
+            (&from + &beside, "right of the start"),
+            (&to - &beside, "left of the end"),
+        ] {
             self.on_piece(piece, &at, how)?;
         }
         for at in inside {
@@ -294,24 +397,47 @@ impl Both<'_> {
     }
 
     /// The law's grid against the walk, within the bound of the program.
-    fn bounded(&self, walk: &Walk, up_to: &Q, luck: &mut Luck, asked: Asked, tally: &mut Tally) -> Outcome {
-        let quarters = (up_to * whole(4)).to_integer().to_i64().expect("hours are small");
+    fn bounded(
+        &self,
+        walk: &Walk,
+        up_to: &Q,
+        luck: &mut Luck,
+        asked: Asked,
+        tally: &mut Tally,
+    ) -> Outcome {
+        let quarters = (up_to * whole(4))
+            .to_integer()
+            .to_i64()
+            .expect("hours are small");
         let mut values = Vec::new();
         for _ in 0..asked.bounded {
             let quarter = luck.between(0, quarters);
             let at = q(i128::from(quarter), 4);
             let law = self.special.at(Hours(quarter * 25), &mut values);
             let registers = bounds(self.program(), &self.facts, &at);
-            let piece = walk.pieces.iter().find(|p| of(p.from) < at && at < of(p.to));
+            let piece = walk
+                .pieces
+                .iter()
+                .find(|p| of(p.from) < at && at < of(p.to));
             for (place, (item, money)) in self.program().items.iter().zip(&law).enumerate() {
                 let bounded = &registers[item.reg.position()];
                 if let Some(piece) = piece {
                     let on_walk = on_curve(&piece.items[place], &at);
                     if on_walk != bounded.smooth {
-                        return Err(self.differs(place, &at, "step by step", &bounded.smooth, &on_walk));
+                        return Err(self.differs(
+                            place,
+                            &at,
+                            "step by step",
+                            &bounded.smooth,
+                            &on_walk,
+                        ));
                     }
                 }
-                let unit = if item.kind == ItemKind::Passport { 1 } else { 100 };
+                let unit = if item.kind == ItemKind::Passport {
+                    1
+                } else {
+                    100
+                };
                 let apart = (q(i128::from(money.0), unit) - &bounded.smooth).abs();
                 if apart > bounded.error {
                     return Err(format!(
@@ -346,12 +472,31 @@ pub fn same_schema(book: &Book, schema: &Schema) -> Outcome {
     let mine: Vec<(&str, Option<usize>, Vec<(&str, i64)>)> = book
         .kinds
         .iter()
-        .map(|k| (k.name.as_str(), k.owner, k.facts.iter().map(|f| (f.name.as_str(), f.units)).collect()))
+        .map(|k| {
+            (
+                k.name.as_str(),
+                k.owner,
+                k.facts.iter().map(|f| (f.name.as_str(), f.units)).collect(),
+            )
+        })
         .collect();
     let theirs: Vec<(&str, Option<usize>, Vec<(&str, i64)>)> = schema
         .kinds
         .iter()
-        .map(|k| (k.name.as_str(), k.owner, k.facts.iter().map(|f| (f.name.as_str(), f.ty.units())).collect()))
+        .map(|k| {
+            (
+                k.name.as_str(),
+                k.owner,
+                k.facts
+                    .iter()
+                    .map(|f| (f.name.as_str(), f.ty.units()))
+                    .collect(),
+            )
+        })
         .collect();
-    if mine == theirs { Ok(()) } else { Err(format!("the oracle reads {mine:?}, the product {theirs:?}")) }
+    if mine == theirs {
+        Ok(())
+    } else {
+        Err(format!("the oracle reads {mine:?}, the product {theirs:?}"))
+    }
 }

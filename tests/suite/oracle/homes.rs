@@ -4,7 +4,9 @@
 use super::book::{ADULT, Book, CHILD, Cell, HOUSEHOLD, JOB, OTHER};
 use super::luck::Luck;
 use super::text::{Q, calendar, day_number, q, whole};
-use hourworth::case::{Delivery, FactSpec, FactType, Household, Instance, JobRole, Known, Need, Schema};
+use hourworth::case::{
+    Delivery, FactSpec, FactType, Household, Instance, JobRole, Known, Need, Schema,
+};
 use num_traits::ToPrimitive;
 use std::fmt::Write;
 
@@ -28,7 +30,11 @@ pub fn marks(book: &Book) -> Vec<Q> {
             out.push(value.clone());
         }
     }
-    out.extend(out.clone().iter().flat_map(|v| [v * q(1, 12), v * q(12, 52)]));
+    out.extend(
+        out.clone()
+            .iter()
+            .flat_map(|v| [v * q(1, 12), v * q(12, 52)]),
+    );
     out.extend([whole(0), whole(1), whole(16), whole(25)]);
     // The order of a map is not the same twice.
     out.sort();
@@ -42,8 +48,16 @@ impl Village<'_> {
         let mut instances: Vec<Vec<Instance>> = kinds.iter().map(|_| Vec::new()).collect();
         instances[HOUSEHOLD].push(self.record(luck, HOUSEHOLD, 0));
         let adults = 1 + luck.below(2);
-        let children = if luck.percent(35) { 0 } else { luck.below(self.most_children + 1) };
-        let others = if luck.percent(70) { 0 } else { 1 + luck.below(2) };
+        let children = if luck.percent(35) {
+            0
+        } else {
+            luck.below(self.most_children + 1)
+        };
+        let others = if luck.percent(70) {
+            0
+        } else {
+            1 + luck.below(2)
+        };
         for (kind, many) in [(ADULT, adults), (CHILD, children), (OTHER, others)] {
             for _ in 0..many {
                 let record = self.record(luck, kind, 0);
@@ -55,7 +69,11 @@ impl Village<'_> {
             for at in 0..1 + usize::from(luck.percent(20)) {
                 let record = self.record(luck, JOB, adult);
                 instances[JOB].push(record);
-                job_roles.push(if at == 0 { JobRole::Today } else { JobRole::Further });
+                job_roles.push(if at == 0 {
+                    JobRole::Today
+                } else {
+                    JobRole::Further
+                });
             }
         }
         for kind in JOB + 1..kinds.len() {
@@ -73,13 +91,31 @@ impl Village<'_> {
             let owner = luck.below(adults);
             offers.push(self.record(luck, JOB, owner));
         }
-        Household { reference: "R1".into(), delivery: Delivery::default(), target: None, instances, job_roles, offers, row: 1 }
+        Household {
+            reference: "R1".into(),
+            delivery: Delivery::default(),
+            target: None,
+            instances,
+            job_roles,
+            offers,
+            row: 1,
+        }
     }
 
     fn record(&self, luck: &mut Luck, kind: usize, owner: usize) -> Instance {
-        let values: Vec<i64> = self.schema.kinds[kind].facts.iter().map(|fact| self.value(luck, kind, fact)).collect();
+        let values: Vec<i64> = self.schema.kinds[kind]
+            .facts
+            .iter()
+            .map(|fact| self.value(luck, kind, fact))
+            .collect();
         let known = vec![Known::Told; values.len()];
-        Instance { label: String::new(), reference: String::new(), owner, values, known }
+        Instance {
+            label: String::new(),
+            reference: String::new(),
+            owner,
+            values,
+            known,
+        }
     }
 
     fn value(&self, luck: &mut Luck, kind: usize, fact: &FactSpec) -> i64 {
@@ -112,22 +148,41 @@ impl Village<'_> {
             FactType::Choice(words) => luck.below(words.len()) as i64,
             FactType::Date => {
                 let (year, month, day) = calendar(self.day);
-                let ages: &[i64] = if kind == CHILD { &[0, 1, 5, 7, 8, 11, 16, 18, 19] } else { &[16, 18, 21, 23, 25, 30, 45, 60, 66, 67, 80] };
+                let ages: &[i64] = if kind == CHILD {
+                    &[0, 1, 5, 7, 8, 11, 16, 18, 19]
+                } else {
+                    &[16, 18, 21, 23, 25, 30, 45, 60, 66, 67, 80]
+                };
                 match luck.below(6) {
                     // A birthday yesterday, today or tomorrow, or on a leap day.
-                    0 | 1 => day_number(year - luck.pick(ages), month, day.min(28)) + luck.between(-1, 1),
+                    0 | 1 => {
+                        day_number(year - luck.pick(ages), month, day.min(28)) + luck.between(-1, 1)
+                    }
                     2 => day_number(2004, 2, 29) + luck.between(-1, 1),
                     3 => day_number(2017, 4, 6) + luck.between(-1, 1),
-                    _ => self.day - luck.between(0, if kind == CHILD { 19 * 365 } else { 60 * 365 }),
+                    _ => {
+                        self.day - luck.between(0, if kind == CHILD { 19 * 365 } else { 60 * 365 })
+                    }
                 }
             }
-            FactType::Money(_) | FactType::Rate | FactType::Hours | FactType::Number | FactType::Count => {
+            FactType::Money(_)
+            | FactType::Rate
+            | FactType::Hours
+            | FactType::Number
+            | FactType::Count => {
                 let units = fact.ty.units();
                 match luck.below(8) {
                     0 => fact.min,
                     1 => 0,
                     2 => luck.between(fact.min, fact.max),
-                    3 | 4 => (luck.pick(&self.marks) * whole(i128::from(units))).round().to_integer().to_i64().unwrap_or(0) + luck.between(-1, 1),
+                    3 | 4 => {
+                        (luck.pick(&self.marks) * whole(i128::from(units)))
+                            .round()
+                            .to_integer()
+                            .to_i64()
+                            .unwrap_or(0)
+                            + luck.between(-1, 1)
+                    }
                     5 => luck.between(0, 20) * units,
                     _ => {
                         // As many small values as large ones.
@@ -147,14 +202,23 @@ pub fn shown(schema: &Schema, household: &Household) -> String {
         let _ = writeln!(out, "[[{name}]]  # owner {}", one.owner);
         for (fact, value) in facts.iter().zip(&one.values) {
             if fact.need != Need::Default(*value) {
-                let _ = writeln!(out, "{} = {}", fact.name, hourworth::engine::fact_text(&fact.ty, *value));
+                let _ = writeln!(
+                    out,
+                    "{} = {}",
+                    fact.name,
+                    hourworth::engine::fact_text(&fact.ty, *value)
+                );
             }
         }
     };
     for (kind, records) in schema.kinds.iter().zip(&household.instances) {
         for (at, one) in records.iter().enumerate() {
             let further = kind.name == "job" && household.job_roles[at] == JobRole::Further;
-            record(if further { "job.further" } else { &kind.name }, &kind.facts, one);
+            record(
+                if further { "job.further" } else { &kind.name },
+                &kind.facts,
+                one,
+            );
         }
     }
     for offer in &household.offers {
@@ -218,15 +282,40 @@ pub fn project(from: &Schema, to: &Schema, household: &Household) -> Household {
         .kinds
         .iter()
         .map(|kind| {
-            let old = from.kinds.iter().position(|k| k.name == kind.name).expect("no kind is new");
-            let place = |fact: &FactSpec| from.kinds[old].facts.iter().position(|f| f.name == fact.name).expect("no fact is new");
+            let old = from
+                .kinds
+                .iter()
+                .position(|k| k.name == kind.name)
+                .expect("no kind is new");
+            let place = |fact: &FactSpec| {
+                from.kinds[old]
+                    .facts
+                    .iter()
+                    .position(|f| f.name == fact.name)
+                    .expect("no fact is new")
+            };
             let records = household.instances[old].iter();
-            records.map(|r| Instance { values: kind.facts.iter().map(|f| r.values[place(f)]).collect(), ..r.clone() }).collect()
+            records
+                .map(|r| Instance {
+                    values: kind.facts.iter().map(|f| r.values[place(f)]).collect(),
+                    ..r.clone()
+                })
+                .collect()
         })
         .collect();
-    let place = |fact: &FactSpec| from.kinds[JOB].facts.iter().position(|f| f.name == fact.name).expect("no fact is new");
+    let place = |fact: &FactSpec| {
+        from.kinds[JOB]
+            .facts
+            .iter()
+            .position(|f| f.name == fact.name)
+            .expect("no fact is new")
+    };
     for offer in &mut copy.offers {
-        offer.values = to.kinds[JOB].facts.iter().map(|f| offer.values[place(f)]).collect();
+        offer.values = to.kinds[JOB]
+            .facts
+            .iter()
+            .map(|f| offer.values[place(f)])
+            .collect();
     }
     copy
 }

@@ -62,12 +62,21 @@ const EITHER: u8 = 7;
 
 impl Piece {
     fn plain(text: String) -> Piece {
-        Piece { text, level: VALUE, degree: 0, varies: false }
+        Piece {
+            text,
+            level: VALUE,
+            degree: 0,
+            varies: false,
+        }
     }
 
     /// Its text where nothing that binds more loosely than `level` may stand.
     fn at(&self, level: u8) -> String {
-        if self.level > level { format!("({})", self.text) } else { self.text.clone() }
+        if self.level > level {
+            format!("({})", self.text)
+        } else {
+            self.text.clone()
+        }
     }
 }
 
@@ -112,7 +121,13 @@ pub const DAYS: [&str; 4] = ["2025-04-06", "2025-10-01", "2026-04-06", "2027-04-
 
 /// A pack.
 pub fn invent(luck: &mut Luck) -> Invented {
-    let kinds = [("household", None), ("adult", Some(HOUSEHOLD)), ("child", Some(HOUSEHOLD)), ("other", Some(HOUSEHOLD)), ("job", Some(ADULT))];
+    let kinds = [
+        ("household", None),
+        ("adult", Some(HOUSEHOLD)),
+        ("child", Some(HOUSEHOLD)),
+        ("other", Some(HOUSEHOLD)),
+        ("job", Some(ADULT)),
+    ];
     let kinds = kinds.map(|(name, owner)| (name.to_owned(), owner)).to_vec();
     let mut maker = Maker {
         luck,
@@ -136,10 +151,31 @@ pub fn invent(luck: &mut Luck) -> Invented {
 impl Maker<'_> {
     fn pack(&mut self) {
         for kind in [ADULT, CHILD, OTHER] {
-            self.names.push(Named { name: "birth".into(), kind, ty: Ty::Date, degree: 0, varies: false, divides: false });
+            self.names.push(Named {
+                name: "birth".into(),
+                kind,
+                ty: Ty::Date,
+                degree: 0,
+                varies: false,
+                divides: false,
+            });
         }
-        self.names.push(Named { name: "hours".into(), kind: JOB, ty: Ty::Hours, degree: 1, varies: true, divides: false });
-        self.names.push(Named { name: "wage".into(), kind: JOB, ty: Ty::Money(Some(0)), degree: 0, varies: false, divides: false });
+        self.names.push(Named {
+            name: "hours".into(),
+            kind: JOB,
+            ty: Ty::Hours,
+            degree: 1,
+            varies: true,
+            divides: false,
+        });
+        self.names.push(Named {
+            name: "wage".into(),
+            kind: JOB,
+            ty: Ty::Money(Some(0)),
+            degree: 0,
+            varies: false,
+            divides: false,
+        });
         for at in 0..self.luck.below(3) {
             let owner = self.luck.below(self.kinds.len());
             let (name, of) = (format!("record_{at}"), self.kinds[owner].0.clone());
@@ -147,9 +183,16 @@ impl Maker<'_> {
             self.kinds.push((name, Some(owner)));
         }
         for at in 0..self.luck.below(3) {
-            let words: Vec<String> = (0..2 + self.luck.below(3)).map(|w| format!("word_{at}_{w}")).collect();
+            let words: Vec<String> = (0..2 + self.luck.below(3))
+                .map(|w| format!("word_{at}_{w}"))
+                .collect();
             let name = format!("choice_{at}");
-            self.say("choice", None, &name, format!("choice {name} = {}", words.join(", ")));
+            self.say(
+                "choice",
+                None,
+                &name,
+                format!("choice {name} = {}", words.join(", ")),
+            );
             self.choices.push(words);
         }
         if self.luck.percent(92) {
@@ -166,44 +209,103 @@ impl Maker<'_> {
             };
             let ty = self.any_type();
             let depth = 1 + self.luck.below(4);
-            let mut piece = self.piece(ty, &[kind], depth, Room { degree: 2, steady: false });
+            let mut piece = self.piece(
+                ty,
+                &[kind],
+                depth,
+                Room {
+                    degree: 2,
+                    steady: false,
+                },
+            );
             // Most figures vary with hours; what only a given-up one needs is left out later.
             for _ in 0..6 {
                 if !piece.varies || piece.level == VALUE {
-                    piece = self.piece(ty, &[kind], depth.max(2), Room { degree: 2, steady: false });
+                    piece = self.piece(
+                        ty,
+                        &[kind],
+                        depth.max(2),
+                        Room {
+                            degree: 2,
+                            steady: false,
+                        },
+                    );
                 }
             }
             self.figure_of(kind, ty, piece);
         }
         // Whatever nothing needs is shown.
-        let figures: Vec<Named> = self.names.iter().filter(|n| n.name.starts_with("figure")).cloned().collect();
+        let figures: Vec<Named> = self
+            .names
+            .iter()
+            .filter(|n| n.name.starts_with("figure"))
+            .cloned()
+            .collect();
         let twins = |name: &str| figures.iter().filter(|n| n.name == name).count() > 1;
         let uses = self.out.uses();
-        let unused: Vec<Named> = figures.iter().filter(|n| twins(&n.name) || !uses.contains_key(n.name.as_str())).cloned().collect();
+        let unused: Vec<Named> = figures
+            .iter()
+            .filter(|n| twins(&n.name) || !uses.contains_key(n.name.as_str()))
+            .cloned()
+            .collect();
         for named in unused {
             self.part = self.luck.below(2);
             self.shown(&named);
         }
         // Both dates are used.
-        self.say("note", Some(HOUSEHOLD), "later", "note later where assessment at least 2026-04-06".into());
+        self.say(
+            "note",
+            Some(HOUSEHOLD),
+            "later",
+            "note later where assessment at least 2026-04-06".into(),
+        );
         if self.luck.percent(30) {
-            let when = self.piece(Ty::YesNo, &[HOUSEHOLD], 2, Room { degree: 2, steady: false });
-            self.say("hold", Some(HOUSEHOLD), "", format!("hold where {} because \"it is so\"", when.text));
+            let when = self.piece(
+                Ty::YesNo,
+                &[HOUSEHOLD],
+                2,
+                Room {
+                    degree: 2,
+                    steady: false,
+                },
+            );
+            self.say(
+                "hold",
+                Some(HOUSEHOLD),
+                "",
+                format!("hold where {} because \"it is so\"", when.text),
+            );
         }
     }
 
     /// Figures that vary with hours, for the others to build on: pay by the job, by the adult and for all, a share of it, and its square.
     fn pay(&mut self) {
-        let varying = |text: String, degree| Piece { text, level: SHAPED, degree, varies: true };
+        let varying = |text: String, degree| Piece {
+            text,
+            level: SHAPED,
+            degree,
+            varies: true,
+        };
         self.figure_of(JOB, Ty::Money(Some(2)), varying("wage * hours".into(), 1));
         let of_job = self.names[self.names.len() - 1].name.clone();
         let by = self.conversion(2, MONTH);
-        self.figure_of(ADULT, Ty::Money(Some(MONTH)), varying(format!("sum over job of {of_job} converted by {by}"), 1));
+        self.figure_of(
+            ADULT,
+            Ty::Money(Some(MONTH)),
+            varying(format!("sum over job of {of_job} converted by {by}"), 1),
+        );
         let of_adult = self.names[self.names.len() - 1].name.clone();
         if self.luck.percent(80) {
-            self.figure_of(HOUSEHOLD, Ty::Money(Some(MONTH)), varying(format!("sum over adult of {of_adult}"), 1));
+            self.figure_of(
+                HOUSEHOLD,
+                Ty::Money(Some(MONTH)),
+                varying(format!("sum over adult of {of_adult}"), 1),
+            );
         }
-        for (kind, ty, of) in [(JOB, Ty::Money(Some(2)), of_job), (ADULT, Ty::Money(Some(MONTH)), of_adult)] {
+        for (kind, ty, of) in [
+            (JOB, Ty::Money(Some(2)), of_job),
+            (ADULT, Ty::Money(Some(MONTH)), of_adult),
+        ] {
             if self.luck.percent(60) {
                 let by = self.literal(ty).text.replace("money 0 ", "money 120 ");
                 let number = *self.luck.pick(&[Ty::Number, Ty::Rate]);
@@ -223,45 +325,115 @@ impl Maker<'_> {
     }
 
     fn kind_name(&self, kind: usize) -> String {
-        if kind == MEMBER { "member".into() } else { self.kinds[kind].0.clone() }
+        if kind == MEMBER {
+            "member".into()
+        } else {
+            self.kinds[kind].0.clone()
+        }
     }
 
     fn say(&mut self, keyword: &'static str, per: Option<usize>, name: &str, text: String) {
         let per = per.map(|kind| self.kind_name(kind));
-        self.out.statements.push(Statement { part: self.part, per, keyword, name: name.into(), text });
+        self.out.statements.push(Statement {
+            part: self.part,
+            per,
+            keyword,
+            name: name.into(),
+            text,
+        });
     }
 
     fn figure_of(&mut self, kind: usize, ty: Ty, piece: Piece) {
         // Now and then a name that another kind has too.
-        let others: Vec<String> = self.names.iter().filter(|n| n.kind != kind && n.name.starts_with("figure")).map(|n| n.name.clone()).collect();
-        let name = if !others.is_empty() && self.luck.percent(2) { self.luck.pick(&others).clone() } else { self.fresh("figure") };
-        self.say("figure", Some(kind), &name, format!("figure {name}: {} = {}", self.type_text(ty), piece.text));
-        self.names.push(Named { name, kind, ty, degree: piece.degree, varies: piece.varies, divides: false });
+        let others: Vec<String> = self
+            .names
+            .iter()
+            .filter(|n| n.kind != kind && n.name.starts_with("figure"))
+            .map(|n| n.name.clone())
+            .collect();
+        let name = if !others.is_empty() && self.luck.percent(2) {
+            self.luck.pick(&others).clone()
+        } else {
+            self.fresh("figure")
+        };
+        self.say(
+            "figure",
+            Some(kind),
+            &name,
+            format!("figure {name}: {} = {}", self.type_text(ty), piece.text),
+        );
+        self.names.push(Named {
+            name,
+            kind,
+            ty,
+            degree: piece.degree,
+            varies: piece.varies,
+            divides: false,
+        });
     }
 
     /// An item or note that needs a figure.
     fn shown(&mut self, named: &Named) {
         let (name, kind) = (&named.name, named.kind);
         let item = self.fresh("item");
-        let money = *self.luck.pick(&["income", "tax", "contribution", "pension", "loan", "benefit", "cost", "housing", "pay"]);
+        let money = *self.luck.pick(&[
+            "income",
+            "tax",
+            "contribution",
+            "pension",
+            "loan",
+            "benefit",
+            "cost",
+            "housing",
+            "pay",
+        ]);
         let text = match named.ty {
             Ty::Money(Some(MONTH)) => name.clone(),
             Ty::Money(Some(period)) => {
                 let by = self.conversion(period, MONTH);
                 format!("{name} converted by {by}")
             }
-            Ty::Rate | Ty::Number | Ty::Count => format!("money {} a month * {name}", 1 + self.luck.below(100)),
+            Ty::Rate | Ty::Number | Ty::Count => {
+                format!("money {} a month * {name}", 1 + self.luck.below(100))
+            }
             Ty::Money(None) | Ty::Hours | Ty::Date => {
-                let limit = self.leaf(named.ty, &[kind], Room { degree: 0, steady: true });
-                format!("where {name} above {} give money 10 a month otherwise 0", limit.at(SHAPED))
+                let limit = self.leaf(
+                    named.ty,
+                    &[kind],
+                    Room {
+                        degree: 0,
+                        steady: true,
+                    },
+                );
+                format!(
+                    "where {name} above {} give money 10 a month otherwise 0",
+                    limit.at(SHAPED)
+                )
             }
             Ty::YesNo if self.luck.percent(50) => {
-                return self.say("note", Some(kind), &item, format!("note {item} where {name}"));
+                return self.say(
+                    "note",
+                    Some(kind),
+                    &item,
+                    format!("note {item} where {name}"),
+                );
             }
-            Ty::YesNo => return self.say("item", Some(kind), &item, format!("item {item}: passport = {name} see \"s.1\"")),
+            Ty::YesNo => {
+                return self.say(
+                    "item",
+                    Some(kind),
+                    &item,
+                    format!("item {item}: passport = {name} see \"s.1\""),
+                );
+            }
             Ty::Choice(at) => {
                 let word = self.choices[at][0].clone();
-                return self.say("note", Some(kind), &item, format!("note {item} where {name} is {word}"));
+                return self.say(
+                    "note",
+                    Some(kind),
+                    &item,
+                    format!("note {item} where {name} is {word}"),
+                );
             }
         };
         let ending = match self.luck.below(8) {
@@ -270,13 +442,34 @@ impl Maker<'_> {
             _ => "",
         };
         // `where` goes on as far as it can.
-        let text = if text.starts_with("where") && !ending.is_empty() { format!("({text})") } else { text };
+        let text = if text.starts_with("where") && !ending.is_empty() {
+            format!("({text})")
+        } else {
+            text
+        };
         let claimed = if self.luck.percent(15) {
-            format!(" claimed where {}", self.piece(Ty::YesNo, &[kind], 2, Room { degree: 2, steady: false }).text)
+            format!(
+                " claimed where {}",
+                self.piece(
+                    Ty::YesNo,
+                    &[kind],
+                    2,
+                    Room {
+                        degree: 2,
+                        steady: false
+                    }
+                )
+                .text
+            )
         } else {
             String::new()
         };
-        self.say("item", Some(kind), &item, format!("item {item}: {money} = {text}{ending}{claimed} see \"s.1\""));
+        self.say(
+            "item",
+            Some(kind),
+            &item,
+            format!("item {item}: {money} = {text}{ending}{claimed} see \"s.1\""),
+        );
     }
 
     fn any_type(&mut self) -> Ty {
@@ -325,7 +518,11 @@ impl Maker<'_> {
             1 => self.luck.between(0, most * 4) * 25,
             _ => self.luck.between(0, most * 100),
         };
-        if hundredths % 100 == 0 { format!("{}", hundredths / 100) } else { format!("{}.{:02}", hundredths / 100, hundredths % 100) }
+        if hundredths % 100 == 0 {
+            format!("{}", hundredths / 100)
+        } else {
+            format!("{}.{:02}", hundredths / 100, hundredths % 100)
+        }
     }
 
     fn size(&mut self, ty: Ty) -> String {
@@ -345,12 +542,24 @@ impl Maker<'_> {
     fn literal(&mut self, ty: Ty) -> Piece {
         Piece::plain(match ty {
             Ty::Money(None) => format!("money {}", self.size(ty)),
-            Ty::Money(Some(period)) => format!("money {} {} {}", self.size(ty), if period == 0 { "an" } else { "a" }, PERIODS[period]),
+            Ty::Money(Some(period)) => format!(
+                "money {} {} {}",
+                self.size(ty),
+                if period == 0 { "an" } else { "a" },
+                PERIODS[period]
+            ),
             Ty::Rate => format!("{}%", self.size(ty)),
             Ty::Hours => format!("{} hours", self.size(ty)),
             Ty::Number => self.size(ty),
             Ty::Count => format!("{}", self.luck.below(13)),
-            Ty::Date => (*self.luck.pick(&["2025-06-01", "2026-04-06", "2008-02-29", "1990-01-01", "2017-04-06"])).to_owned(),
+            Ty::Date => (*self.luck.pick(&[
+                "2025-06-01",
+                "2026-04-06",
+                "2008-02-29",
+                "1990-01-01",
+                "2017-04-06",
+            ]))
+            .to_owned(),
             Ty::YesNo => (*self.luck.pick(&["yes", "no"])).to_owned(),
             Ty::Choice(at) => {
                 let words = self.choices[at].clone();
@@ -361,7 +570,11 @@ impl Maker<'_> {
 
     fn owners(&self, kind: usize) -> Vec<usize> {
         let mut out = vec![kind];
-        let mut at = if kind == MEMBER { Some(HOUSEHOLD) } else { self.kinds[kind].1 };
+        let mut at = if kind == MEMBER {
+            Some(HOUSEHOLD)
+        } else {
+            self.kinds[kind].1
+        };
         while let Some(owner) = at {
             out.push(owner);
             at = self.kinds[owner].1;
@@ -370,13 +583,20 @@ impl Maker<'_> {
     }
 
     fn belongs(named: &Named, kind: usize) -> bool {
-        named.kind == kind || (named.kind == MEMBER && [ADULT, CHILD, OTHER].contains(&kind)) || (kind == MEMBER && named.name == "birth")
+        named.kind == kind
+            || (named.kind == MEMBER && [ADULT, CHILD, OTHER].contains(&kind))
+            || (kind == MEMBER && named.name == "birth")
     }
 
     /// Names of a type that may stand here.
     fn reachable(&self, ty: Ty, scopes: &[usize], room: Room) -> Vec<Named> {
         let kinds: Vec<usize> = scopes.iter().flat_map(|kind| self.owners(*kind)).collect();
-        let fits = |n: &&Named| n.ty == ty && n.degree <= room.degree && (!room.steady || !n.varies) && kinds.iter().any(|k| Self::belongs(n, *k));
+        let fits = |n: &&Named| {
+            n.ty == ty
+                && n.degree <= room.degree
+                && (!room.steady || !n.varies)
+                && kinds.iter().any(|k| Self::belongs(n, *k))
+        };
         self.names.iter().filter(fits).cloned().collect()
     }
 
@@ -385,15 +605,23 @@ impl Maker<'_> {
         let range = match ty {
             Ty::Money(_) if divides => " from 40 to 500",
             Ty::Money(Some(0)) => " from 0 to 100",
-            Ty::Money(_) => *self.luck.pick(&[" from 0 to 1000", " from 0 to 20000", " from 10 to 5000"]),
+            Ty::Money(_) => {
+                *self
+                    .luck
+                    .pick(&[" from 0 to 1000", " from 0 to 20000", " from 10 to 5000"])
+            }
             Ty::Rate if divides => " from 1% to 90%",
             Ty::Rate => *self.luck.pick(&["", " from 5% to 50%"]),
             Ty::Hours if divides => " from 1 to 24",
             Ty::Hours => *self.luck.pick(&["", " from 0 to 60"]),
             Ty::Number if divides => " from 0.5 to 52",
-            Ty::Number => *self.luck.pick(&[" from 0 to 100", " from -5 to 5", " from 1 to 52"]),
+            Ty::Number => *self
+                .luck
+                .pick(&[" from 0 to 100", " from -5 to 5", " from 1 to 52"]),
             Ty::Count if divides => " from 1 to 20",
-            Ty::Count => *self.luck.pick(&[" from 0 to 10", " from -3 to 4", " from 1 to 20"]),
+            Ty::Count => *self
+                .luck
+                .pick(&[" from 0 to 10", " from -3 to 4", " from 1 to 20"]),
             Ty::Date | Ty::YesNo | Ty::Choice(_) => "",
         };
         let default = match ty {
@@ -401,8 +629,20 @@ impl Maker<'_> {
             _ => "required",
         };
         let (of, ty_text) = (self.kind_name(kind), self.type_text(ty));
-        self.say("fact", None, &name, format!("fact {name} of {of}: {ty_text}{range} {default} ask \"What is it?\""));
-        let named = Named { name, kind, ty, degree: 0, varies: false, divides };
+        self.say(
+            "fact",
+            None,
+            &name,
+            format!("fact {name} of {of}: {ty_text}{range} {default} ask \"What is it?\""),
+        );
+        let named = Named {
+            name,
+            kind,
+            ty,
+            degree: 0,
+            varies: false,
+            divides,
+        };
         self.names.push(named.clone());
         named
     }
@@ -431,10 +671,19 @@ impl Maker<'_> {
                     other => other,
                 },
             };
-            let status = if absent { "absent" } else { *self.luck.pick(&["read", "memory"]) };
+            let status = if absent {
+                "absent"
+            } else {
+                *self.luck.pick(&["read", "memory"])
+            };
             rows += &format!("{name},{from},{to},{value},{unit},{period},a book,s.1,{status}\n");
             if absent {
-                self.say("hold", Some(HOUSEHOLD), "", format!("hold where missing {name} because \"it is missing\""));
+                self.say(
+                    "hold",
+                    Some(HOUSEHOLD),
+                    "",
+                    format!("hold where missing {name} because \"it is missing\""),
+                );
             }
         }
         self.out.amounts.push((name.clone(), rows));
@@ -453,8 +702,17 @@ impl Maker<'_> {
     }
 
     fn amount(&mut self, ty: Ty) -> String {
-        let known: Vec<String> = self.amounts.iter().filter(|(_, t)| *t == ty).map(|(name, _)| name.clone()).collect();
-        if !known.is_empty() && self.luck.percent(60) { self.luck.pick(&known).clone() } else { self.new_amount(ty) }
+        let known: Vec<String> = self
+            .amounts
+            .iter()
+            .filter(|(_, t)| *t == ty)
+            .map(|(name, _)| name.clone())
+            .collect();
+        if !known.is_empty() && self.luck.percent(60) {
+            self.luck.pick(&known).clone()
+        } else {
+            self.new_amount(ty)
+        }
     }
 
     /// A value without parts.
@@ -464,9 +722,18 @@ impl Maker<'_> {
             0..=5 if !known.is_empty() => {
                 // Later figures, and those that vary, make the deeper packs.
                 let varying: Vec<Named> = known.iter().filter(|n| n.varies).cloned().collect();
-                let from = if !varying.is_empty() && self.luck.percent(75) { &varying } else { &known };
+                let from = if !varying.is_empty() && self.luck.percent(75) {
+                    &varying
+                } else {
+                    &known
+                };
                 let named = self.luck.pick(from).clone();
-                Piece { text: named.name, level: VALUE, degree: named.degree, varies: named.varies }
+                Piece {
+                    text: named.name,
+                    level: VALUE,
+                    degree: named.degree,
+                    varies: named.varies,
+                }
             }
             6 | 7 => {
                 let kinds: Vec<usize> = scopes.iter().flat_map(|kind| self.owners(*kind)).collect();
@@ -474,12 +741,22 @@ impl Maker<'_> {
                 Piece::plain(self.new_fact(ty, kind, false).name)
             }
             8 if !matches!(ty, Ty::Choice(_)) => Piece::plain(self.amount(ty)),
-            _ if ty == Ty::Date && self.luck.percent(60) => Piece::plain((*self.luck.pick(&["assessment", "payment", "date"])).to_owned()),
+            _ if ty == Ty::Date && self.luck.percent(60) => {
+                Piece::plain((*self.luck.pick(&["assessment", "payment", "date"])).to_owned())
+            }
             _ => self.literal(ty),
         }
     }
 
-    fn join(&self, op: &str, left: &Piece, left_level: u8, right: &Piece, right_level: u8, level: u8) -> Piece {
+    fn join(
+        &self,
+        op: &str,
+        left: &Piece,
+        left_level: u8,
+        right: &Piece,
+        right_level: u8,
+        level: u8,
+    ) -> Piece {
         Piece {
             text: format!("{} {op} {}", left.at(left_level), right.at(right_level)),
             level,
@@ -490,7 +767,11 @@ impl Maker<'_> {
 
     /// A kind to go over from here, and the word for it.
     fn any_kind(&mut self) -> usize {
-        if self.luck.percent(10) { MEMBER } else { self.luck.below(self.kinds.len()) }
+        if self.luck.percent(10) {
+            MEMBER
+        } else {
+            self.luck.below(self.kinds.len())
+        }
     }
 
     fn with(&mut self, scopes: &[usize], depth: usize, room: Room) -> (String, bool) {
@@ -503,7 +784,12 @@ impl Maker<'_> {
 
     /// The name of something to order by.
     fn key(&mut self, scopes: &[usize], kind: usize, room: Room) -> Named {
-        let mut known: Vec<Named> = self.names.iter().filter(|n| Self::belongs(n, kind) && !matches!(n.ty, Ty::Choice(_))).cloned().collect();
+        let mut known: Vec<Named> = self
+            .names
+            .iter()
+            .filter(|n| Self::belongs(n, kind) && !matches!(n.ty, Ty::Choice(_)))
+            .cloned()
+            .collect();
         known.retain(|n| n.degree <= room.degree && (!room.steady || !n.varies));
         if known.is_empty() || self.luck.percent(20) {
             let _ = scopes;
@@ -524,9 +810,17 @@ impl Maker<'_> {
                 let when = self.piece(Ty::YesNo, scopes, deeper, room);
                 let give = self.piece(ty, scopes, deeper, room);
                 let otherwise = self.zero_or(ty, scopes, deeper, room);
-                let text = format!("where {} give {} otherwise {}", when.text, give.text, otherwise.text);
+                let text = format!(
+                    "where {} give {} otherwise {}",
+                    when.text, give.text, otherwise.text
+                );
                 // It goes on as far as it can, so it stands alone.
-                Piece { text, level: EITHER + 1, degree: give.degree.max(otherwise.degree), varies: when.varies || give.varies || otherwise.varies }
+                Piece {
+                    text,
+                    level: EITHER + 1,
+                    degree: give.degree.max(otherwise.degree),
+                    varies: when.varies || give.varies || otherwise.varies,
+                }
             }
             4 => self.search(ty, scopes, deeper, room),
             5 if self.luck.percent(35) => self.as_if(ty, scopes, deeper, room),
@@ -536,14 +830,20 @@ impl Maker<'_> {
             _ => match ty {
                 Ty::YesNo => self.condition(scopes, deeper, room),
                 Ty::Date | Ty::Choice(_) => self.leaf(ty, scopes, room),
-                Ty::Money(_) | Ty::Rate | Ty::Hours | Ty::Number | Ty::Count => self.quantity(ty, scopes, deeper, room),
+                Ty::Money(_) | Ty::Rate | Ty::Hours | Ty::Number | Ty::Count => {
+                    self.quantity(ty, scopes, deeper, room)
+                }
             },
         }
     }
 
     fn zero_or(&mut self, ty: Ty, scopes: &[usize], depth: usize, room: Room) -> Piece {
         let quantity = !matches!(ty, Ty::Date | Ty::YesNo | Ty::Choice(_));
-        if quantity && self.luck.percent(25) { Piece::plain("0".into()) } else { self.piece(ty, scopes, depth, room) }
+        if quantity && self.luck.percent(25) {
+            Piece::plain("0".into())
+        } else {
+            self.piece(ty, scopes, depth, room)
+        }
     }
 
     fn search(&mut self, ty: Ty, scopes: &[usize], depth: usize, room: Room) -> Piece {
@@ -555,15 +855,34 @@ impl Maker<'_> {
             0 | 1 if quantity => {
                 let (with, varies) = self.with(&inside, depth, room);
                 if ty == Ty::Count && self.luck.percent(50) {
-                    return Piece { text: format!("count of {name}{with}"), level: VALUE, degree: 0, varies };
+                    return Piece {
+                        text: format!("count of {name}{with}"),
+                        level: VALUE,
+                        degree: 0,
+                        varies,
+                    };
                 }
                 let body = self.piece(ty, &inside, depth, room);
-                Piece { text: format!("sum over {name}{with} of {}", body.at(VALUE)), level: VALUE, degree: body.degree, varies: varies || body.varies }
+                Piece {
+                    text: format!("sum over {name}{with} of {}", body.at(VALUE)),
+                    level: VALUE,
+                    degree: body.degree,
+                    varies: varies || body.varies,
+                }
             }
             0 | 1 if ty == Ty::YesNo => {
                 let when = self.piece(Ty::YesNo, &inside, depth, room);
-                let word = if self.luck.percent(50) { "any" } else { "every" };
-                Piece { text: format!("{word} {name} with ({})", when.text), level: VALUE, degree: 0, varies: when.varies }
+                let word = if self.luck.percent(50) {
+                    "any"
+                } else {
+                    "every"
+                };
+                Piece {
+                    text: format!("{word} {name} with ({})", when.text),
+                    level: VALUE,
+                    degree: 0,
+                    varies: when.varies,
+                }
             }
             _ if kind == MEMBER => self.leaf(ty, scopes, room),
             _ => {
@@ -575,12 +894,22 @@ impl Maker<'_> {
                     let key = self.key(scopes, here, room);
                     let here = [scopes, &[here]].concat();
                     let (with, varies) = self.with(&here, depth, room);
-                    return Piece { text: format!("place by {}{down}{with}", key.name), level: VALUE, degree: 0, varies: key.varies || varies };
+                    return Piece {
+                        text: format!("place by {}{down}{with}", key.name),
+                        level: VALUE,
+                        degree: 0,
+                        varies: key.varies || varies,
+                    };
                 }
                 let give = self.piece(ty, &inside, depth, room);
                 let failing = self.zero_or(ty, scopes, depth, room);
                 Piece {
-                    text: format!("first {name} by {}{down}{with} give {} failing {}", key.name, give.at(VALUE), failing.at(VALUE)),
+                    text: format!(
+                        "first {name} by {}{down}{with} give {} failing {}",
+                        key.name,
+                        give.at(VALUE),
+                        failing.at(VALUE)
+                    ),
                     level: VALUE,
                     degree: give.degree.max(failing.degree).max(key.degree),
                     varies: key.varies || varies || give.varies || failing.varies,
@@ -592,29 +921,70 @@ impl Maker<'_> {
     /// `… of partner failing …`, or of an owner.
     fn relation(&mut self, ty: Ty, scopes: &[usize], depth: usize, room: Room) -> Piece {
         let kinds: Vec<usize> = scopes.iter().flat_map(|kind| self.owners(*kind)).collect();
-        let fits = |n: &&Named, kind| n.ty == ty && Self::belongs(n, kind) && n.degree <= room.degree && (!room.steady || !n.varies);
+        let fits = |n: &&Named, kind| {
+            n.ty == ty
+                && Self::belongs(n, kind)
+                && n.degree <= room.degree
+                && (!room.steady || !n.varies)
+        };
         if kinds.contains(&ADULT) && self.luck.percent(60) {
-            let of_adult: Vec<Named> = self.names.iter().filter(|n| fits(n, ADULT)).cloned().collect();
-            let named = if of_adult.is_empty() { self.new_fact(ty, ADULT, false) } else { self.luck.pick(&of_adult).clone() };
+            let of_adult: Vec<Named> = self
+                .names
+                .iter()
+                .filter(|n| fits(n, ADULT))
+                .cloned()
+                .collect();
+            let named = if of_adult.is_empty() {
+                self.new_fact(ty, ADULT, false)
+            } else {
+                self.luck.pick(&of_adult).clone()
+            };
             let failing = self.zero_or(ty, scopes, depth, room);
             let text = format!("{} of partner failing {}", named.name, failing.at(VALUE));
-            return Piece { text, level: VALUE, degree: named.degree.max(failing.degree), varies: named.varies || failing.varies };
+            return Piece {
+                text,
+                level: VALUE,
+                degree: named.degree.max(failing.degree),
+                varies: named.varies || failing.varies,
+            };
         }
         let kind = *self.luck.pick(&kinds);
-        let known: Vec<Named> = self.names.iter().filter(|n| fits(n, kind)).cloned().collect();
+        let known: Vec<Named> = self
+            .names
+            .iter()
+            .filter(|n| fits(n, kind))
+            .cloned()
+            .collect();
         if known.is_empty() || kind == MEMBER {
             return self.leaf(ty, scopes, room);
         }
         let named = self.luck.pick(&known).clone();
-        Piece { text: format!("{} of {}", named.name, self.kind_name(kind)), level: VALUE, degree: named.degree, varies: named.varies }
+        Piece {
+            text: format!("{} of {}", named.name, self.kind_name(kind)),
+            level: VALUE,
+            degree: named.degree,
+            varies: named.varies,
+        }
     }
 
     /// A figure once more, as if facts were otherwise.
     fn as_if(&mut self, ty: Ty, scopes: &[usize], depth: usize, room: Room) -> Piece {
-        let all = Room { degree: 2, steady: false };
-        let figures: Vec<Named> = self.reachable(ty, scopes, room).into_iter().filter(|n| n.name.starts_with("figure")).collect();
+        let all = Room {
+            degree: 2,
+            steady: false,
+        };
+        let figures: Vec<Named> = self
+            .reachable(ty, scopes, room)
+            .into_iter()
+            .filter(|n| n.name.starts_with("figure"))
+            .collect();
         let kinds: Vec<usize> = scopes.iter().flat_map(|kind| self.owners(*kind)).collect();
-        let facts: Vec<Named> = self.names.iter().filter(|n| !n.name.starts_with("figure") && kinds.iter().any(|k| Self::belongs(n, *k))).cloned().collect();
+        let facts: Vec<Named> = self
+            .names
+            .iter()
+            .filter(|n| !n.name.starts_with("figure") && kinds.iter().any(|k| Self::belongs(n, *k)))
+            .cloned()
+            .collect();
         if figures.is_empty() || facts.is_empty() || room.steady || room.degree == 0 {
             return self.relation(ty, scopes, depth, room);
         }
@@ -622,24 +992,55 @@ impl Maker<'_> {
         let mut changes = Vec::new();
         for _ in 0..1 + self.luck.below(2) {
             let fact = self.luck.pick(&facts).clone();
-            let value = if self.luck.percent(60) { self.literal(fact.ty) } else { self.piece(fact.ty, scopes, depth.min(1), all) };
+            let value = if self.luck.percent(60) {
+                self.literal(fact.ty)
+            } else {
+                self.piece(fact.ty, scopes, depth.min(1), all)
+            };
             changes.push(format!("{} is {}", fact.name, value.at(VALUE)));
         }
-        Piece { text: format!("{} as if ({})", figure.name, changes.join(" and ")), level: VALUE, degree: figure.degree.max(1), varies: true }
+        Piece {
+            text: format!("{} as if ({})", figure.name, changes.join(" and ")),
+            level: VALUE,
+            degree: figure.degree.max(1),
+            varies: true,
+        }
     }
 
     fn lookup(&mut self, ty: Ty, scopes: &[usize], depth: usize) -> Piece {
         if matches!(ty, Ty::Date | Ty::YesNo | Ty::Choice(_)) {
-            return self.leaf(ty, scopes, Room { degree: 0, steady: true });
+            return self.leaf(
+                ty,
+                scopes,
+                Room {
+                    degree: 0,
+                    steady: true,
+                },
+            );
         }
-        let known: Vec<usize> = (0..self.tables.len()).filter(|t| self.tables[*t].2 == ty).collect();
-        let at = if known.is_empty() || self.luck.percent(30) { self.new_table(ty) } else { *self.luck.pick(&known) };
+        let known: Vec<usize> = (0..self.tables.len())
+            .filter(|t| self.tables[*t].2 == ty)
+            .collect();
+        let at = if known.is_empty() || self.luck.percent(30) {
+            self.new_table(ty)
+        } else {
+            *self.luck.pick(&known)
+        };
         let (name, keys, _) = self.tables[at].clone();
         let keys: Vec<String> = keys
             .into_iter()
             .map(|key| {
                 let ty = key.map_or(Ty::Count, Ty::Choice);
-                self.piece(ty, scopes, depth.min(1), Room { degree: 0, steady: true }).text
+                self.piece(
+                    ty,
+                    scopes,
+                    depth.min(1),
+                    Room {
+                        degree: 0,
+                        steady: true,
+                    },
+                )
+                .text
             })
             .collect();
         Piece::plain(format!("{name}[{}]", keys.join(", ")))
@@ -649,11 +1050,22 @@ impl Maker<'_> {
         let name = self.fresh("table");
         let mut keys: Vec<Option<usize>> = vec![None];
         if !self.choices.is_empty() && self.luck.percent(60) {
-            keys.insert(self.luck.below(2), Some(self.luck.below(self.choices.len())));
+            keys.insert(
+                self.luck.below(2),
+                Some(self.luck.below(self.choices.len())),
+            );
         }
-        let words: Vec<String> = keys.iter().map(|key| key.map_or("count".into(), |at| format!("choice_{at}"))).collect();
+        let words: Vec<String> = keys
+            .iter()
+            .map(|key| key.map_or("count".into(), |at| format!("choice_{at}")))
+            .collect();
         let gives = self.type_text(ty);
-        self.say("table", None, &name, format!("table {name} by {} gives {gives}", words.join(", ")));
+        self.say(
+            "table",
+            None,
+            &name,
+            format!("table {name} by {} gives {gives}", words.join(", ")),
+        );
         let low = self.luck.between(0, 2);
         let mut combinations: Vec<Vec<String>> = vec![Vec::new()];
         for key in &keys {
@@ -661,14 +1073,24 @@ impl Maker<'_> {
                 Some(at) => self.choices[*at].clone(),
                 None => (low..low + 3).map(|n| n.to_string()).collect(),
             };
-            combinations = combinations.iter().flat_map(|c| values.iter().map(|v| [c.clone(), vec![v.clone()]].concat())).collect();
+            combinations = combinations
+                .iter()
+                .flat_map(|c| values.iter().map(|v| [c.clone(), vec![v.clone()]].concat()))
+                .collect();
         }
         let mut text: String = (0..keys.len()).map(|k| format!("key_{k},")).collect();
         text += "from,to,value,source,locator,status\n";
         for (from, to) in self.spells() {
             for combination in &combinations {
-                let value = if ty == Ty::Count { format!("{}", self.luck.below(9)) } else { self.size(ty) };
-                text += &format!("{},{from},{to},{value},a book,s.1,read\n", combination.join(","));
+                let value = if ty == Ty::Count {
+                    format!("{}", self.luck.below(9))
+                } else {
+                    self.size(ty)
+                };
+                text += &format!(
+                    "{},{from},{to},{value},a book,s.1,read\n",
+                    combination.join(",")
+                );
             }
         }
         self.out.tables.push((name.clone(), text));
@@ -678,14 +1100,22 @@ impl Maker<'_> {
 
     /// A ladder's place: the innermost record at hand, or one of its owners.
     fn ladder_kind(&mut self, scopes: &[usize]) -> usize {
-        let kinds: Vec<usize> = self.owners(*scopes.last().expect("a scope")).into_iter().filter(|kind| *kind != MEMBER).collect();
+        let kinds: Vec<usize> = self
+            .owners(*scopes.last().expect("a scope"))
+            .into_iter()
+            .filter(|kind| *kind != MEMBER)
+            .collect();
         *self.luck.pick(&kinds)
     }
 
     /// Limits that rise: fixed ones, or what lies above a figure.
     fn limits(&mut self, ty: Ty, kind: usize, many: usize, room: Room) -> Vec<Piece> {
         let known = self.reachable(ty, &[kind], room);
-        let base = if known.is_empty() || self.luck.percent(60) { None } else { Some(self.luck.pick(&known).clone()) };
+        let base = if known.is_empty() || self.luck.percent(60) {
+            None
+        } else {
+            Some(self.luck.pick(&known).clone())
+        };
         let mut fixed: Vec<i64> = (0..many).map(|_| self.luck.between(1, 60)).collect();
         fixed.sort_unstable();
         fixed.dedup();
@@ -708,7 +1138,12 @@ impl Maker<'_> {
                 };
                 match &base {
                     None => Piece::plain(text),
-                    Some(named) => Piece { text: format!("{} + {text}", named.name), level: SUM, degree: named.degree, varies: named.varies },
+                    Some(named) => Piece {
+                        text: format!("{} + {text}", named.name),
+                        level: SUM,
+                        degree: named.degree,
+                        varies: named.varies,
+                    },
                 }
             })
             .collect()
@@ -716,19 +1151,46 @@ impl Maker<'_> {
 
     fn charged(&mut self, ty: Ty, scopes: &[usize], of: &Piece, room: Room) -> Piece {
         let reach = self.owners(*scopes.last().expect("a scope"));
-        let known: Vec<String> = self.bands.iter().filter(|(_, kind, t)| *t == ty && reach.contains(kind)).map(|(name, ..)| name.clone()).collect();
+        let known: Vec<String> = self
+            .bands
+            .iter()
+            .filter(|(_, kind, t)| *t == ty && reach.contains(kind))
+            .map(|(name, ..)| name.clone())
+            .collect();
         let mut degree = of.degree;
         let name = if known.is_empty() || room.steady || self.luck.percent(50) {
             let kind = self.ladder_kind(scopes);
             let name = self.fresh("bands");
             let many = 1 + self.luck.below(3);
             let mut text = format!("bands {name} of {}", self.type_text(ty));
-            for limit in self.limits(ty, kind, many, Room { degree: room.degree.min(1), ..room }) {
+            for limit in self.limits(
+                ty,
+                kind,
+                many,
+                Room {
+                    degree: room.degree.min(1),
+                    ..room
+                },
+            ) {
                 degree = degree.max(limit.degree);
-                let rate = self.leaf(Ty::Rate, &[kind], Room { degree: 0, steady: true });
+                let rate = self.leaf(
+                    Ty::Rate,
+                    &[kind],
+                    Room {
+                        degree: 0,
+                        steady: true,
+                    },
+                );
                 text += &format!("\nband {} up to {}", rate.at(SUM), limit.at(SUM));
             }
-            let rate = self.leaf(Ty::Rate, &[kind], Room { degree: 0, steady: true });
+            let rate = self.leaf(
+                Ty::Rate,
+                &[kind],
+                Room {
+                    degree: 0,
+                    steady: true,
+                },
+            );
             text += &format!("\nband {} beyond", rate.at(SUM));
             self.say("bands", Some(kind), &name, text);
             self.bands.push((name.clone(), kind, ty));
@@ -736,7 +1198,12 @@ impl Maker<'_> {
         } else {
             self.luck.pick(&known).clone()
         };
-        Piece { text: format!("{} charged by {name}", of.at(SHAPED)), level: SHAPED, degree: degree.max(1), varies: true }
+        Piece {
+            text: format!("{} charged by {name}", of.at(SHAPED)),
+            level: SHAPED,
+            degree: degree.max(1),
+            varies: true,
+        }
     }
 
     fn on_scale(&mut self, gives: Ty, scopes: &[usize], depth: usize, room: Room) -> Piece {
@@ -744,19 +1211,31 @@ impl Maker<'_> {
             return self.leaf(gives, scopes, room);
         }
         let reach = self.owners(*scopes.last().expect("a scope"));
-        let known: Vec<(String, Ty)> =
-            self.scales.iter().filter(|(_, kind, _, g)| *g == gives && reach.contains(kind)).map(|(name, _, ty, _)| (name.clone(), *ty)).collect();
+        let known: Vec<(String, Ty)> = self
+            .scales
+            .iter()
+            .filter(|(_, kind, _, g)| *g == gives && reach.contains(kind))
+            .map(|(name, _, ty, _)| (name.clone(), *ty))
+            .collect();
         let mut degree = 0;
         let (name, ty) = if known.is_empty() || room.steady || self.luck.percent(50) {
             let kind = self.ladder_kind(scopes);
             let ty = self.any_quantity();
             let name = self.fresh("scale");
-            let mut text = format!("scale {name} of {} gives {}", self.type_text(ty), self.type_text(gives));
+            let mut text = format!(
+                "scale {name} of {} gives {}",
+                self.type_text(ty),
+                self.type_text(gives)
+            );
             let many = 1 + self.luck.below(3);
             for limit in self.limits(ty, kind, many, room) {
                 let value = self.leaf(gives, &[kind], room);
                 degree = degree.max(value.degree);
-                let word = if self.luck.percent(50) { "up to" } else { "below" };
+                let word = if self.luck.percent(50) {
+                    "up to"
+                } else {
+                    "below"
+                };
                 text += &format!("\nstep {} {word} {}", value.at(SUM), limit.at(SUM));
             }
             let value = self.leaf(gives, &[kind], room);
@@ -769,7 +1248,12 @@ impl Maker<'_> {
             self.luck.pick(&known).clone()
         };
         let of = self.piece(ty, scopes, depth, room);
-        Piece { text: format!("{} placed on {name}", of.at(SHAPED)), level: SHAPED, degree: degree.max(u8::from(!room.steady)), varies: !room.steady }
+        Piece {
+            text: format!("{} placed on {name}", of.at(SHAPED)),
+            level: SHAPED,
+            degree: degree.max(u8::from(!room.steady)),
+            varies: !room.steady,
+        }
     }
 
     fn conversion(&mut self, from: usize, to: usize) -> String {
@@ -785,14 +1269,24 @@ impl Maker<'_> {
                 _ if self.luck.percent(50) => weekly,
                 _ => *self.luck.pick(&["365/84", "1/7", "0.35", "4.33", "52"]),
             };
-            self.say("conversion", None, &name, format!("conversion {name} from {} to {} times {times} see \"s.1\"", PERIODS[from], PERIODS[to]));
+            self.say(
+                "conversion",
+                None,
+                &name,
+                format!(
+                    "conversion {name} from {} to {} times {times} see \"s.1\"",
+                    PERIODS[from], PERIODS[to]
+                ),
+            );
         }
         name
     }
 
     /// A rounding of a piece.
     fn rounded(&mut self, ty: Ty, of: &Piece) -> Piece {
-        let way = *self.luck.pick(&["up", "down", "half up", "half down", "half even"]);
+        let way = *self
+            .luck
+            .pick(&["up", "down", "half up", "half down", "half even"]);
         let fine: &[&str] = match ty {
             Ty::Money(_) => &["0.01", "0.01", "1", "0.5", "10", "0.1"],
             Ty::Rate => &["1%", "0.5%", "0.01", "0.1"],
@@ -808,7 +1302,11 @@ impl Maker<'_> {
             _ => &["1", "2", "5"],
         };
         let steps = self.luck.percent(if of.varies { 40 } else { 10 });
-        let unit = if steps { *self.luck.pick(coarse) } else { *self.luck.pick(fine) };
+        let unit = if steps {
+            *self.luck.pick(coarse)
+        } else {
+            *self.luck.pick(fine)
+        };
         let minor = matches!(ty, Ty::Money(_)) && unit == "0.01";
         let manner = match (steps, of.varies && !minor) {
             (true, _) => " as steps",
@@ -827,27 +1325,70 @@ impl Maker<'_> {
         let scalar = matches!(ty, Ty::Rate | Ty::Number | Ty::Count);
         match self.luck.below(14) {
             0 | 1 => {
-                let (left, right) = (self.piece(ty, scopes, depth, room), self.zero_or(ty, scopes, depth, room));
+                let (left, right) = (
+                    self.piece(ty, scopes, depth, room),
+                    self.zero_or(ty, scopes, depth, room),
+                );
                 let sign = *self.luck.pick(&["+", "-"]);
                 self.join(sign, &left, SUM, &right, PRODUCT, SUM)
             }
             2 | 3 if ty != Ty::Count => {
                 let left = self.piece(ty, scopes, depth, room);
                 let factor = *self.luck.pick(&[Ty::Rate, Ty::Number, Ty::Count]);
-                let right = self.piece(factor, scopes, depth, Room { degree: room.degree - left.degree.min(room.degree), steady: room.steady });
+                let right = self.piece(
+                    factor,
+                    scopes,
+                    depth,
+                    Room {
+                        degree: room.degree - left.degree.min(room.degree),
+                        steady: room.steady,
+                    },
+                );
                 let degree = left.degree + right.degree;
-                let (left, right) = if self.luck.percent(50) { (left, right) } else { (right, left) };
-                Piece { degree, ..self.join("*", &left, PRODUCT, &right, VALUE, PRODUCT) }
+                let (left, right) = if self.luck.percent(50) {
+                    (left, right)
+                } else {
+                    (right, left)
+                };
+                Piece {
+                    degree,
+                    ..self.join("*", &left, PRODUCT, &right, VALUE, PRODUCT)
+                }
             }
             4 if ty == Ty::Money(Some(2)) => {
-                let left = self.piece(Ty::Money(Some(0)), scopes, depth, Room { degree: room.degree.min(1), ..room });
-                let right = self.piece(Ty::Hours, scopes, depth, Room { degree: room.degree - left.degree.min(room.degree), steady: room.steady });
-                Piece { degree: left.degree + right.degree, ..self.join("*", &left, PRODUCT, &right, VALUE, PRODUCT) }
+                let left = self.piece(
+                    Ty::Money(Some(0)),
+                    scopes,
+                    depth,
+                    Room {
+                        degree: room.degree.min(1),
+                        ..room
+                    },
+                );
+                let right = self.piece(
+                    Ty::Hours,
+                    scopes,
+                    depth,
+                    Room {
+                        degree: room.degree - left.degree.min(room.degree),
+                        steady: room.steady,
+                    },
+                );
+                Piece {
+                    degree: left.degree + right.degree,
+                    ..self.join("*", &left, PRODUCT, &right, VALUE, PRODUCT)
+                }
             }
             5 if ty != Ty::Count => {
                 // Over a fixed number, or (to a number) over a fixed sum of the same kind.
                 let ratio = matches!(ty, Ty::Number | Ty::Rate) && self.luck.percent(70);
-                let of = if ratio { *self.luck.pick(&[Ty::Money(Some(2)), Ty::Money(Some(MONTH)), Ty::Hours]) } else { ty };
+                let of = if ratio {
+                    *self
+                        .luck
+                        .pick(&[Ty::Money(Some(2)), Ty::Money(Some(MONTH)), Ty::Hours])
+                } else {
+                    ty
+                };
                 let left = self.piece(of, scopes, depth, room);
                 let by = if ratio { of } else { Ty::Number };
                 let right = match self.literal(by).text {
@@ -859,17 +1400,39 @@ impl Maker<'_> {
             }
             6 if matches!(ty, Ty::Rate | Ty::Number) || (!scalar && self.luck.percent(50)) => {
                 // Over a fact, rounded at once.
-                let left = self.piece(if scalar { Ty::Money(Some(2)) } else { ty }, scopes, depth, room);
-                let wanted = if scalar { Ty::Money(Some(2)) } else { *self.luck.pick(&[Ty::Count, Ty::Number]) };
+                let left = self.piece(
+                    if scalar { Ty::Money(Some(2)) } else { ty },
+                    scopes,
+                    depth,
+                    room,
+                );
+                let wanted = if scalar {
+                    Ty::Money(Some(2))
+                } else {
+                    *self.luck.pick(&[Ty::Count, Ty::Number])
+                };
                 let kinds: Vec<usize> = scopes.iter().flat_map(|kind| self.owners(*kind)).collect();
-                let known: Vec<Named> = self.reachable(wanted, scopes, Room { degree: 0, steady: true }).into_iter().filter(|n| n.divides).collect();
+                let known: Vec<Named> = self
+                    .reachable(
+                        wanted,
+                        scopes,
+                        Room {
+                            degree: 0,
+                            steady: true,
+                        },
+                    )
+                    .into_iter()
+                    .filter(|n| n.divides)
+                    .collect();
                 let by = if known.is_empty() || self.luck.percent(30) {
                     let kind = *self.luck.pick(&kinds);
                     self.new_fact(wanted, kind, true)
                 } else {
                     self.luck.pick(&known).clone()
                 };
-                let way = *self.luck.pick(&["up", "down", "half up", "half down", "half even"]);
+                let way = *self
+                    .luck
+                    .pick(&["up", "down", "half up", "half down", "half even"]);
                 let unit = match (left.varies, ty) {
                     (true, Ty::Money(_)) => "50",
                     (true, _) => "5",
@@ -877,12 +1440,24 @@ impl Maker<'_> {
                     (false, _) => *self.luck.pick(&["0.01", "1", "0.5"]),
                 };
                 let manner = if left.varies { " as steps" } else { "" };
-                let text = format!("{} / {} rounded {way} to {unit}{manner}", left.at(PRODUCT), by.name);
-                Piece { text, level: SHAPED, degree: 0, varies: left.varies }
+                let text = format!(
+                    "{} / {} rounded {way} to {unit}{manner}",
+                    left.at(PRODUCT),
+                    by.name
+                );
+                Piece {
+                    text,
+                    level: SHAPED,
+                    degree: 0,
+                    varies: left.varies,
+                }
             }
             7 | 8 => {
                 let op = *self.luck.pick(&["beyond", "limited to", "raised to"]);
-                let (left, right) = (self.piece(ty, scopes, depth, room), self.zero_or(ty, scopes, depth, room));
+                let (left, right) = (
+                    self.piece(ty, scopes, depth, room),
+                    self.zero_or(ty, scopes, depth, room),
+                );
                 self.join(op, &left, SHAPED, &right, SUM, SHAPED)
             }
             9 => {
@@ -898,18 +1473,44 @@ impl Maker<'_> {
                     let from = (to + 1 + self.luck.below(4)) % 5;
                     let of = self.piece(Ty::Money(Some(from)), scopes, depth, room);
                     let by = self.conversion(from, to);
-                    Piece { text: format!("{} converted by {by}", of.at(SHAPED)), level: SHAPED, ..of }
+                    Piece {
+                        text: format!("{} converted by {by}", of.at(SHAPED)),
+                        level: SHAPED,
+                        ..of
+                    }
                 }
                 Ty::Count => {
-                    let from = self.leaf(Ty::Date, scopes, Room { degree: 0, steady: true });
-                    let to = self.leaf(Ty::Date, scopes, Room { degree: 0, steady: true });
+                    let from = self.leaf(
+                        Ty::Date,
+                        scopes,
+                        Room {
+                            degree: 0,
+                            steady: true,
+                        },
+                    );
+                    let to = self.leaf(
+                        Ty::Date,
+                        scopes,
+                        Room {
+                            degree: 0,
+                            steady: true,
+                        },
+                    );
                     Piece::plain(format!("years from {} to {}", from.at(VALUE), to.at(VALUE)))
                 }
-                Ty::Money(None) | Ty::Rate | Ty::Hours | Ty::Number | Ty::Date | Ty::YesNo | Ty::Choice(_) => self.leaf(ty, scopes, room),
+                Ty::Money(None)
+                | Ty::Rate
+                | Ty::Hours
+                | Ty::Number
+                | Ty::Date
+                | Ty::YesNo
+                | Ty::Choice(_) => self.leaf(ty, scopes, room),
             },
             11 => {
                 let many = 1 + self.luck.below(3);
-                let list: Vec<Piece> = (0..many).map(|_| self.zero_or(ty, scopes, depth, room)).collect();
+                let list: Vec<Piece> = (0..many)
+                    .map(|_| self.zero_or(ty, scopes, depth, room))
+                    .collect();
                 let word = *self.luck.pick(&["larger", "smaller"]);
                 let texts: Vec<String> = list.iter().map(|p| p.text.clone()).collect();
                 Piece {
@@ -921,46 +1522,89 @@ impl Maker<'_> {
             }
             12 if matches!(ty, Ty::Money(_)) => {
                 let of = self.piece(ty, scopes, depth, room);
-                if room.steady { of } else { self.charged(ty, scopes, &of, room) }
+                if room.steady {
+                    of
+                } else {
+                    self.charged(ty, scopes, &of, room)
+                }
             }
             _ => self.search(ty, scopes, depth, room),
         }
     }
 
     fn condition(&mut self, scopes: &[usize], depth: usize, room: Room) -> Piece {
-        let nested = |piece: Piece, level| Piece { level, degree: 0, ..piece };
+        let nested = |piece: Piece, level| Piece {
+            level,
+            degree: 0,
+            ..piece
+        };
         match self.luck.below(10) {
             0 => {
-                let (left, right) = (self.piece(Ty::YesNo, scopes, depth, room), self.piece(Ty::YesNo, scopes, depth, room));
+                let (left, right) = (
+                    self.piece(Ty::YesNo, scopes, depth, room),
+                    self.piece(Ty::YesNo, scopes, depth, room),
+                );
                 nested(self.join("and", &left, BOTH, &right, DENIAL, BOTH), BOTH)
             }
             1 => {
-                let (left, right) = (self.piece(Ty::YesNo, scopes, depth, room), self.piece(Ty::YesNo, scopes, depth, room));
+                let (left, right) = (
+                    self.piece(Ty::YesNo, scopes, depth, room),
+                    self.piece(Ty::YesNo, scopes, depth, room),
+                );
                 nested(self.join("or", &left, EITHER, &right, BOTH, EITHER), EITHER)
             }
             2 => {
                 let inner = self.piece(Ty::YesNo, scopes, depth, room);
-                Piece { text: format!("not {}", inner.at(DENIAL)), level: DENIAL, degree: 0, varies: inner.varies }
+                Piece {
+                    text: format!("not {}", inner.at(DENIAL)),
+                    level: DENIAL,
+                    degree: 0,
+                    varies: inner.varies,
+                }
             }
             3 if !self.choices.is_empty() => {
                 let at = self.luck.below(self.choices.len());
                 let left = self.leaf(Ty::Choice(at), scopes, room);
-                let left = if left.text.starts_with("word") { Piece::plain(self.new_fact(Ty::Choice(at), HOUSEHOLD, false).name) } else { left };
+                let left = if left.text.starts_with("word") {
+                    Piece::plain(self.new_fact(Ty::Choice(at), HOUSEHOLD, false).name)
+                } else {
+                    left
+                };
                 let right = self.literal(Ty::Choice(at));
                 let op = *self.luck.pick(&["is", "is not"]);
-                nested(self.join(op, &left, SHAPED, &right, SHAPED, COMPARED), COMPARED)
+                nested(
+                    self.join(op, &left, SHAPED, &right, SHAPED, COMPARED),
+                    COMPARED,
+                )
             }
             4 => self.search(Ty::YesNo, scopes, depth, room),
             5 => {
-                let (left, right) = (self.leaf(Ty::Date, scopes, room), self.leaf(Ty::Date, scopes, room));
-                let op = *self.luck.pick(&["above", "below", "at least", "at most", "is"]);
-                nested(self.join(op, &left, SHAPED, &right, SHAPED, COMPARED), COMPARED)
+                let (left, right) = (
+                    self.leaf(Ty::Date, scopes, room),
+                    self.leaf(Ty::Date, scopes, room),
+                );
+                let op = *self
+                    .luck
+                    .pick(&["above", "below", "at least", "at most", "is"]);
+                nested(
+                    self.join(op, &left, SHAPED, &right, SHAPED, COMPARED),
+                    COMPARED,
+                )
             }
             _ => {
                 let ty = self.any_quantity();
-                let (left, right) = (self.piece(ty, scopes, depth, room), self.zero_or(ty, scopes, depth.min(1), room));
-                let op = *self.luck.pick(&["above", "below", "at least", "at most", "above", "below", "at least", "at most", "is", "is not"]);
-                nested(self.join(op, &left, SHAPED, &right, SHAPED, COMPARED), COMPARED)
+                let (left, right) = (
+                    self.piece(ty, scopes, depth, room),
+                    self.zero_or(ty, scopes, depth.min(1), room),
+                );
+                let op = *self.luck.pick(&[
+                    "above", "below", "at least", "at most", "above", "below", "at least",
+                    "at most", "is", "is not",
+                ]);
+                nested(
+                    self.join(op, &left, SHAPED, &right, SHAPED, COMPARED),
+                    COMPARED,
+                )
             }
         }
     }
@@ -968,7 +1612,8 @@ impl Maker<'_> {
 
 /// The words of a text.
 fn words(text: &str) -> BTreeSet<&str> {
-    text.split(|c: char| !(c.is_ascii_lowercase() || c.is_ascii_digit() || c == '_')).collect()
+    text.split(|c: char| !(c.is_ascii_lowercase() || c.is_ascii_digit() || c == '_'))
+        .collect()
 }
 
 impl Invented {
@@ -976,7 +1621,14 @@ impl Invented {
     fn uses(&self) -> HashMap<&str, usize> {
         let mut uses: HashMap<&str, usize> = HashMap::new();
         for statement in &self.statements {
-            let body = if statement.name.is_empty() { statement.text.as_str() } else { statement.text.split_once(statement.name.as_str()).map_or("", |(_, rest)| rest) };
+            let body = if statement.name.is_empty() {
+                statement.text.as_str()
+            } else {
+                statement
+                    .text
+                    .split_once(statement.name.as_str())
+                    .map_or("", |(_, rest)| rest)
+            };
             let per = statement.per.as_deref().unwrap_or("");
             for word in words(body).into_iter().chain([per]) {
                 *uses.entry(word).or_default() += 1;
@@ -991,11 +1643,20 @@ impl Invented {
             let before = self.statements.len() + self.amounts.len();
             let all = self.clone();
             let uses = all.uses();
-            self.statements.retain(|s| matches!(s.keyword, "item" | "hold" | "note") || uses.contains_key(s.name.as_str()));
-            self.amounts.retain(|(name, _)| uses.contains_key(name.as_str()));
-            self.tables.retain(|(name, _)| all.statements.iter().any(|s| s.name == *name));
+            self.statements.retain(|s| {
+                matches!(s.keyword, "item" | "hold" | "note") || uses.contains_key(s.name.as_str())
+            });
+            self.amounts
+                .retain(|(name, _)| uses.contains_key(name.as_str()));
+            self.tables
+                .retain(|(name, _)| all.statements.iter().any(|s| s.name == *name));
             // A hold that asks for what is gone goes too.
-            self.statements.retain(|s| s.keyword != "hold" || words(&s.text).iter().all(|w| !w.starts_with("amount_") || all.amounts.iter().any(|(name, _)| name == w)));
+            self.statements.retain(|s| {
+                s.keyword != "hold"
+                    || words(&s.text).iter().all(|w| {
+                        !w.starts_with("amount_") || all.amounts.iter().any(|(name, _)| name == w)
+                    })
+            });
             if self.statements.len() + self.amounts.len() == before {
                 return;
             }
@@ -1021,7 +1682,10 @@ impl Invented {
             ),
             ("order.txt".to_owned(), "first.rules\nsecond.rules\n".to_owned()),
         ];
-        for (part, (name, date)) in [("first.rules", "payment"), ("second.rules", "assessment")].into_iter().enumerate() {
+        for (part, (name, date)) in [("first.rules", "payment"), ("second.rules", "assessment")]
+            .into_iter()
+            .enumerate()
+        {
             let mut text = format!("part \"{name}\" dated by {date}\nlaw \"The Harrowmere Act\"\n");
             let mut per = "household".to_owned();
             for statement in self.statements.iter().filter(|s| s.part == part) {
@@ -1035,14 +1699,31 @@ impl Invented {
             out.push((name.to_owned(), text));
         }
         let rows: String = self.amounts.iter().map(|(_, rows)| rows.as_str()).collect();
-        out.push(("amounts.csv".to_owned(), format!("name,from,to,value,unit,period,source,locator,status\n{rows}")));
-        out.extend(self.tables.iter().map(|(name, text)| (format!("tables/{name}.csv"), text.clone())));
+        out.push((
+            "amounts.csv".to_owned(),
+            format!("name,from,to,value,unit,period,source,locator,status\n{rows}"),
+        ));
+        out.extend(
+            self.tables
+                .iter()
+                .map(|(name, text)| (format!("tables/{name}.csv"), text.clone())),
+        );
         out
     }
 }
 
 /// Texts as the files of a pack.
 pub fn files(texts: &[(String, String)]) -> PackFiles {
-    let files = texts.iter().map(|(name, text)| TextFile { name: name.clone(), text: text.clone(), sha256: String::new() }).collect();
-    PackFiles { name: "invented".into(), files: Files(files) }
+    let files = texts
+        .iter()
+        .map(|(name, text)| TextFile {
+            name: name.clone(),
+            text: text.clone(),
+            sha256: String::new(),
+        })
+        .collect();
+    PackFiles {
+        name: "invented".into(),
+        files: Files(files),
+    }
 }

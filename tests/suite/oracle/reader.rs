@@ -52,27 +52,73 @@ pub enum Expr {
     Day(i64),
     YesNo(bool),
     Name(String),
-    Of { name: String, whose: String, failing: Option<Box<Expr>> },
-    Lookup { table: String, keys: Vec<Expr> },
-    Where { when: Box<Expr>, give: Box<Expr>, otherwise: Box<Expr> },
+    Of {
+        name: String,
+        whose: String,
+        failing: Option<Box<Expr>>,
+    },
+    Lookup {
+        table: String,
+        keys: Vec<Expr>,
+    },
+    Where {
+        when: Box<Expr>,
+        give: Box<Expr>,
+        otherwise: Box<Expr>,
+    },
     Larger(Vec<Expr>),
     Smaller(Vec<Expr>),
-    SumOver { over: Search, body: Box<Expr> },
+    SumOver {
+        over: Search,
+        body: Box<Expr>,
+    },
     CountOf(Search),
     Any(Search),
     Every(Search),
-    First { over: Search, give: Box<Expr>, failing: Box<Expr> },
+    First {
+        over: Search,
+        give: Box<Expr>,
+        failing: Box<Expr>,
+    },
     Place(Search),
-    Years { from: Box<Expr>, to: Box<Expr> },
+    Years {
+        from: Box<Expr>,
+        to: Box<Expr>,
+    },
     Missing(String),
     /// A figure once more, and the facts that are taken otherwise for it.
-    AsIf { name: String, changes: Vec<(String, Expr)> },
-    Pair { sign: Sign, left: Box<Expr>, right: Box<Expr> },
-    Rounded { of: Box<Expr>, way: Way, unit: Q, steps: bool },
-    Converted { of: Box<Expr>, by: String },
-    Charged { of: Box<Expr>, by: String },
-    Placed { of: Box<Expr>, on: String },
-    Compared { test: Test, left: Box<Expr>, right: Box<Expr> },
+    AsIf {
+        name: String,
+        changes: Vec<(String, Expr)>,
+    },
+    Pair {
+        sign: Sign,
+        left: Box<Expr>,
+        right: Box<Expr>,
+    },
+    Rounded {
+        of: Box<Expr>,
+        way: Way,
+        unit: Q,
+        steps: bool,
+    },
+    Converted {
+        of: Box<Expr>,
+        by: String,
+    },
+    Charged {
+        of: Box<Expr>,
+        by: String,
+    },
+    Placed {
+        of: Box<Expr>,
+        on: String,
+    },
+    Compared {
+        test: Test,
+        left: Box<Expr>,
+        right: Box<Expr>,
+    },
     Not(Box<Expr>),
     And(Box<Expr>, Box<Expr>),
     Or(Box<Expr>, Box<Expr>),
@@ -114,11 +160,19 @@ impl Reader {
 
     /// Takes this word, which must stand here.
     pub fn word(&mut self, word: &str) {
-        assert!(self.take(word), "`{word}` should stand here, not {:?}", self.peek());
+        assert!(
+            self.take(word),
+            "`{word}` should stand here, not {:?}",
+            self.peek()
+        );
     }
 
     pub fn sign(&mut self, sign: char) {
-        assert!(self.take_sign(sign), "`{sign}` should stand here, not {:?}", self.peek());
+        assert!(
+            self.take_sign(sign),
+            "`{sign}` should stand here, not {:?}",
+            self.peek()
+        );
     }
 
     pub fn name(&mut self) -> String {
@@ -160,7 +214,11 @@ impl Reader {
     }
 
     fn denial(&mut self) -> Expr {
-        if self.take("not") { Expr::Not(Box::new(self.denial())) } else { self.compared() }
+        if self.take("not") {
+            Expr::Not(Box::new(self.denial()))
+        } else {
+            self.compared()
+        }
     }
 
     fn compared(&mut self) -> Expr {
@@ -177,11 +235,19 @@ impl Reader {
                 Test::AtMost
             }
         } else if self.take("is") {
-            if self.take("not") { Test::IsNot } else { Test::Is }
+            if self.take("not") {
+                Test::IsNot
+            } else {
+                Test::Is
+            }
         } else {
             return left;
         };
-        Expr::Compared { test, left: Box::new(left), right: Box::new(self.shaped()) }
+        Expr::Compared {
+            test,
+            left: Box::new(left),
+            right: Box::new(self.shaped()),
+        }
     }
 
     fn shaped(&mut self) -> Expr {
@@ -189,24 +255,45 @@ impl Reader {
         loop {
             let of = Box::new(left.clone());
             left = if self.take("beyond") {
-                Expr::Pair { sign: Sign::Beyond, left: of, right: Box::new(self.sum()) }
+                Expr::Pair {
+                    sign: Sign::Beyond,
+                    left: of,
+                    right: Box::new(self.sum()),
+                }
             } else if self.take("limited") {
                 self.word("to");
-                Expr::Pair { sign: Sign::LimitedTo, left: of, right: Box::new(self.sum()) }
+                Expr::Pair {
+                    sign: Sign::LimitedTo,
+                    left: of,
+                    right: Box::new(self.sum()),
+                }
             } else if self.take("raised") {
                 self.word("to");
-                Expr::Pair { sign: Sign::RaisedTo, left: of, right: Box::new(self.sum()) }
+                Expr::Pair {
+                    sign: Sign::RaisedTo,
+                    left: of,
+                    right: Box::new(self.sum()),
+                }
             } else if self.take("rounded") {
                 self.rounded(of)
             } else if self.take("converted") {
                 self.word("by");
-                Expr::Converted { of, by: self.name() }
+                Expr::Converted {
+                    of,
+                    by: self.name(),
+                }
             } else if self.take("charged") {
                 self.word("by");
-                Expr::Charged { of, by: self.name() }
+                Expr::Charged {
+                    of,
+                    by: self.name(),
+                }
             } else if self.take("placed") {
                 self.word("on");
-                Expr::Placed { of, on: self.name() }
+                Expr::Placed {
+                    of,
+                    on: self.name(),
+                }
             } else {
                 return left;
             };
@@ -243,7 +330,12 @@ impl Reader {
                 self.word("slope");
             }
         }
-        Expr::Rounded { of, way, unit, steps }
+        Expr::Rounded {
+            of,
+            way,
+            unit,
+            steps,
+        }
     }
 
     /// `sum`.
@@ -256,7 +348,11 @@ impl Reader {
                 _ => return left,
             };
             self.next();
-            left = Expr::Pair { sign, left: Box::new(left), right: Box::new(self.product()) };
+            left = Expr::Pair {
+                sign,
+                left: Box::new(left),
+                right: Box::new(self.product()),
+            };
         }
     }
 
@@ -269,7 +365,11 @@ impl Reader {
                 _ => return left,
             };
             self.next();
-            left = Expr::Pair { sign, left: Box::new(left), right: Box::new(self.value()) };
+            left = Expr::Pair {
+                sign,
+                left: Box::new(left),
+                right: Box::new(self.value()),
+            };
         }
     }
 
@@ -290,7 +390,12 @@ impl Reader {
     /// `KIND [ "with" … ]`.
     fn counted(&mut self) -> Search {
         let kind = self.name();
-        Search { kind, by: String::new(), down: false, with: self.with() }
+        Search {
+            kind,
+            by: String::new(),
+            down: false,
+            with: self.with(),
+        }
     }
 
     /// `"by" NAME [ "down" ] [ "with" … ]`.
@@ -298,7 +403,12 @@ impl Reader {
         self.word("by");
         let by = self.name();
         let down = self.take("down");
-        Search { kind, by, down, with: self.with() }
+        Search {
+            kind,
+            by,
+            down,
+            with: self.with(),
+        }
     }
 
     fn list(&mut self, close: char) -> Vec<Expr> {
@@ -344,19 +454,30 @@ impl Reader {
                 self.word("give");
                 let give = Box::new(self.expr());
                 self.word("otherwise");
-                Expr::Where { when, give, otherwise: Box::new(self.expr()) }
+                Expr::Where {
+                    when,
+                    give,
+                    otherwise: Box::new(self.expr()),
+                }
             }
             "larger" | "smaller" => {
                 self.word("of");
                 self.sign('(');
                 let list = self.list(')');
-                if word == "larger" { Expr::Larger(list) } else { Expr::Smaller(list) }
+                if word == "larger" {
+                    Expr::Larger(list)
+                } else {
+                    Expr::Smaller(list)
+                }
             }
             "sum" => {
                 self.word("over");
                 let over = self.counted();
                 self.word("of");
-                Expr::SumOver { over, body: self.boxed_value() }
+                Expr::SumOver {
+                    over,
+                    body: self.boxed_value(),
+                }
             }
             "count" => {
                 self.word("of");
@@ -370,20 +491,31 @@ impl Reader {
                 self.word("give");
                 let give = self.boxed_value();
                 self.word("failing");
-                Expr::First { over, give, failing: self.boxed_value() }
+                Expr::First {
+                    over,
+                    give,
+                    failing: self.boxed_value(),
+                }
             }
             "place" => Expr::Place(self.ordered(String::new())),
             "years" => {
                 self.word("from");
                 let from = self.boxed_value();
                 self.word("to");
-                Expr::Years { from, to: self.boxed_value() }
+                Expr::Years {
+                    from,
+                    to: self.boxed_value(),
+                }
             }
             "missing" => Expr::Missing(self.name()),
             _ if self.take("of") => {
                 let whose = self.name();
                 let failing = self.take("failing").then(|| self.boxed_value());
-                Expr::Of { name: word, whose, failing }
+                Expr::Of {
+                    name: word,
+                    whose,
+                    failing,
+                }
             }
             _ if self.take("as") => {
                 self.word("if");
@@ -398,9 +530,15 @@ impl Reader {
                     }
                 }
                 self.sign(')');
-                Expr::AsIf { name: word, changes }
+                Expr::AsIf {
+                    name: word,
+                    changes,
+                }
             }
-            _ if self.take_sign('[') => Expr::Lookup { table: word, keys: self.list(']') },
+            _ if self.take_sign('[') => Expr::Lookup {
+                table: word,
+                keys: self.list(']'),
+            },
             _ => Expr::Name(word),
         }
     }

@@ -31,7 +31,13 @@ fn check(texts: &[(String, String)]) -> Result<Result<Box<Ready>, String>, Strin
         Err(_) => Err("the checker panics".into()),
         Ok(Err((_, faults))) if faults.is_empty() => Err("refused without a reason".into()),
         Ok(Err((sources, faults))) => {
-            let words = catch_unwind(AssertUnwindSafe(|| faults.iter().map(|f| f.render(&sources, false)).collect::<Vec<_>>().join("\n")));
+            let words = catch_unwind(AssertUnwindSafe(|| {
+                faults
+                    .iter()
+                    .map(|f| f.render(&sources, false))
+                    .collect::<Vec<_>>()
+                    .join("\n")
+            }));
             words.map(Err).map_err(|_| "a message panics".into())
         }
         Ok(Ok(pack)) => {
@@ -55,24 +61,82 @@ struct Question {
 fn question(ready: &Ready, seed: u64) -> Question {
     let mut luck = Luck::new(seed ^ 0x5EED);
     let (from, to) = (day(DAYS[0]).expect("a day"), day(DAYS[3]).expect("a day"));
-    let days: Vec<i64> = (0..2).map(|_| if luck.percent(40) { day(DAYS[luck.below(4)]).expect("a day") } else { luck.between(from, to) }).collect();
-    let village = Village { schema: &ready.schema, marks: marks(&ready.book), day: days[0], most_children: 3, most_pay: 600_000 };
+    let days: Vec<i64> = (0..2)
+        .map(|_| {
+            if luck.percent(40) {
+                day(DAYS[luck.below(4)]).expect("a day")
+            } else {
+                luck.between(from, to)
+            }
+        })
+        .collect();
+    let village = Village {
+        schema: &ready.schema,
+        marks: marks(&ready.book),
+        day: days[0],
+        most_children: 3,
+        most_pay: 600_000,
+    };
     let household = village.household(&mut luck);
     let earner = luck.below(household.instances[ADULT].len());
-    let offered = household.offers.first().is_some_and(|offer| offer.owner == earner);
-    let choice = if offered { JobChoice::Offer(0) } else { JobChoice::Today };
-    let asked = Asked { seed, law_points: 6, fractions: 4, most_pieces: 12, rationals: if luck.percent(5) { 200 } else { 10 }, bounded: 6 };
-    Question { household, days, earner, choice, asked }
+    let offered = household
+        .offers
+        .first()
+        .is_some_and(|offer| offer.owner == earner);
+    let choice = if offered {
+        JobChoice::Offer(0)
+    } else {
+        JobChoice::Today
+    };
+    let asked = Asked {
+        seed,
+        law_points: 6,
+        fractions: 4,
+        most_pieces: 12,
+        rationals: if luck.percent(5) { 200 } else { 10 },
+        bounded: 6,
+    };
+    Question {
+        household,
+        days,
+        earner,
+        choice,
+        asked,
+    }
 }
 
-fn ask(ready: &Ready, question: &Question, household: &Household, tally: &mut Tally) -> Result<(), String> {
-    let Question { days, earner, choice, asked, .. } = question;
-    let subject = Subject { book: &ready.book, pack: &ready.pack, days, household, earner: *earner, choice: *choice };
-    catch_unwind(AssertUnwindSafe(|| compare(&subject, *asked, tally))).unwrap_or_else(|_| Err("a panic".into()))
+fn ask(
+    ready: &Ready,
+    question: &Question,
+    household: &Household,
+    tally: &mut Tally,
+) -> Result<(), String> {
+    let Question {
+        days,
+        earner,
+        choice,
+        asked,
+        ..
+    } = question;
+    let subject = Subject {
+        book: &ready.book,
+        pack: &ready.pack,
+        days,
+        household,
+        earner: *earner,
+        choice: *choice,
+    };
+    catch_unwind(AssertUnwindSafe(|| compare(&subject, *asked, tally)))
+        .unwrap_or_else(|_| Err("a panic".into()))
 }
 
 /// Leaves out statements, records and facts as long as something still goes wrong.
-fn shrink(invented: &Invented, ready: Box<Ready>, question: &mut Question, fault: &mut String) -> (Invented, Box<Ready>) {
+fn shrink(
+    invented: &Invented,
+    ready: Box<Ready>,
+    question: &mut Question,
+    fault: &mut String,
+) -> (Invented, Box<Ready>) {
     let (mut invented, mut ready) = (invented.clone(), ready);
     let mut tries = 0;
     loop {
@@ -83,7 +147,9 @@ fn shrink(invented: &Invented, ready: Box<Ready>, question: &mut Question, fault
                 continue;
             }
             let less = invented.without(at);
-            let Ok(Ok(new)) = check(&less.texts()) else { continue };
+            let Ok(Ok(new)) = check(&less.texts()) else {
+                continue;
+            };
             let household = project(&ready.schema, &new.schema, &question.household);
             if let Err(why) = ask(&new, question, &household, &mut Tally::default()) {
                 (invented, ready, *fault, shrunk) = (less, new, why, true);
@@ -106,16 +172,25 @@ fn shrink(invented: &Invented, ready: Box<Ready>, question: &mut Question, fault
 }
 
 fn printed(texts: &[(String, String)]) -> String {
-    texts.iter().filter(|(name, _)| name != "pack.toml" && name != "order.txt").map(|(name, text)| format!("--- {name}\n{text}")).collect()
+    texts
+        .iter()
+        .filter(|(name, _)| name != "pack.toml" && name != "order.txt")
+        .map(|(name, text)| format!("--- {name}\n{text}"))
+        .collect()
 }
 
 /// Texts with a few words of their rules taken out, doubled, swapped or replaced.
 fn broken(luck: &mut Luck, texts: &[(String, String)]) -> Vec<(String, String)> {
     let mut texts = texts.to_vec();
-    let names: Vec<usize> = (0..texts.len()).filter(|at| texts[*at].0 != "order.txt").collect();
+    let names: Vec<usize> = (0..texts.len())
+        .filter(|at| texts[*at].0 != "order.txt")
+        .collect();
     for _ in 0..1 + luck.below(3) {
         let text = &mut texts[*luck.pick(&names)].1;
-        let mut pieces: Vec<String> = text.split_inclusive([' ', '\n', ',', '(', ')']).map(str::to_owned).collect();
+        let mut pieces: Vec<String> = text
+            .split_inclusive([' ', '\n', ',', '(', ')'])
+            .map(str::to_owned)
+            .collect();
         if pieces.is_empty() {
             continue;
         }
@@ -130,7 +205,12 @@ fn broken(luck: &mut Luck, texts: &[(String, String)]) -> Vec<(String, String)> 
             4 => pieces[at] = (*luck.pick(&STRANGE)).to_owned(),
             _ => {
                 let cut = luck.below(text.len() + 1);
-                pieces = vec![text.char_indices().take_while(|(place, _)| *place < cut).map(|(_, c)| c).collect()];
+                pieces = vec![
+                    text.char_indices()
+                        .take_while(|(place, _)| *place < cut)
+                        .map(|(_, c)| c)
+                        .collect(),
+                ];
             }
         }
         *text = pieces.concat();
@@ -140,8 +220,30 @@ fn broken(luck: &mut Luck, texts: &[(String, String)]) -> Vec<(String, String)> 
 
 /// Things that do not belong in a rule.
 const STRANGE: [&str; 24] = [
-    "\"", "(", ")", "[", "]", "-", "99999999999999999", "0", "0.00000001 ", "999999999999999999.5 ", "\u{feff}", "£", "2026-02-30 ", "0000-01-01 ", "9999-12-31 ",
-    "hours ", "where ", "give ", "per job\n", "beyond ", "* hours * hours ", "/ hours ", "rounded up to 0 ", "#",
+    "\"",
+    "(",
+    ")",
+    "[",
+    "]",
+    "-",
+    "99999999999999999",
+    "0",
+    "0.00000001 ",
+    "999999999999999999.5 ",
+    "\u{feff}",
+    "£",
+    "2026-02-30 ",
+    "0000-01-01 ",
+    "9999-12-31 ",
+    "hours ",
+    "where ",
+    "give ",
+    "per job\n",
+    "beyond ",
+    "* hours * hours ",
+    "/ hours ",
+    "rounded up to 0 ",
+    "#",
 ];
 
 #[test]
@@ -150,7 +252,10 @@ fn broken_packs_are_refused_in_words() {
     let (mut refused, mut tally) = (0, Tally::default());
     for seed in (SEED * 3..).take(packs) {
         let mut luck = Luck::new(seed);
-        let texts = broken(&mut luck, &invent(&mut Luck::new(SEED + seed % 500)).texts());
+        let texts = broken(
+            &mut luck,
+            &invent(&mut Luck::new(SEED + seed % 500)).texts(),
+        );
         match check(&texts) {
             Err(fault) => panic!("seed {seed}: {fault}\n{}", printed(&texts)),
             Ok(Err(_)) => refused += 1,
@@ -158,13 +263,21 @@ fn broken_packs_are_refused_in_words() {
             Ok(Ok(ready)) => {
                 let question = question(&ready, seed);
                 if let Err(fault) = ask(&ready, &question, &question.household, &mut tally) {
-                    panic!("seed {seed}, days {:?}: {fault}\n{}\n{}", question.days, printed(&texts), shown(&ready.schema, &question.household));
+                    panic!(
+                        "seed {seed}, days {:?}: {fault}\n{}\n{}",
+                        question.days,
+                        printed(&texts),
+                        shown(&ready.schema, &question.household)
+                    );
                 }
             }
         }
     }
     println!("{refused} of {packs} refused; {tally:?}");
-    assert!(refused * 4 > packs, "too few are refused: {refused} of {packs}");
+    assert!(
+        refused * 4 > packs,
+        "too few are refused: {refused} of {packs}"
+    );
 }
 
 #[test]
@@ -181,7 +294,9 @@ fn small_packs_agree_with_the_oracle() {
             Ok(Err(words)) => {
                 refused += 1;
                 let first = words.lines().next().unwrap_or("").to_owned();
-                *reasons.entry(first.split('`').step_by(2).collect::<Vec<_>>().join("…")).or_default() += 1;
+                *reasons
+                    .entry(first.split('`').step_by(2).collect::<Vec<_>>().join("…"))
+                    .or_default() += 1;
                 continue;
             }
             Ok(Ok(ready)) => ready,
@@ -189,9 +304,13 @@ fn small_packs_agree_with_the_oracle() {
         tally.packs += 1;
         for turn in 0..2 {
             let mut question = question(&ready, seed * 2 + turn);
-            let Err(first) = ask(&ready, &question, &question.household, &mut tally) else { continue };
+            let Err(first) = ask(&ready, &question, &question.household, &mut tally) else {
+                continue;
+            };
             let mut fault = first.clone();
-            let Ok(Ok(again)) = check(&texts) else { panic!("seed {seed}: accepted once and then refused") };
+            let Ok(Ok(again)) = check(&texts) else {
+                panic!("seed {seed}: accepted once and then refused")
+            };
             let (less, ready) = shrink(&invented, again, &mut question, &mut fault);
             panic!(
                 "seed {seed}, days {:?}, earner {}, {:?}\n{first}\n\nmade smaller:\n{fault}\n{}\n{}",
@@ -203,6 +322,13 @@ fn small_packs_agree_with_the_oracle() {
             );
         }
     }
-    println!("{tally:?}; {refused} refused in {:?}\n{reasons:#?}", start.elapsed());
-    assert!(tally.packs * 2 > packs, "too few packs are accepted: {} of {packs}", tally.packs);
+    println!(
+        "{tally:?}; {refused} refused in {:?}\n{reasons:#?}",
+        start.elapsed()
+    );
+    assert!(
+        tally.packs * 2 > packs,
+        "too few packs are accepted: {} of {packs}",
+        tally.packs
+    );
 }

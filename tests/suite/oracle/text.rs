@@ -21,7 +21,11 @@ pub fn whole(n: i128) -> Q {
 pub fn number(text: &str) -> Option<Q> {
     let (sign, digits) = text.strip_prefix('-').map_or((1, text), |rest| (-1, rest));
     let (before, after) = digits.split_once('.').unwrap_or((digits, ""));
-    if before.is_empty() || !format!("{before}{after}").bytes().all(|b| b.is_ascii_digit()) {
+    if before.is_empty()
+        || !format!("{before}{after}")
+            .bytes()
+            .all(|b| b.is_ascii_digit())
+    {
         return None;
     }
     let mut value = Q::from_integer(BigInt::from(0));
@@ -91,11 +95,17 @@ pub fn calendar(days: i64) -> (i64, i64, i64) {
 /// `2026-04-06` as days since 1970-01-01.
 pub fn day(text: &str) -> Option<i64> {
     let parts: Vec<&str> = text.split('-').collect();
-    let [year, month, day] = parts.as_slice() else { return None };
+    let [year, month, day] = parts.as_slice() else {
+        return None;
+    };
     if (year.len(), month.len(), day.len()) != (4, 2, 2) {
         return None;
     }
-    Some(day_number(year.parse().ok()?, month.parse().ok()?, day.parse().ok()?))
+    Some(day_number(
+        year.parse().ok()?,
+        month.parse().ok()?,
+        day.parse().ok()?,
+    ))
 }
 
 /// Full birthdays that have passed: none before the first. Somebody born on 29 February has a birthday on 1 March where there is no 29th.
@@ -104,7 +114,11 @@ pub fn full_years(from: i64, to: i64) -> i64 {
     let mut years = 0;
     loop {
         let next = year + years + 1;
-        let on = if birthday > days_of_month(next, month) { day_number(next, month + 1, 1) } else { day_number(next, month, birthday) };
+        let on = if birthday > days_of_month(next, month) {
+            day_number(next, month + 1, 1)
+        } else {
+            day_number(next, month, birthday)
+        };
         if on > to {
             return years;
         }
@@ -145,7 +159,11 @@ pub fn tokens(text: &str) -> Vec<Token> {
             at += 1;
             out.push(Token::Text(chars[start + 1..at - 1].iter().collect()));
         } else if c.is_ascii_lowercase() {
-            while at < chars.len() && (chars[at].is_ascii_lowercase() || chars[at].is_ascii_digit() || chars[at] == '_') {
+            while at < chars.len()
+                && (chars[at].is_ascii_lowercase()
+                    || chars[at].is_ascii_digit()
+                    || chars[at] == '_')
+            {
                 at += 1;
             }
             out.push(Token::Word(chars[start..at].iter().collect()));
@@ -156,11 +174,16 @@ pub fn tokens(text: &str) -> Vec<Token> {
                 out.push(Token::Day(found));
                 continue;
             }
-            while at < chars.len() && (chars[at].is_ascii_digit() || (chars[at] == '.' && chars.get(at + 1).is_some_and(char::is_ascii_digit))) {
+            while at < chars.len()
+                && (chars[at].is_ascii_digit()
+                    || (chars[at] == '.' && chars.get(at + 1).is_some_and(char::is_ascii_digit)))
+            {
                 at += 1;
             }
             let words: String = chars[start..at].iter().collect();
-            out.push(Token::Number(number(&words).expect("the checker accepted this number")));
+            out.push(Token::Number(
+                number(&words).expect("the checker accepted this number"),
+            ));
         } else {
             at += 1;
             out.push(Token::Sign(c));
@@ -176,7 +199,10 @@ mod tests {
 
     #[test]
     fn days_count_on_from_1970() {
-        assert_eq!((day("1970-01-01"), day("1969-12-31"), day("2000-03-01")), (Some(0), Some(-1), Some(11_017)));
+        assert_eq!(
+            (day("1970-01-01"), day("1969-12-31"), day("2000-03-01")),
+            (Some(0), Some(-1), Some(11_017))
+        );
         for days in [-40_000, -1, 0, 59, 60, 11_016, 20_000, 60_000] {
             let (year, month, day) = calendar(days);
             assert_eq!(day_number(year, month, day), days);
@@ -185,7 +211,8 @@ mod tests {
 
     #[test]
     fn birthdays_pass_on_the_day() {
-        let years = |from: &str, to: &str| full_years(day(from).expect("a day"), day(to).expect("a day"));
+        let years =
+            |from: &str, to: &str| full_years(day(from).expect("a day"), day(to).expect("a day"));
         assert_eq!(years("2000-04-06", "2016-04-05"), 15);
         assert_eq!(years("2000-04-06", "2016-04-06"), 16);
         assert_eq!(years("2004-02-29", "2025-02-28"), 20);

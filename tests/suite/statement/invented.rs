@@ -7,7 +7,7 @@ use hourworth::measures::{
     JobTerms, NoGain, OfferMeasures, Point, Segment, Trap, Turn, TurnKind,
 };
 use hourworth::num::{Direction, Fraction, Hours, Money, divide_rounded};
-use hourworth::statement::{LetterContext, LetterDelivery, Office, TemplateSet};
+use hourworth::statement::{FactShape, LetterContext, LetterDelivery, Office, TemplateSet};
 use std::collections::BTreeMap;
 
 /// `n / d`.
@@ -693,7 +693,11 @@ pub fn context() -> LetterContext {
         ("item.contribution", "National Insurance"),
         ("item.pension_payment", "Pension payments"),
         ("item.support", "Household Support"),
-        ("what.support", "Support"),
+        ("what.support", "Monthly help for people on low pay."),
+        ("said.tenure", "home {value}"),
+        ("said.birth", "born {value}"),
+        ("word.private", "rented privately"),
+        ("none.carer", "caring"),
         ("item.local_tax_help", "Local Tax Help"),
         ("item.school_meals", "Free school meals"),
         ("item.childcare", "Childcare"),
@@ -711,22 +715,24 @@ pub fn context() -> LetterContext {
         ("fact.savings", "savings"),
         ("fact.student", "student"),
         ("fact.carer", "carer"),
-        (
-            "office.support",
-            "Household Support: the Support Office, in your online account or by telephone.",
-        ),
-        (
-            "office.tax",
-            "Income Tax and National Insurance: the Tax Office.",
-        ),
+        ("office.support", "the Support Office"),
+        ("office.local_tax_help", "the town hall"),
+        ("office.income_tax", "the Tax Office"),
+        ("office.contribution", "the Tax Office"),
         (
             "report.support",
-            "Pay, hours and childcare: to the Support Office, by the end of the month in which they change.",
+            "changes in pay, hours and childcare, by the end of the month in which they happen.",
         ),
+        ("report.local_tax_help", "changes in income, at once."),
+        ("report.income_tax", "a wrong tax code."),
+        ("report.contribution", "a second job, in its first week."),
+        ("left_out.1", "travel to work"),
+        ("left_out.2", "one-off payments."),
         (
-            "left_out",
-            "travel to work, help in kind, one-off payments.",
+            "left_out.support.1",
+            "loans on account of Household Support",
         ),
+        ("left_out.local_tax_help.1", "second homes"),
     ];
     let day = |year, month, day| NaiveDate::from_ymd_opt(year, month, day).expect("a day");
     LetterContext {
@@ -750,7 +756,13 @@ pub fn context() -> LetterContext {
             .iter()
             .map(|(key, text)| ((*key).to_owned(), (*text).to_owned()))
             .collect::<BTreeMap<_, _>>(),
-        facts: BTreeMap::new(),
+        facts: [
+            ("household.birth", FactShape::Date),
+            ("household.tenure", FactShape::Word),
+            ("household.student", FactShape::YesNo),
+        ]
+        .map(|(name, shape)| (name.to_owned(), shape))
+        .into(),
         texts: TemplateSet::built_in()
             .texts("en")
             .expect("the texts are sound"),
