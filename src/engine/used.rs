@@ -1,7 +1,7 @@
 //! What a household's results rest on: the facts and amounts that reached its items at given hours.
 //! Branches that were not taken do not count.
 
-use super::machine::Special;
+use super::machine::{Code, Special};
 use crate::index::Id;
 use crate::num::Hours;
 use crate::program::{Amount, FactRef, ItemKind, Op, Reg};
@@ -16,18 +16,43 @@ pub struct Used {
     pub amounts: BTreeMap<usize, String>,
 }
 
+/// How far back from the items is looked.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Reach {
+    /// To all that could have changed a figure.
+    Widely,
+    /// To what is part of one.
+    Closely,
+}
+
 impl Special<'_> {
-    /// Facts and amounts that reached the items at any of these hours.
+    /// Facts and amounts that reached the items at any of these hours. A fact counts wherever it could have changed a figure; an amount only
+    /// where it is part of one, so that a sum that is nothing marks nobody's amounts as used.
     pub fn used(&self, hours: &[Hours]) -> Used {
-        let program = self.program();
-        let mut reached = vec![false; program.steps.len()];
+        let mut used = Used::default();
         let mut values = Vec::new();
+        let steps = self.program().steps.len();
+        let (mut widely, mut closely) = (vec![false; steps], vec![false; steps]);
         for at in hours {
             self.fill(*at, &mut values);
+            self.reach(&values, Reach::Widely, &mut widely);
+            self.reach(&values, Reach::Closely, &mut closely);
+        }
+        self.facts_among(&widely, &mut used);
+        self.amounts_among(&closely, &mut used);
+        used
+    }
+
+    /// Marks the registers that reached the items at these values.
+    fn reach(&self, values: &[i128], reach: Reach, reached: &mut [bool]) {
+        let program = self.program();
+        {
             let mut here = vec![false; program.steps.len()];
-            // An item that is nothing here prints no figure; help in kind that is not there was decided by something.
             for item in &program.items {
-                let counts = item.kind == ItemKind::Passport || values[item.reg.position()] != 0;
+                // Help in kind that is not there was decided by something; a sum that is nothing prints no figure.
+                let counts = reach == Reach::Widely
+                    || item.kind == ItemKind::Passport
+                    || values[item.reg.position()] != 0;
                 here[item.reg.position()] = counts;
             }
             for reg in (0..program.steps.len()).rev().map(Reg::new) {
@@ -38,7 +63,6 @@ impl Special<'_> {
                 reached[reg.position()] = true;
                 let mut want = |r: &Reg| here[r.position()] = true;
                 match &step.op {
-                    Op::Constant(_) | Op::Fact(_) | Op::Hours => {}
                     Op::Choose {
                         when,
                         then,
@@ -62,17 +86,27 @@ impl Special<'_> {
                     {
                         want(b)
                     }
+                    // Nothing added or taken away is part of no figure, whatever decided it.
+                    Op::Add(a, b) | Op::Subtract(a, b) if reach == Reach::Closely => {
+                        for side in [a, b] {
+                            if values[side.position()] != 0 {
+                                want(side);
+                            }
+                        }
+                    }
                     Op::Both(a, _) if values[a.position()] == 0 => want(a),
                     Op::Either(a, _) if values[a.position()] != 0 => want(a),
                     // A fixed limit that did not bite reached nothing.
                     Op::Smaller(a, b) | Op::Larger(a, b) => {
-                        let smaller = matches!(step.op, Op::Smaller(..));
-                        let (x, y) = (program.steps[*a].scale.exact, program.steps[*b].scale.exact);
-                        let (left, right) = (values[a.position()] * y, values[b.position()] * x);
-                        let a_wins = if smaller {
-                            left <= right
-                        } else {
-                            left >= right
+                        let code = &self.machine.exact[reg.position()];
+                        let a_wins = match code {
+                            Code::Smaller { a, by_a, b, by_b } => {
+                                values[*a] * by_a <= values[*b] * by_b
+                            }
+                            Code::Larger { a, by_a, b, by_b } => {
+                                values[*a] * by_a >= values[*b] * by_b
+                            }
+                            _ => unreachable!("a step and its code do the same"),
                         };
                         let fixed = |r: &Reg| matches!(program.steps[*r].op, Op::Constant(_));
                         if a_wins || !fixed(a) {
@@ -82,25 +116,6 @@ impl Special<'_> {
                             want(b);
                         }
                     }
-                    // Nothing added or taken away reached nothing, whatever it rests on.
-                    Op::Add(a, b) | Op::Subtract(a, b) => {
-                        for side in [a, b] {
-                            if values[side.position()] != 0 {
-                                want(side);
-                            }
-                        }
-                    }
-                    Op::Multiply(a, b)
-                    | Op::AtLeast(a, b)
-                    | Op::Above(a, b)
-                    | Op::Same(a, b)
-                    | Op::Both(a, b)
-                    | Op::Either(a, b)
-                    | Op::Years { from: a, to: b }
-                    | Op::Divide { of: a, by: b, .. } => {
-                        want(a);
-                        want(b);
-                    }
                     // Nothing lies above the limit here, so neither the limit nor the rate reached anything.
                     Op::Times(a, _)
                         if values[a.position()] == 0
@@ -109,18 +124,37 @@ impl Special<'_> {
                         want(a);
                         step.factor.iter().for_each(&mut want);
                     }
-                    Op::Round { of: a, .. } | Op::Not(a) => want(a),
-                    Op::Lookup { keys, .. } => keys.iter().for_each(want),
+                    Op::Constant(_)
+                    | Op::Fact(_)
+                    | Op::Hours
+                    | Op::Add(..)
+                    | Op::Subtract(..)
+                    | Op::Multiply(..)
+                    | Op::AtLeast(..)
+                    | Op::Above(..)
+                    | Op::Same(..)
+                    | Op::Both(..)
+                    | Op::Either(..)
+                    | Op::Not(_)
+                    | Op::Round { .. }
+                    | Op::Divide { .. }
+                    | Op::Lookup { .. }
+                    | Op::Years { .. } => {
+                        super::walk::operands(&self.machine.exact[reg.position()], &mut |r| {
+                            here[r] = true
+                        })
+                    }
                 }
             }
         }
-        let mut used = Used::default();
-        let mut lines = BTreeSet::new();
+    }
+
+    fn facts_among(&self, reached: &[bool], used: &mut Used) {
+        let program = self.program();
         for (reg, step) in program.steps.iter_with_id() {
-            if !reached[reg.position()] {
-                continue;
-            }
-            if let Op::Fact(input) = &step.op {
+            if let Op::Fact(input) = &step.op
+                && reached[reg.position()]
+            {
                 let FactRef {
                     kind,
                     instance,
@@ -128,8 +162,18 @@ impl Special<'_> {
                 } = program.inputs[*input].fact;
                 used.facts.insert((kind, instance, fact));
             }
-            lines.extend(step.line.map(Id::position));
         }
+    }
+
+    fn amounts_among(&self, reached: &[bool], used: &mut Used) {
+        let program = self.program();
+        let steps = program
+            .steps
+            .iter_with_id()
+            .filter(|(reg, _)| reached[reg.position()]);
+        let lines: BTreeSet<usize> = steps
+            .filter_map(|(_, step)| step.line.map(Id::position))
+            .collect();
         // An amount that was folded into another constant counts where its line does.
         for at in lines {
             let line = &program.lines[Id::new(at)];
@@ -147,7 +191,6 @@ impl Special<'_> {
                 }
             }
         }
-        used
     }
 
     /// The amount at a position.

@@ -2,7 +2,7 @@
 
 use super::machine::Special;
 use crate::num::{Fraction, Hours};
-use crate::program::{Line, Op, Program, Reg};
+use crate::program::{Line, Reg};
 use std::collections::BTreeSet;
 
 /// One line of a working.
@@ -33,7 +33,7 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
     let mut values = Vec::new();
     special.fill(hours, &mut values);
     let program = special.program();
-    let needed = needed(program);
+    let needed = needed(special);
     let mut lines: Vec<&Line> = program
         .lines
         .iter_with_id()
@@ -70,7 +70,8 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
 }
 
 /// Lines whose registers the items depend on.
-fn needed(program: &Program) -> BTreeSet<usize> {
+fn needed(special: &Special<'_>) -> BTreeSet<usize> {
+    let program = special.program();
     let mut wanted = vec![false; program.steps.len()];
     for item in &program.items {
         wanted[item.reg.position()] = true;
@@ -92,36 +93,9 @@ fn needed(program: &Program) -> BTreeSet<usize> {
         if let Some(line) = step.line {
             lines.insert(line.position());
         }
-        let mut want = |r: &Reg| wanted[r.position()] = true;
-        match &step.op {
-            Op::Constant(_) | Op::Fact(_) | Op::Hours => {}
-            Op::Add(a, b)
-            | Op::Subtract(a, b)
-            | Op::Multiply(a, b)
-            | Op::Smaller(a, b)
-            | Op::Larger(a, b)
-            | Op::AtLeast(a, b)
-            | Op::Above(a, b)
-            | Op::Same(a, b)
-            | Op::Both(a, b)
-            | Op::Either(a, b)
-            | Op::Years { from: a, to: b }
-            | Op::Divide { of: a, by: b, .. } => {
-                want(a);
-                want(b);
-            }
-            Op::Times(a, _) | Op::Round { of: a, .. } | Op::Not(a) => want(a),
-            Op::Choose {
-                when,
-                then,
-                otherwise,
-            } => {
-                want(when);
-                want(then);
-                want(otherwise);
-            }
-            Op::Lookup { keys, .. } => keys.iter().for_each(want),
-        }
+        super::walk::operands(&special.machine.exact[reg.position()], &mut |r| {
+            wanted[r] = true
+        });
     }
     // A line whose register was folded into a constant or is another line's belongs to nobody's steps; it is needed where a
     // needed line names it.

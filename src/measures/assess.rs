@@ -250,7 +250,7 @@ fn earner(
                 at_zero: &at_zero,
             },
         ));
-        gathered.add(special, &special.used(&[Hours(0), today, step_to]));
+        gathered.add_line(special, lines.last());
         target_hours = wanted.map(|sum| Quarters::new(special, &sums, up_to).target(sum));
     }
     let mut measures = Vec::new();
@@ -278,7 +278,7 @@ fn earner(
                 at_zero: &at_zero,
             },
         );
-        gathered.add(&special, &special.used(&[own]));
+        gathered.add_line(&special, Some(&worked));
         let mut quarters = Quarters::new(&special, &sums, up_to);
         if target_hours.is_none() {
             target_hours = wanted.map(|sum| quarters.target(sum));
@@ -351,6 +351,27 @@ impl Gathered {
                 .entry(amount.name.clone())
                 .or_insert_with(|| amount_use(amount, part));
         }
+    }
+
+    /// Adds what a whole line rests on: each stretch between turning points by its first hours, and the points named.
+    fn add_line(&mut self, special: &Special<'_>, worked: Option<&Worked>) {
+        let Some(Worked { line, .. }) = worked else {
+            return;
+        };
+        let mut hours: Vec<Hours> = line
+            .turns
+            .iter()
+            .map(|turn| turn.hours.min(line.up_to))
+            .collect();
+        hours.extend([
+            Hours(0),
+            line.grid[line.own].hours,
+            line.grid[line.step_to].hours,
+            line.up_to,
+        ]);
+        hours.sort_unstable();
+        hours.dedup();
+        self.add(special, &special.used(&hours));
     }
 
     fn finish(self, household: &Household, schema: &Schema) -> (Vec<FactUse>, Vec<AmountUse>) {

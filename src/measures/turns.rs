@@ -3,7 +3,7 @@
 use super::points::{Stretch, Sums};
 use super::types::{Cause, Effect, ItemKind, Turn, TurnKind};
 use crate::engine::{Bend, Special, Walk};
-use crate::num::{Direction, Fraction, Hours, Money, divide_rounded};
+use crate::num::{Fraction, Hours, Money};
 
 /// All turning points of a walk.
 pub(super) fn turns(
@@ -20,12 +20,7 @@ pub(super) fn turns(
 
 /// A sum in currency units as whole minor units, half up.
 pub(super) fn minor(value: Fraction) -> Money {
-    let rounded = divide_rounded(
-        value.numerator() * 100,
-        value.denominator(),
-        Direction::HalfUp,
-    );
-    Money(i64::try_from(rounded).expect("a sum is bounded"))
+    Money(i64::try_from(value.rounded(100)).expect("a sum is bounded"))
 }
 
 /// Hours rounded up to a hundredth.

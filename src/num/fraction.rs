@@ -1,5 +1,7 @@
 //! Exact fractions of 128-bit integers, always in lowest terms with a denominator above zero.
 
+use num_bigint::BigInt;
+use num_traits::{Signed, Zero};
 use serde::{Deserialize, Serialize};
 use std::cmp::Ordering;
 use std::fmt;
@@ -123,14 +125,26 @@ impl Fraction {
         (self + other) / Fraction::whole(2)
     }
 
+    /// How many of `1 / parts` it is, rounded half up.
+    ///
+    /// # Panics
+    /// Where the result does not fit.
+    pub fn rounded(self, parts: i128) -> i128 {
+        if let Some(scaled) = self.numerator.checked_mul(parts) {
+            return super::divide_rounded(scaled, self.denominator, super::Direction::HalfUp);
+        }
+        // ⌊(2 n p + d) / 2 d⌋, for sizes that 128 bits do not hold.
+        let (n, d) = (BigInt::from(self.numerator), BigInt::from(self.denominator));
+        let (top, bottom): (BigInt, BigInt) = (n * parts * 2 + &d, d * 2);
+        let floor = &top / &bottom - i32::from(top.is_negative() && !(&top % &bottom).is_zero());
+        i128::try_from(floor).expect("a bounded value fits")
+    }
+
     /// As text with this many decimals, rounded half up away from zero, without a `-0`.
     pub fn decimal(self, places: u32) -> String {
         let scale = 10i128.pow(places);
-        let scaled = super::divide_rounded(
-            self.numerator.abs() * scale,
-            self.denominator,
-            super::Direction::HalfUp,
-        );
+        let size = if self.is_negative() { -self } else { self };
+        let scaled = size.rounded(scale);
         let sign = if self.numerator < 0 && scaled != 0 {
             "-"
         } else {
@@ -204,8 +218,29 @@ impl PartialOrd for Fraction {
 impl Ord for Fraction {
     fn cmp(&self, other: &Self) -> Ordering {
         let common = gcd(self.denominator, other.denominator);
-        (self.numerator * (other.denominator / common))
-            .cmp(&(other.numerator * (self.denominator / common)))
+        let (left, right) = (other.denominator / common, self.denominator / common);
+        if let (Some(a), Some(b)) = (
+            self.numerator.checked_mul(left),
+            other.numerator.checked_mul(right),
+        ) {
+            return a.cmp(&b);
+        }
+        // Whole parts first, then what is left, turned over: nothing grows, so nothing can overflow.
+        let (mut a, mut b) = (
+            (self.numerator, self.denominator),
+            (other.numerator, other.denominator),
+        );
+        loop {
+            let wholes = a.0.div_euclid(a.1).cmp(&b.0.div_euclid(b.1));
+            if wholes != Ordering::Equal {
+                return wholes;
+            }
+            match (a.0.rem_euclid(a.1), b.0.rem_euclid(b.1)) {
+                (0, rest) => return 0.cmp(&rest),
+                (_, 0) => return Ordering::Greater,
+                (x, y) => (a, b) = ((b.1, y), (a.1, x)),
+            }
+        }
     }
 }
 impl fmt::Debug for Fraction {
@@ -226,6 +261,67 @@ mod tests {
         t(-1, 1000, 2, "0.00");
         t(2, 3, 1, "0.7");
         t(7, 2, 0, "4");
+    }
+
+    #[test]
+    fn rounding_holds_at_any_size() {
+        let fine = i128::MAX / 2;
+        // A little below, at and above a half penny, with denominators that leave no room.
+        let t = |n, d, expected| assert_eq!(Fraction::new(n, d).rounded(100), expected, "{n}/{d}");
+        t(fine - fine / 200, fine, 100);
+        t(-(fine / 2), fine, -50);
+        t(-(fine / 100 * 3), fine, -3);
+        t(1, 200, 1);
+        t(-1, 200, 0);
+        assert_eq!(Fraction::new(-(fine / 100 * 3), fine).decimal(2), "-0.03");
+    }
+
+    #[test]
+    fn any_two_compare() {
+        let huge = i128::MAX;
+        let t = |a: Fraction, b: Fraction, expected: Ordering| {
+            assert_eq!(
+                (a.cmp(&b), b.cmp(&a)),
+                (expected, expected.reverse()),
+                "{a:?} {b:?}"
+            );
+        };
+        // 1 − 1/n grows with n.
+        t(
+            Fraction::new(huge - 2, huge - 1),
+            Fraction::new(huge - 1, huge),
+            Ordering::Less,
+        );
+        t(
+            Fraction::new(-huge + 2, huge - 1),
+            Fraction::new(-huge + 1, huge),
+            Ordering::Greater,
+        );
+        t(
+            Fraction::new(huge, huge - 1),
+            Fraction::new(huge - 1, huge),
+            Ordering::Greater,
+        );
+        t(
+            Fraction::new(huge, 3),
+            Fraction::new(huge, 2),
+            Ordering::Less,
+        );
+        t(
+            Fraction::new(huge, 2),
+            Fraction::new(huge, 2),
+            Ordering::Equal,
+        );
+        t(
+            Fraction::new(huge, 2),
+            Fraction::whole(huge / 2),
+            Ordering::Greater,
+        );
+        t(
+            Fraction::new(-1, huge),
+            Fraction::new(1, huge - 1),
+            Ordering::Less,
+        );
     }
 
     #[test]

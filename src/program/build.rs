@@ -663,7 +663,7 @@ impl Builder {
                 exact: 1,
                 smooth: 1,
             }),
-            Some(3000),
+            Some(10_000),
             0,
             false,
         )

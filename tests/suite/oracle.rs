@@ -11,6 +11,7 @@ mod compare;
 mod homes;
 mod invent;
 mod luck;
+mod measured;
 mod reader;
 mod small_packs;
 mod text;
