@@ -404,8 +404,14 @@ fn draw_marks(plot: &Plot<'_>, scale: &Scale, chart: &mut Chart, placer: &mut Pl
             size: label.size,
         })
         .collect();
+    // Points come first; a jump or a range whose words would cover others stays without words.
+    let mut taken: Vec<Rect> = vec![];
     for (label, place) in wanted.iter().zip(place_all(placer, &sizes)) {
-        write(label, &place, plot.size, chart);
+        let free = taken.iter().all(|other| other.overlap(&place.rect) <= 0.0);
+        if free || label.first == Weight::Bold {
+            taken.push(place.rect);
+            write(label, &place, plot.size, chart);
+        }
     }
 }
 

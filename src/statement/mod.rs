@@ -35,7 +35,7 @@ pub use money::{Currency, Decimals};
 pub use room::{probable_length, probable_pages};
 pub use templates::TemplateSet;
 pub use texts::Texts;
-pub use typeset::{PAGE_LIMIT, Typeset, Typesetter, typeset};
+pub use typeset::{PAGE_LIMIT, Typeset, Typesetter, typeset, typeset_with_view};
 pub use view::{
     Answer, AnswerWeight, Column, LetterView, Line, Part, PartKind, Particular, Row, RowWeight,
     Section, Table, TurnText,

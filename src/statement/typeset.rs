@@ -208,34 +208,47 @@ pub fn typeset(
     assessment: &crate::measures::Assessment,
     context: &LetterContext,
 ) -> Result<Typeset, StatementError> {
+    typeset_with_view(typesetter, assessment, context).map(|(made, _)| made)
+}
+
+/// As [`typeset`], with the view that was printed.
+///
+/// # Errors
+/// As for [`typeset`].
+pub fn typeset_with_view(
+    typesetter: &mut Typesetter,
+    assessment: &crate::measures::Assessment,
+    context: &LetterContext,
+) -> Result<(Typeset, LetterView), StatementError> {
     let mut set = |view: &LetterView| typesetter.letter(view, &context.texts, context.issued);
     let mut views = vec![];
     for detail in [Detail::Full, Detail::Plain, Detail::Short, Detail::Bare] {
         let view = super::letter_view(assessment, context, detail)?;
         let length = probable_length(&view);
         views.push((view, length));
-        // The first that fits is the one with the most detail; nothing shorter is needed.
+        // The first that fits is the one with the most detail; nothing shorter is needed. Large print has its own length.
         if views[0].0.print_size > ORDINARY_PRINT || length + SPARE <= TRIED[0] as f64 {
             break;
         }
     }
     for pages in TRIED {
-        for (view, length) in &views {
-            if length + SPARE > pages as f64 {
+        for place in 0..views.len() {
+            if views[place].1 + SPARE > pages as f64 {
                 continue;
             }
-            let made = set(view)?;
+            let made = set(&views[place].0)?;
             if made.pages <= pages {
-                return Ok(made);
+                return Ok((made, views.swap_remove(place).0));
             }
         }
     }
-    let full = views.first().map(|(view, _)| set(view));
-    match full {
-        Some(Ok(made)) => Ok(made),
-        Some(Err(StatementError::TooLong { .. })) | None => {
-            set(&super::letter_view(assessment, context, Detail::Brief)?)
+    let full = views.swap_remove(0).0;
+    match set(&full) {
+        Ok(made) => Ok((made, full)),
+        Err(StatementError::TooLong { .. }) => {
+            let brief = super::letter_view(assessment, context, Detail::Brief)?;
+            set(&brief).map(|made| (made, brief))
         }
-        Some(Err(other)) => Err(other),
+        Err(other) => Err(other),
     }
 }

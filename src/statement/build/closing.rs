@@ -119,11 +119,10 @@ fn counted(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
         lead: words.plain("sum.in_lead")?,
         text: words.say("sum.in", &[("list", &enumerated(&names))])?,
     }];
-    let is_item = |name: &str| words.assessment.items.iter().any(|item| item.name == name);
     let mut left_out: Vec<String> = vec![];
     for (key, text) in grouped(words, "left_out") {
-        let name = key.split('.').next().unwrap_or_default();
-        if !is_item(name) || concerns(words, name) {
+        let item = key.split_once('.').map(|(item, _)| item);
+        if item.is_none_or(|name| concerns(words, name)) {
             left_out.push(text.trim_end_matches('.').to_owned());
         }
     }

@@ -257,7 +257,7 @@ fn title(
     let (low, high) = in_range(earner, steps);
     let trap = own_traps(main, measure).into_iter().find(|trap| {
         let ahead = trap.to.is_none_or(|to| to > today.hours.as_fraction());
-        ahead && trap.from < high.as_fraction()
+        ahead && trap.from <= high.as_fraction()
     });
     if let Some(trap) = trap {
         let from = hours_text(hours(trap.from));

@@ -247,7 +247,8 @@ fn more_than_ten_kept_is_said() {
     let rising = Pieces(vec![(w(0), w(0), w(10))]);
     let bars = view(&home(rising, 16, 50), 12).sections[0].bars.clone();
     assert!(
-        bars.alt.contains("Kept £12.00, More Support £2.00"),
+        bars.alt
+            .contains("Kept £12.00, More Household Support £2.00"),
         "{}",
         bars.alt
     );
@@ -260,7 +261,10 @@ fn less_than_nothing_kept_is_said() {
     let view = view(&home(falling, 16, 50), 12);
     let section = &view.sections[0];
     assert!(
-        section.bars.alt.contains("Lost £2.00, Support £12.00"),
+        section
+            .bars
+            .alt
+            .contains("Lost £2.00, Household Support £12.00"),
         "{}",
         section.bars.alt
     );

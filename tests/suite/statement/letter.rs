@@ -4,8 +4,8 @@ use super::invented::{COUPLE, LONE_PARENT, context, couple, earner, lone_parent,
 use hourworth::measures::{AmountUse, Assessment, FactUse, TargetHours};
 use hourworth::num::{Hours, Money};
 use hourworth::statement::{
-    Detail, LetterContext, LetterView, PAGE_LIMIT, RowWeight, StatementError, TemplateSet,
-    Typesetter, letter_view, missing_labels, typeset,
+    AnswerWeight, Detail, LetterContext, LetterView, PAGE_LIMIT, RowWeight, StatementError,
+    TemplateSet, Typesetter, letter_view, missing_labels, probable_length, typeset,
 };
 
 fn typesetter() -> Typesetter {
@@ -106,7 +106,18 @@ fn key_figures_of_the_tenant() {
     says(&pages[..1], "You keep £90 more a month");
     says(
         &pages[..1],
-        "20 hours a week in place of 16. Pay goes up by £220.30: of each extra £10 you keep £4.09.",
+        "20 hours a week in place of 16. Pay goes up by £220.30: you keep £4.09 of each extra £10.",
+    );
+    // An hour less and more, from the fixture's own grid.
+    let near: Vec<Money> = [1900, 2100]
+        .iter()
+        .filter_map(|hours| line.grid.iter().find(|point| point.hours.0 == *hours))
+        .map(|point| point.net - today.net)
+        .collect();
+    assert_eq!(near, [Money(7064), Money(10_685)]);
+    says(
+        &pages[..1],
+        "At 19 hours it would be £70.64 more, at 21 hours £106.85 more.",
     );
     says(&pages[..1], "Statement 7K2Q-H-0042");
     says(&pages[..1], "4 June 2026");
@@ -126,15 +137,31 @@ fn key_figures_of_the_tenant() {
     says(&pages, "Papers seen: rent £690.00 a month.");
     says(
         &pages,
-        "You told us: home rented private; Ana: born 1991-05-02.",
+        "You told us: home rented privately; Ana: born 2 May 1991.",
     );
     says(
         &pages,
         "Assumed, as nobody told us: Ana: pension payment 5%.",
     );
-    says(&pages, "Assumed to be no or none: savings; student; carer.");
-    says(&pages, "Left out: travel to work");
-    says(&pages, "to the Support Office, by the end of the month");
+    says(
+        &pages,
+        "Assumed to be no or none: student, caring, savings.",
+    );
+    says(
+        &pages,
+        "Left out: travel to work; one-off payments; loans on account of Household Support.",
+    );
+    says(
+        &pages,
+        "The Support Office: changes in pay, hours and childcare, by the end of the month in which they happen.",
+    );
+    // One office once, for all that it runs; none for what the household does not have.
+    says(
+        &pages,
+        "The Tax Office: a wrong tax code; a second job, in its first week.",
+    );
+    assert_eq!(pages.concat().matches("TheTaxOffice").count(), 1);
+    assert!(!pages.concat().contains("Thetownhall"), "no such help here");
     assert_eq!(pages.len(), 2);
     for (position, page) in pages.iter().enumerate() {
         says(
@@ -196,6 +223,9 @@ fn no_average_rate_no_advice_and_none_of_the_words_we_avoid() {
             "recommend",
             "participation",
             "average",
+            "best",
+            "worth",
+            "ought",
             "ptr",
             "metr",
             "-£0",
@@ -245,13 +275,34 @@ fn the_table_adds_up() {
 #[test]
 fn childcare_makes_the_first_answer_after_costs() {
     let (assessment, context) = (lone_parent(), context());
-    let section = &view(&assessment, &context).sections[0];
+    let view = view(&assessment, &context);
+    let section = &view.sections[0];
     let line = &assessment.earners[0].lines[0];
     let gain = line.grid[line.step_to].after_costs.0 - line.grid[line.own].after_costs.0;
     assert_eq!(gain, 7920, "the fixture's own difference");
-    assert_eq!(section.answers[0].kept, "You keep £79.20 more a month");
-    assert!(section.measure.contains("after childcare"));
-    assert_eq!(section.answers[1].step, "School kitchen, term time");
+    // The offer is what the household asks about; four hours more stand beside it.
+    let [offer, more] = section.answers.as_slice() else {
+        panic!("{:?}", section.answers);
+    };
+    assert_eq!(
+        (offer.step.as_str(), offer.about.as_str(), offer.weight),
+        ("Offer", "School kitchen, term time", AnswerWeight::Lead)
+    );
+    assert_eq!(
+        (more.step.as_str(), more.kept.as_str(), more.weight),
+        (
+            "4 hours more",
+            "You keep £79.20 more a month",
+            AnswerWeight::Beside
+        )
+    );
+    // Said once, with what is taken off.
+    assert_eq!(
+        section.measure,
+        "“You keep” is after costs of working. These are taken off: Childcare."
+    );
+    let pages = words(&assessment, &context);
+    assert_eq!(pages.concat().matches("Thesearetakenoff").count(), 1);
     assert!(
         section
             .chart
@@ -302,7 +353,7 @@ fn many_falls_are_cut_to_five_and_the_rest_is_counted() {
             .all(|turn| turn.what.contains("You lose £94"))
     );
     assert!(
-        section.turns_note.starts_with("There are "),
+        section.turns_note.contains("a list of "),
         "{}",
         section.turns_note
     );
@@ -318,14 +369,14 @@ fn passported_help_lost_and_kept() {
     let pages = words(&lost, &context());
     says(
         &pages,
-        "Free school meals: you have it today. It ends at 17 hours a week.",
+        "Free school meals: You have it today. It ends at 17 hours a week (pay £936.30).",
     );
     home.meals = Some(40);
     let one = earner(&home, 0, "Ana", Some((1600, 127_100)), &offers);
     let kept = super::invented::assessment(&home, vec![one]);
     says(
         &words(&kept, &context()),
-        "No change at the steps shown: Free school meals.",
+        "Free school meals: You have it today and at the steps shown.",
     );
 }
 
@@ -342,14 +393,20 @@ fn the_first_with_an_offer_leads_and_each_offer_has_its_answer() {
     let steps: Vec<&str> = view.sections[0]
         .answers
         .iter()
-        .map(|answer| answer.step.as_str())
+        .map(|answer| answer.about.as_str())
         .collect();
     assert_eq!(steps, ["Bakery, mornings", "Care home, nights"]);
+    let heads: Vec<&str> = view.sections[0].tables[0]
+        .columns
+        .iter()
+        .map(|column| column.name.as_str())
+        .collect();
+    assert_eq!(heads, ["Today, not in work", "Offer A", "Offer B"]);
     // Not in work today: the rate over the whole step would be an average, so the letter gives the one from there on.
     assert!(
         view.sections[0].answers[0]
             .detail
-            .contains("From there, of each extra £10")
+            .contains("From there, you keep £")
     );
     let mut only = context.clone();
     only.delivery.only = Some(1);
@@ -361,7 +418,7 @@ fn the_first_with_an_offer_leads_and_each_offer_has_its_answer() {
         "the other's offers are not printed"
     );
     assert!(
-        !pages.concat().contains("1991-05-02"),
+        !pages.concat().contains("2May1991"),
         "the other's facts are not printed"
     );
 }
@@ -372,17 +429,24 @@ fn a_lower_offer_and_a_level_one() {
     let one = earner(&COUPLE, 0, "", Some((1600, 127_100)), &offers);
     let view = view(&super::invented::assessment(&COUPLE, vec![one]), &context());
     let answers = &view.sections[0].answers;
+    let [lower, level] = answers.as_slice() else {
+        panic!("{answers:?}");
+    };
+    assert!(lower.kept.contains("less a month"), "{}", lower.kept);
     assert!(
-        answers[1].kept.contains("less a month"),
+        lower.detail.contains("Pay goes down by £330.46"),
         "{}",
-        answers[1].kept
+        lower.detail
     );
+    // Sixteen hours at this wage are today's own, so they need as many.
     assert!(
-        answers[1].detail.contains("Pay goes down by £330.46"),
+        lower
+            .detail
+            .contains("At this wage, today’s net income needs 16 hours a week."),
         "{}",
-        answers[1].detail
+        lower.detail
     );
-    assert_eq!(answers[2].kept, "You have the same each month");
+    assert_eq!(level.kept, "You have the same each month");
 }
 
 #[test]
@@ -401,60 +465,152 @@ fn a_sum_to_reach() {
         said(Some(Hours(2775)), Some(Hours(3000))),
         (
             "27.75 hours a week bring £1,500 a month".to_owned(),
-            "From 30 hours a week on, the sum stays at £1,500 or more.".to_owned()
+            "From 30 hours a week on, it stays at £1,500 or more.".to_owned()
         )
     );
     assert_eq!(said(None, None).0, "No hours up to 48 bring £1,500 a month");
     assert!(said(Some(Hours(2775)), None).1.contains("falls below"));
+    assert_eq!(
+        said(Some(Hours(2775)), Some(Hours(2775))).1,
+        "It stays so with more hours."
+    );
 }
 
-#[test]
-fn changed_and_unconfirmed_amounts_are_named() {
-    let mut assessment = tenant();
-    let amount = |name: &str, confirmed, because: &str| AmountUse {
+fn amount(name: &str, value: &str, part: &str) -> AmountUse {
+    AmountUse {
         name: name.into(),
-        value: "£411.00 a month".into(),
+        value: value.into(),
         from: "2026-04-06".into(),
         to: String::new(),
         source: "Invented Gazette".into(),
         locator: "p. 2".into(),
-        confirmed,
-        changed_because: because.into(),
-        part: "Invented part".into(),
-    };
-    assessment.amounts.push(amount(
-        "work_allowance",
-        true,
-        "the council asks what a lower one would do",
-    ));
-    assessment.amounts.push(amount("carer_addition", false, ""));
+        confirmed: true,
+        changed_because: String::new(),
+        part: part.into(),
+    }
+}
+
+#[test]
+fn changed_amounts_are_named_with_their_reason() {
+    let mut assessment = tenant();
+    let reasons = [
+        ("work_allowance", "1411.00 GBP a month", "£1,411 a month"),
+        ("support_rate", "60 percent", "60%"),
+    ];
+    for (name, value, _) in reasons {
+        assessment.amounts.push(AmountUse {
+            changed_because: "the council asks what it would do".into(),
+            ..amount(name, value, "Household Support")
+        });
+    }
     let mut context = context();
     context
         .labels
-        .insert("amount.carer_addition".into(), "addition for carers".into());
+        .insert("amount.support_rate".into(), "the rate of support".into());
     let pages = words(&assessment, &context);
-    says(
-        &pages[..1],
-        "Work allowance was set to £411.00 a month, because the council asks what a lower one would do.",
-    );
+    for (name, (_, _, value)) in ["Work allowance", "The rate of support"]
+        .iter()
+        .zip(reasons)
+    {
+        says(
+            &pages[..1],
+            &format!("{name} was set to {value}, because the council asks what it would do."),
+        );
+    }
     says(
         &pages[..1],
         "It shows what they would mean with changed amounts.",
     );
+    assert!(!words(&tenant(), &context).concat().contains("Whatif"));
+}
+
+#[test]
+fn unconfirmed_amounts_are_counted_and_marked_where_they_were_used() {
+    let mut assessment = tenant();
+    for name in ["first", "second"] {
+        assessment.amounts.push(AmountUse {
+            confirmed: false,
+            ..amount(name, "411.00 GBP a month", "Household Support, award")
+        });
+    }
+    let context = context();
+    let pages = words(&assessment, &context);
     says(
         &pages,
-        "not yet checked against their source: addition for carers £411.00 a month.",
+        "Not confirmed (*): amounts of Household Support (2), not yet checked against their source.",
     );
-    assert!(!words(&tenant(), &context).concat().contains("Whatif"));
+    says(&pages[..1], "You keep £90* more a month");
+    says(
+        &pages[..1],
+        "A star (*) marks sums that rest on amounts of the law not yet checked.",
+    );
+    says(&pages[..1], "Net income a month*");
+    says(&pages, "you have £940* a month");
+    let view = view(&assessment, &context);
+    let table = &view.sections[0].tables[0];
+    let starred: Vec<&str> = table
+        .rows
+        .iter()
+        .map(|row| row.name.as_str())
+        .filter(|name| name.ends_with('*'))
+        .collect();
+    // Only the row that rests on them; pay, tax and pension do not.
+    assert_eq!(starred, ["Household Support*"]);
+    assert!(table.note.starts_with("* rests on amounts"));
+    let turn = |words: &str| {
+        let turns = &view.sections[0].turns;
+        let found = turns.iter().find(|turn| turn.what.contains(words));
+        found.map(|turn| turn.place.ends_with('*'))
+    };
+    // Every turn here changes what support is paid.
+    assert_eq!(turn("Income Tax starts"), Some(true));
+    let plain = words_of_all(&tenant());
+    assert!(!plain.contains('*'), "nothing is marked without a reason");
+    assert!(!plain.contains("Notconfirmed"));
+}
+
+/// All words of a letter in one text.
+fn words_of_all(assessment: &Assessment) -> String {
+    words(assessment, &context()).concat()
 }
 
 #[test]
 fn folded_items_are_not_named() {
     let mut context = context();
     context.delivery.fold = vec!["local_tax_help".to_owned()];
-    let said = words(&lone_parent(), &context).concat();
-    assert!(!said.contains("LocalTaxHelp"), "{said}");
+    context
+        .labels
+        .insert("note.hint".into(), "Local Tax Help can end.".into());
+    let mut assessment = lone_parent();
+    assessment.notes = vec!["hint".into()];
+    assessment.facts.push(FactUse {
+        kind: "household".into(),
+        of: String::new(),
+        name: "claims_local_tax_help".into(),
+        value: "yes".into(),
+        known: 't',
+    });
+    assessment.amounts.push(AmountUse {
+        confirmed: false,
+        ..amount("help", "94 GBP a month", "Local Tax Help")
+    });
+    let said = words(&assessment, &context).concat();
+    assert!(!said.to_lowercase().contains("localtaxhelp"), "{said}");
+    assert!(!said.contains("Thetownhall"), "{said}");
     assert!(said.contains(&dense("other items")));
+    // The same letter without folding names it in each of these places.
+    context.delivery.fold.clear();
+    let said = words(&assessment, &context).concat();
+    for text in [
+        "Local Tax Help ends",
+        "claims local tax help",
+        "Local Tax Help can end.",
+        "Local Tax Help (1)",
+        "The town hall:",
+        "second homes",
+    ] {
+        assert!(said.contains(&dense(text)), "{text}: {said}");
+    }
 }
 
 #[test]
@@ -464,30 +620,27 @@ fn a_missing_label_has_a_fallback_and_is_listed() {
         missing_labels(&assessment, &context.labels),
         Vec::<String>::new()
     );
-    for key in [
-        "item.support",
-        "fact.rent",
-        "turn.local_tax_help",
-        "left_out",
-        "office.support",
-        "office.tax",
-    ] {
+    for key in ["item.support", "fact.rent", "turn.local_tax_help"] {
         context.labels.remove(key);
     }
+    context
+        .labels
+        .retain(|key, _| !key.starts_with("office.") && !key.starts_with("left_out"));
     let missing = missing_labels(&assessment, &context.labels);
     assert_eq!(
         missing,
         [
             "fact.rent",
             "item.support",
-            "left_out",
             "turn.local_tax_help",
+            "left_out*",
             "office.*"
         ]
     );
     let pages = words(&assessment, &context);
     says(&pages, "Local Tax Help changes. You lose £94.");
     says(&pages, "support");
+    says(&pages, "Tell each office about a change in pay");
 }
 
 #[test]
@@ -526,11 +679,13 @@ fn a_long_letter_is_shortened_not_refused() {
         ("Bakery, mornings", 2000, 128_000),
         ("Care home, nights and every second weekend", 3000, 141_250),
         ("Garden centre", 2400, 131_000),
+        ("Ferry office", 2600, 133_000),
+        ("Rope works", 2800, 129_000),
     ];
     let first = earner(&COUPLE, 0, "Ana", Some((800, 127_100)), &offers);
     let second = earner(&COUPLE, 1, "Ben", Some((3000, 127_100)), &offers);
     let mut assessment = super::invented::assessment(&COUPLE, vec![first, second]);
-    for number in 0..40 {
+    for number in 0..60 {
         assessment.facts.push(FactUse {
             kind: "adult".into(),
             of: "Ben".into(),
@@ -547,6 +702,7 @@ fn a_long_letter_is_shortened_not_refused() {
     let context = context();
     let full = view(&assessment, &context);
     let long = typesetter.letter(&full, &context.texts, context.issued);
+    let long = long.map(|made| made.pages);
     assert!(
         matches!(
             long,
@@ -559,6 +715,135 @@ fn a_long_letter_is_shortened_not_refused() {
     );
     let made = typeset(&mut typesetter, &assessment, &context).expect("a shorter letter");
     assert!(made.pages <= PAGE_LIMIT);
+}
+
+#[test]
+fn each_detail_says_less_than_the_one_before() {
+    let mut assessment = lone_parent();
+    for number in 0..20 {
+        assessment.facts.push(FactUse {
+            kind: "adult".into(),
+            of: "Ana".into(),
+            name: format!("further_fact_{number}"),
+            value: "no".into(),
+            known: 'a',
+        });
+    }
+    let context = context();
+    let lengths: Vec<(usize, f64)> = [
+        Detail::Full,
+        Detail::Plain,
+        Detail::Short,
+        Detail::Bare,
+        Detail::Brief,
+    ]
+    .iter()
+    .map(|detail| {
+        let view = letter_view(&assessment, &context, *detail).expect("a view");
+        let pages = typesetter().words(&view, &context.texts).expect("words");
+        (pages.concat().len(), probable_length(&view))
+    })
+    .collect();
+    for pair in lengths[..4].windows(2) {
+        assert!(
+            pair[1].0 < pair[0].0 && pair[1].1 < pair[0].1,
+            "{lengths:?}"
+        );
+    }
+    assert!(lengths[4].0 < lengths[1].0, "{lengths:?}");
+}
+
+#[test]
+fn an_address_that_the_window_does_not_show_is_refused() {
+    let mut context = context();
+    let mut refused = |address: &[&str]| {
+        context.delivery.address = address.iter().map(|line| (*line).to_owned()).collect();
+        match letter_view(&tenant(), &context, Detail::Full) {
+            Err(error @ StatementError::Room { .. }) => error.to_string(),
+            Err(other) => panic!("{other}"),
+            Ok(_) => "none".to_owned(),
+        }
+    };
+    let six = [
+        "Ana Petrescu-Hale",
+        "Flat 2",
+        "18 Tanners Row",
+        "Lower Side",
+        "Harrowmere",
+        "HX0 4ZZ",
+    ];
+    assert_eq!(refused(&six), "none");
+    let seven = ["A", "B", "C", "D", "E", "F", "G"];
+    assert_eq!(
+        refused(&seven),
+        "`address` needs 7 lines, expected at most 6, which the window of an envelope shows"
+    );
+    // A line that is too wide takes two.
+    let mut wide = six;
+    wide[2] = "The Old Fulling Mill and Dye House, 18 Tanners Row";
+    assert!(
+        refused(&wide).contains("needs 7 lines"),
+        "{}",
+        refused(&wide)
+    );
+    let word = "Llanfairpwllgwyngyllgogerychwyrndrobwllllantysiliogogogoch";
+    assert!(
+        refused(&["Ana", word]).starts_with("`address[1]` needs more than 84 mm"),
+        "{}",
+        refused(&["Ana", word])
+    );
+}
+
+#[test]
+fn an_office_with_many_lines_stays_off_the_address() {
+    let mut context = context();
+    context.office.lines = (1..=9)
+        .map(|line| format!("Line {line} of the office"))
+        .collect();
+    let view = view(&tenant(), &context);
+    assert_eq!((view.office_lines.len(), view.office_more.len()), (5, 4));
+    let pages = words(&tenant(), &context);
+    says(&pages[..1], "Line 9 of the office");
+    context.delivery.address.clear();
+    let view = super::letter::view(&tenant(), &context);
+    assert_eq!((view.office_lines.len(), view.office_more.len()), (9, 0));
+}
+
+#[test]
+fn another_currency_has_its_own_ten() {
+    let mut context = context();
+    context.currency = "EUR".to_owned();
+    let said = words(&tenant(), &context).concat();
+    assert!(said.contains("ofeachextra€10"), "{said}");
+    assert!(said.contains("Wherethenext€10ofpaygoes"), "{said}");
+    // The one pound left is the rent, which the fixture gives as text.
+    assert_eq!(said.matches('£').count(), 1, "{said}");
+}
+
+#[test]
+fn turns_are_said_with_their_direction() {
+    let mut context = context();
+    let ways = [
+        ("turn.income_tax.starts", "Income Tax begins"),
+        ("turn.income_tax.ends", "Income Tax is over"),
+        ("turn.support.ends", "Household Support is over"),
+        ("turn.support.starts", "Household Support begins to fall"),
+    ];
+    for (key, text) in ways {
+        context.labels.insert(key.to_owned(), text.to_owned());
+    }
+    let said = words(&tenant(), &context).concat();
+    // The nearer words win, where the slope of the item was nothing before.
+    assert!(
+        said.contains("19.53hoursPay£1,075.26IncomeTaxbegins."),
+        "{said}"
+    );
+    assert!(!said.contains("IncomeTaxisover"), "{said}");
+    // Far more pay: the benefit's slope becomes nothing.
+    let offers = [("Depot, all week", 4700, 127_100)];
+    let one = earner(&COUPLE, 0, "", Some((4000, 127_100)), &offers);
+    let said = words(&super::invented::assessment(&COUPLE, vec![one]), &context).concat();
+    assert!(!said.contains("HouseholdSupportbeginstofall"), "{said}");
 }
 
 #[test]
