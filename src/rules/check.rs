@@ -606,15 +606,9 @@ impl<'a> Context<'a> {
         })
     }
 
-    fn divide_rounded(
-        &mut self,
-        of: Node,
-        by: Node,
-        (direction, unit, manner): (Direction, Fraction, Option<Manner>),
-        span: Span,
-        faults: &mut Faults,
-    ) -> Option<Node> {
-        let above_zero = match &by.what {
+    /// Whether a value is surely above nothing.
+    pub(super) fn above_zero(&self, node: &Node) -> bool {
+        match &node.what {
             What::Name {
                 target: Target::Fact { kind, fact },
                 ..
@@ -625,8 +619,18 @@ impl<'a> Context<'a> {
                 ..
             } => matches!(right.what, What::Fixed(value) if value > Fraction::ZERO),
             _ => false,
-        };
-        if !above_zero {
+        }
+    }
+
+    fn divide_rounded(
+        &mut self,
+        of: Node,
+        by: Node,
+        (direction, unit, manner): (Direction, Fraction, Option<Manner>),
+        span: Span,
+        faults: &mut Faults,
+    ) -> Option<Node> {
+        if !self.above_zero(&by) {
             faults.push(
                 Diagnostic::fault(by.span, "this could be nothing").expected(
                     "a fact whose range starts above zero, or `… raised to` a number above zero",

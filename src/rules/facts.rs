@@ -212,7 +212,8 @@ impl Declarer<'_> {
     }
 }
 
-fn shown(value: Fraction, ty: Ty) -> String {
+/// A number as the rule text writes it.
+pub(super) fn shown(value: Fraction, ty: Ty) -> String {
     let (value, sign) = if ty == Ty::Rate {
         (value * Fraction::whole(100), "%")
     } else {

@@ -357,6 +357,13 @@ impl Graph<'_> {
                     degree: 1,
                     varies: true,
                 };
+                for change in changes {
+                    self.fixed(
+                        &change.value,
+                        "it stands in for a fact",
+                        "give a value that holds at any hours",
+                    );
+                }
                 changes
                     .iter()
                     .fold(self.courses[*figure].with(varies), |c, change| {

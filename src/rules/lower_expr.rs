@@ -218,8 +218,19 @@ impl Lowering<'_> {
                 unit,
                 ..
             } => {
-                let (of, by) = (self.node(of, scopes), self.node(by, scopes));
-                self.builder.divide(of, by, *unit, *direction)
+                let (of, divisor) = (self.node(of, scopes), self.node(by, scopes));
+                if self
+                    .builder
+                    .fixed_value(divisor)
+                    .is_some_and(|value| value <= Fraction::ZERO)
+                {
+                    self.faults.push(
+                        Diagnostic::fault(by.span, "this divides by nothing")
+                            .expected("an amount above zero"),
+                    );
+                    return of;
+                }
+                self.builder.divide(of, divisor, *unit, *direction)
             }
             What::Charge { of, bands } => self.charge(of, *bands, scopes),
             What::PlaceOn { of, scale } => self.place_on(of, *scale, scopes),

@@ -3,6 +3,7 @@
 use super::ast::{Expr, Ident};
 use super::check::{Context, Faults};
 use super::declare::{kinds_of_word, with_near};
+use super::facts::shown;
 use super::pack::{ADULT, Pack};
 use super::tree::{Changed, Node, Over, Target, What};
 use super::types::Ty;
@@ -377,12 +378,27 @@ impl Context<'_> {
             match self.find(&fact.text) {
                 Some((level, _, Target::Fact { kind, fact: at }, ty)) => {
                     match self.wanted(value, ty, faults) {
-                        Some(value) => changed.push(Changed {
+                        Some(value) if self.in_range(kind, at, &value) => changed.push(Changed {
                             kind,
                             fact: at,
                             level,
                             value,
                         }),
+                        Some(value) => {
+                            let (low, high) = self.pack.kinds[kind].facts[at].range;
+                            faults.push(
+                                Diagnostic::fault(
+                                    value.span,
+                                    format!("this may lie outside the range of `{}`", fact.text),
+                                )
+                                .expected(format!(
+                                    "a value from {} to {}",
+                                    shown(low, ty),
+                                    shown(high, ty)
+                                )),
+                            );
+                            whole = false;
+                        }
                         None => whole = false,
                     }
                 }
@@ -423,6 +439,18 @@ impl Context<'_> {
                 self.unknown(name, None, faults);
                 None
             }
+        }
+    }
+
+    /// Whether a value may stand for a fact: a fixed number lies in its range, and what stands for something above nothing is above nothing.
+    fn in_range(&self, kind: usize, fact: usize, value: &Node) -> bool {
+        let (low, high) = self.pack.kinds[kind].facts[fact].range;
+        match &value.what {
+            _ if !value.ty.is_quantity() => true,
+            What::Fixed(number) => low <= *number && *number <= high,
+            // An amount above nothing is one on every date: that is seen when it divides.
+            What::Amount { .. } => true,
+            _ => low <= Fraction::ZERO || self.above_zero(value),
         }
     }
 

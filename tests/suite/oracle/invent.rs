@@ -969,9 +969,9 @@ impl Maker<'_> {
 
     /// A figure once more, as if facts were otherwise.
     fn as_if(&mut self, ty: Ty, scopes: &[usize], depth: usize, room: Room) -> Piece {
-        let all = Room {
-            degree: 2,
-            steady: false,
+        let steady = Room {
+            degree: 0,
+            steady: true,
         };
         let figures: Vec<Named> = self
             .reachable(ty, scopes, room)
@@ -992,10 +992,13 @@ impl Maker<'_> {
         let mut changes = Vec::new();
         for _ in 0..1 + self.luck.below(2) {
             let fact = self.luck.pick(&facts).clone();
-            let value = if self.luck.percent(60) {
-                self.literal(fact.ty)
-            } else {
-                self.piece(fact.ty, scopes, depth.min(1), all)
+            // Most of these lie in the range of the fact.
+            let value = match fact.ty {
+                Ty::Count => Piece::plain(format!("{}", self.luck.between(0, 3))),
+                Ty::Rate => Piece::plain(format!("{}%", self.luck.between(4, 50))),
+                Ty::Money(Some(0)) | Ty::Hours => Piece::plain(self.literal(fact.ty).text),
+                _ if self.luck.percent(70) => self.literal(fact.ty),
+                _ => self.piece(fact.ty, scopes, depth.min(1), steady),
             };
             changes.push(format!("{} is {}", fact.name, value.at(VALUE)));
         }

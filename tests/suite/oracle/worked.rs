@@ -7,9 +7,11 @@ use super::compare::{Asked, Subject, Tally, compare};
 use super::invent::files;
 use super::text::{Q, day, number, q, whole};
 use hourworth::case::{Delivery, FactType, Household, Instance, JobRole, Known, Need, Schema};
+use hourworth::diag::Diagnostic;
 use hourworth::engine::JobChoice;
 use hourworth::load::{check_pack, schema_of};
 use hourworth::rules::Pack;
+use hourworth::source::Sources;
 use num_traits::ToPrimitive;
 
 const MANIFEST: &str = "title = \"Harrowmere\"\narea = \"Harrowmere\"\ncurrency = \"GBP\"\nperiod = \"month\"\n\
@@ -98,40 +100,44 @@ fn household(schema: &Schema, records: &[(&str, usize, &str)]) -> Household {
     }
 }
 
-impl Worked<'_> {
-    /// The pack as both sides read it, or why it is refused.
-    fn ready(&self) -> Result<(Book, Pack), String> {
-        let rules = format!(
-            "part \"Worked\" dated by closing\nlaw \"The Harrowmere Act\"\n{}\nnote closed where closing at least 2025-04-06",
-            self.rules
-        );
-        let mut texts = vec![
-            ("pack.toml".to_owned(), MANIFEST.to_owned()),
-            ("order.txt".to_owned(), "worked.rules\n".to_owned()),
-            ("worked.rules".to_owned(), rules),
-            (
-                "amounts.csv".to_owned(),
-                format!("{HEADER}{}", self.amounts),
-            ),
-        ];
-        texts.extend(
-            self.tables
-                .iter()
-                .map(|(name, text)| (format!("tables/{name}.csv"), (*text).to_owned())),
-        );
-        let files = files(&texts);
-        let pack = check_pack(&files).map_err(|(sources, faults)| {
-            faults
-                .iter()
-                .map(|f| f.render(&sources, false))
-                .collect::<String>()
-        })?;
-        Ok((Book::read(&files), pack))
-    }
+/// The pack as both sides read it.
+fn accepted(
+    rules: &str,
+    amounts: &str,
+    tables: &[(&str, &str)],
+) -> Result<(Book, Pack), (Sources, Vec<Diagnostic>)> {
+    let rules = format!(
+        "part \"Worked\" dated by closing\nlaw \"The Harrowmere Act\"\n{rules}\nnote closed where closing at least 2025-04-06"
+    );
+    let mut texts = vec![
+        ("pack.toml".to_owned(), MANIFEST.to_owned()),
+        ("order.txt".to_owned(), "worked.rules\n".to_owned()),
+        ("worked.rules".to_owned(), rules),
+        ("amounts.csv".to_owned(), format!("{HEADER}{amounts}")),
+    ];
+    texts.extend(
+        tables
+            .iter()
+            .map(|(name, text)| (format!("tables/{name}.csv"), (*text).to_owned())),
+    );
+    let files = files(&texts);
+    let pack = check_pack(&files)?;
+    Ok((Book::read(&files), pack))
+}
 
+impl Worked<'_> {
     /// Items at hours as they should be, by the oracle and the engine, and everything else that the two can be asked.
     fn gives(&self, expected: &[(&str, Q, &str)]) {
-        let (book, pack) = self.ready().unwrap_or_else(|words| panic!("{words}"));
+        let (book, pack) =
+            accepted(self.rules, self.amounts, self.tables).unwrap_or_else(|(sources, faults)| {
+                panic!(
+                    "{}",
+                    faults
+                        .iter()
+                        .map(|f| f.render(&sources, false))
+                        .collect::<String>()
+                );
+            });
         let schema = schema_of(&pack);
         let household = household(
             &schema,
@@ -373,32 +379,79 @@ fn facts_taken_otherwise_keep_their_bounds() {
         figure looked_up: money a month = limit[people]\nfigure aged: money a month = money 1 a month * (years from born to closing)\n\
         figure shared: money a month = costs * share\n\
         figure works: yesno = any job with (hours above 10 hours)\nfigure plain: money a month = by_people + looked_up + aged + shared\n\
-        item kept: benefit = plain see \"s.1\"\n";
+        item kept: benefit = plain see \"s.1\"\nnote at_work where works or nobody at least 1\n";
     let table = (
         "limit",
         "rooms,from,to,value,source,locator,status\n1,2020-01-01,,10,a book,p. 1,read\n2,2020-01-01,,20,a book,p. 1,read\n",
     );
+    let outside = |fact: &str, range: &str| {
+        format!("this may lie outside the range of `{fact}`; a value from {range}")
+    };
+    let varies =
+        "this varies with hours; something that does not, as it stands in for a fact".to_owned();
     let refused = [
-        "by_people as if (people is 0)",
-        "by_people as if (people is 10)",
-        "by_people as if (people is where works give 1 otherwise 2)",
-        "looked_up as if (people is (where works give 1 otherwise 2))",
-        "aged as if (born is (where works give 1990-01-01 otherwise 1980-01-01))",
-        "shared as if (share is 60%)",
-        "shared as if (costs is money -1 a month)",
-        "by_people as if (people is count of child)",
+        ("by_people as if (people is 0)", outside("people", "1 to 9")),
+        (
+            "by_people as if (people is 10)",
+            outside("people", "1 to 9"),
+        ),
+        (
+            "by_people as if (people is count of child)",
+            outside("people", "1 to 9"),
+        ),
+        (
+            "by_people as if (people is ((where works give 1 otherwise 2) raised to 1))",
+            varies.clone(),
+        ),
+        (
+            "looked_up as if (people is ((where works give 1 otherwise 2) raised to 1))",
+            varies.clone(),
+        ),
+        (
+            "aged as if (born is (where works give 1990-01-01 otherwise 1980-01-01))",
+            varies,
+        ),
+        (
+            "shared as if (share is 60%)",
+            outside("share", "10% to 50%"),
+        ),
+        (
+            "shared as if (costs is money -1 a month)",
+            outside("costs", "0 to 1000"),
+        ),
+        (
+            "by_people as if (people is nobody)",
+            "this divides by nothing; an amount above zero".to_owned(),
+        ),
     ];
-    for expr in refused {
-        let rules = format!("{before}item changed: benefit = {expr} see \"s.2\"");
-        let worked = Worked {
+    for (expr, why) in refused {
+        let (_, faults) = accepted(
+            &format!("{before}item otherwise_worked: benefit = {expr} see \"s.2\""),
+            NOBODY,
+            &[table],
+        )
+        .expect_err(expr);
+        let found: Vec<String> = faults
+            .iter()
+            .map(|f| format!("{}; {}", f.message, f.expected.as_deref().unwrap_or("")))
+            .collect();
+        assert_eq!(found, [why], "{expr}");
+    }
+    for expr in [
+        "by_people as if (people is 9)",
+        "looked_up as if (people is (count of child raised to 1))",
+        "shared as if (share is 50%)",
+    ] {
+        let rules = format!("{before}item otherwise_worked: benefit = {expr} see \"s.2\"");
+        Worked {
             rules: &rules,
-            amounts: "",
+            amounts: NOBODY,
             tables: &[table],
             records: &ONE_JOB,
-        };
-        match worked.ready() {
-            Err(words) => println!("{expr}: {words}"),
-            Ok(_) => println!("NOT REFUSED {expr}"),
         }
+        .gives(&[]);
     }
 }
+
+/// An amount that is nothing.
+const NOBODY: &str = "nobody,2020-01-01,,0,count,,a book,p. 1,read\n";
