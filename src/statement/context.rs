@@ -143,7 +143,7 @@ pub fn missing_labels(
     wanted.dedup();
     let starts = |start: &str| labels.keys().any(|key| key.starts_with(start));
     wanted.retain(|key| {
-        !labels.contains_key(key) && !(key.starts_with("turn.") && starts(&format!("{key}.")))
+        !(labels.contains_key(key) || key.starts_with("turn.") && starts(&format!("{key}.")))
     });
     for group in ["left_out", "office.", "report."] {
         if !starts(group) {

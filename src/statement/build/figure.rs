@@ -11,6 +11,9 @@ use crate::statement::error::StatementError;
 use crate::statement::fonts::Weight;
 use crate::statement::money::{hours, kept_of_ten, money};
 
+/// Where a part of the next ten units goes: what it is, its words, and the sum.
+type Share = (Goes, String, Money);
+
 /// Jumps named in the chart at most.
 const NAMED_JUMPS: usize = 3;
 /// The least jump that is named in the chart, in minor units.
@@ -82,7 +85,11 @@ pub(super) fn chart(
         let to = trap.to.map_or(place(main.up_to.as_fraction()), place);
         bands.push(Band {
             hours: (place(trap.from), to),
-            label: words.say("chart.band", &[("hours", &hours_text(hours(trap.from)))])?,
+            label: if trap.from.is_zero() {
+                words.plain("chart.band_start")?
+            } else {
+                words.say("chart.band", &[("hours", &hours_text(hours(trap.from)))])?
+            },
         });
     }
     let plot = Plot {
@@ -262,6 +269,11 @@ fn title(
     if let Some(trap) = trap {
         let from = hours_text(hours(trap.from));
         return match trap.to {
+            // Nobody works 0 hours: the words compare with not being in work.
+            Some(to) if trap.from.is_zero() => {
+                words.say("chart.title_trap_start", &[("to", &hours_text(hours(to)))])
+            }
+            None if trap.from.is_zero() => words.plain("chart.title_trap_start_open"),
             Some(to) => words.say(
                 "chart.title_trap",
                 &[("from", &from), ("to", &hours_text(hours(to)))],
@@ -415,7 +427,7 @@ pub(super) fn bars(
     };
     let (low, high) = in_range(earner, steps);
     let (low, high) = (low.as_fraction(), high.as_fraction());
-    let mut found: Vec<(Fraction, Fraction, Vec<(Goes, String, Money)>)> = vec![];
+    let mut found: Vec<(Fraction, Fraction, Vec<Share>)> = vec![];
     let mut star = "";
     for segment in &main.segments {
         let begins_inside = segment.from < high || (low == high && segment.from <= low);

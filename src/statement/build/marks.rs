@@ -44,14 +44,14 @@ impl Marks {
             }
         }
         instruments.sort();
-        let items = assessment.items.iter().enumerate();
-        let present = items.clone().map(|(position, _)| {
+        let items = assessment.items.iter();
+        let present = (0..assessment.items.len()).map(|position| {
             earners
                 .iter()
                 .flat_map(|earner| shown(earner))
                 .any(|point| point.items[position].0 != 0)
         });
-        let starred = items.map(|(_, item)| {
+        let starred = items.map(|item| {
             let name = instrument(&item.part);
             instruments.iter().any(|(known, _)| known == name)
         });

@@ -360,7 +360,11 @@ pub(super) fn range_text(
     for trap in own_traps(main, measure).into_iter().filter(at_a_fall) {
         let from = hours_text(hours(trap.from));
         let depth = words.currency.short(trap.depth);
-        let mut what = words.say("turns.trap", &[("sum", &depth), ("hours", &from)])?;
+        let mut what = if trap.from.is_zero() {
+            words.say("turns.trap_start", &[("sum", &depth)])?
+        } else {
+            words.say("turns.trap", &[("sum", &depth), ("hours", &from)])?
+        };
         what.push(' ');
         what.push_str(&regained(words, main, trap)?);
         let to = trap.to.unwrap_or(main.up_to.as_fraction());

@@ -171,7 +171,7 @@ pub(super) fn turns(
         });
     }
     let all = candidates.len();
-    candidates.sort_by(|a, b| (a.rank, a.away, a.at).cmp(&(b.rank, b.away, b.at)));
+    candidates.sort_by_key(|found| (found.rank, found.away, found.at));
     candidates.truncate(match (words.detail, place) {
         (Detail::Full | Detail::Plain | Detail::Short | Detail::Bare, 0) => MOST,
         (_, _) => FILL,
@@ -189,7 +189,7 @@ pub(super) fn turns(
         position += 1;
         found.rank < Rank::FallBeyond || position <= fill
     });
-    candidates.sort_by(|a, b| a.at.cmp(&b.at));
+    candidates.sort_by_key(|found| found.at);
     let lead = if on_the_way {
         String::new()
     } else {

@@ -16,6 +16,9 @@ use hourworth::rules::Pack;
 use num_bigint::BigInt;
 use num_traits::{Signed, ToPrimitive};
 
+/// A kind of record: its word, its owner, its facts with their units.
+type Kind<'a> = (&'a str, Option<usize>, Vec<(&'a str, i64)>);
+
 /// What was compared.
 #[derive(Clone, Debug, Default)]
 pub struct Tally {
@@ -469,7 +472,7 @@ fn on_curve(curve: &Curve, at: &Q) -> Q {
 
 /// The kinds and facts that the oracle read in the rule text are those of the schema.
 pub fn same_schema(book: &Book, schema: &Schema) -> Outcome {
-    let mine: Vec<(&str, Option<usize>, Vec<(&str, i64)>)> = book
+    let mine: Vec<Kind<'_>> = book
         .kinds
         .iter()
         .map(|k| {
@@ -480,7 +483,7 @@ pub fn same_schema(book: &Book, schema: &Schema) -> Outcome {
             )
         })
         .collect();
-    let theirs: Vec<(&str, Option<usize>, Vec<(&str, i64)>)> = schema
+    let theirs: Vec<Kind<'_>> = schema
         .kinds
         .iter()
         .map(|k| {
