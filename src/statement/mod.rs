@@ -32,7 +32,7 @@ pub use chart::{Chart, Dot, Label, Run, Tick};
 pub use context::{FactShape, LetterContext, LetterDelivery, Office, missing_labels};
 pub use error::StatementError;
 pub use money::{Currency, Decimals};
-pub use room::{probable_length, probable_pages};
+pub use room::probable_length;
 pub use templates::TemplateSet;
 pub use texts::Texts;
 pub use typeset::{PAGE_LIMIT, Typeset, Typesetter, typeset, typeset_with_view};

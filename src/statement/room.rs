@@ -133,6 +133,7 @@ impl Sheet {
         }
     }
 
+    /// What follows the chart.
     fn section(&mut self, section: &Section) {
         let wide = self.beside();
         if section.bars.height > 0 {
@@ -170,54 +171,17 @@ impl Sheet {
     }
 }
 
-/// Pages that a letter will probably take.
-pub fn probable_pages(view: &LetterView) -> usize {
-    probable_length(view).ceil() as usize
-}
+/// What is left free below the caution for it to count as on page one, in sizes of print.
+const SAFE: f64 = 0.6;
 
 /// Pages that a letter will probably fill, the last one by its part: 2.25 is two pages and a quarter of the third.
 pub fn probable_length(view: &LetterView) -> f64 {
-    let size = f64::from(view.print_size);
-    let paper = if view.paper == "us-letter" {
-        792.0
-    } else {
-        841.89
-    };
-    let mut sheet = Sheet {
-        pages: 1,
-        used: 0.0,
-        high: paper - 27.0 * MM - size,
-        wide: super::build::text_width(&view.paper),
-        size,
-    };
-    let particulars = sheet.lines(view.particulars.len() + 2);
-    sheet.used = if view.address.is_empty() {
-        particulars + 1.1 * size
-    } else {
-        particulars.max(66.0 * MM) + 0.5 * size
-    };
-    sheet.used += 1.2 * sheet.lines(1);
-    for line in &view.what_if {
-        sheet.flow(0.8, sheet.text(line, sheet.beside()));
-    }
+    let mut sheet = Sheet::new(view);
     for (place, section) in view.sections.iter().enumerate() {
-        if view.named {
-            sheet.flow(1.2, 0.6 * size + sheet.headed());
-        }
-        sheet.answers(section);
-        if !section.measure.is_empty() {
-            sheet.flow(0.6, sheet.text(&section.measure, sheet.beside()));
-        }
-        if place == 0 {
-            let estimate = view.estimate.join(" ");
-            sheet.flow(0.8, sheet.text(&estimate, sheet.beside()));
-        }
-        if section.chart.height > 0 {
-            sheet.whole(0.9, sheet.headed() + section.chart.height as f64 / 100.0);
-        }
-        if place == 0 {
-            let caution = sheet.text(&view.caution, sheet.beside());
-            sheet.whole(1.0, 0.6 * size + caution);
+        if place > 0 {
+            sheet.opening(view, section);
+        } else {
+            sheet.first(view, section);
             for part in &view.notes {
                 sheet.part(part);
             }
@@ -225,13 +189,111 @@ pub fn probable_length(view: &LetterView) -> f64 {
         sheet.section(section);
     }
     for part in &view.closing {
-        sheet.flow(0.7, sheet.headed());
+        let headed = sheet.headed();
+        sheet.flow(0.7, headed);
         for line in &part.lines {
-            let text = format!("{} {}", line.lead, line.text);
-            sheet.flow(0.6, sheet.text(&text, sheet.wide));
+            let high = sheet.text(&format!("{} {}", line.lead, line.text), sheet.wide);
+            sheet.flow(0.6, high);
         }
         // No distance before the first.
-        sheet.used -= 0.6 * size;
+        sheet.used -= 0.6 * sheet.size;
     }
     sheet.pages as f64 - 1.0 + sheet.used / sheet.high
+}
+
+/// Whether the caution will stand on page one where it follows the chart.
+pub(super) fn caution_on_first_page(view: &LetterView) -> bool {
+    let mut sheet = Sheet::new(view);
+    match view.sections.first() {
+        Some(section) => {
+            sheet.first(view, section);
+            sheet.pages == 1 && sheet.used + SAFE * sheet.size <= sheet.high
+        }
+        None => true,
+    }
+}
+
+impl Sheet {
+    /// The first sheet with the letter's head on it.
+    fn new(view: &LetterView) -> Sheet {
+        let size = f64::from(view.print_size);
+        let paper = if view.paper == "us-letter" {
+            792.0
+        } else {
+            841.89
+        };
+        let mut sheet = Sheet {
+            pages: 1,
+            used: 0.0,
+            high: paper - 27.0 * MM - size,
+            wide: super::build::text_width(&view.paper),
+            size,
+        };
+        let beside = (sheet.wide - 89.0 * MM).max(size);
+        let mut details = sheet.lines(2);
+        if size > TWO_COLUMNS {
+            let number = wrapped(&view.number.replace('-', "- "), Weight::Bold, size, beside);
+            details += sheet.lines(number.len());
+            for row in &view.particulars {
+                details += sheet.text(&format!("{} {}", row.name, row.value), beside) + 0.36 * size;
+            }
+        } else {
+            details += sheet.lines(view.particulars.len());
+        }
+        details += view.office_more.len() as f64 * (LINE.0 + 0.36) * size;
+        sheet.used = if view.address.is_empty() {
+            let office = (view.office_lines.len() + 3) as f64 * (LINE.0 + 0.36) * size;
+            details.max(office) + 1.1 * size
+        } else {
+            details.max(66.0 * MM) + 0.5 * size
+        };
+        let title = wrapped(&view.title, Weight::Bold, 1.2 * size, sheet.wide).len();
+        sheet.used += 1.2 * sheet.lines(title);
+        if !view.what_if.is_empty() {
+            let texts = view
+                .what_if
+                .iter()
+                .map(|line| sheet.text(line, sheet.beside()));
+            let high: f64 = texts.map(|high| high + 0.7 * size).sum();
+            sheet.flow(0.7, 0.5 * size + high + sheet.lines(2));
+        }
+        sheet
+    }
+
+    /// A section up to its chart.
+    fn opening(&mut self, view: &LetterView, section: &Section) {
+        if view.named {
+            self.flow(1.2, 0.6 * self.size + self.lines(1) + 0.5 * self.size);
+        }
+        self.answers(section);
+        if !section.measure.is_empty() {
+            self.flow(0.6, self.text(&section.measure, self.beside()));
+        }
+        if section.chart.height > 0 {
+            self.whole(0.9, self.headed() + section.chart.height as f64 / 100.0);
+        }
+    }
+
+    /// The first section up to the caution, which stands above or below the chart.
+    fn first(&mut self, view: &LetterView, section: &Section) {
+        if view.named {
+            self.flow(1.2, 0.6 * self.size + self.lines(1) + 0.5 * self.size);
+        }
+        self.answers(section);
+        if !section.measure.is_empty() {
+            self.flow(0.6, self.text(&section.measure, self.beside()));
+        }
+        self.flow(0.8, self.text(&view.estimate.join(" "), self.beside()));
+        let words = self.text(&view.caution, self.beside());
+        let caution = 0.6 * self.size + self.row(self.lines(1), words);
+        if view.caution_first == 1 {
+            self.whole(1.0, caution);
+        }
+        if section.chart.height > 0 {
+            self.whole(0.9, self.headed() + section.chart.height as f64 / 100.0);
+        }
+        if view.caution_first == 0 {
+            self.whole(1.0, caution);
+        }
+    }
 }

@@ -32,6 +32,8 @@ pub struct LetterView {
     pub estimate: Vec<String>,
     /// What defers to the offices and advisers; on page one.
     pub caution: String,
+    /// 1 where the caution stands above the chart, because it would not stand on page one below it; else 0.
+    pub caution_first: u8,
     /// Changed amounts of a what-if with the reasons; empty for none.
     pub what_if: Vec<String>,
     /// The pack's notes that hold for this household, printed below the caution; at most one part.

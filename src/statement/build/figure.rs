@@ -22,7 +22,7 @@ const LEAST_NAMED: i64 = 500;
 const BARS: usize = 2;
 /// Rates named in the title at most.
 const RATES: usize = 3;
-/// Stretches shorter than this, in hours, are not named in the title.
+/// Traps and stretches shorter than this, in hours, are not named in the title.
 const LEAST_STRETCH: Fraction = Fraction::ONE;
 /// Stretches shorter than this, in hours, get no bar unless they start at today's hours.
 const LEAST_BAR: Fraction = Fraction::ONE;
@@ -264,7 +264,8 @@ fn title(
     let (low, high) = in_range(earner, steps);
     let trap = own_traps(main, measure).into_iter().find(|trap| {
         let ahead = trap.to.is_none_or(|to| to > today.hours.as_fraction());
-        ahead && trap.from <= high.as_fraction()
+        let wide = trap.to.is_none_or(|to| to - trap.from >= LEAST_STRETCH);
+        ahead && wide && trap.from <= high.as_fraction()
     });
     if let Some(trap) = trap {
         let from = hours_text(hours(trap.from));

@@ -17,6 +17,7 @@ mod words;
 use super::context::LetterContext;
 use super::error::StatementError;
 use super::money::{Decimals, capital, readable};
+use super::room::caution_on_first_page;
 use super::view::LetterView;
 use crate::measures::{Assessment, EarnerResult};
 use words::Words;
@@ -64,7 +65,7 @@ pub fn letter_view(
         estimate.push(words.plain("estimate.star")?);
     }
     let (office_lines, office_more) = head::office_lines(&words);
-    Ok(LetterView {
+    let mut view = LetterView {
         language: context.texts.language().to_owned(),
         paper: context.delivery.paper.clone(),
         print_size: context.delivery.print_size.max(12),
@@ -82,13 +83,16 @@ pub fn letter_view(
         particulars: head::particulars(&words)?,
         estimate,
         caution: words.plain("caution.text")?,
+        caution_first: 0,
         what_if: what_if(&words)?,
         notes: closing::notes(&words)?,
         period: words.period.clone(),
         named: words.couple(),
         sections,
         closing: closing::parts(&words)?,
-    })
+    };
+    view.caution_first = u8::from(!caution_on_first_page(&view));
+    Ok(view)
 }
 
 /// The earners that are printed: the first with an offer leads, else the first with a job.

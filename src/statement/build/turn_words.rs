@@ -66,9 +66,7 @@ pub(super) fn turn_text(
     let mut said = vec![];
     for turn in near {
         let causes = causes(words, line, turn)?;
-        if !causes.is_empty() {
-            said.push(format!("{}.", capital(causes.trim_end_matches('.'))));
-        }
+        said.extend(causes.iter().map(|cause| sentence(cause)));
     }
     match way {
         Way::Falls | Way::Rises => {
@@ -98,13 +96,23 @@ pub(super) fn turn_text(
     }
     let stars = near.iter().map(|turn| words.marks.of_turn(turn));
     let star = stars.max().unwrap_or_default();
-    let place = words.say("turns.place", &[("hours", &hours_text(turn.hours))])?;
+    let (place, pay) = if turn.at.is_zero() {
+        (words.plain("turns.start")?, String::new())
+    } else {
+        let place = words.say("turns.place", &[("hours", &hours_text(turn.hours))])?;
+        (place, pay(words, turn)?)
+    };
     let text = TurnText {
         place: format!("{place}{star}"),
-        pay: pay(words, turn)?,
+        pay,
         what: said.join(" "),
     };
     Ok(Some((way, text)))
+}
+
+/// A cause as a sentence of its own.
+fn sentence(cause: &str) -> String {
+    format!("{}.", capital(cause.trim_end_matches('.')))
 }
 
 /// The pay at a turn.
@@ -161,7 +169,11 @@ fn segment_after<'a>(line: &'a BudgetLine, turn: &Turn) -> Option<&'a Segment> {
 }
 
 /// The causes of a turn in words; at most two. Help in kind is said as what it is, won or lost.
-fn causes(words: &Words<'_>, line: &BudgetLine, turn: &Turn) -> Result<String, StatementError> {
+fn causes(
+    words: &Words<'_>,
+    line: &BudgetLine,
+    turn: &Turn,
+) -> Result<Vec<String>, StatementError> {
     let mut said: Vec<String> = vec![];
     for cause in &turn.causes {
         let help = words
@@ -178,7 +190,7 @@ fn causes(words: &Words<'_>, line: &BudgetLine, turn: &Turn) -> Result<String, S
         }
     }
     said.truncate(2);
-    Ok(listed(&said))
+    Ok(said)
 }
 
 /// One cause: the label for the way in which its instrument's items turn, else the label for any way.
@@ -298,9 +310,11 @@ pub(super) fn steps_of_cost(
     let mut places: Vec<String> = vec![];
     let (mut most, mut away) = (Money::ZERO, Some(Fraction::ZERO));
     for turn in turns {
-        let text = causes(words, line, turn)?;
-        if !causes_said.contains(&text) {
-            causes_said.push(text);
+        for cause in causes(words, line, turn)? {
+            let text = sentence(&cause);
+            if !causes_said.contains(&text) {
+                causes_said.push(text);
+            }
         }
         // The last hours before the step: it lies at or just above them.
         let at = (turn.at * Fraction::whole(100)).floor();
@@ -333,14 +347,14 @@ pub(super) fn steps_of_cost(
         }
         (None, _) => words.say("turns.cost_plain", &[("sum", &sum)])?,
     };
-    let causes = capital(listed(&causes_said).trim_end_matches('.'));
+    causes_said.push(costs);
     Ok(TurnText {
         place,
         pay: match turns {
             [turn] => pay(words, turn)?,
             _ => String::new(),
         },
-        what: format!("{causes}. {costs}"),
+        what: causes_said.join(" "),
     })
 }
 
