@@ -179,9 +179,17 @@ pub fn probable_length(view: &LetterView) -> f64 {
     let mut sheet = Sheet::new(view);
     for (place, section) in view.sections.iter().enumerate() {
         if place > 0 {
-            sheet.opening(view, section);
+            sheet.answered(view, section);
+            sheet.chart(section);
         } else {
-            sheet.first(view, section);
+            sheet.answers_and_estimate(view, section);
+            if view.caution_first == 1 {
+                sheet.caution(view);
+            }
+            sheet.chart(section);
+            if view.caution_first == 0 {
+                sheet.caution(view);
+            }
             for part in &view.notes {
                 sheet.part(part);
             }
@@ -201,12 +209,16 @@ pub fn probable_length(view: &LetterView) -> f64 {
     sheet.pages as f64 - 1.0 + sheet.used / sheet.high
 }
 
-/// Whether the caution will stand on page one where it follows the chart.
-pub(super) fn caution_on_first_page(view: &LetterView) -> bool {
+/// Whether page one will hold the caution, where the view puts it.
+pub(super) fn first_page_holds_caution(view: &LetterView) -> bool {
     let mut sheet = Sheet::new(view);
     match view.sections.first() {
         Some(section) => {
-            sheet.first(view, section);
+            sheet.answers_and_estimate(view, section);
+            if view.caution_first == 0 {
+                sheet.chart(section);
+            }
+            sheet.caution(view);
             sheet.pages == 1 && sheet.used + SAFE * sheet.size <= sheet.high
         }
         None => true,
@@ -260,40 +272,34 @@ impl Sheet {
         sheet
     }
 
-    /// A section up to its chart.
-    fn opening(&mut self, view: &LetterView, section: &Section) {
+    /// The heading and the answers of a section, and what "you keep" means.
+    fn answered(&mut self, view: &LetterView, section: &Section) {
         if view.named {
             self.flow(1.2, 0.6 * self.size + self.lines(1) + 0.5 * self.size);
         }
         self.answers(section);
         if !section.measure.is_empty() {
             self.flow(0.6, self.text(&section.measure, self.beside()));
-        }
-        if section.chart.height > 0 {
-            self.whole(0.9, self.headed() + section.chart.height as f64 / 100.0);
         }
     }
 
-    /// The first section up to the caution, which stands above or below the chart.
-    fn first(&mut self, view: &LetterView, section: &Section) {
-        if view.named {
-            self.flow(1.2, 0.6 * self.size + self.lines(1) + 0.5 * self.size);
-        }
-        self.answers(section);
-        if !section.measure.is_empty() {
-            self.flow(0.6, self.text(&section.measure, self.beside()));
-        }
-        self.flow(0.8, self.text(&view.estimate.join(" "), self.beside()));
+    /// The first section up to the estimate.
+    fn answers_and_estimate(&mut self, view: &LetterView, section: &Section) {
+        self.answered(view, section);
+        let words = self.text(&view.estimate.join(" "), self.beside());
+        self.flow(0.8, self.row(self.lines(1), words));
+    }
+
+    fn caution(&mut self, view: &LetterView) {
         let words = self.text(&view.caution, self.beside());
-        let caution = 0.6 * self.size + self.row(self.lines(1), words);
-        if view.caution_first == 1 {
-            self.whole(1.0, caution);
-        }
+        self.whole(1.0, 0.6 * self.size + self.row(self.lines(1), words));
+    }
+
+    fn chart(&mut self, section: &Section) {
         if section.chart.height > 0 {
-            self.whole(0.9, self.headed() + section.chart.height as f64 / 100.0);
-        }
-        if view.caution_first == 0 {
-            self.whole(1.0, caution);
+            let title = wrapped(&section.chart.title, Weight::Bold, self.size, self.wide).len();
+            let heading = self.lines(title) - self.lines(1) + self.headed();
+            self.whole(0.9, heading + section.chart.height as f64 / 100.0);
         }
     }
 }

@@ -1,8 +1,7 @@
 //! The first answers: what is kept of each named step, and the hours that a sum needs.
 
-use super::Detail;
 use super::steps::Step;
-use super::words::{Measure, Words, hours_text};
+use super::words::{Answers, Measure, Words, hours_text};
 use crate::measures::{EarnerResult, ItemKind, Point};
 use crate::num::{Fraction, Hours, Money};
 use crate::statement::error::StatementError;
@@ -12,23 +11,23 @@ use crate::statement::view::{Answer, AnswerWeight};
 /// How far the hours of a step may turn out otherwise, in hundredths of an hour a week.
 const NEAR: i64 = 100;
 
-/// All answers of an earner: those to offers lead; without an offer the one to four hours more does.
+/// All answers of the earner whose section has this place: those to offers lead; without an offer the one to four hours more does.
 pub(super) fn answers(
     words: &Words<'_>,
     earner: &EarnerResult,
     steps: &[Step<'_>],
-    measure: Measure,
+    (measure, place): (Measure, usize),
 ) -> Result<Vec<Answer>, StatementError> {
     let mut answers = vec![];
     let offered = |step: &&Step<'_>| step.offer.is_some();
     let asked = steps.iter().any(|step| step.offer.is_some());
-    let mut first = true;
+    let mut first = place == 0 || asked;
     let ordered = steps
         .iter()
         .filter(offered)
         .chain(steps.iter().filter(|step| !offered(step)));
     for step in ordered {
-        if words.detail == Detail::Bare && asked && step.offer.is_none() {
+        if words.answers == Answers::Asked && asked && step.offer.is_none() {
             continue;
         }
         let weight = if asked && step.offer.is_none() {
@@ -38,7 +37,7 @@ pub(super) fn answers(
         };
         let mut answer = answer(words, earner, step, (measure, weight))?;
         if first
-            && words.detail != Detail::Bare
+            && words.answers == Answers::All
             && let Some(near) = near(words, earner, step, measure)?
         {
             answer.detail.push(' ');

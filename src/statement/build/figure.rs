@@ -21,7 +21,7 @@ const LEAST_NAMED: i64 = 500;
 /// Bars at most.
 const BARS: usize = 2;
 /// Rates named in the title at most.
-const RATES: usize = 3;
+const RATES: usize = 4;
 /// Traps and stretches shorter than this, in hours, are not named in the title.
 const LEAST_STRETCH: Fraction = Fraction::ONE;
 /// Stretches shorter than this, in hours, get no bar unless they start at today's hours.

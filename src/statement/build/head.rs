@@ -13,24 +13,28 @@ const SIZE: f64 = 12.0;
 const WIDE: f64 = 84.0 * 72.0 / 25.4;
 /// Lines of an address that the window shows: common practice, no source.
 const ADDRESS_LINES: usize = 6;
+/// Sizes of print above this one are large, in points.
+const LARGE: u8 = 14;
 /// Lines of the office above the address, its name among them.
 const OFFICE_LINES: usize = 6;
 
 /// Number, days, place and rules.
 pub(super) fn particulars(words: &Words<'_>) -> Result<Vec<Particular>, StatementError> {
     let context = words.context;
-    let rules = words.label("title");
+    let rules = words
+        .label("title")
+        .unwrap_or_else(|| context.rules_title.clone());
+    // In large print the place is not said twice.
+    let said = context.delivery.print_size > LARGE && rules.contains(&context.area);
     [
         ("issued", words.day(context.issued)),
         ("assessed", words.day(context.assessed)),
         ("area", context.area.clone()),
-        (
-            "rules",
-            rules.unwrap_or_else(|| context.rules_title.clone()),
-        ),
+        ("rules", rules),
         ("rules_until", words.day(context.rules_until)),
     ]
     .into_iter()
+    .filter(|(key, _)| *key != "area" || !said)
     .map(|(key, value)| {
         Ok(Particular {
             name: words.plain(&format!("head.{key}"))?,

@@ -17,10 +17,10 @@ mod words;
 use super::context::LetterContext;
 use super::error::StatementError;
 use super::money::{Decimals, capital, readable};
-use super::room::caution_on_first_page;
-use super::view::LetterView;
+use super::room::first_page_holds_caution;
+use super::view::{LetterView, Section};
 use crate::measures::{Assessment, EarnerResult};
-use words::Words;
+use words::{Answers, Words};
 
 pub(super) use figure::text_width;
 
@@ -51,11 +51,8 @@ pub fn letter_view(
 ) -> Result<LetterView, StatementError> {
     head::check_address(&context.delivery.address)?;
     let earners = leading_first(assessment, context);
-    let words = Words::new(assessment, context, detail, &earners)?;
-    let mut sections = vec![];
-    for (place, earner) in earners.iter().enumerate() {
-        sections.push(section::section(&words, earner, place)?);
-    }
+    let mut words = Words::new(assessment, context, detail, &earners)?;
+    let sections = sections(&words, &earners)?;
     let assessed = words.day(context.assessed);
     let mut estimate = vec![
         words.say("estimate.first", &[("assessed", &assessed)])?,
@@ -91,8 +88,23 @@ pub fn letter_view(
         sections,
         closing: closing::parts(&words)?,
     };
-    view.caution_first = u8::from(!caution_on_first_page(&view));
+    if !first_page_holds_caution(&view) {
+        view.caution_first = 1;
+    }
+    // Large print: what is asked, the estimate and the caution before everything else.
+    if !first_page_holds_caution(&view) && words.answers == Answers::All {
+        words.answers = Answers::Asked;
+        view.sections = self::sections(&words, &earners)?;
+    }
     Ok(view)
+}
+
+/// One section an earner.
+fn sections(words: &Words<'_>, earners: &[&EarnerResult]) -> Result<Vec<Section>, StatementError> {
+    let numbered = earners.iter().enumerate();
+    numbered
+        .map(|(place, earner)| section::section(words, earner, place))
+        .collect()
 }
 
 /// The earners that are printed: the first with an offer leads, else the first with a job.

@@ -36,7 +36,7 @@ pub(super) fn section(
         } else {
             words.plain("section.you")?
         },
-        answers: answers(words, earner, &steps, measure)?,
+        answers: answers(words, earner, &steps, (measure, place))?,
         measure: if place == 0 {
             meaning(words, earner, measure)?
         } else {

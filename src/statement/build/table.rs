@@ -7,7 +7,7 @@ use crate::measures::{EarnerResult, ItemKind, Point};
 use crate::num::Money;
 use crate::statement::error::StatementError;
 use crate::statement::fonts::{Weight, width};
-use crate::statement::money::NONE;
+use crate::statement::money::{NONE, capital};
 use crate::statement::view::{Column, Row, RowWeight, Table};
 
 /// Letters that the name of a single item may have to stand for its row.
@@ -99,23 +99,41 @@ pub(super) fn tables(
         let name = step.name.clone();
         columns.push((Column { name, hours }, step.to));
     }
-    let most = most_columns(words);
+    let points: Vec<&Point> = columns.iter().map(|(_, point)| *point).collect();
+    let most = most_columns(words, &points)?;
     let mut tables = vec![];
     let pieces = columns.len().div_ceil(most);
     let each = columns.len().div_ceil(pieces.max(1));
     for piece in columns.chunks(each.max(1)) {
         tables.push(table(words, piece)?);
     }
+    // The meaning of the star stands once, below the last piece.
+    let note = tables.iter_mut().fold(String::new(), |note, table| {
+        let own = std::mem::take(&mut table.note);
+        if own.is_empty() { note } else { own }
+    });
+    if let Some(last) = tables.last_mut() {
+        last.note = note;
+    }
     Ok(tables)
 }
 
 /// How many columns of sums fit beside the names.
-fn most_columns(words: &Words<'_>) -> usize {
+fn most_columns(words: &Words<'_>, points: &[&Point]) -> Result<usize, StatementError> {
     let size = f64::from(words.context.delivery.print_size.max(12));
-    let cell = width("£1,234.56", Weight::Bold, size) + size;
-    let names = size * 13.5;
+    let cell = width("£1,234.56", Weight::Bold, size) + 0.8 * size;
+    let mut names = 0.0f64;
+    for source in ABOVE_NET.iter().chain([&COSTS, &HOUSING]) {
+        if points.iter().any(|point| words.total(point, source.kinds).0 != 0) {
+            let name = format!("{}{STAR}", name(words, source, points)?);
+            names = names.max(width(&name, Weight::Regular, size));
+        }
+    }
+    for total in ["table.net", "table.after_costs", "table.after_housing"] {
+        names = names.max(width(&words.plain(total)?, Weight::Bold, size));
+    }
     let paper = super::figure::text_width(&words.context.delivery.paper);
-    (((paper - names) / cell) as usize).clamp(1, 5)
+    Ok((((paper - names) / cell) as usize).clamp(1, 5))
 }
 
 /// One piece of the table.
@@ -178,7 +196,7 @@ fn push(
     let of_row = |item: usize| source.kinds.contains(&words.assessment.items[item].kind);
     let star = words.marks.of_points(points, of_row);
     rows.push(Row {
-        name: format!("{}{star}", name(words, source, points)?),
+        name: format!("{}{star}", capital(&name(words, source, points)?)),
         cells: cells.collect(),
         weight: RowWeight::Plain,
     });

@@ -180,9 +180,11 @@ pub(super) fn turns(
         || candidates
             .iter()
             .any(|found| found.rank <= Rank::SlopeOnTheWay);
-    let fill = match words.detail {
-        Detail::Full | Detail::Plain => FILL,
-        Detail::Short | Detail::Bare | Detail::Brief => 1,
+    let fill = match (words.detail, place) {
+        (Detail::Full | Detail::Plain, 0) => FILL,
+        (Detail::Short | Detail::Bare | Detail::Brief, 0) => 1,
+        // What lies beyond the steps of the second person is not worth a line.
+        (_, _) => 0,
     };
     let mut position = 0;
     candidates.retain(|found| {
@@ -196,7 +198,7 @@ pub(super) fn turns(
         words.plain("turns.none")?
     };
     let note = match all - candidates.len() {
-        _ if words.detail == Detail::Bare => String::new(),
+        _ if words.detail == Detail::Bare || place > 0 => String::new(),
         0 => String::new(),
         1 => words.plain("turns.more_one")?,
         more => words.say("turns.more", &[("count", &more.to_string())])?,

@@ -53,6 +53,15 @@ impl Measure {
     }
 }
 
+/// Which answers a section gives.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Answers {
+    /// To every step, and what an hour less and more would do.
+    All,
+    /// Only to what the household asks.
+    Asked,
+}
+
 /// Everything that the parts of a letter need to speak.
 pub(super) struct Words<'a> {
     /// The results.
@@ -61,6 +70,8 @@ pub(super) struct Words<'a> {
     pub context: &'a LetterContext,
     /// How much is said.
     pub detail: Detail,
+    /// Which answers are given.
+    pub answers: Answers,
     /// How sums are written.
     pub currency: Currency,
     /// The word for the statement period.
@@ -94,6 +105,10 @@ impl<'a> Words<'a> {
             assessment,
             context,
             detail,
+            answers: match detail {
+                Detail::Full | Detail::Plain | Detail::Short | Detail::Brief => Answers::All,
+                Detail::Bare => Answers::Asked,
+            },
             period: texts.say(&key, &[])?,
             marks: Marks::new(assessment, earners),
             each: currency.short(Money(1000)),
