@@ -124,7 +124,10 @@ fn most_columns(words: &Words<'_>, points: &[&Point]) -> Result<usize, Statement
     let cell = width("£1,234.56", Weight::Bold, size) + 0.8 * size;
     let mut names = 0.0f64;
     for source in ABOVE_NET.iter().chain([&COSTS, &HOUSING]) {
-        if points.iter().any(|point| words.total(point, source.kinds).0 != 0) {
+        if points
+            .iter()
+            .any(|point| words.total(point, source.kinds).0 != 0)
+        {
             let name = format!("{}{STAR}", name(words, source, points)?);
             names = names.max(width(&name, Weight::Regular, size));
         }

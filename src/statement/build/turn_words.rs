@@ -266,15 +266,21 @@ fn ways(
     ways
 }
 
-/// The largest effects of a turn on sums, in words.
+/// The largest effects of a turn on sums, in words; those on an item of both adults as one.
 fn effects(words: &Words<'_>, turn: &Turn) -> Result<Vec<String>, StatementError> {
-    let mut sums: Vec<(usize, Money)> = turn
-        .effects
-        .iter()
-        .filter(|effect| words.assessment.items[effect.item].kind != ItemKind::Passport)
-        .map(|effect| (effect.item, effect.jump))
-        .filter(|(_, jump)| jump.0 != 0)
-        .collect();
+    let items = &words.assessment.items;
+    let mut sums: Vec<(usize, Money)> = vec![];
+    for effect in &turn.effects {
+        if items[effect.item].kind == ItemKind::Passport {
+            continue;
+        }
+        let name = &items[effect.item].name;
+        match sums.iter_mut().find(|(item, _)| items[*item].name == *name) {
+            Some((_, sum)) => *sum += effect.jump,
+            None => sums.push((effect.item, effect.jump)),
+        }
+    }
+    sums.retain(|(_, jump)| jump.0 != 0);
     sums.sort_by_key(|(item, jump)| (-jump.0.abs(), *item));
     let mut said = vec![];
     for (item, jump) in sums.into_iter().take(EFFECTS) {
