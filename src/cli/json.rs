@@ -68,6 +68,7 @@ fn kind(kind: ItemKind) -> &'static str {
         ItemKind::Passport => "passport",
         ItemKind::Cost => "cost",
         ItemKind::Housing => "housing",
+        ItemKind::Employer => "employer",
     }
 }
 
@@ -187,7 +188,8 @@ fn effect(assessment: &Assessment, effect: &Effect) -> Value {
         | ItemKind::Loan
         | ItemKind::Benefit
         | ItemKind::Cost
-        | ItemKind::Housing => {
+        | ItemKind::Housing
+        | ItemKind::Employer => {
             json!({ "jump": effect.jump.plain(), "slope": effect.slope.decimal(4) })
         }
     };

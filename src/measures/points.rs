@@ -60,7 +60,8 @@ impl Sums {
                 | ItemKind::Pension
                 | ItemKind::Loan
                 | ItemKind::Benefit
-                | ItemKind::Passport => {}
+                | ItemKind::Passport
+                | ItemKind::Employer => {}
             }
         }
         t.after_costs += t.net;
@@ -72,7 +73,7 @@ impl Sums {
         self.kinds[item].0
     }
 
-    /// How an item enters what is left: 1 adds, −1 comes off, 0 stays out (passports).
+    /// How an item enters what is left: 1 adds, −1 comes off, 0 stays out (passports, what the employer pays).
     pub(super) fn sign(&self, item: usize) -> i64 {
         match self.kinds[item].0 {
             ItemKind::Cost | ItemKind::Housing => -1,

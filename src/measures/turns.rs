@@ -46,6 +46,10 @@ fn turn(
     let same_pay = left.is_some_and(|(s, _)| s.pay.slope(at) == right.pay.slope(at));
     for item in 0..right_piece.items.len() {
         let kind = sums.kind(item);
+        // What the employer pays is no part of what the household keeps.
+        if kind == ItemKind::Employer {
+            continue;
+        }
         let sign = Fraction::whole(i128::from(sums.sign(item)));
         let after = right_piece.items[item];
         if same_pay && left.is_some_and(|(_, piece)| piece.items[item] == after) {
@@ -82,8 +86,14 @@ fn turn(
         };
         match kind {
             ItemKind::Cost => jump_costs = jump_costs + jump,
-            ItemKind::Housing => {}
-            _ => jump_net = jump_net + jump * sign,
+            ItemKind::Housing | ItemKind::Passport | ItemKind::Employer => {}
+            ItemKind::Pay
+            | ItemKind::Income
+            | ItemKind::Tax
+            | ItemKind::Contribution
+            | ItemKind::Pension
+            | ItemKind::Loan
+            | ItemKind::Benefit => jump_net = jump_net + jump * sign,
         }
         if !jump.is_zero() || !slope.is_zero() {
             effects.push(Effect {

@@ -25,11 +25,13 @@ pub enum ItemKind {
     Cost,
     /// Rent and local tax; comes off what is left after housing.
     Housing,
+    /// What the employer pays on top of the pay: shown, not in any sum of the household.
+    Employer,
 }
 
 impl ItemKind {
     /// All kinds, in the order of [`ItemKind::WORDS`].
-    pub const ALL: [ItemKind; 10] = [
+    pub const ALL: [ItemKind; 11] = [
         ItemKind::Pay,
         ItemKind::Income,
         ItemKind::Tax,
@@ -40,9 +42,10 @@ impl ItemKind {
         ItemKind::Passport,
         ItemKind::Cost,
         ItemKind::Housing,
+        ItemKind::Employer,
     ];
     /// The words of the rule language for the kinds.
-    pub const WORDS: [&'static str; 10] = [
+    pub const WORDS: [&'static str; 11] = [
         "pay",
         "income",
         "tax",
@@ -53,6 +56,7 @@ impl ItemKind {
         "passport",
         "cost",
         "housing",
+        "employer",
     ];
 
     /// The kind with this word.
@@ -73,7 +77,7 @@ impl ItemKind {
         match self {
             ItemKind::Pay | ItemKind::Income | ItemKind::Benefit => 1,
             ItemKind::Tax | ItemKind::Contribution | ItemKind::Pension | ItemKind::Loan => -1,
-            ItemKind::Passport | ItemKind::Cost | ItemKind::Housing => 0,
+            ItemKind::Passport | ItemKind::Cost | ItemKind::Housing | ItemKind::Employer => 0,
         }
     }
 
@@ -89,7 +93,8 @@ impl ItemKind {
             | ItemKind::Benefit
             | ItemKind::Passport
             | ItemKind::Cost
-            | ItemKind::Housing => false,
+            | ItemKind::Housing
+            | ItemKind::Employer => false,
         }
     }
 }

@@ -35,7 +35,8 @@ fn glossary(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
             | ItemKind::Pension
             | ItemKind::Loan
             | ItemKind::Cost
-            | ItemKind::Housing => false,
+            | ItemKind::Housing
+            | ItemKind::Employer => false,
         };
         if !explained || !words.marks.present(position) || words.folded(&item.name) {
             continue;
@@ -54,7 +55,7 @@ fn glossary(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
     Ok(lines)
 }
 
-/// The pack's notes that hold for this household; at most one part.
+/// What is due and not claimed, and the pack's notes that hold for this household; at most one part.
 pub(super) fn notes(words: &Words<'_>) -> Result<Vec<Part>, StatementError> {
     let said = words.assessment.notes.iter().filter_map(|note| {
         let key = format!("note.{note}");
@@ -63,7 +64,8 @@ pub(super) fn notes(words: &Words<'_>) -> Result<Vec<Part>, StatementError> {
             None => Some(format!("{}.", capital(&readable(note)))),
         }
     });
-    let lines: Vec<Line> = said.map(Line::from).collect();
+    let mut lines = unclaimed(words)?;
+    lines.extend(said.map(Line::from));
     if lines.is_empty() {
         return Ok(vec![]);
     }
@@ -72,6 +74,25 @@ pub(super) fn notes(words: &Words<'_>) -> Result<Vec<Part>, StatementError> {
         PartKind::Paragraphs,
         lines,
     )?])
+}
+
+/// One sentence for each benefit that looks due and is not claimed. What is folded is not named.
+fn unclaimed(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
+    let items = &words.assessment.items;
+    let told = words.assessment.unclaimed.iter();
+    told.filter(|due| !words.folded(&items[due.item].name))
+        .map(|due| {
+            let name = words.item(due.item)?;
+            let sum = words.currency.short(due.due);
+            Ok(Line {
+                lead: words.say("unclaimed.lead", &[("name", &name)])?,
+                text: words.say(
+                    "unclaimed.line",
+                    &[("sum", &sum), ("period", &words.period)],
+                )?,
+            })
+        })
+        .collect()
 }
 
 /// The pack's labels of one group, in the order of their keys, with what follows the group's name in the key.
@@ -108,7 +129,7 @@ fn counted(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
             | ItemKind::Loan
             | ItemKind::Benefit
             | ItemKind::Cost => true,
-            ItemKind::Passport | ItemKind::Housing => false,
+            ItemKind::Passport | ItemKind::Housing | ItemKind::Employer => false,
         };
         let name = words.item(position)?;
         if words.marks.present(position) && in_sum && !names.contains(&name) {

@@ -496,7 +496,11 @@ fn parts(
     let mut gains: Vec<(String, Fraction)> = vec![];
     for (position, share) in segment.shares.iter().enumerate() {
         let (goes, name) = match words.assessment.items[position].kind {
-            ItemKind::Pay | ItemKind::Passport | ItemKind::Cost | ItemKind::Housing => continue,
+            ItemKind::Pay
+            | ItemKind::Passport
+            | ItemKind::Cost
+            | ItemKind::Housing
+            | ItemKind::Employer => continue,
             ItemKind::Tax | ItemKind::Contribution => (Goes::Tax, words.plain("bars.tax")?),
             ItemKind::Loan => (Goes::Tax, words.plain("bars.loan")?),
             ItemKind::Pension => (Goes::Pension, words.plain("bars.pension")?),

@@ -56,7 +56,10 @@ pub(super) fn section(
         turns: turns.texts,
         turns_lead: turns.lead,
         turns_note: turns.note,
-        help: passported(words, earner, &steps)?.into_iter().collect(),
+        help: passported(words, earner, &steps)?
+            .into_iter()
+            .chain(employer(words, earner, &steps)?)
+            .collect(),
         table_heading: words.plain("table.heading")?,
         tables: if asked {
             table::tables(words, earner, &steps)?
@@ -65,6 +68,46 @@ pub(super) fn section(
         },
         parts: vec![words.part("back.heading", PartKind::Paragraphs, vec![back])?],
     })
+}
+
+/// What the employer pays on top of this earner's pay, today and at the steps; none where nothing is known of it.
+fn employer(
+    words: &Words<'_>,
+    earner: &EarnerResult,
+    steps: &[Step<'_>],
+) -> Result<Option<Part>, StatementError> {
+    let today = Words::today(earner);
+    let mut lines: Vec<Line> = vec![];
+    for (position, item) in words.assessment.items.iter().enumerate() {
+        let theirs = item.adult.is_none_or(|adult| adult == earner.adult);
+        if item.kind != ItemKind::Employer || !theirs || words.folded(&item.name) {
+            continue;
+        }
+        let sum = |point: &Point| words.currency.exact(point.items[position]);
+        let reached = steps.iter().map(|step| step.to);
+        if std::iter::once(today)
+            .chain(reached)
+            .all(|point| point.items[position].0 == 0)
+        {
+            continue;
+        }
+        let mut said = vec![words.say("employer.today", &[("sum", &sum(today))])?];
+        for step in steps {
+            let values = [("step", step.name.as_str()), ("sum", &sum(step.to))];
+            said.push(words.say("employer.step", &values)?);
+        }
+        lines.push(Line {
+            lead: words.say("employer.lead", &[("name", &words.item(position)?)])?,
+            text: format!("{}.", said.join("; ")),
+        });
+    }
+    if lines.is_empty() {
+        return Ok(None);
+    }
+    lines.push(Line::from(words.plain("employer.note")?));
+    let mut part = words.part("kind.employer", PartKind::Paragraphs, lines)?;
+    part.heading = words.kind(ItemKind::Employer)?;
+    Ok(Some(part))
 }
 
 /// Help in kind between today and the steps; none where there is none.

@@ -292,7 +292,11 @@ fn effects(words: &Words<'_>, turn: &Turn) -> Result<Vec<String>, StatementError
             | ItemKind::Loan
             | ItemKind::Cost
             | ItemKind::Housing => true,
-            ItemKind::Pay | ItemKind::Income | ItemKind::Benefit | ItemKind::Passport => false,
+            ItemKind::Pay
+            | ItemKind::Income
+            | ItemKind::Benefit
+            | ItemKind::Passport
+            | ItemKind::Employer => false,
         };
         let key = if (jump.0 < 0) == comes_off {
             "turns.effect_more"

@@ -211,6 +211,7 @@ impl<'a> Words<'a> {
             ItemKind::Passport => "kind.passport",
             ItemKind::Cost => "kind.cost",
             ItemKind::Housing => "kind.housing",
+            ItemKind::Employer => "kind.employer",
         };
         match self.label(key) {
             Some(word) => Ok(word),

@@ -393,6 +393,7 @@ impl Maker<'_> {
             "benefit",
             "cost",
             "housing",
+            "employer",
             "pay",
         ]);
         let text = match named.ty {

@@ -154,7 +154,7 @@ fn sign(kind: ItemKind) -> Fraction {
     match kind {
         ItemKind::Pay | ItemKind::Income | ItemKind::Benefit => w(1),
         ItemKind::Tax | ItemKind::Contribution | ItemKind::Pension | ItemKind::Loan => w(-1),
-        ItemKind::Passport | ItemKind::Cost | ItemKind::Housing => w(0),
+        ItemKind::Passport | ItemKind::Cost | ItemKind::Housing | ItemKind::Employer => w(0),
     }
 }
 
@@ -439,6 +439,8 @@ pub struct Home {
     pub cliff: Option<(i128, i128)>,
     /// Hours at which free school meals end.
     pub meals: Option<i128>,
+    /// Contribution that the employer pays on top, a month.
+    pub employer: Option<i128>,
 }
 
 pub const TENANT: Home = Home {
@@ -449,6 +451,7 @@ pub const TENANT: Home = Home {
     childcare: 0,
     cliff: None,
     meals: None,
+    employer: None,
 };
 pub const LONE_PARENT: Home = Home {
     award: 1480,
@@ -458,6 +461,7 @@ pub const LONE_PARENT: Home = Home {
     childcare: 18,
     cliff: Some((23, 94)),
     meals: Some(14),
+    employer: None,
 };
 pub const COUPLE: Home = Home {
     award: 1690,
@@ -467,6 +471,7 @@ pub const COUPLE: Home = Home {
     childcare: 0,
     cliff: None,
     meals: None,
+    employer: None,
 };
 
 /// The items of a home at a wage in ten-thousandths an hour.
@@ -550,6 +555,15 @@ pub fn items(home: &Home, wage: i64, adult: usize) -> Vec<Line> {
             false,
             "School meals",
             meals,
+        ));
+    }
+    if let Some(sum) = home.employer {
+        all.push(line(
+            "employer_contribution",
+            ItemKind::Employer,
+            true,
+            "National Insurance",
+            Pieces::flat(w(sum)),
         ));
     }
     if home.childcare > 0 {

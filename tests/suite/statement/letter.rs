@@ -384,6 +384,64 @@ fn passported_help_lost_and_kept() {
 }
 
 #[test]
+fn what_the_employer_pays_stands_apart_from_every_sum() {
+    let offers = [("Depot", 1800, 127_100)];
+    let mut home = LONE_PARENT.clone();
+    let one = earner(&home, 0, "Ana", Some((1600, 127_100)), &offers);
+    let without = view(&super::invented::assessment(&home, vec![one]), &context());
+    home.employer = Some(61);
+    let one = earner(&home, 0, "Ana", Some((1600, 127_100)), &offers);
+    let with = view(&super::invented::assessment(&home, vec![one]), &context());
+    let rows = |view: &LetterView| -> Vec<Vec<String>> {
+        let tables = view.sections[0].tables.iter();
+        tables
+            .flat_map(|table| table.rows.iter().map(|row| row.cells.clone()))
+            .collect()
+    };
+    assert_eq!(rows(&without), rows(&with));
+    assert_eq!(without.sections[0].bars, with.sections[0].bars);
+    let help = &with.sections[0].help;
+    let part = help
+        .iter()
+        .find(|part| part.heading == "Your employer pays")
+        .expect("a part on the employer");
+    assert_eq!(
+        part.lines[0].text,
+        "£61.00 today; 4 hours more: £61.00; Offer: £61.00."
+    );
+    assert!(
+        without.sections[0]
+            .help
+            .iter()
+            .all(|part| part.heading != "Your employer pays")
+    );
+}
+
+#[test]
+fn what_is_due_and_not_claimed_is_said_once() {
+    let mut told = lone_parent();
+    let position = told
+        .items
+        .iter()
+        .position(|item| item.name == "local_tax_help")
+        .expect("the item");
+    told.unclaimed.push(hourworth::measures::Unclaimed {
+        item: position,
+        due: Money(9_400),
+    });
+    says(
+        &words(&told, &context()),
+        "Local Tax Help: about £94 a month looks due, and it is not claimed.",
+    );
+    let mut folding = context();
+    folding.delivery.fold = vec!["local_tax_help".to_owned()];
+    assert!(
+        !words(&told, &folding).concat().contains("is not claimed"),
+        "what is folded is not named"
+    );
+}
+
+#[test]
 fn the_first_with_an_offer_leads_and_each_offer_has_its_answer() {
     let context = context();
     let view = view(&couple(), &context);
