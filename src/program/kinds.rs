@@ -126,6 +126,8 @@ pub struct Settling {
     pub kind: usize,
     /// Position among the facts of its kind.
     pub fact: usize,
+    /// Units to one of a value as lists hold it.
+    pub units: i64,
     /// The value that it always settles to, as lists hold it; none where rules work it out.
     pub to: Option<i64>,
 }

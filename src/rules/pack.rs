@@ -300,6 +300,7 @@ impl Pack {
                     name: f.name.clone(),
                     kind,
                     fact,
+                    units: f.kind.units(),
                     to,
                 });
             }

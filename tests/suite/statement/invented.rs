@@ -665,6 +665,7 @@ pub fn assessment(home: &Home, earners: Vec<EarnerResult>) -> Assessment {
             .collect(),
         earners,
         couple: None,
+        settled: None,
         unclaimed: vec![],
         notes: vec![],
         facts: vec![
