@@ -4,9 +4,9 @@
 use crate::case::{HOUSEHOLD, Household, Schema};
 use crate::engine::{JobChoice, Machine, Setting, working};
 use crate::load::{Terms, schema_of};
-use crate::measures::{Programs, Request, Verdict, WorkingLine, assess, working_at};
+use crate::measures::{Programs, Request, Verdict, WorkedPoint, WorkingLine, assess, working_at};
 use crate::num::{Fraction, Hours};
-use crate::program::Shape;
+use crate::program::{Moment, Settling, Shape};
 use crate::rules::Pack;
 use crate::source::Span;
 use std::collections::HashMap;
@@ -27,10 +27,15 @@ pub struct Books {
 struct Shelf {
     pack: Pack,
     terms: Terms,
+    settling: Vec<Settling>,
     machines: HashMap<Shape, Arc<Machine>>,
 }
 
 impl Programs for Shelf {
+    fn settling(&self) -> &[Settling] {
+        &self.settling
+    }
+
     fn machine(&mut self, shape: &Shape) -> Result<Arc<Machine>, String> {
         if let Some(machine) = self.machines.get(shape) {
             return Ok(Arc::clone(machine));
@@ -66,6 +71,7 @@ impl Books {
                 ..ordinary
             },
             shelf: Shelf {
+                settling: pack.settling(),
                 pack,
                 terms,
                 machines: HashMap::new(),
@@ -99,27 +105,18 @@ impl Books {
     pub fn working(
         &mut self,
         household: &Household,
-        adult: usize,
-        choice: JobChoice,
-        hours: Hours,
+        point: WorkedPoint,
     ) -> Result<Vec<WorkingLine>, String> {
         let sources = self.shelf.pack.sources.clone();
         let rule = |span: Span| -> String {
             let words: Vec<&str> = sources.slice(span).split_whitespace().collect();
             words.join(" ")
         };
-        working_at(
-            household,
-            &self.schema,
-            &mut self.shelf,
-            adult,
-            choice,
-            hours,
-            &rule,
-        )
+        working_at(household, &self.schema, &mut self.shelf, point, &rule)
     }
 
-    /// The exact value of a figure or item at today's hours, the first adult being the earner.
+    /// The exact value of a figure or item at today's hours, the first adult being the earner. Once settled, a fact that settles is one of
+    /// the figures.
     ///
     /// # Errors
     /// Where the pack cannot make a program, or works out no such figure for this household.
@@ -128,9 +125,11 @@ impl Books {
         household: &Household,
         name: &str,
         of: &str,
+        moment: Moment,
     ) -> Result<Fraction, String> {
         let setting = Setting::new(household, 0, JobChoice::Today)
-            .ok_or_else(|| "the household has no adult".to_owned())?;
+            .ok_or_else(|| "the household has no adult".to_owned())?
+            .at_moment(moment);
         let machine = self.shelf.machine(&setting.shape)?;
         let special = machine.special(&setting.facts(machine.program()));
         let lines = working(&special, setting.own_hours());
@@ -156,6 +155,7 @@ impl Books {
         household: &Household,
         adult: usize,
         hours: Fraction,
+        moment: Moment,
     ) -> Result<Fraction, String> {
         // The line must go on beyond the hours asked for.
         let ordinary = self.request.clone();
@@ -167,8 +167,15 @@ impl Books {
             Verdict::Assessed(assessment) => assessment,
             Verdict::Held(reasons) => return Err(format!("held: {}", reasons.join("; "))),
         };
-        let line = assessment
-            .earners
+        let earners = match (&assessment.settled, moment) {
+            (Some(settled), Moment::Settled) if !settled.held.is_empty() => {
+                return Err(format!("held once settled: {}", settled.held.join("; ")));
+            }
+            (Some(settled), Moment::Settled) => &settled.earners,
+            // Where nothing differs once settled, the rate is that of now.
+            (None, Moment::Settled) | (_, Moment::Now) => &assessment.earners,
+        };
+        let line = earners
             .iter()
             .find(|earner| earner.adult == adult && earner.has_job)
             .and_then(|earner| earner.lines.first())

@@ -2,7 +2,7 @@
 
 use crate::measures::{
     Assessment, BudgetLine, Cause, EarnerResult, Effect, ItemInfo, ItemKind, JobTerms, NoGain,
-    Point, Segment, Trap, Turn, TurnKind,
+    Point, Segment, Settled, Trap, Turn, TurnKind,
 };
 use crate::num::{Fraction, Hours, Money};
 
@@ -145,9 +145,42 @@ pub(crate) fn assessment() -> Assessment {
             target: None,
         }],
         couple: None,
+        settled: None,
         unclaimed: vec![],
         notes: vec![],
         facts: vec![],
         amounts: vec![],
+    }
+}
+
+/// The same household, which has 50.00 less everywhere once the fact `in_grace` has settled.
+pub(crate) fn settled() -> Assessment {
+    let now = assessment();
+    let mut earners = now.earners.clone();
+    let less = |point: &mut Point| {
+        point.items[3] += Money(-5000);
+        for sum in [
+            &mut point.net,
+            &mut point.after_costs,
+            &mut point.after_housing,
+        ] {
+            *sum += Money(-5000);
+        }
+    };
+    for earner in &mut earners {
+        less(&mut earner.not_in_work);
+        earner
+            .lines
+            .iter_mut()
+            .flat_map(|line| &mut line.grid)
+            .for_each(less);
+    }
+    Assessment {
+        settled: Some(Settled {
+            facts: vec!["in_grace".into()],
+            held: vec![],
+            earners,
+        }),
+        ..now
     }
 }

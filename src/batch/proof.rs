@@ -60,9 +60,11 @@ pub fn prove(pack: &Pack, case: &Case) -> Vec<Proof> {
         .map(|expect| {
             let found = match &expect.what {
                 What::Figure { name, of, period } => books
-                    .figure(&household, name, of)
+                    .figure(&household, name, of, expect.moment)
                     .and_then(|value| in_period(value, period, pack)),
-                What::Metr { adult, hours } => books.metr(&household, *adult, *hours),
+                What::Metr { adult, hours } => {
+                    books.metr(&household, *adult, *hours, expect.moment)
+                }
             };
             judge(expect, found)
         })

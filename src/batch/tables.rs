@@ -72,6 +72,8 @@ pub enum GridRows {
 /// Column names of `results.csv` for a pack with these items.
 ///
 /// * `household`, `earner` (1 for the first adult), `line` (`today`, or the offer's reference), `wage` (an hour)
+/// * `when`: `now`, or `once_settled` for the rows of a household to which facts about past periods will make a difference: all its rows once
+///   more, as they will be when those facts have settled
 /// * `point`: `not_in_work` (all jobs of the earner ended), `today` or `offer` (the job's own hours), `step` (four hours more than
 ///   today), `grid`
 /// * `hours` (a week), `pay` (E, all jobs of the earner)
@@ -91,6 +93,7 @@ pub fn results_header(items: &[String]) -> Vec<String> {
         "earner",
         "line",
         "wage",
+        "when",
         "point",
         "hours",
         "pay",
@@ -118,7 +121,8 @@ pub fn results_header(items: &[String]) -> Vec<String> {
         .collect()
 }
 
-/// The rows of `results.csv` for one household: for each earner and line, not in work first, then by hours.
+/// The rows of `results.csv` for one household: for each earner and line, not in work first, then by hours; then all of it once settled,
+/// where that makes a difference.
 /// `items` are the columns, in the order of [`results_header`]; an item that occurs several times is summed.
 pub fn results(assessment: &Assessment, items: &[String], grid: GridRows) -> Table {
     let columns: Vec<Vec<usize>> = items
@@ -130,7 +134,7 @@ pub fn results(assessment: &Assessment, items: &[String], grid: GridRows) -> Tab
         })
         .collect();
     let mut table = Table::default();
-    for earner in &assessment.earners {
+    for (when, earner) in moments(assessment) {
         for line in &earner.lines {
             let rows = chosen(earner, line, grid);
             for (place, (name, point)) in rows.iter().enumerate() {
@@ -148,6 +152,7 @@ pub fn results(assessment: &Assessment, items: &[String], grid: GridRows) -> Tab
                     (earner.adult + 1).to_string(),
                     line_name(line),
                     wage(line.terms.wage),
+                    when.to_owned(),
                     (*name).to_owned(),
                     point.hours.plain(),
                     point.pay.plain(),
@@ -173,6 +178,13 @@ pub fn results(assessment: &Assessment, items: &[String], grid: GridRows) -> Tab
         }
     }
     table
+}
+
+/// The results of each earner now, then once settled where that makes a difference, each with the word of its moment.
+fn moments(assessment: &Assessment) -> impl Iterator<Item = (&'static str, &EarnerResult)> {
+    let settled = assessment.settled.iter().flat_map(|s| &s.earners);
+    let now = assessment.earners.iter().map(|earner| ("now", earner));
+    now.chain(settled.map(|earner| ("once_settled", earner)))
 }
 
 /// The sum of an item over its instances; a passport is the number of those who have it. Empty where the household has no
@@ -223,7 +235,7 @@ fn step_rate(from: &Point, to: Option<&Point>, sum: impl Fn(&Point) -> Money) ->
 
 /// Column names of `turning_points.csv`.
 ///
-/// * `household`, `earner`, `line`, `wage` as in `results.csv`
+/// * `household`, `earner`, `line`, `wage`, `when` as in `results.csv`
 /// * `kind`: `kink`, `cliff_down`, `cliff_up`, `passport`, `trap`, `no_gain`
 /// * `hours`: where it lies, or where a trap or a stretch starts; `until_hours`: where a trap or a stretch ends, empty where a trap
 ///   is not regained
@@ -238,6 +250,7 @@ pub fn turning_points_header() -> Vec<String> {
         "earner",
         "line",
         "wage",
+        "when",
         "kind",
         "hours",
         "until_hours",
@@ -260,7 +273,7 @@ pub fn turning_points_header() -> Vec<String> {
 /// traps and no-gain stretches.
 pub fn turning_points(assessment: &Assessment) -> Table {
     let mut table = Table::default();
-    for earner in &assessment.earners {
+    for (when, earner) in moments(assessment) {
         for line in &earner.lines {
             let front = |kind: &str| {
                 vec![
@@ -268,6 +281,7 @@ pub fn turning_points(assessment: &Assessment) -> Table {
                     (earner.adult + 1).to_string(),
                     line_name(line),
                     wage(line.terms.wage),
+                    when.to_owned(),
                     kind.to_owned(),
                 ]
             };

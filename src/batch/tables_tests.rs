@@ -1,5 +1,5 @@
 use super::*;
-use crate::batch::fixture::assessment;
+use crate::batch::fixture::{assessment, settled};
 
 fn items() -> Vec<String> {
     ["income_tax", "support", "elsewhere"]
@@ -71,9 +71,9 @@ fn turning_points_come_in_words_and_figures() {
     let table = turning_points(&assessment());
     rows(turning_points_header(), &table);
     insta::assert_snapshot!(String::from_utf8(table.bytes).unwrap(), @r#"
-    HA-1,1,today,12.21,cliff_down,1.5,,15.00,515.00,503.00,-12.00,505.00,493.00,0.0000,0.5500,Invented Benefit: work_limit,"support: jump -12.00, slope -0.5000; income_tax of adult 1: slope -0.1000"
-    HA-1,1,today,12.21,trap,1.50,,,515.00,503.00,-12.00,,,,,,
-    HA-1,1,today,12.21,no_gain,0.00,0.33,,,,,,,,,,
+    HA-1,1,today,12.21,now,cliff_down,1.5,,15.00,515.00,503.00,-12.00,505.00,493.00,0.0000,0.5500,Invented Benefit: work_limit,"support: jump -12.00, slope -0.5000; income_tax of adult 1: slope -0.1000"
+    HA-1,1,today,12.21,now,trap,1.50,,,515.00,503.00,-12.00,,,,,,
+    HA-1,1,today,12.21,now,no_gain,0.00,0.33,,,,,,,,,,
     "#);
 }
 
@@ -119,4 +119,25 @@ fn cells_are_quoted_and_formulas_are_defused() {
         assert_eq!(text_cell(risky), format!("'{risky}"));
     }
     assert_eq!(text_cell("a=b"), "a=b");
+}
+
+#[test]
+fn a_household_that_settles_has_its_rows_twice() {
+    let now = results(&assessment(), &items(), GridRows::All);
+    let table = results(&settled(), &items(), GridRows::All);
+    let both = rows(results_header(&items()), &table);
+    assert_eq!(table.rows, 2 * now.rows);
+    let half = usize::try_from(now.rows).unwrap();
+    let when = column(&both, "when");
+    assert!(when[..half].iter().all(|word| word == "now"));
+    assert!(when[half..].iter().all(|word| word == "once_settled"));
+    let net = column(&both, "net");
+    assert_eq!((net[0].as_str(), net[half].as_str()), ("500.00", "450.00"));
+    let turns = rows(turning_points_header(), &turning_points(&settled()));
+    assert_eq!(
+        column(&turns, "when"),
+        ["now", "once_settled"]
+            .map(|w| vec![w.to_owned(); turns.len() / 2])
+            .concat()
+    );
 }

@@ -161,7 +161,8 @@ pub struct ShowArgs {
 #[command(after_help = "\
 Examples:
   hourworth working cases --household HA-01 --hours 16
-  hourworth working cases --household HA-01 --hours 22.5 --earner 2 --offer shift")]
+  hourworth working cases --household HA-01 --hours 22.5 --earner 2 --offer shift
+  hourworth working cases --household HA-01 --hours 16 --settled")]
 pub struct WorkingArgs {
     #[command(flatten)]
     pub one: OneArgs,
@@ -174,6 +175,9 @@ pub struct WorkingArgs {
     /// Reference of an offer whose terms are used; today's job unless given
     #[arg(long, value_name = "REF")]
     pub offer: Option<String>,
+    /// Work it out as it will be once facts about past periods have settled
+    #[arg(long)]
+    pub settled: bool,
 }
 
 /// `hourworth vet`.

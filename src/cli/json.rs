@@ -26,6 +26,11 @@ pub(super) fn json(assessment: &Assessment) -> Value {
             "net": sums(&table.net),
             "after_costs": sums(&table.after_costs),
         })),
+        "settled": assessment.settled.as_ref().map(|settled| json!({
+            "facts": settled.facts,
+            "held": settled.held,
+            "earners": settled.earners.iter().map(|e| earner(assessment, e)).collect::<Value>(),
+        })),
         "unclaimed": assessment.unclaimed.iter().map(|unclaimed| json!({
             "item": assessment.items[unclaimed.item].name,
             "due": unclaimed.due.plain(),
@@ -221,7 +226,7 @@ fn segment(segment: &Segment) -> Value {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::batch::fixture::assessment;
+    use crate::batch::fixture::{assessment, settled};
 
     #[test]
     fn a_household_for_programs_has_no_name() {
@@ -237,5 +242,9 @@ mod tests {
         );
         assert_eq!(line["turning_points"][0]["at_hours"], "1.500000");
         assert_eq!(line["traps"][0]["to_hours"], Value::Null);
+        assert_eq!(value["settled"], Value::Null);
+        let settled = &json(&settled())["settled"];
+        assert_eq!(settled["facts"][0], "in_grace");
+        assert_eq!(settled["earners"][0]["not_in_work"]["net"], "450.00");
     }
 }

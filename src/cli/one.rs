@@ -6,7 +6,8 @@ use super::show::{Terms, show as page};
 use crate::batch::{Books, Places, Prepared, prepare};
 use crate::case::{ADULT, Household};
 use crate::engine::JobChoice;
-use crate::measures::Verdict;
+use crate::measures::{Verdict, WorkedPoint};
+use crate::rules::Moment;
 use std::io::Write;
 
 /// One household, ready to be worked out.
@@ -75,15 +76,34 @@ pub(super) fn working(args: &WorkingArgs) -> Result<Exit, Failure> {
             JobChoice::Offer(place)
         }
     };
+    let moment = if args.settled {
+        Moment::Settled
+    } else {
+        Moment::Now
+    };
     // A household that the pack does not cover has no figures to explain.
     match one.books.assess(&one.household) {
-        Ok(Verdict::Assessed(_)) => {}
+        Ok(Verdict::Assessed(assessment)) => {
+            if let (Moment::Settled, Some(settled)) = (moment, &assessment.settled)
+                && !settled.held.is_empty()
+            {
+                return Ok(held(&one.household, &settled.held));
+            }
+        }
         Ok(Verdict::Held(reasons)) => return Ok(held(&one.household, &reasons)),
         Err(cause) => return Err(Failure::Request(cause)),
     }
     let lines = one
         .books
-        .working(&one.household, adult, choice, args.hours)
+        .working(
+            &one.household,
+            WorkedPoint {
+                adult,
+                choice,
+                hours: args.hours,
+                moment,
+            },
+        )
         .map_err(Failure::Request)?;
     let mut out = std::io::stdout().lock();
     match args.one.format {

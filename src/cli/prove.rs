@@ -4,6 +4,7 @@ use super::args::{Format, ProveArgs};
 use super::exit::{Exit, Failure};
 use crate::batch::{Proof, checked, prove as run};
 use crate::load::{Asks, Error, Example, Expect, What, read_examples, read_pack};
+use crate::rules::Moment;
 use serde_json::json;
 use std::io::Write;
 
@@ -98,16 +99,24 @@ fn source(example: &Example) -> String {
 }
 
 fn what(expect: &Expect) -> String {
+    let once = match expect.moment {
+        Moment::Now => "",
+        Moment::Settled => " once settled",
+    };
     match &expect.what {
         What::Figure { name, of, period } => {
             let period = match period.as_str() {
                 "" => String::new(),
                 period => format!(" a {period}"),
             };
-            format!("{name} of {of}{period}")
+            format!("{name} of {of}{period}{once}")
         }
         What::Metr { adult, hours } => {
-            format!("METR of adult {} at {} hours", adult + 1, hours.decimal(2))
+            format!(
+                "METR of adult {} at {} hours{once}",
+                adult + 1,
+                hours.decimal(2)
+            )
         }
     }
 }

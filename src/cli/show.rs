@@ -4,7 +4,8 @@
 use super::chart::{Mark, chart};
 use crate::batch::wage;
 use crate::measures::{
-    Assessment, BudgetLine, CoupleTable, EarnerResult, OfferMeasures, Point, Turn, TurnKind,
+    Assessment, BudgetLine, CoupleTable, EarnerResult, OfferMeasures, Point, Settled, Turn,
+    TurnKind,
 };
 use crate::num::{Fraction, Hours, Money};
 
@@ -66,6 +67,9 @@ pub fn show(assessment: &Assessment, terms: &Terms) -> String {
     if let Some(table) = &assessment.couple {
         out.extend(couple(table));
     }
+    if let Some(settled) = &assessment.settled {
+        out.extend(later(assessment, settled));
+    }
     if assessment.earners.is_empty() {
         out.push("no adult has a job or an offer: there is no line to show".into());
     }
@@ -108,6 +112,60 @@ fn couple(table: &CoupleTable) -> Vec<String> {
             line.push_str(&format!("{:>11}", sum.plain()));
         }
         out.push(line);
+    }
+    out
+}
+
+/// Net income now and once settled, at the named points.
+fn later(assessment: &Assessment, settled: &Settled) -> Vec<String> {
+    let mut out = vec![
+        String::new(),
+        format!(
+            "once settled ({}); all above is for now:",
+            settled.facts.join(", ")
+        ),
+    ];
+    for reason in &settled.held {
+        out.push(format!("  held then: {reason}"));
+    }
+    let heads = [
+        "earner",
+        "point",
+        "hours",
+        "net now",
+        "net settled",
+        "change",
+        "PTR settled",
+        "METR here settled",
+    ];
+    let mut rows = vec![heads.map(str::to_owned).to_vec()];
+    for (now, later) in assessment.earners.iter().zip(&settled.earners) {
+        let mut push = |name: &str, now: &Point, then: &Point| {
+            rows.push(vec![
+                (later.adult + 1).to_string(),
+                name.to_owned(),
+                then.hours.plain(),
+                now.net.plain(),
+                then.net.plain(),
+                signed(then.net - now.net),
+                percent(then.ptr),
+                percent(then.metr_here),
+            ]);
+        };
+        push("not in work", &now.not_in_work, &later.not_in_work);
+        for (line, then) in now.lines.iter().zip(&later.lines) {
+            let name = match line.terms.reference.as_str() {
+                "" => "today",
+                reference => reference,
+            };
+            push(name, &line.grid[line.own], &then.grid[then.own]);
+            if line.step_to != line.own {
+                push("step", &line.grid[line.step_to], &then.grid[then.step_to]);
+            }
+        }
+    }
+    if rows.len() > 1 {
+        out.extend(align(&rows));
     }
     out
 }
@@ -459,6 +517,21 @@ mod tests {
                   net income by hours a week; T today, 1 =shift
 
         for 514.00 after costs of working: first reached at 1.25 hours, but not kept to the end of the line
+        ");
+    }
+
+    #[test]
+    fn what_is_settled_stands_against_now() {
+        let settled = crate::batch::fixture::settled();
+        let lines = later(&settled, settled.settled.as_ref().unwrap());
+        insta::assert_snapshot!(lines.join("\n"), @r"
+
+        once settled (in_grace); all above is for now:
+        earner        point  hours  net now  net settled  change  PTR settled  METR here settled
+             1  not in work      0   500.00       450.00  -50.00                           55.0%
+             1        today      2   514.00       464.00  -50.00        33.3%              55.0%
+             1         step      3   518.00       468.00  -50.00        33.3%              55.0%
+             1       =shift      3   518.00       468.00  -50.00        33.3%              55.0%
         ");
     }
 }

@@ -2,7 +2,7 @@
 
 use crate::case::{ADULT, FactType, Household, Instance, JOB, JobRole};
 use crate::num::Hours;
-use crate::program::{Program, Shape};
+use crate::program::{Moment, Program, Shape};
 
 /// Which job's hours vary.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -41,6 +41,7 @@ pub fn shape_of(household: &Household, adult: usize) -> Shape {
         owners,
         earner: adult as u32,
         varied_job: varied as u32,
+        moment: Moment::Now,
     }
 }
 
@@ -72,6 +73,13 @@ impl<'h> Setting<'h> {
             alone: false,
             partner_hours: None,
         })
+    }
+
+    /// The same once the facts about past periods have settled.
+    #[must_use]
+    pub fn at_moment(mut self, moment: Moment) -> Self {
+        self.shape.moment = moment;
+        self
     }
 
     /// The same with the earner's further jobs ended.

@@ -3,7 +3,7 @@
 
 use super::files::Files;
 use crate::num::Fraction;
-use crate::rules::{Change, day, decimal};
+use crate::rules::{Change, Moment, day, decimal};
 use serde::Deserialize;
 
 /// One published example.
@@ -52,6 +52,8 @@ pub struct Case {
 pub struct Expect {
     /// What it is a value of.
     pub what: What,
+    /// Now, or once the facts about past periods have settled.
+    pub moment: Moment,
     /// The value: money in currency units, a rate as a fraction of one.
     pub value: Fraction,
     /// The most by which the pack's exact value may differ.
@@ -127,6 +129,8 @@ struct WrittenExpect {
     adult: Option<usize>,
     value: String,
     tolerance: String,
+    #[serde(default)]
+    settled: bool,
     #[serde(default)]
     quoted: String,
 }
@@ -232,6 +236,11 @@ fn expect(written: WrittenExpect) -> Result<Expect, String> {
     };
     Ok(Expect {
         what,
+        moment: if written.settled {
+            Moment::Settled
+        } else {
+            Moment::Now
+        },
         value: number(&written.value)?,
         tolerance: number(&written.tolerance)?,
         quoted: written.quoted,
@@ -259,6 +268,7 @@ mod tests {
         let text = format!(
             "{HEAD}expressed = true\ndate = 2024-05-06\n[example.household]\nreference = \"X1\"\n\
              [[example.expect]]\nfigure = \"tax\"\nof = \"adult 1\"\nvalue = \"12.5\"\ntolerance = \"0\"\nquoted = \"12.50\"\n\
+             [[example.expect]]\nfigure = \"tax\"\nof = \"adult 1\"\nvalue = \"10\"\ntolerance = \"0\"\nsettled = true\n\
              {}expressed = false\nreason = \"another place\"\n",
             HEAD.replace("\"X\"", "\"Y\"")
         );
@@ -269,6 +279,8 @@ mod tests {
         };
         assert_eq!(case.household.trim(), "reference = \"X1\"");
         assert_eq!(case.expects[0].value, Fraction::new(25, 2));
+        let moments: Vec<Moment> = case.expects.iter().map(|e| e.moment).collect();
+        assert_eq!(moments, [Moment::Now, Moment::Settled]);
         assert_eq!(examples[1].asks, Asks::NotExpressed("another place".into()));
     }
 

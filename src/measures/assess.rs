@@ -3,6 +3,7 @@
 use super::couple::couple;
 use super::line::{Asked, Worked, work_out};
 use super::points::{Sums, Totals, point};
+use super::settled::{Now, once_settled};
 use super::split::{Quarters, rise};
 use super::types::{
     AmountUse, Assessment, EarnerResult, FactUse, ItemInfo, JobTerms, OfferMeasures, Unclaimed,
@@ -11,7 +12,7 @@ use super::types::{
 use crate::case::{ADULT, Household, Instance, JOB, Known, Schema};
 use crate::engine::{JobChoice, Machine, Setting, Special, Used, fact_text, working};
 use crate::num::{Hours, Money};
-use crate::program::{Amount, Shape};
+use crate::program::{Amount, Moment, Settling, Shape};
 use std::collections::BTreeMap;
 use std::sync::Arc;
 
@@ -22,6 +23,9 @@ pub trait Programs {
     /// # Errors
     /// Where the pack cannot make it, in words.
     fn machine(&mut self, shape: &Shape) -> Result<Arc<Machine>, String>;
+
+    /// The facts of the pack that settle.
+    fn settling(&self) -> &[Settling];
 }
 
 /// What is asked of every household of a list.
@@ -77,20 +81,11 @@ pub fn assess(
             continue;
         };
         let machine = programs.machine(&setting.shape)?;
-        let program = machine.program();
-        let special = machine.special(&setting.facts(program));
+        let special = machine.special(&setting.facts(machine.program()));
         let today = setting.own_hours();
-        add_new(&mut reasons, special.holds(today));
-        add_new(&mut notes, special.notes(today));
-        // An offer has facts of its own, which the rules may not cover either.
-        for (offer, _) in offers_of(household, adult) {
-            let Some(other) = Setting::new(household, adult, JobChoice::Offer(offer)) else {
-                continue;
-            };
-            let special = machine.special(&other.facts(program));
-            add_new(&mut reasons, special.holds(other.own_hours()));
-            add_new(&mut notes, special.notes(other.own_hours()));
-        }
+        let (holds, said) = holds_and_notes(household, &machine, &setting, &special);
+        add_new(&mut reasons, holds);
+        add_new(&mut notes, said);
         if !reasons.is_empty() {
             continue;
         }
@@ -119,12 +114,20 @@ pub fn assess(
     if !reasons.is_empty() {
         return Ok(Verdict::Held(reasons));
     }
+    let now = Now {
+        household,
+        request,
+        wanted,
+        earners: &earners,
+    };
+    let settled = once_settled(&now, programs, &mut gathered)?;
     let (facts, amounts) = gathered.finish(household, schema);
     Ok(Verdict::Assessed(Box::new(Assessment {
         reference: household.reference.clone(),
         items,
         earners,
         couple: table,
+        settled,
         unclaimed,
         notes,
         facts,
@@ -132,8 +135,33 @@ pub fn assess(
     })))
 }
 
+/// Why the pack does not cover an earner's job of today and offers, and the notes that hold at them.
+pub(super) fn holds_and_notes(
+    household: &Household,
+    machine: &Machine,
+    setting: &Setting<'_>,
+    special: &Special<'_>,
+) -> (Vec<String>, Vec<String>) {
+    let today = setting.own_hours();
+    let (mut holds, mut notes) = (special.holds(today), special.notes(today));
+    let adult = setting.shape.earner as usize;
+    // An offer has facts of its own, which the rules may not cover either.
+    for (offer, _) in offers_of(household, adult) {
+        let Some(other) = Setting::new(household, adult, JobChoice::Offer(offer)) else {
+            continue;
+        };
+        let special = machine.special(&other.facts(machine.program()));
+        add_new(&mut holds, special.holds(other.own_hours()));
+        add_new(&mut notes, special.notes(other.own_hours()));
+    }
+    (holds, notes)
+}
+
 /// The offers of an adult, with their positions in the household.
-fn offers_of(household: &Household, adult: usize) -> impl Iterator<Item = (usize, &Instance)> {
+pub(super) fn offers_of(
+    household: &Household,
+    adult: usize,
+) -> impl Iterator<Item = (usize, &Instance)> {
     household
         .offers
         .iter()
@@ -181,7 +209,8 @@ fn grid(request: &Request, up_to: Hours, named: &[Hours]) -> Vec<Hours> {
     hours
 }
 
-fn earner(
+/// One earner's results, at the moment of the setting; none where there is nothing to compare.
+pub(super) fn earner(
     household: &Household,
     machine: &Machine,
     special: &Special<'_>,
@@ -258,6 +287,7 @@ fn earner(
         let Some(other) = Setting::new(household, adult, JobChoice::Offer(offer)) else {
             continue;
         };
+        let other = other.at_moment(setting.shape.moment);
         let special = machine.special(&other.facts(machine.program()));
         let record = &household.offers[offer];
         let own = other.own_hours();
@@ -337,12 +367,26 @@ fn offer_words(record: &Instance, number: usize) -> String {
 
 /// Facts and amounts of all programs of a household.
 #[derive(Default)]
-struct Gathered {
+pub(super) struct Gathered {
     facts: std::collections::BTreeSet<(u32, u32, u32)>,
     amounts: BTreeMap<String, AmountUse>,
 }
 
 impl Gathered {
+    /// Whether a result rests on this fact of this record.
+    pub(super) fn rests_on(&self, kind: usize, instance: usize, fact: usize) -> bool {
+        self.facts
+            .contains(&(kind as u32, instance as u32, fact as u32))
+    }
+
+    /// Adds what others rest on.
+    pub(super) fn merge(&mut self, other: Gathered) {
+        self.facts.extend(other.facts);
+        for (name, amount) in other.amounts {
+            self.amounts.entry(name).or_insert(amount);
+        }
+    }
+
     fn add(&mut self, special: &Special<'_>, used: &Used) {
         self.facts.extend(used.facts.iter().copied());
         for (at, part) in &used.amounts {
@@ -425,6 +469,19 @@ impl Gathered {
     }
 }
 
+/// Where a working is asked for.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct WorkedPoint {
+    /// Position of the earner among the adults.
+    pub adult: usize,
+    /// Today's job, or an offer.
+    pub choice: JobChoice,
+    /// Hours of that job.
+    pub hours: Hours,
+    /// Now, or once settled.
+    pub moment: Moment,
+}
+
 /// The working of one point of one earner: every figure and item in the order of the law. `rule` gives the text of a rule by its span.
 ///
 /// # Errors
@@ -433,16 +490,15 @@ pub fn working_at(
     household: &Household,
     schema: &Schema,
     programs: &mut dyn Programs,
-    adult: usize,
-    choice: JobChoice,
-    hours: Hours,
+    point: WorkedPoint,
     rule: &dyn Fn(crate::source::Span) -> String,
 ) -> Result<Vec<WorkingLine>, String> {
-    let setting = Setting::new(household, adult, choice)
-        .ok_or_else(|| "there is no such adult or offer".to_owned())?;
+    let setting = Setting::new(household, point.adult, point.choice)
+        .ok_or_else(|| "there is no such adult or offer".to_owned())?
+        .at_moment(point.moment);
     let machine = programs.machine(&setting.shape)?;
     let special = machine.special(&setting.facts(machine.program()));
-    Ok(working(&special, hours)
+    Ok(working(&special, point.hours)
         .into_iter()
         .map(|line| {
             let (kind, instance) = line.of;

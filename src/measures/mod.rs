@@ -7,10 +7,11 @@ mod assess;
 mod couple;
 mod line;
 mod points;
+mod settled;
 mod split;
 mod traps;
 mod turns;
 mod types;
 
-pub use assess::{Programs, Request, Verdict, assess, working_at};
+pub use assess::{Programs, Request, Verdict, WorkedPoint, assess, working_at};
 pub use types::*;

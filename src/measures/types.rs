@@ -341,6 +341,17 @@ pub struct Unclaimed {
     pub due: Money,
 }
 
+/// The household once the facts about past periods have settled.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Settled {
+    /// Names of the facts that settle to something else and are why, in the order of the pack.
+    pub facts: Vec<String>,
+    /// Why the pack does not cover the household once settled; then there are no results.
+    pub held: Vec<String>,
+    /// The results, one entry an earner, in the order of [`Assessment::earners`] and with the same items, lines and grids.
+    pub earners: Vec<EarnerResult>,
+}
+
 /// Everything that was worked out for one household.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Assessment {
@@ -352,6 +363,8 @@ pub struct Assessment {
     pub earners: Vec<EarnerResult>,
     /// The table of both partners' hours, where both have a job today.
     pub couple: Option<CoupleTable>,
+    /// The same once the facts about past periods have settled; none where that changes no sum and no rate on any line.
+    pub settled: Option<Settled>,
     /// Benefits that would be due at today's hours of the first earner and are not claimed.
     pub unclaimed: Vec<Unclaimed>,
     /// Names of the pack's notes that hold at today's hours.

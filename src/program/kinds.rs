@@ -108,4 +108,31 @@ pub struct Shape {
     pub earner: u32,
     /// Position among the jobs of the one whose hours vary.
     pub varied_job: u32,
+    /// What the facts about past periods mean.
+    pub moment: Moment,
+}
+
+/// When: facts about past periods differ between the two.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Hash)]
+pub enum Moment {
+    /// Every fact is what the list tells.
+    #[default]
+    Now,
+    /// A fact that settles means what the pack says it settles to.
+    Settled,
+}
+
+/// A fact that settles.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Settling {
+    /// Its name.
+    pub name: String,
+    /// Position of its kind.
+    pub kind: usize,
+    /// Position among the facts of its kind.
+    pub fact: usize,
+    /// Units to one of a value as lists hold it.
+    pub units: i64,
+    /// The value that it always settles to, as lists hold it; none where rules work it out.
+    pub to: Option<i64>,
 }

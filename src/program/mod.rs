@@ -13,7 +13,7 @@ mod listing;
 mod step;
 
 pub use build::{Builder, TooLarge};
-pub use kinds::{ItemKind, Shape};
+pub use kinds::{ItemKind, Moment, Settling, Shape};
 pub use step::{
     Amount, Entered, FactRef, Guard, Input, Item, Line, Manner, Note, Op, Program, Reg, Scales,
     Step, Table,

@@ -96,6 +96,8 @@ pub(super) struct FactStatement {
     pub ty: TypeName,
     pub range: Option<(Fraction, Fraction, Span)>,
     pub default: Option<Expr>,
+    /// What it will be once settled.
+    pub settles: Option<Expr>,
     pub ask: String,
 }
 

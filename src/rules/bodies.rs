@@ -83,6 +83,14 @@ impl Declarer<'_> {
                     };
                     done.push(Done::Definition(at, node, claimed));
                 }
+                (StatementKind::Fact(fact), BodyOf::Definition(at)) => {
+                    let definition = &self.pack.definitions[at];
+                    let (kind, of) = (definition.kind, definition.settles);
+                    let node = fact.settles.as_ref().zip(of).and_then(|(value, of)| {
+                        context(kind).stands_for((kind, of), value, &mut faults)
+                    });
+                    done.push(Done::Definition(at, node, None));
+                }
                 (StatementKind::Bands { bands, name, .. }, BodyOf::Bands(at)) => {
                     let decl = &self.pack.bands[at];
                     let mut out = Vec::new();

@@ -1,7 +1,7 @@
 //! Parts to a pack: declares every name. Facts are in `facts`; `bodies` then looks up and types every expression.
 
 use super::amounts::AmountDecl;
-use super::ast::{Ident, Part, StatementKind, TypeName};
+use super::ast::{FactStatement, Ident, Part, StatementKind, TypeName};
 use super::bodies::{Body, BodyOf};
 use super::manifest::Manifest;
 use super::pack::{
@@ -480,6 +480,9 @@ impl Declarer<'_> {
                         self.broken.insert(name.text.clone());
                     }
                 }
+                StatementKind::Fact(fact) if fact.settles.is_some() => {
+                    self.settled(fact, place, bodies, statement.span);
+                }
                 StatementKind::Hold { .. } | StatementKind::Note { .. } => {
                     if kinds.is_empty() {
                         self.unknown_kind(per);
@@ -558,9 +561,45 @@ impl Declarer<'_> {
                     span,
                     name_span: name.span,
                     claimed: None,
+                    settles: None,
                     body: None,
                 });
             }
+        }
+    }
+
+    /// What a fact means once settled is a definition of its own, which only programs of that moment work out.
+    fn settled(
+        &mut self,
+        fact: &FactStatement,
+        place: (usize, usize),
+        bodies: &mut Vec<Body>,
+        span: Span,
+    ) {
+        for kind in kinds_of_word(&self.pack.kinds, &fact.of.text) {
+            let at = self.pack.definitions.len();
+            let facts = &mut self.pack.kinds[kind].facts;
+            let Some(position) = facts.iter().position(|f| f.span == Some(fact.name.span)) else {
+                continue;
+            };
+            facts[position].settles = Some(at);
+            bodies.push(Body {
+                place,
+                what: BodyOf::Definition(at),
+            });
+            self.pack.definitions.push(Definition {
+                name: fact.name.text.clone(),
+                kind,
+                ty: facts[position].ty,
+                part: place.0,
+                law: String::new(),
+                item: None,
+                span,
+                name_span: fact.name.span,
+                claimed: None,
+                settles: Some(position),
+                body: None,
+            });
         }
     }
 }

@@ -16,6 +16,7 @@ impl Declarer<'_> {
             default: None,
             ask: ask.to_owned(),
             ty,
+            settles: None,
             span: None,
         };
         for member in [ADULT, CHILD, OTHER] {
@@ -180,6 +181,7 @@ impl Declarer<'_> {
                     default,
                     ask: fact.ask.clone(),
                     ty,
+                    settles: None,
                     span: Some(name.span),
                 });
             }

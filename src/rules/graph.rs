@@ -6,7 +6,7 @@ use super::tree::{Limit, Node, Over, Target, What};
 use super::types::Ty;
 use crate::diag::Diagnostic;
 use crate::num::Fraction;
-use crate::program::Manner;
+use crate::program::{Manner, Moment};
 use std::collections::HashSet;
 
 /// What is known of a quantity: its degree in hours, and whether it varies at all.
@@ -27,6 +27,7 @@ impl Course {
 
 struct Graph<'a> {
     pack: &'a Pack,
+    moment: Moment,
     faults: &'a mut Vec<Diagnostic>,
     /// By definition; those that come later in the order are not known yet.
     courses: Vec<Course>,
@@ -38,10 +39,25 @@ struct Graph<'a> {
 const DEEPEST: usize = 500;
 
 pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
-    let order = Order::new(pack).run(faults);
-    depths(pack, &order, faults);
+    check_at(pack, Moment::Now, faults);
+    if pack.definitions.iter().any(|d| d.settles.is_some()) {
+        let mut later = Vec::new();
+        check_at(pack, Moment::Settled, &mut later);
+        for fault in later {
+            let known = |f: &Diagnostic| f.span == fault.span && f.message == fault.message;
+            if !faults.iter().any(known) {
+                faults.push(fault.hint(super::lower::ONCE_SETTLED));
+            }
+        }
+    }
+}
+
+fn check_at(pack: &Pack, moment: Moment, faults: &mut Vec<Diagnostic>) {
+    let order = Order::new(pack, moment).run(faults);
+    depths(pack, moment, &order, faults);
     let mut graph = Graph {
         pack,
+        moment,
         faults,
         courses: vec![Course::default(); pack.definitions.len()],
         bands: vec![None; pack.bands.len()],
@@ -62,19 +78,23 @@ pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
     }
 }
 
+/// The definition that a name stands for; a fact stands for one once it has settled.
+fn defined(pack: &Pack, target: Target, moment: Moment) -> Option<usize> {
+    match (target, moment) {
+        (Target::Figure(at), _) => Some(at),
+        (Target::Fact { .. }, Moment::Now) => None,
+        (Target::Fact { kind, fact }, Moment::Settled) => pack.kinds[kind].facts[fact].settles,
+    }
+}
+
 /// The definitions that a node needs, each once, in the order of the text.
-fn needs(pack: &Pack, node: &Node) -> Vec<usize> {
+fn needs(pack: &Pack, node: &Node, moment: Moment) -> Vec<usize> {
     let mut out = Vec::new();
     let mut lists = Vec::new();
     node.visit(&mut |node| match &node.what {
-        What::Name {
-            target: Target::Figure(at),
-            ..
+        What::Name { target, .. } | What::Partner { target, .. } => {
+            out.extend(defined(pack, *target, moment));
         }
-        | What::Partner {
-            target: Target::Figure(at),
-            ..
-        } => out.push(*at),
         What::Charge { bands, .. } => lists.extend(pack.bands[*bands].nodes()),
         What::PlaceOn { scale, .. } => lists.extend(pack.scales[*scale].nodes()),
         _ => {}
@@ -82,16 +102,8 @@ fn needs(pack: &Pack, node: &Node) -> Vec<usize> {
     // Bands and scales hold no further bands and scales.
     for node in lists {
         node.visit(&mut |node| {
-            if let What::Name {
-                target: Target::Figure(at),
-                ..
-            }
-            | What::Partner {
-                target: Target::Figure(at),
-                ..
-            } = &node.what
-            {
-                out.push(*at);
+            if let What::Name { target, .. } | What::Partner { target, .. } = &node.what {
+                out.extend(defined(pack, *target, moment));
             }
         });
     }
@@ -104,6 +116,7 @@ fn needs(pack: &Pack, node: &Node) -> Vec<usize> {
 pub(super) fn rests_on(
     pack: &Pack,
     node: &Node,
+    moment: Moment,
     figures: &mut Vec<usize>,
     facts: &mut std::collections::BTreeSet<(usize, usize)>,
 ) {
@@ -127,6 +140,11 @@ pub(super) fn rests_on(
             ..
         } => {
             facts.insert((*kind, *fact));
+            let target = Target::Fact {
+                kind: *kind,
+                fact: *fact,
+            };
+            figures.extend(defined(pack, target, moment));
         }
         What::Charge { bands, .. } => lists.push(*bands),
         What::PlaceOn { scale, .. } => lists.push(pack.bands.len() + *scale),
@@ -153,7 +171,7 @@ struct Order<'a> {
 }
 
 impl<'a> Order<'a> {
-    fn new(pack: &'a Pack) -> Self {
+    fn new(pack: &'a Pack, moment: Moment) -> Self {
         let needs = pack
             .definitions
             .iter()
@@ -161,7 +179,7 @@ impl<'a> Order<'a> {
                 d.body
                     .iter()
                     .chain(&d.claimed)
-                    .flat_map(|node| needs(pack, node))
+                    .flat_map(|node| needs(pack, node, moment))
                     .collect()
             })
             .collect();
@@ -231,6 +249,20 @@ impl<'a> Order<'a> {
             names.splice(5..names.len() - 2, ["…"]);
         }
         let first = &self.pack.definitions[circle[start]];
+        if circle
+            .iter()
+            .any(|d| self.pack.definitions[*d].settles.is_some())
+        {
+            faults.push(
+                Diagnostic::fault(
+                    first.name_span,
+                    format!("`{}` needs itself: {}", first.name, names.join(" needs ")),
+                )
+                .expected("facts that settle to what does not need them")
+                .hint("let the fact settle to a figure that does not need it, or to one worked out `as if` the fact were otherwise"),
+            );
+            return;
+        }
         faults.push(
             Diagnostic::fault(first.name_span, format!("`{}` needs itself: {}", first.name, names.join(" needs ")))
                 .expected("figures that do not need each other")
@@ -240,14 +272,14 @@ impl<'a> Order<'a> {
 }
 
 /// Reports a definition that would take too deep a stack to work out.
-fn depths(pack: &Pack, order: &[usize], faults: &mut Vec<Diagnostic>) {
+fn depths(pack: &Pack, moment: Moment, order: &[usize], faults: &mut Vec<Diagnostic>) {
     let mut depths = vec![0usize; pack.definitions.len()];
     for at in order {
         let definition = &pack.definitions[*at];
         let Some(body) = &definition.body else {
             continue;
         };
-        let deepest = needs(pack, body)
+        let deepest = needs(pack, body, moment)
             .into_iter()
             .map(|need| depths[need])
             .max()
@@ -323,7 +355,8 @@ impl Graph<'_> {
                 degree: 1,
                 varies: true,
             },
-            Target::Fact { .. } => Course::default(),
+            Target::Fact { .. } => defined(self.pack, target, self.moment)
+                .map_or(Course::default(), |at| self.courses[at]),
         }
     }
 

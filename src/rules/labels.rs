@@ -1,7 +1,7 @@
 //! `labels.<language>.csv`: the words that statements use for a pack's names. In: a text. Out: texts by key; faults for
-//! keys that name nothing, and for items and notes without a text.
+//! keys that name nothing, and for items, notes and facts that settle without a text.
 
-use super::pack::Pack;
+use super::pack::{FactDecl, Pack};
 use crate::diag::{Diagnostic, nearest};
 use crate::program::ItemKind;
 use crate::source::{FileId, Sources, Span};
@@ -67,9 +67,17 @@ pub(super) fn read(
     Some(out)
 }
 
+fn settling(pack: &Pack) -> impl Iterator<Item = &FactDecl> {
+    let facts = pack.kinds.iter().flat_map(|k| &k.facts);
+    facts.filter(|f| f.settles.is_some())
+}
+
 /// Groups of keys whose second half is a name of the pack.
 fn names<'p>(pack: &'p Pack, group: &str) -> Option<Vec<&'p str>> {
-    let figures = || pack.definitions.iter().map(|d| d.name.as_str());
+    let figures = || {
+        let named = pack.definitions.iter().filter(|d| d.settles.is_none());
+        named.map(|d| d.name.as_str())
+    };
     Some(match group {
         "item" | "what" => pack
             .definitions
@@ -85,6 +93,7 @@ fn names<'p>(pack: &'p Pack, group: &str) -> Option<Vec<&'p str>> {
             .flat_map(|k| &k.facts)
             .map(|f| f.name.as_str())
             .collect(),
+        "settles" => settling(pack).map(|f| f.name.as_str()).collect(),
         "amount" => pack.amounts.iter().map(|a| a.name.as_str()).collect(),
         "record" => pack.kinds.iter().map(|k| k.name.as_str()).collect(),
         "kind" => ItemKind::WORDS.to_vec(),
@@ -92,7 +101,7 @@ fn names<'p>(pack: &'p Pack, group: &str) -> Option<Vec<&'p str>> {
     })
 }
 
-/// Reports keys that name nothing in the pack, and items and notes without a text.
+/// Reports keys that name nothing in the pack, and items, notes and facts that settle without a text.
 pub(super) fn check(
     pack: &Pack,
     files: &[(String, FileId)],
@@ -144,6 +153,8 @@ pub(super) fn check(
             .notes
             .iter()
             .filter_map(|n| missing(format!("note.{}", n.text), n.when.span));
-        faults.extend(items.chain(notes));
+        let settling =
+            settling(pack).filter_map(|f| missing(format!("settles.{}", f.name), f.span?));
+        faults.extend(items.chain(notes).chain(settling));
     }
 }

@@ -9,7 +9,8 @@ use crate::diag::{Diagnostic, nearest};
 use crate::index::Id;
 use crate::num::{Direction, Fraction};
 use crate::program::{
-    Amount, Builder, FactRef, Guard, Item, ItemKind, Line, Manner, Note, Program, Reg, Shape, Table,
+    Amount, Builder, FactRef, Guard, Item, ItemKind, Line, Manner, Moment, Note, Program, Reg,
+    Shape, Table,
 };
 use std::collections::{BTreeMap, BTreeSet, HashMap};
 
@@ -43,6 +44,9 @@ pub(super) struct Lowering<'a> {
     /// Expressions being unrolled; bounded by the parser and by the absence of circles.
     pub part: usize,
 }
+
+/// The hint of a fault that only shows once settled.
+pub(super) const ONCE_SETTLED: &str = "it is so once the facts have settled";
 
 /// The largest item, in currency units: sums of many items still fit into 64 bits of minor units.
 const LARGEST_ITEM: u128 = 1_000_000_000_000;
@@ -115,8 +119,22 @@ pub(super) fn try_out(
     dates: &[i64],
     changes: &[Change],
 ) -> Result<(), Vec<Diagnostic>> {
-    program(pack, dates, changes, &small(pack))?;
-    program(pack, dates, changes, &large(pack)).map(|_| ())
+    for shape in tried(pack) {
+        program(pack, dates, changes, &shape)?;
+    }
+    Ok(())
+}
+
+/// The shapes that a pack is tried on: a small and a large household, now and, where facts settle, once settled.
+fn tried(pack: &Pack) -> Vec<Shape> {
+    let mut shapes = vec![small(pack), large(pack)];
+    if pack.definitions.iter().any(|d| d.settles.is_some()) {
+        shapes.extend(shapes.clone().into_iter().map(|shape| Shape {
+            moment: Moment::Settled,
+            ..shape
+        }));
+    }
+    shapes
 }
 
 /// Makes the program.
@@ -190,7 +208,7 @@ pub(super) fn probe(pack: &Pack, faults: &mut Vec<Diagnostic>) {
     days.sort_unstable();
     days.dedup();
     for day in days {
-        for shape in [small(pack), large(pack)] {
+        for shape in tried(pack) {
             let dates = vec![day; pack.manifest.dates.len()];
             if let Err(found) = program(pack, &dates, &[], &shape) {
                 for fault in found {
@@ -198,6 +216,10 @@ pub(super) fn probe(pack: &Pack, faults: &mut Vec<Diagnostic>) {
                         .iter()
                         .any(|f| f.span == fault.span && f.message == fault.message)
                     {
+                        let fault = match shape.moment {
+                            Moment::Now => fault,
+                            Moment::Settled => fault.hint(ONCE_SETTLED),
+                        };
                         let later = day > pack.manifest.from;
                         faults.push(if later {
                             fault.hint(format!("it is so from {}", day_text(day)))
@@ -220,6 +242,7 @@ fn small(pack: &Pack) -> Shape {
         owners,
         earner: 0,
         varied_job: 0,
+        moment: Moment::Now,
     }
 }
 
@@ -241,6 +264,7 @@ fn large(pack: &Pack) -> Shape {
         owners,
         earner: 1,
         varied_job: 1,
+        moment: Moment::Now,
     }
 }
 
@@ -443,7 +467,13 @@ impl Lowering<'_> {
                 if seen.insert(next) {
                     let definition = &self.pack.definitions[next];
                     for node in definition.body.iter().chain(&definition.claimed) {
-                        super::graph::rests_on(self.pack, node, &mut waiting, &mut facts);
+                        super::graph::rests_on(
+                            self.pack,
+                            node,
+                            self.shape.moment,
+                            &mut waiting,
+                            &mut facts,
+                        );
                     }
                 }
             }
@@ -456,6 +486,11 @@ impl Lowering<'_> {
     pub(super) fn fact(&mut self, kind: usize, instance: usize, fact: usize) -> Reg {
         if let Some(changed) = self.worlds[self.world].get(&(kind, instance, fact)) {
             return *changed;
+        }
+        if let (Moment::Settled, Some(at)) =
+            (self.shape.moment, self.pack.kinds[kind].facts[fact].settles)
+        {
+            return self.figure(at, instance);
         }
         if kind == JOB && fact == 0 && instance == self.shape.varied_job as usize {
             return self.builder.hours();

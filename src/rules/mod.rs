@@ -27,6 +27,7 @@ mod tree;
 mod types;
 mod used;
 
+pub use crate::program::Moment;
 pub use amounts::{day, day_text, decimal};
 pub use manifest::Manifest;
 pub use pack::{Change, FactDecl, FactKind, KindDecl, Pack, PackTexts, check};

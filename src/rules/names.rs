@@ -29,7 +29,8 @@ impl Names {
                 by_kind[kind].insert(f.name.clone(), (Target::Fact { kind, fact }, f.ty));
             }
         }
-        for (at, definition) in pack.definitions.iter().enumerate() {
+        let named = pack.definitions.iter().enumerate();
+        for (at, definition) in named.filter(|(_, d)| d.settles.is_none()) {
             by_kind[definition.kind]
                 .insert(definition.name.clone(), (Target::Figure(at), definition.ty));
         }
@@ -376,29 +377,14 @@ impl Context<'_> {
         let mut whole = true;
         for (fact, value) in changes {
             match self.find(&fact.text) {
-                Some((level, _, Target::Fact { kind, fact: at }, ty)) => {
-                    match self.wanted(value, ty, faults) {
-                        Some(value) if self.in_range(kind, at, &value) => changed.push(Changed {
+                Some((level, _, Target::Fact { kind, fact: at }, _)) => {
+                    match self.stands_for((kind, at), value, faults) {
+                        Some(value) => changed.push(Changed {
                             kind,
                             fact: at,
                             level,
                             value,
                         }),
-                        Some(value) => {
-                            let (low, high) = self.pack.kinds[kind].facts[at].range;
-                            faults.push(
-                                Diagnostic::fault(
-                                    value.span,
-                                    format!("this may lie outside the range of `{}`", fact.text),
-                                )
-                                .expected(format!(
-                                    "a value from {} to {}",
-                                    shown(low, ty),
-                                    shown(high, ty)
-                                )),
-                            );
-                            whole = false;
-                        }
                         None => whole = false,
                     }
                 }
@@ -440,6 +426,33 @@ impl Context<'_> {
                 None
             }
         }
+    }
+
+    /// A value that stands for a fact: of its type and in its range.
+    pub(super) fn stands_for(
+        &mut self,
+        (kind, at): (usize, usize),
+        value: &Expr,
+        faults: &mut Faults,
+    ) -> Option<Node> {
+        let fact = &self.pack.kinds[kind].facts[at];
+        let node = self.wanted(value, fact.ty, faults)?;
+        if self.in_range(kind, at, &node) {
+            return Some(node);
+        }
+        let (low, high) = fact.range;
+        faults.push(
+            Diagnostic::fault(
+                node.span,
+                format!("this may lie outside the range of `{}`", fact.name),
+            )
+            .expected(format!(
+                "a value from {} to {}",
+                shown(low, fact.ty),
+                shown(high, fact.ty)
+            )),
+        );
+        None
     }
 
     /// Whether a value may stand for a fact: a fixed number lies in its range, and what stands for something above nothing is above nothing.

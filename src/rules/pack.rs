@@ -3,11 +3,11 @@
 use super::amounts::{AmountDecl, TableRow};
 use super::ast::Part;
 use super::manifest::Manifest;
-use super::tree::{BandsDecl, Condition, Definition, ScaleDecl};
+use super::tree::{BandsDecl, Condition, Definition, ScaleDecl, What};
 use super::types::{Period, Ty};
 use crate::diag::{Diagnostic, Severity};
 use crate::num::Fraction;
-use crate::program::{ItemKind, Program, Shape};
+use crate::program::{ItemKind, Program, Settling, Shape};
 use crate::source::{FileId, Sources, Span};
 use std::collections::{BTreeMap, BTreeSet};
 
@@ -85,6 +85,8 @@ pub struct FactDecl {
     /// The question that asks for it.
     pub ask: String,
     pub(super) ty: Ty,
+    /// Position among the definitions of what it means once settled.
+    pub(super) settles: Option<usize>,
     /// Where it is declared; none for those that are always there.
     pub(super) span: Option<Span>,
 }
@@ -277,6 +279,33 @@ impl Pack {
             return Ok(());
         }
         super::lower::try_out(self, dates, changes)
+    }
+
+    /// The facts that settle, in the order of kinds and facts.
+    pub fn settling(&self) -> Vec<Settling> {
+        let mut out = Vec::new();
+        for (kind, decl) in self.kinds.iter().enumerate() {
+            for (fact, f) in decl.facts.iter().enumerate() {
+                let Some(at) = f.settles else { continue };
+                let to = match self.definitions[at].body.as_ref().map(|body| &body.what) {
+                    Some(What::Fixed(value)) => {
+                        let units = *value * Fraction::whole(i128::from(f.kind.units()));
+                        (units.denominator() == 1)
+                            .then(|| i64::try_from(units.numerator()).ok())
+                            .flatten()
+                    }
+                    _ => None,
+                };
+                out.push(Settling {
+                    name: f.name.clone(),
+                    kind,
+                    fact,
+                    units: f.kind.units(),
+                    to,
+                });
+            }
+        }
+        out
     }
 
     /// Names and kinds of the items, in the order of the law, without those of one name that follow.

@@ -430,6 +430,12 @@ impl Parser<'_> {
         } else {
             return self.unexpected("`required` or `default`");
         };
+        let settles = if self.take_word("settles") {
+            self.word("to")?;
+            Some(self.value()?)
+        } else {
+            None
+        };
         self.word("ask")?;
         let ask = self.text("the question as a text")?;
         Ok(StatementKind::Fact(Box::new(FactStatement {
@@ -438,6 +444,7 @@ impl Parser<'_> {
             ty,
             range,
             default,
+            settles,
             ask,
         })))
     }

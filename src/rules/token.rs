@@ -62,7 +62,7 @@ pub(super) const STATEMENTS: [&str; 16] = [
 ];
 
 /// Words that cannot be names because the language uses them inside statements.
-pub(super) const RESERVED: [&str; 44] = [
+pub(super) const RESERVED: [&str; 45] = [
     "a",
     "above",
     "an",
@@ -105,6 +105,7 @@ pub(super) const RESERVED: [&str; 44] = [
     "raised",
     "required",
     "rounded",
+    "settles",
     "where",
     "with",
 ];

@@ -184,6 +184,8 @@ pub(super) struct Definition {
     pub claimed: Option<Node>,
     pub span: Span,
     pub name_span: Span,
+    /// The fact of its kind, by position, that means this once settled; none for a figure or item, which has its name from the text.
+    pub settles: Option<usize>,
     /// None where the expression has faults.
     pub body: Option<Node>,
 }

@@ -48,7 +48,8 @@ pub(super) fn check(pack: &Pack, faults: &mut Vec<Diagnostic>) {
         );
     };
     for (at, definition) in pack.definitions.iter().enumerate() {
-        if !used.figures.contains(&at) {
+        // What a fact settles to is used where the fact is.
+        if definition.settles.is_none() && !used.figures.contains(&at) {
             report(Some(definition.name_span), "figure", &definition.name);
         }
     }
@@ -189,13 +190,17 @@ fn note(pack: &Pack, node: &Node, used: &mut Used, waiting: &mut Vec<usize>) {
             Target::Figure(at) => waiting.push(*at),
             Target::Fact { kind, fact } => {
                 used.facts.insert((*kind, *fact));
+                waiting.extend(pack.kinds[*kind].facts[*fact].settles);
             }
         },
         What::AsIf {
             figure, changes, ..
         } => {
             waiting.push(*figure);
-            used.facts.extend(changes.iter().map(|c| (c.kind, c.fact)));
+            for changed in changes {
+                used.facts.insert((changed.kind, changed.fact));
+                waiting.extend(pack.kinds[changed.kind].facts[changed.fact].settles);
+            }
         }
         What::Amount { amount, dated } => {
             used.amounts.insert(*amount);

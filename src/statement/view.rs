@@ -144,7 +144,7 @@ pub struct Section {
     pub table_heading: String,
     /// The short table, in as many pieces as fit side by side.
     pub tables: Vec<Table>,
-    /// Further parts: if the job ends.
+    /// Further parts: if the job ends, and what changes once facts about past periods have settled.
     pub parts: Vec<Part>,
 }
 

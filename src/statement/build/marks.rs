@@ -45,9 +45,17 @@ impl Marks {
         }
         instruments.sort();
         let items = assessment.items.iter();
+        let later = assessment
+            .settled
+            .iter()
+            .flat_map(|settled| &settled.earners);
+        let later: Vec<&EarnerResult> = later
+            .filter(|later| earners.iter().any(|now| now.adult == later.adult))
+            .collect();
         let present = (0..assessment.items.len()).map(|position| {
             earners
                 .iter()
+                .chain(&later)
                 .flat_map(|earner| shown(earner))
                 .any(|point| point.items[position].0 != 0)
         });

@@ -6,6 +6,7 @@ mod closing;
 mod facts;
 mod figure;
 mod head;
+mod later;
 mod marks;
 mod section;
 mod steps;

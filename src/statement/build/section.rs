@@ -4,6 +4,7 @@
 use super::Detail;
 use super::answers::{answers, four_fewer, meaning};
 use super::figure;
+use super::later::later;
 use super::steps::{Step, steps};
 use super::table;
 use super::turns;
@@ -26,6 +27,8 @@ pub(super) fn section(
     let turns = turns::turns(words, earner, &steps, (measure, place))?;
     let asked = place == 0 || steps.iter().any(|step| step.offer.is_some());
     let back = Line::from(way_back(words, earner, measure)?);
+    let mut parts = vec![words.part("back.heading", PartKind::Paragraphs, vec![back])?];
+    parts.extend(later(words, earner, &steps, (measure, place))?);
     let drawn = match words.detail {
         Detail::Full | Detail::Plain | Detail::Short | Detail::Bare => asked,
         Detail::Brief => place == 0,
@@ -66,7 +69,7 @@ pub(super) fn section(
         } else {
             vec![]
         },
-        parts: vec![words.part("back.heading", PartKind::Paragraphs, vec![back])?],
+        parts,
     })
 }
 

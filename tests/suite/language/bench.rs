@@ -8,6 +8,7 @@ use hourworth::case::{
 use hourworth::engine::{JobChoice, Machine, Setting, working};
 use hourworth::load::schema_of;
 use hourworth::num::{Fraction, Hours};
+use hourworth::program::Moment;
 use hourworth::rules::{Pack, day, decimal};
 
 /// What stands where a section leaves out a fact that is always there.
@@ -133,7 +134,7 @@ pub fn differences(section: &Section, pack: &Pack) -> Vec<String> {
         .collect()
 }
 
-/// `NAME [of KIND N] [at H hours] [on DAY] = VALUE`; `note` and `held` stand for the notes and the reasons to hold.
+/// `NAME [of KIND N] [once settled] [at H hours] [on DAY] = VALUE`; `note` and `held` stand for the notes and the reasons to hold.
 fn difference(expect: &str, pack: &Pack, schema: &Schema, household: &Household) -> Option<String> {
     let (head, wanted) = expect.split_once(" = ").unwrap_or((expect, ""));
     let words: Vec<&str> = head.split(' ').collect();
@@ -145,7 +146,13 @@ fn difference(expect: &str, pack: &Pack, schema: &Schema, household: &Household)
             .copied()
     };
     let on = after("on", 1).map_or(20_500, |d| day(d).expect("a day"));
-    let setting = Setting::new(household, 0, JobChoice::Today).expect("the first adult");
+    let moment = match after("once", 1) {
+        Some(_) => Moment::Settled,
+        None => Moment::Now,
+    };
+    let setting = Setting::new(household, 0, JobChoice::Today)
+        .expect("the first adult")
+        .at_moment(moment);
     let dates = vec![on; pack.manifest.dates.len()];
     let program = match pack.program(&dates, &[], &setting.shape) {
         Ok(program) => program,

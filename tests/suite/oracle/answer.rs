@@ -187,6 +187,8 @@ pub struct Oracle<'a> {
     book: &'a Book,
     days: Vec<i64>,
     home: Home,
+    /// Whether a fact that settles means what it settles to.
+    settled: bool,
     /// Nothing is taken otherwise; what does not vary is remembered.
     base: World,
 }
@@ -215,8 +217,15 @@ impl<'a> Oracle<'a> {
             book,
             days,
             home,
+            settled: false,
             base: World::default(),
         }
+    }
+
+    /// The same home once its facts have settled.
+    pub fn once_settled(mut self) -> Oracle<'a> {
+        self.settled = true;
+        self
     }
 
     /// All items at these hours, in the order of the law.
@@ -355,11 +364,19 @@ impl<'a> Oracle<'a> {
         if let Some((value, _)) = world.changed.get(&(kind, record, fact)) {
             return value.clone();
         }
+        let decl = &self.book.kinds[kind].facts[fact];
+        if let (true, Some((part, expr))) = (self.settled, &decl.settles) {
+            let place = Place {
+                world,
+                part: *part,
+                scopes: &vec![(kind, record)],
+            };
+            return self.value(expr, &place, run);
+        }
         if (kind, record, fact) == (JOB, self.home.varied_job, 0) {
             return Value::Number(run.hours.clone());
         }
         let value = self.home.records[kind][record].values[fact];
-        let decl = &self.book.kinds[kind].facts[fact];
         match (decl.ty.as_str(), self.book.choices.get(&decl.ty)) {
             ("yesno", _) => Value::Truth(value != 0),
             (_, Some(words)) => {

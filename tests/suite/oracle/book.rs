@@ -26,6 +26,8 @@ pub struct Fact {
     pub name: String,
     pub ty: String,
     pub units: i64,
+    /// What it means once settled, with the part that says so.
+    pub settles: Option<(usize, Expr)>,
 }
 
 /// A figure or item.
@@ -123,17 +125,20 @@ impl Book {
             name: "birth".into(),
             ty: "date".into(),
             units: 1,
+            settles: None,
         };
         let job = vec![
             Fact {
                 name: "hours".into(),
                 ty: "hours".into(),
                 units: 100,
+                settles: None,
             },
             Fact {
                 name: "wage".into(),
                 ty: "money".into(),
                 units: 10_000,
+                settles: None,
             },
         ];
         for (name, owner, facts) in [
@@ -247,7 +252,7 @@ impl Book {
                         reader.name();
                     }
                 }
-                "fact" => self.fact(&mut reader),
+                "fact" => self.fact(part, &mut reader),
                 "conversion" => self.conversion(&mut reader),
                 "table" => self.table(&mut reader),
                 "bands" | "scale" => {
@@ -337,7 +342,7 @@ impl Book {
         }
     }
 
-    fn fact(&mut self, reader: &mut Reader) {
+    fn fact(&mut self, part: usize, reader: &mut Reader) {
         let name = reader.name();
         reader.word("of");
         let of = reader.name();
@@ -358,6 +363,11 @@ impl Book {
             reader.take_sign('-');
             reader.sum();
         }
+        let mut settles = None;
+        if reader.take("settles") {
+            reader.word("to");
+            settles = Some((part, reader.value()));
+        }
         reader.word("ask");
         reader.text();
         let units = match (ty.as_str(), period.as_str()) {
@@ -370,6 +380,7 @@ impl Book {
                 name: name.clone(),
                 ty: ty.clone(),
                 units,
+                settles: settles.clone(),
             });
         }
     }

@@ -11,7 +11,7 @@ use hourworth::engine::{
     Curve, ItemKind, JobChoice, Machine, Piece, Setting, Special, Walk, working,
 };
 use hourworth::num::{Fraction, Hours, Money};
-use hourworth::program::Program;
+use hourworth::program::{Moment, Program};
 use hourworth::rules::Pack;
 use num_bigint::BigInt;
 use num_traits::{Signed, ToPrimitive};
@@ -37,6 +37,8 @@ pub struct Tally {
     pub windows: usize,
     pub bounded_items: usize,
     pub curved: usize,
+    /// Households that were asked once settled as well.
+    pub settled: usize,
 }
 
 /// One question: a household, its earner, the job, and how much to ask.
@@ -108,14 +110,25 @@ struct Both<'a> {
     names: Vec<(ItemOf, ItemKind)>,
 }
 
-/// Asks everything. None where the earner or job is not there.
+/// Asks everything, now and, where facts of the pack settle, once settled. Nothing where the earner or job is not there.
 ///
 /// # Errors
 /// The first difference.
 pub fn compare(subject: &Subject<'_>, asked: Asked, tally: &mut Tally) -> Outcome {
+    compare_at(subject, Moment::Now, asked, tally)?;
+    if subject.pack.settling().is_empty() {
+        return Ok(());
+    }
+    tally.settled += 1;
+    compare_at(subject, Moment::Settled, asked, tally)
+        .map_err(|difference| format!("once settled: {difference}"))
+}
+
+fn compare_at(subject: &Subject<'_>, moment: Moment, asked: Asked, tally: &mut Tally) -> Outcome {
     let Some(setting) = Setting::new(subject.household, subject.earner, subject.choice) else {
         return Ok(());
     };
+    let setting = setting.at_moment(moment);
     let program = match subject.pack.program(subject.days, &[], &setting.shape) {
         Ok(program) => program,
         Err(faults) => {
@@ -149,12 +162,16 @@ pub fn compare(subject: &Subject<'_>, asked: Asked, tally: &mut Tally) -> Outcom
             )
         })
         .collect();
+    let oracle = Oracle::new(
+        subject.book,
+        subject.days.to_vec(),
+        home(&setting, subject.household),
+    );
     let both = Both {
-        oracle: Oracle::new(
-            subject.book,
-            subject.days.to_vec(),
-            home(&setting, subject.household),
-        ),
+        oracle: match moment {
+            Moment::Now => oracle,
+            Moment::Settled => oracle.once_settled(),
+        },
         special: machine.special(&facts),
         facts,
         names,

@@ -206,6 +206,9 @@ impl Maker<'_> {
         if self.luck.percent(92) {
             self.pay();
         }
+        for _ in 0..self.luck.below(3) {
+            self.settling_fact();
+        }
         for _ in 0..3 + self.luck.below(9) {
             self.part = self.luck.below(2);
             let kind = match self.luck.below(12) {
@@ -558,6 +561,44 @@ impl Maker<'_> {
         };
         self.names.push(named.clone());
         named
+    }
+
+    /// A fact that settles to what may vary with hours: to names that are there already, so to nothing that needs it.
+    fn settling_fact(&mut self) {
+        self.part = self.luck.below(2);
+        let kind = match self.luck.below(6) {
+            0..=1 => HOUSEHOLD,
+            2..=3 => ADULT,
+            4 => JOB,
+            _ => self.luck.below(self.kinds.len()),
+        };
+        let ty = self.any_type();
+        let depth = 1 + self.luck.below(3);
+        let degree = self.luck.below(3) as u8;
+        let room = Room {
+            degree,
+            steady: self.luck.percent(30),
+        };
+        let to = self.piece(ty, &[kind], depth, room);
+        let name = self.fresh("fact");
+        let (of, ty_text) = (self.kind_name(kind), self.type_text(ty));
+        self.say(
+            "fact",
+            None,
+            &name,
+            format!(
+                "fact {name} of {of}: {ty_text} required settles to {} ask \"What was it?\"",
+                to.at(VALUE)
+            ),
+        );
+        self.names.push(Named {
+            name,
+            kind,
+            ty,
+            degree: to.degree,
+            varies: to.varies,
+            divides: false,
+        });
     }
 
     fn new_amount(&mut self, ty: Ty) -> String {

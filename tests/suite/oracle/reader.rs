@@ -420,7 +420,7 @@ impl Reader {
         list
     }
 
-    fn value(&mut self) -> Expr {
+    pub fn value(&mut self) -> Expr {
         let word = match self.next() {
             Token::Number(value) => {
                 if self.take_sign('%') {

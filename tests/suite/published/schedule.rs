@@ -4,6 +4,7 @@ use super::{Shelf, rate};
 use hourworth::engine::{JobChoice, Machine, Setting};
 use hourworth::load::Case;
 use hourworth::num::Fraction;
+use hourworth::rules::Moment;
 use num_rational::BigRational;
 
 /// The constants of § 32a Abs. 1 EStG, as the statute prints them, and the lump sums of §§ 9a and 10c.
@@ -206,7 +207,7 @@ fn the_marginal_rate_on_a_curve_is_its_derivative() {
         let wanted = (Fraction::whole(2) * rate(constants[square]) * part + rate(constants[line]))
             / Fraction::whole(10_000);
         let found = books
-            .metr(&household, 0, Fraction::whole(hours))
+            .metr(&household, 0, Fraction::whole(hours), Moment::Now)
             .expect("a rate");
         assert_eq!(found, wanted, "at {hours} hours");
     }

@@ -679,6 +679,7 @@ pub fn assessment(home: &Home, earners: Vec<EarnerResult>) -> Assessment {
             .collect(),
         earners,
         couple: None,
+        settled: None,
         unclaimed: vec![],
         notes: vec![],
         facts: vec![

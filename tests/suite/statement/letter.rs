@@ -2,6 +2,8 @@
 
 #[path = "letter/further.rs"]
 mod further;
+#[path = "letter/later.rs"]
+mod later;
 
 use super::invented::{COUPLE, LONE_PARENT, context, couple, earner, lone_parent, minimal, tenant};
 use hourworth::measures::{AmountUse, Assessment, FactUse, TargetHours};

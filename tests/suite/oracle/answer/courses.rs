@@ -53,8 +53,21 @@ impl Oracle<'_> {
             };
         }
         let fact = self.fact_at(name, kind).expect("a fact");
+        let settles = self.book.kinds[kind].facts[fact].settles.as_ref();
         match world.changed.get(&(kind, record, fact)) {
             Some((_, course)) => course.clone(),
+            None if self.settled && settles.is_some() => {
+                let (part, expr) = settles.expect("it settles");
+                let place = Place {
+                    world,
+                    part: *part,
+                    scopes: &vec![(kind, record)],
+                };
+                match self.course(expr, &place) {
+                    Course::Steady(None) if world.changed.is_empty() => itself(),
+                    course => course,
+                }
+            }
             None if (kind, record, fact) == (JOB, self.home.varied_job, 0) => Course::Varies,
             None => itself(),
         }
