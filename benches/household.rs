@@ -77,20 +77,26 @@ fn main() {
             .map(|s| program(&s).steps.len())
             .sum::<usize>()
     }) / n;
+    let live: usize = ready
+        .iter()
+        .map(|(m, f)| m.special(f).live_steps())
+        .sum::<usize>()
+        / ready.len();
+    println!("of which the items of a household need {live}");
     let special = timed(rounds, || {
         ready
             .iter()
-            .map(|(m, f)| m.special(f).at(Hours(0), &mut Vec::new()).len())
+            .map(|(m, f)| m.special(f).points().at(Hours(0)).len())
             .sum::<usize>()
     }) / n;
     let grid = timed(rounds, || {
-        let mut values = Vec::new();
         ready
             .iter()
             .map(|(m, f)| {
                 let special = m.special(f);
+                let mut points = special.points();
                 (0..49)
-                    .map(|h| special.at(Hours::whole(h), &mut values).len())
+                    .map(|h| points.at(Hours::whole(h)).len())
                     .sum::<usize>()
             })
             .sum::<usize>()

@@ -80,16 +80,18 @@ pub fn assess(
         let program = machine.program();
         let special = machine.special(&setting.facts(program));
         let today = setting.own_hours();
-        add_new(&mut reasons, special.holds(today));
-        add_new(&mut notes, special.notes(today));
+        let standing = special.standing(today);
+        add_new(&mut reasons, standing.holds);
+        add_new(&mut notes, standing.notes);
         // An offer has facts of its own, which the rules may not cover either.
         for (offer, _) in offers_of(household, adult) {
             let Some(other) = Setting::new(household, adult, JobChoice::Offer(offer)) else {
                 continue;
             };
             let special = machine.special(&other.facts(program));
-            add_new(&mut reasons, special.holds(other.own_hours()));
-            add_new(&mut notes, special.notes(other.own_hours()));
+            let there = special.standing(other.own_hours());
+            add_new(&mut reasons, there.holds);
+            add_new(&mut notes, there.notes);
         }
         if !reasons.is_empty() {
             continue;
@@ -97,8 +99,8 @@ pub fn assess(
         if items.is_empty() {
             items = item_infos(&special);
             table = couple(household, &machine);
-            unclaimed = special
-                .unclaimed(today)
+            unclaimed = standing
+                .unclaimed
                 .into_iter()
                 .map(|(item, due)| Unclaimed { item, due })
                 .collect();
@@ -204,7 +206,6 @@ fn earner(
         .filter(|job| job.owner == adult)
         .count()
         > 1;
-    let mut values = Vec::new();
     let zero_items = if further {
         machine
             .special(
@@ -213,9 +214,10 @@ fn earner(
                     .without_further_jobs()
                     .facts(machine.program()),
             )
-            .at(Hours(0), &mut values)
+            .points()
+            .at(Hours(0))
     } else {
-        special.at(Hours(0), &mut values)
+        special.points().at(Hours(0))
     };
     let at_zero: Totals = sums.totals(&zero_items);
     let not_in_work = point(&sums, Hours(0), zero_items, &at_zero, None);

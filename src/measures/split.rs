@@ -3,31 +3,29 @@
 use super::line::Worked;
 use super::points::{Stretch, Sums};
 use super::types::{RiseSplit, TargetHours};
-use crate::engine::Special;
+use crate::engine::{Points, Special};
 use crate::num::{Fraction, Hours, Money};
 
 /// What is left after costs of working (net income where there are none) at quarter hours of a line, worked out when it is asked for. Payable hours are quarter hours (design section 2).
 pub(super) struct Quarters<'a, 'm> {
-    special: &'a Special<'m>,
+    points: Points<'a, 'm>,
     sums: &'a Sums,
     /// How many quarters the line has.
     last: i64,
-    values: Vec<i128>,
 }
 
 impl<'a, 'm> Quarters<'a, 'm> {
     pub(super) fn new(special: &'a Special<'m>, sums: &'a Sums, up_to: Hours) -> Self {
         Quarters {
-            special,
+            points: special.points(),
             sums,
             last: up_to.0 / 25,
-            values: Vec::new(),
         }
     }
 
     fn left(&mut self, quarter: i64) -> Money {
         self.sums
-            .totals(&self.special.at(Hours(quarter * 25), &mut self.values))
+            .totals(&self.points.at(Hours(quarter * 25)))
             .after_costs
     }
 
