@@ -297,7 +297,7 @@ impl Machine {
     pub fn special(&self, facts: &[i64]) -> Special<'_> {
         let mut values = vec![0i128; self.exact.len()];
         for at in &self.steady {
-            values[*at] = self.run(*at, &values, facts, 0);
+            values[*at] = self.run(*at, |reg| values[reg], facts, 0);
         }
         let live = self.live(&values);
         Special {
@@ -346,24 +346,30 @@ impl Machine {
     ///
     /// The builder has proved that no register and no operand at its common scale reaches 112 bits, so sums and products here cannot wrap; not
     /// checking them again makes the grid several times faster.
-    fn run(&self, at: usize, v: &[i128], facts: &[i64], hours: i128) -> i128 {
+    pub(super) fn run(
+        &self,
+        at: usize,
+        v: impl Fn(usize) -> i128,
+        facts: &[i64],
+        hours: i128,
+    ) -> i128 {
         match &self.exact[at] {
             Code::Constant(value) => *value,
             Code::Fact(input) => i128::from(facts[*input]),
             Code::Hours => hours,
-            Code::Add { a, by_a, b, by_b } => v[*a]
+            Code::Add { a, by_a, b, by_b } => v(*a)
                 .wrapping_mul(*by_a)
-                .wrapping_add(v[*b].wrapping_mul(*by_b)),
-            Code::Subtract { a, by_a, b, by_b } => v[*a]
+                .wrapping_add(v(*b).wrapping_mul(*by_b)),
+            Code::Subtract { a, by_a, b, by_b } => v(*a)
                 .wrapping_mul(*by_a)
-                .wrapping_sub(v[*b].wrapping_mul(*by_b)),
-            Code::Multiply { a, b } => v[*a].wrapping_mul(v[*b]),
-            Code::Times { a, by } => v[*a].wrapping_mul(*by),
+                .wrapping_sub(v(*b).wrapping_mul(*by_b)),
+            Code::Multiply { a, b } => v(*a).wrapping_mul(v(*b)),
+            Code::Times { a, by } => v(*a).wrapping_mul(*by),
             Code::Smaller { a, by_a, b, by_b } => {
-                v[*a].wrapping_mul(*by_a).min(v[*b].wrapping_mul(*by_b))
+                v(*a).wrapping_mul(*by_a).min(v(*b).wrapping_mul(*by_b))
             }
             Code::Larger { a, by_a, b, by_b } => {
-                v[*a].wrapping_mul(*by_a).max(v[*b].wrapping_mul(*by_b))
+                v(*a).wrapping_mul(*by_a).max(v(*b).wrapping_mul(*by_b))
             }
             Code::Choose {
                 when,
@@ -372,10 +378,10 @@ impl Machine {
                 otherwise,
                 by_otherwise,
             } => {
-                if v[*when] != 0 {
-                    v[*then].wrapping_mul(*by_then)
+                if v(*when) != 0 {
+                    v(*then).wrapping_mul(*by_then)
                 } else {
-                    v[*otherwise].wrapping_mul(*by_otherwise)
+                    v(*otherwise).wrapping_mul(*by_otherwise)
                 }
             }
             Code::Round {
@@ -385,7 +391,7 @@ impl Machine {
                 unit,
                 direction,
                 ..
-            } => divide_rounded(v[*a] * numerator, *denominator, *direction) * unit,
+            } => divide_rounded(v(*a) * numerator, *denominator, *direction) * unit,
             Code::Divide {
                 a,
                 b,
@@ -393,24 +399,24 @@ impl Machine {
                 denominator,
                 unit,
                 direction,
-            } => divide_rounded(v[*a] * numerator, (v[*b] * denominator).max(1), *direction) * unit,
+            } => divide_rounded(v(*a) * numerator, (v(*b) * denominator).max(1), *direction) * unit,
             Code::AtLeast { a, by_a, b, by_b } => {
-                i128::from(v[*a].wrapping_mul(*by_a) >= v[*b].wrapping_mul(*by_b))
+                i128::from(v(*a).wrapping_mul(*by_a) >= v(*b).wrapping_mul(*by_b))
             }
             Code::Above { a, by_a, b, by_b } => {
-                i128::from(v[*a].wrapping_mul(*by_a) > v[*b].wrapping_mul(*by_b))
+                i128::from(v(*a).wrapping_mul(*by_a) > v(*b).wrapping_mul(*by_b))
             }
             Code::Same { a, by_a, b, by_b } => {
-                i128::from(v[*a].wrapping_mul(*by_a) == v[*b].wrapping_mul(*by_b))
+                i128::from(v(*a).wrapping_mul(*by_a) == v(*b).wrapping_mul(*by_b))
             }
-            Code::Both { a, b } => v[*a] & v[*b],
-            Code::Either { a, b } => v[*a] | v[*b],
-            Code::Not { a } => 1 - v[*a],
+            Code::Both { a, b } => v(*a) & v(*b),
+            Code::Either { a, b } => v(*a) | v(*b),
+            Code::Not { a } => 1 - v(*a),
             Code::Lookup { table, keys, scale } => {
-                let value = self.looked_up(*table, keys.iter().map(|k| v[*k]));
+                let value = self.looked_up(*table, keys.iter().map(|k| v(*k)));
                 value.numerator() * (scale / value.denominator())
             }
-            Code::Years { from, to } => full_years(v[*from], v[*to]),
+            Code::Years { from, to } => full_years(v(*from), v(*to)),
         }
     }
 
@@ -455,6 +461,8 @@ pub struct Special<'m> {
 pub struct Points<'s, 'm> {
     pub(super) special: &'s Special<'m>,
     pub(super) values: Vec<i128>,
+    /// For many points at once.
+    pub(super) lanes: Option<super::lanes::Lanes>,
 }
 
 impl<'m> Points<'_, 'm> {
@@ -467,9 +475,10 @@ impl<'m> Points<'_, 'm> {
     pub fn at(&mut self, hours: Hours) -> Vec<Money> {
         let special = self.special;
         for at in &special.live {
-            self.values[*at] = special
-                .machine
-                .run(*at, &self.values, &[], i128::from(hours.0));
+            self.values[*at] =
+                special
+                    .machine
+                    .run(*at, |reg| self.values[reg], &[], i128::from(hours.0));
         }
         special.items(&self.values)
     }
@@ -496,7 +505,9 @@ impl<'m> Special<'m> {
     pub(super) fn fill(&self, hours: Hours, values: &mut Vec<i128>) {
         values.clone_from(&self.values);
         for at in &self.machine.varying {
-            values[*at] = self.machine.run(*at, values, &[], i128::from(hours.0));
+            values[*at] = self
+                .machine
+                .run(*at, |reg| values[reg], &[], i128::from(hours.0));
         }
     }
 
@@ -510,6 +521,7 @@ impl<'m> Special<'m> {
         Points {
             special: self,
             values: self.values.clone(),
+            lanes: None,
         }
     }
 
@@ -554,7 +566,7 @@ impl<'m> Special<'m> {
     }
 }
 
-fn item_money(item: &Item, value: i128, scale: i128) -> Money {
+pub(super) fn item_money(item: &Item, value: i128, scale: i128) -> Money {
     let scaled = if item.kind == crate::program::ItemKind::Passport {
         value
     } else {

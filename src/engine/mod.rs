@@ -6,6 +6,7 @@
 
 mod curve;
 mod exact;
+mod lanes;
 mod machine;
 mod setting;
 mod used;

@@ -9,7 +9,7 @@ use super::types::{
     WorkingLine,
 };
 use crate::case::{ADULT, Household, Instance, JOB, Known, Schema};
-use crate::engine::{JobChoice, Machine, Setting, Special, Used, fact_text, working};
+use crate::engine::{JobChoice, Machine, Setting, Special, fact_text, working};
 use crate::num::{Hours, Money};
 use crate::program::{Amount, Shape};
 use std::collections::BTreeMap;
@@ -24,6 +24,15 @@ pub trait Programs {
     fn machine(&mut self, shape: &Shape) -> Result<Arc<Machine>, String>;
 }
 
+/// Whether an assessment says which facts and amounts it rests on. Statements need that, tables do not.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Evidence {
+    /// Facts and amounts are listed.
+    Gathered,
+    /// Both lists stay empty.
+    LeftOut,
+}
+
 /// What is asked of every household of a list.
 #[derive(Clone, Debug)]
 pub struct Request {
@@ -33,6 +42,8 @@ pub struct Request {
     pub grid_step: Hours,
     /// How many hours more the named step of today's line goes.
     pub more: Hours,
+    /// Whether the facts and amounts that the results rest on are gathered.
+    pub evidence: Evidence,
 }
 
 impl Default for Request {
@@ -41,6 +52,7 @@ impl Default for Request {
             grid_to: Hours::whole(48),
             grid_step: Hours::whole(1),
             more: Hours::whole(4),
+            evidence: Evidence::Gathered,
         }
     }
 }
@@ -71,7 +83,7 @@ pub fn assess(
     let mut items = Vec::new();
     let mut table = None;
     let mut unclaimed = Vec::new();
-    let mut gathered = Gathered::default();
+    let mut gathered = Gathered::new(request.evidence);
     for adult in 0..household.instances[ADULT].len() {
         let Some(setting) = Setting::new(household, adult, JobChoice::Today) else {
             continue;
@@ -104,7 +116,7 @@ pub fn assess(
                 .into_iter()
                 .map(|(item, due)| Unclaimed { item, due })
                 .collect();
-            gathered.add(&special, &special.used(&[Hours(0), today]));
+            gathered.add(&special, &[Hours(0), today]);
         }
         if let Some(result) = earner(
             household,
@@ -338,14 +350,27 @@ fn offer_words(record: &Instance, number: usize) -> String {
 }
 
 /// Facts and amounts of all programs of a household.
-#[derive(Default)]
 struct Gathered {
+    evidence: Evidence,
     facts: std::collections::BTreeSet<(u32, u32, u32)>,
     amounts: BTreeMap<String, AmountUse>,
 }
 
 impl Gathered {
-    fn add(&mut self, special: &Special<'_>, used: &Used) {
+    fn new(evidence: Evidence) -> Gathered {
+        Gathered {
+            evidence,
+            facts: std::collections::BTreeSet::new(),
+            amounts: BTreeMap::new(),
+        }
+    }
+
+    /// Adds what the points of a line at these hours rest on.
+    fn add(&mut self, special: &Special<'_>, hours: &[Hours]) {
+        if self.evidence == Evidence::LeftOut {
+            return;
+        }
+        let used = special.used(hours);
         self.facts.extend(used.facts.iter().copied());
         for (at, part) in &used.amounts {
             let amount = special.amount(*at);
@@ -373,10 +398,13 @@ impl Gathered {
         ]);
         hours.sort_unstable();
         hours.dedup();
-        self.add(special, &special.used(&hours));
+        self.add(special, &hours);
     }
 
     fn finish(self, household: &Household, schema: &Schema) -> (Vec<FactUse>, Vec<AmountUse>) {
+        if self.evidence == Evidence::LeftOut {
+            return (Vec::new(), Vec::new());
+        }
         let mut places = self.facts;
         // Hours of the main jobs vary, so no program reads them as facts; the statement rests on them all the same.
         for (at, job) in household.instances[JOB].iter().enumerate() {

@@ -36,12 +36,12 @@ pub(super) fn work_out(special: &Special<'_>, setting: &Setting<'_>, asked: Aske
     let mut at = 0;
     let mut grid = Vec::with_capacity(asked.grid.len());
     let mut has_costs = false;
-    for hours in asked.grid {
+    let many = points.many(asked.grid);
+    for (hours, items) in asked.grid.iter().zip(many) {
         let here = hours.as_fraction();
         while at + 1 < stretches.len() && stretches[at + 1].from <= here {
             at += 1;
         }
-        let items = points.at(*hours);
         has_costs |= sums.has(ItemKind::Cost, &items);
         let stretch = stretches.get(at).filter(|s| here < s.to);
         grid.push(point(&sums, *hours, items, asked.at_zero, stretch));

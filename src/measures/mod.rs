@@ -12,5 +12,5 @@ mod traps;
 mod turns;
 mod types;
 
-pub use assess::{Programs, Request, Verdict, assess, working_at};
+pub use assess::{Evidence, Programs, Request, Verdict, assess, working_at};
 pub use types::*;

@@ -180,7 +180,15 @@ impl Both<'_> {
         hours.extend((0..asked.law_points / 3).map(|_| luck.between(0, 16_800)));
         for hundredths in hours {
             let at = q(i128::from(hundredths), 100);
-            let found = self.special.points().at(Hours(hundredths));
+            let mut points = self.special.points();
+            let found = points.at(Hours(hundredths));
+            let many = points.many(&[Hours(0), Hours(hundredths), Hours(16_800)]);
+            if many[1] != found {
+                return Err(format!(
+                    "many points at once differ from one: {:?} and {found:?}",
+                    many[1]
+                ));
+            }
             let exactly = self
                 .special
                 .points()
