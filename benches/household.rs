@@ -77,21 +77,26 @@ fn main() {
             .map(|s| program(&s).steps.len())
             .sum::<usize>()
     }) / n;
+    let live: usize = ready
+        .iter()
+        .map(|(m, f)| m.special(f).live_steps())
+        .sum::<usize>()
+        / ready.len();
+    println!("of which the items of a household need {live}");
     let special = timed(rounds, || {
         ready
             .iter()
-            .map(|(m, f)| m.special(f).at(Hours(0), &mut Vec::new()).len())
+            .map(|(m, f)| m.special(f).points().at(Hours(0)).len())
             .sum::<usize>()
     }) / n;
+    let hours: Vec<Hours> = (0..49).map(Hours::whole).collect();
     let grid = timed(rounds, || {
-        let mut values = Vec::new();
         ready
             .iter()
             .map(|(m, f)| {
                 let special = m.special(f);
-                (0..49)
-                    .map(|h| special.at(Hours::whole(h), &mut values).len())
-                    .sum::<usize>()
+                let mut points = special.points();
+                points.many(&hours).len()
             })
             .sum::<usize>()
     }) / n;

@@ -4,7 +4,9 @@
 use crate::case::{HOUSEHOLD, Household, Schema};
 use crate::engine::{JobChoice, Machine, Setting, working};
 use crate::load::{Terms, schema_of};
-use crate::measures::{Programs, Request, Verdict, WorkedPoint, WorkingLine, assess, working_at};
+use crate::measures::{
+    Evidence, Programs, Request, Verdict, WorkedPoint, WorkingLine, assess, working_at,
+};
 use crate::num::{Fraction, Hours};
 use crate::program::{Moment, Settling, Shape};
 use crate::rules::Pack;
@@ -77,6 +79,13 @@ impl Books {
                 machines: HashMap::new(),
             },
         }
+    }
+
+    /// The same for tables alone, which do not say what they rest on.
+    #[must_use]
+    pub fn for_tables(mut self) -> Books {
+        self.request.evidence = Evidence::LeftOut;
+        self
     }
 
     /// What a list for the pack may hold.

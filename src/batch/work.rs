@@ -121,7 +121,10 @@ pub fn work(payload: &[u8]) -> Result<Work, String> {
     };
     Ok(Work {
         items: item_columns(&pack),
-        books: Books::new(pack, terms),
+        books: match setup.orders.statements {
+            Statements::Made => Books::new(pack, terms),
+            Statements::LeftOut => Books::new(pack, terms).for_tables(),
+        },
         orders: setup.orders,
         hold: office.hold,
         press,

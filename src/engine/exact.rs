@@ -1,18 +1,19 @@
 //! Exact evaluation at hours that are no whole hundredth, such as those of a whole-penny pay.
 
-use super::machine::{Code, Special};
+use super::machine::{Code, Points, Special};
 use crate::index::Id;
 use crate::num::{Fraction, Money, divide_rounded};
 use crate::program::{ItemKind, Op};
 
-impl Special<'_> {
+impl Points<'_, '_> {
     /// Amounts of all items at any hours, in minor units, with the law's roundings.
-    pub fn exactly_at(&self, hours: Fraction) -> Vec<Money> {
-        if let Some(values) = self.integers_at(hours) {
-            return self.items(&values);
+    pub fn exactly_at(&mut self, hours: Fraction) -> Vec<Money> {
+        let special = self.special;
+        if special.integers_at(hours, &mut self.values).is_some() {
+            return special.items(&self.values);
         }
-        let values = self.fractions_at(hours);
-        let program = self.program();
+        let values = special.fractions_at(hours);
+        let program = special.program();
         program
             .items
             .iter()
@@ -28,24 +29,27 @@ impl Special<'_> {
             })
             .collect()
     }
+}
 
-    /// All registers at hours p/q as whole numbers of 1 / (scale × q to a power); none where one does not fit.
-    fn integers_at(&self, hours: Fraction) -> Option<Vec<i128>> {
+impl Special<'_> {
+    /// Fills the registers that the items need at hours p/q with whole numbers of 1 / (scale × q to a power); none where one
+    /// does not fit. The steady registers are there already.
+    fn integers_at(&self, hours: Fraction, v: &mut [i128]) -> Option<()> {
         let machine = self.machine;
         let (p, q) = (hours.numerator(), hours.denominator());
         let powers_of_q = [Some(1), Some(q), q.checked_mul(q)];
-        let mut v = self.values.clone();
         let power = |at: usize| machine.powers[at] as usize;
-        for at in &machine.varying {
+        for at in &self.live {
             let up = |n: i128, by: i128, from: usize, to: usize| -> Option<i128> {
                 n.checked_mul(by)?
                     .checked_mul((*powers_of_q.get(to - from)?)?)
             };
+            let held = &*v;
             let pair = |a: usize, by_a: i128, b: usize, by_b: i128| -> Option<(i128, i128)> {
                 let top = power(a).max(power(b));
                 Some((
-                    up(v[a], by_a, power(a), top)?,
-                    up(v[b], by_b, power(b), top)?,
+                    up(held[a], by_a, power(a), top)?,
+                    up(held[b], by_b, power(b), top)?,
                 ))
             };
             v[*at] = match &machine.exact[*at] {
@@ -122,7 +126,7 @@ impl Special<'_> {
                 Code::Not { a } => 1 - v[*a],
             };
         }
-        Some(v)
+        Some(())
     }
 
     /// All registers at any hours as fractions, with the law's roundings.
@@ -136,7 +140,7 @@ impl Special<'_> {
             .map(|(n, step)| Fraction::new(*n, step.scale.exact))
             .collect();
         let truth = |yes: bool| Fraction::whole(i128::from(yes));
-        for at in &machine.varying {
+        for at in &self.live {
             let step = &program.steps[Id::new(*at)];
             let get = |reg: &crate::program::Reg| v[reg.position()];
             v[*at] = match &step.op {

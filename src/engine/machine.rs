@@ -122,6 +122,8 @@ pub struct Machine {
     pub(super) steady: Vec<usize>,
     /// At hours p/q a register holds whole numbers of 1 / (scale × q to this power), with the law's roundings.
     pub(super) powers: Vec<u32>,
+    /// The registers that each step reads; where there are fewer than three, a register that never changes.
+    pub(super) reads: Vec<[usize; 3]>,
     /// Registers that some step reads, or that are the fixed factor of one.
     pub(super) read: Vec<bool>,
 }
@@ -244,7 +246,7 @@ impl Machine {
             .clone()
             .map(|at| code(&program, at, |s| s.exact))
             .collect();
-        let smooth = all
+        let smooth: Vec<Code> = all
             .clone()
             .map(|at| code(&program, at, |s| s.smooth))
             .collect();
@@ -258,8 +260,24 @@ impl Machine {
                 read[factor.position()] = true;
             }
         }
+        let reads = smooth
+            .iter()
+            .map(|code: &Code| {
+                let mut regs = [exact.len(); 3];
+                let mut used = 0;
+                super::walk::operands(code, &mut |reg| {
+                    // Only a table has more, and its keys do not vary.
+                    if let Some(place) = regs.get_mut(used) {
+                        *place = reg;
+                    }
+                    used += 1;
+                });
+                regs
+            })
+            .collect();
         Machine {
             program,
+            reads,
             exact,
             smooth,
             varying,
@@ -279,36 +297,79 @@ impl Machine {
     pub fn special(&self, facts: &[i64]) -> Special<'_> {
         let mut values = vec![0i128; self.exact.len()];
         for at in &self.steady {
-            values[*at] = self.run(*at, &values, facts, 0);
+            values[*at] = self.run(*at, |reg| values[reg], facts, 0);
         }
+        let live = self.live(&values);
         Special {
             machine: self,
             values,
+            live,
         }
+    }
+
+    /// The varying steps that the items need, in order, once everything steady is known: what lies behind a choice that is already
+    /// made the other way is left out.
+    fn live(&self, values: &[i128]) -> Vec<usize> {
+        let steps = &self.program.steps;
+        let mut wanted = vec![false; steps.len()];
+        for item in &self.program.items {
+            wanted[item.reg.position()] = true;
+        }
+        let mut live = Vec::with_capacity(self.varying.len());
+        for at in self.varying.iter().rev() {
+            if !wanted[*at] {
+                continue;
+            }
+            live.push(*at);
+            let known = |reg: &usize| !steps[Id::new(*reg)].varies;
+            match &self.exact[*at] {
+                Code::Choose {
+                    when,
+                    then,
+                    otherwise,
+                    ..
+                } if known(when) => {
+                    wanted[if values[*when] != 0 {
+                        *then
+                    } else {
+                        *otherwise
+                    }] = true
+                }
+                other => super::walk::operands(other, &mut |reg| wanted[reg] = true),
+            }
+        }
+        live.reverse();
+        live
     }
 
     /// One step with the law's roundings. `hours` are hundredths.
     ///
     /// The builder has proved that no register and no operand at its common scale reaches 112 bits, so sums and products here cannot wrap; not
     /// checking them again makes the grid several times faster.
-    fn run(&self, at: usize, v: &[i128], facts: &[i64], hours: i128) -> i128 {
+    pub(super) fn run(
+        &self,
+        at: usize,
+        v: impl Fn(usize) -> i128,
+        facts: &[i64],
+        hours: i128,
+    ) -> i128 {
         match &self.exact[at] {
             Code::Constant(value) => *value,
             Code::Fact(input) => i128::from(facts[*input]),
             Code::Hours => hours,
-            Code::Add { a, by_a, b, by_b } => v[*a]
+            Code::Add { a, by_a, b, by_b } => v(*a)
                 .wrapping_mul(*by_a)
-                .wrapping_add(v[*b].wrapping_mul(*by_b)),
-            Code::Subtract { a, by_a, b, by_b } => v[*a]
+                .wrapping_add(v(*b).wrapping_mul(*by_b)),
+            Code::Subtract { a, by_a, b, by_b } => v(*a)
                 .wrapping_mul(*by_a)
-                .wrapping_sub(v[*b].wrapping_mul(*by_b)),
-            Code::Multiply { a, b } => v[*a].wrapping_mul(v[*b]),
-            Code::Times { a, by } => v[*a].wrapping_mul(*by),
+                .wrapping_sub(v(*b).wrapping_mul(*by_b)),
+            Code::Multiply { a, b } => v(*a).wrapping_mul(v(*b)),
+            Code::Times { a, by } => v(*a).wrapping_mul(*by),
             Code::Smaller { a, by_a, b, by_b } => {
-                v[*a].wrapping_mul(*by_a).min(v[*b].wrapping_mul(*by_b))
+                v(*a).wrapping_mul(*by_a).min(v(*b).wrapping_mul(*by_b))
             }
             Code::Larger { a, by_a, b, by_b } => {
-                v[*a].wrapping_mul(*by_a).max(v[*b].wrapping_mul(*by_b))
+                v(*a).wrapping_mul(*by_a).max(v(*b).wrapping_mul(*by_b))
             }
             Code::Choose {
                 when,
@@ -317,10 +378,10 @@ impl Machine {
                 otherwise,
                 by_otherwise,
             } => {
-                if v[*when] != 0 {
-                    v[*then].wrapping_mul(*by_then)
+                if v(*when) != 0 {
+                    v(*then).wrapping_mul(*by_then)
                 } else {
-                    v[*otherwise].wrapping_mul(*by_otherwise)
+                    v(*otherwise).wrapping_mul(*by_otherwise)
                 }
             }
             Code::Round {
@@ -330,7 +391,7 @@ impl Machine {
                 unit,
                 direction,
                 ..
-            } => divide_rounded(v[*a] * numerator, *denominator, *direction) * unit,
+            } => divide_rounded(v(*a) * numerator, *denominator, *direction) * unit,
             Code::Divide {
                 a,
                 b,
@@ -338,24 +399,24 @@ impl Machine {
                 denominator,
                 unit,
                 direction,
-            } => divide_rounded(v[*a] * numerator, (v[*b] * denominator).max(1), *direction) * unit,
+            } => divide_rounded(v(*a) * numerator, (v(*b) * denominator).max(1), *direction) * unit,
             Code::AtLeast { a, by_a, b, by_b } => {
-                i128::from(v[*a].wrapping_mul(*by_a) >= v[*b].wrapping_mul(*by_b))
+                i128::from(v(*a).wrapping_mul(*by_a) >= v(*b).wrapping_mul(*by_b))
             }
             Code::Above { a, by_a, b, by_b } => {
-                i128::from(v[*a].wrapping_mul(*by_a) > v[*b].wrapping_mul(*by_b))
+                i128::from(v(*a).wrapping_mul(*by_a) > v(*b).wrapping_mul(*by_b))
             }
             Code::Same { a, by_a, b, by_b } => {
-                i128::from(v[*a].wrapping_mul(*by_a) == v[*b].wrapping_mul(*by_b))
+                i128::from(v(*a).wrapping_mul(*by_a) == v(*b).wrapping_mul(*by_b))
             }
-            Code::Both { a, b } => v[*a] & v[*b],
-            Code::Either { a, b } => v[*a] | v[*b],
-            Code::Not { a } => 1 - v[*a],
+            Code::Both { a, b } => v(*a) & v(*b),
+            Code::Either { a, b } => v(*a) | v(*b),
+            Code::Not { a } => 1 - v(*a),
             Code::Lookup { table, keys, scale } => {
-                let value = self.looked_up(*table, keys.iter().map(|k| v[*k]));
+                let value = self.looked_up(*table, keys.iter().map(|k| v(*k)));
                 value.numerator() * (scale / value.denominator())
             }
-            Code::Years { from, to } => full_years(v[*from], v[*to]),
+            Code::Years { from, to } => full_years(v(*from), v(*to)),
         }
     }
 
@@ -392,6 +453,46 @@ pub struct Special<'m> {
     pub(super) machine: &'m Machine,
     /// Registers; those that vary hold nothing yet.
     pub(super) values: Vec<i128>,
+    /// The varying steps that the items of this household need.
+    pub(super) live: Vec<usize>,
+}
+
+/// Points of one household's line, one after another in the same registers.
+pub struct Points<'s, 'm> {
+    pub(super) special: &'s Special<'m>,
+    pub(super) values: Vec<i128>,
+    /// For many points at once.
+    pub(super) lanes: Option<super::lanes::Lanes>,
+}
+
+impl<'m> Points<'_, 'm> {
+    /// The program.
+    pub fn program(&self) -> &'m Program {
+        self.special.program()
+    }
+
+    /// Amounts of all items at these hours, in minor units (a passport is 1 or 0), exact with the law's roundings.
+    pub fn at(&mut self, hours: Hours) -> Vec<Money> {
+        let special = self.special;
+        for at in &special.live {
+            self.values[*at] =
+                special
+                    .machine
+                    .run(*at, |reg| self.values[reg], &[], i128::from(hours.0));
+        }
+        special.items(&self.values)
+    }
+}
+
+/// What holds at one point.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
+pub struct Standing {
+    /// Reasons to hold the household.
+    pub holds: Vec<String>,
+    /// Names of the notes.
+    pub notes: Vec<String>,
+    /// Items that would be due and are not claimed: position and sum.
+    pub unclaimed: Vec<(usize, Money)>,
 }
 
 impl<'m> Special<'m> {
@@ -404,14 +505,24 @@ impl<'m> Special<'m> {
     pub(super) fn fill(&self, hours: Hours, values: &mut Vec<i128>) {
         values.clone_from(&self.values);
         for at in &self.machine.varying {
-            values[*at] = self.machine.run(*at, values, &[], i128::from(hours.0));
+            values[*at] = self
+                .machine
+                .run(*at, |reg| values[reg], &[], i128::from(hours.0));
         }
     }
 
-    /// Amounts of all items at these hours, in minor units (a passport is 1 or 0), exact with the law's roundings.
-    pub fn at(&self, hours: Hours, values: &mut Vec<i128>) -> Vec<Money> {
-        self.fill(hours, values);
-        self.items(values)
+    /// How many varying steps the items of this household need.
+    pub fn live_steps(&self) -> usize {
+        self.live.len()
+    }
+
+    /// Registers for points of this household.
+    pub fn points(&self) -> Points<'_, 'm> {
+        Points {
+            special: self,
+            values: self.values.clone(),
+            lanes: None,
+        }
     }
 
     pub(super) fn items(&self, values: &[i128]) -> Vec<Money> {
@@ -429,50 +540,33 @@ impl<'m> Special<'m> {
             .collect()
     }
 
-    /// Items that would be due at these hours and are not claimed: position and sum.
-    pub fn unclaimed(&self, hours: Hours) -> Vec<(usize, Money)> {
+    /// What holds at these hours: reasons to hold, notes, and what is due and not claimed.
+    pub fn standing(&self, hours: Hours) -> Standing {
         let mut values = Vec::new();
         self.fill(hours, &mut values);
         let program = &self.machine.program;
         let money = |item: &Item, reg: crate::program::Reg| {
             item_money(item, values[reg.position()], program.steps[reg].scale.exact)
         };
+        let yes = |reg: crate::program::Reg| values[reg.position()] != 0;
         let items = program.items.iter().enumerate();
-        items
-            .filter_map(|(at, item)| Some((at, money(item, item.due?), money(item, item.reg))))
-            .filter(|(_, due, counted)| due.0 > 0 && counted.0 == 0)
-            .map(|(at, due, _)| (at, due))
-            .collect()
-    }
-
-    /// Reasons to hold the household, at these hours.
-    pub fn holds(&self, hours: Hours) -> Vec<String> {
-        let mut values = Vec::new();
-        self.fill(hours, &mut values);
-        let program = &self.machine.program;
-        program
-            .guards
-            .iter()
-            .filter(|g| values[g.reg.position()] != 0)
-            .map(|g| g.because.clone())
-            .collect()
-    }
-
-    /// Names of the notes that hold at these hours.
-    pub fn notes(&self, hours: Hours) -> Vec<String> {
-        let mut values = Vec::new();
-        self.fill(hours, &mut values);
-        let program = &self.machine.program;
-        program
-            .notes
-            .iter()
-            .filter(|n| values[n.reg.position()] != 0)
-            .map(|n| n.name.clone())
-            .collect()
+        Standing {
+            holds: (program.guards.iter().filter(|g| yes(g.reg)))
+                .map(|g| g.because.clone())
+                .collect(),
+            notes: (program.notes.iter().filter(|n| yes(n.reg)))
+                .map(|n| n.name.clone())
+                .collect(),
+            unclaimed: items
+                .filter_map(|(at, item)| Some((at, money(item, item.due?), money(item, item.reg))))
+                .filter(|(_, due, counted)| due.0 > 0 && counted.0 == 0)
+                .map(|(at, due, _)| (at, due))
+                .collect(),
+        }
     }
 }
 
-fn item_money(item: &Item, value: i128, scale: i128) -> Money {
+pub(super) fn item_money(item: &Item, value: i128, scale: i128) -> Money {
     let scaled = if item.kind == crate::program::ItemKind::Passport {
         value
     } else {

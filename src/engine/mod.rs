@@ -6,6 +6,7 @@
 
 mod curve;
 mod exact;
+mod lanes;
 mod machine;
 mod setting;
 mod used;
@@ -14,7 +15,7 @@ mod working;
 
 pub use crate::program::ItemKind;
 pub use curve::Curve;
-pub use machine::{Machine, Special};
+pub use machine::{Machine, Points, Special, Standing};
 pub use setting::{JobChoice, Setting, fact_text, shape_of};
 pub use used::Used;
 pub use walk::{Bend, Piece, Walk};

@@ -28,8 +28,8 @@ pub struct Piece {
 pub struct Bend {
     /// Hours (the upper end of the isolating interval where the place is irrational).
     pub at: Fraction,
-    /// Values of the items at the place itself, roundings smoothed, in currency units.
-    pub values: Vec<Fraction>,
+    /// At the start of the line alone: values of the items at zero hours itself, roundings smoothed, in currency units.
+    pub before: Option<Vec<Fraction>>,
     /// The lines whose rules turned.
     pub causes: Vec<Id<Line>>,
 }
@@ -51,91 +51,98 @@ enum Side {
     Right,
 }
 
+/// Polynomials of all registers, brought from turn to turn: a step is worked out again only where it turns or where one of its
+/// operands has changed.
 struct Walker<'s, 'm> {
     special: &'s Special<'m>,
     polys: Vec<Poly>,
-    before: Vec<Poly>,
-    /// Steps that turn at the nearest place found so far.
-    turning: Vec<usize>,
-    next: Fraction,
+    /// The pass in which each register last changed. The last entry stands for operands that a step does not have.
+    changed: Vec<u32>,
+    /// Where each step turns next, if it does before the end.
+    turns: Vec<Option<Fraction>>,
+    pass: u32,
     end: Fraction,
 }
 
 impl<'m> Special<'m> {
     /// Walks from zero hours to `up_to`.
     pub fn walk(&self, up_to: Fraction) -> Walk {
-        let steady: Vec<Poly> = self.values.iter().map(|v| [*v, 0, 0]).collect();
-        let mut walker = Walker {
-            special: self,
-            polys: steady.clone(),
-            before: steady,
-            turning: Vec::new(),
-            next: up_to,
-            end: up_to,
-        };
-        walker.run()
+        Walker::new(self, up_to).run()
+    }
+
+    /// Values of the items at a place itself, roundings smoothed, in currency units.
+    pub fn smooth_at(&self, at: Fraction) -> Vec<Fraction> {
+        let mut walker = Walker::new(self, at);
+        walker.all(at, Side::At);
+        walker.curves().iter().map(|c| c.at(at)).collect()
     }
 }
 
-impl Walker<'_, '_> {
+impl<'s, 'm> Walker<'s, 'm> {
+    fn new(special: &'s Special<'m>, end: Fraction) -> Self {
+        Walker {
+            special,
+            polys: special.values.iter().map(|v| [*v, 0, 0]).collect(),
+            changed: vec![0; special.values.len() + 1],
+            turns: vec![None; special.values.len()],
+            pass: 0,
+            end,
+        }
+    }
+
     fn run(&mut self) -> Walk {
+        let mut here = Fraction::ZERO;
+        self.all(here, Side::At);
+        let first: Vec<Fraction> = self.curves().iter().map(|c| c.at(here)).collect();
+        let turned = self.all(here, Side::Right);
         let mut walk = Walk {
             pieces: Vec::new(),
             bends: Vec::new(),
-            passes: 0,
+            passes: 1,
         };
-        let mut here = Fraction::ZERO;
-        self.pass(here, Side::At);
-        self.before.clone_from(&self.polys);
-        let mut turned: Vec<usize> = self.special.machine.varying.clone();
-        let mut last = self.curves();
-        loop {
-            self.pass(here, Side::Right);
-            walk.passes += 1;
-            let curves = self.curves();
-            let changed: Vec<usize> = (0..curves.len())
-                .filter(|k| {
-                    walk.pieces.is_empty() && curves[*k].at(here) != last[*k].at(here)
-                        || !walk.pieces.is_empty() && !curves[*k].same(&last[*k])
-                })
-                .collect();
-            let starts = walk.pieces.is_empty();
-            let joins = !starts && changed.is_empty();
-            if !changed.is_empty() {
-                let causes = self.causes(&turned, &changed);
-                let after = std::mem::take(&mut self.turning);
-                let next = self.next;
-                let right = self.polys.clone();
-                let values = if starts {
-                    last.iter().map(|c| c.at(here)).collect()
-                } else {
-                    self.values_at(here)
-                };
-                self.polys = right;
-                (self.turning, self.next) = (after, next);
-                walk.bends.push(Bend {
-                    at: here,
-                    values,
-                    causes,
-                });
-            }
-            match walk.pieces.last_mut() {
-                Some(piece) if joins => piece.to = self.next,
-                _ => walk.pieces.push(Piece {
-                    from: here,
-                    to: self.next,
-                    items: curves.clone(),
-                }),
-            }
-            if self.next >= self.end {
-                return walk;
-            }
-            here = self.next;
-            turned = std::mem::take(&mut self.turning);
-            std::mem::swap(&mut self.before, &mut self.polys);
-            self.polys.clone_from(&self.before);
-            last = curves;
+        let curves = self.curves();
+        let jumps: Vec<usize> = (0..curves.len())
+            .filter(|k| curves[*k].at(here) != first[*k])
+            .collect();
+        if !jumps.is_empty() {
+            walk.bends.push(Bend {
+                at: here,
+                before: Some(first),
+                causes: self.causes(&turned, &jumps),
+            });
         }
+        let mut next = self.next();
+        walk.pieces.push(Piece {
+            from: here,
+            to: next,
+            items: curves,
+        });
+        while next < self.end {
+            here = next;
+            let turned = self.turn_at(here);
+            walk.passes += 1;
+            next = self.next();
+            let items = &self.special.program().items;
+            let changed: Vec<usize> = (0..items.len())
+                .filter(|k| self.changed[items[*k].reg.position()] == self.pass)
+                .collect();
+            if changed.is_empty() {
+                let piece = walk.pieces.last_mut().expect("the first piece");
+                piece.to = next;
+                continue;
+            }
+            walk.bends.push(Bend {
+                at: here,
+                before: None,
+                causes: self.causes(&turned, &changed),
+            });
+            walk.pieces.push(Piece {
+                from: here,
+                to: next,
+                items: self.curves(),
+            });
+        }
+        walk
     }
 
     fn curves(&self) -> Vec<Curve> {
@@ -157,11 +164,6 @@ impl Walker<'_, '_> {
             .collect()
     }
 
-    fn values_at(&mut self, here: Fraction) -> Vec<Fraction> {
-        self.pass(here, Side::At);
-        self.curves().iter().map(|c| c.at(here)).collect()
-    }
-
     /// The lines of those turned steps that the changed items depend on through changed registers.
     fn causes(&self, turned: &[usize], changed: &[usize]) -> Vec<Id<Line>> {
         let program = self.special.program();
@@ -170,8 +172,8 @@ impl Walker<'_, '_> {
             wanted[program.items[*item].reg.position()] = true;
         }
         let mut lines = Vec::new();
-        for at in self.special.machine.varying.iter().rev() {
-            if !wanted[*at] || self.polys[*at] == self.before[*at] {
+        for at in self.special.live.iter().rev() {
+            if !wanted[*at] || self.changed[*at] != self.pass {
                 continue;
             }
             if turned.contains(at)
@@ -189,14 +191,46 @@ impl Walker<'_, '_> {
         lines
     }
 
-    /// Works out all varying polynomials at or right of a place, and, to the right, the nearest turn after it.
-    fn pass(&mut self, here: Fraction, side: Side) {
-        self.next = self.end;
-        self.turning.clear();
-        let machine = self.special.machine;
-        for at in &machine.varying {
-            let poly = self.step(*at, &machine.smooth[*at], here, side);
-            self.polys[*at] = poly;
+    /// The nearest turn, or the end.
+    fn next(&self) -> Fraction {
+        let turns = self.special.live.iter().filter_map(|at| self.turns[*at]);
+        turns.min().map_or(self.end, |turn| turn.min(self.end))
+    }
+
+    /// Works out all varying polynomials at or right of a place; right of it also where each step turns. Returns the steps worked out.
+    fn all(&mut self, here: Fraction, side: Side) -> Vec<usize> {
+        self.pass += 1;
+        let special = self.special;
+        for at in &special.live {
+            self.work_out(*at, here, side);
+        }
+        special.live.clone()
+    }
+
+    /// Goes on right of a place where some step turns. Returns the steps that turned there.
+    fn turn_at(&mut self, here: Fraction) -> Vec<usize> {
+        self.pass += 1;
+        let special = self.special;
+        let mut turned = Vec::new();
+        for at in &special.live {
+            let turns = self.turns[*at] == Some(here);
+            if turns {
+                turned.push(*at);
+            }
+            let reads = &special.machine.reads[*at];
+            if turns || reads.iter().any(|reg| self.changed[*reg] == self.pass) {
+                self.work_out(*at, here, Side::Right);
+            }
+        }
+        turned
+    }
+
+    fn work_out(&mut self, at: usize, here: Fraction, side: Side) {
+        self.turns[at] = None;
+        let poly = self.step(at, &self.special.machine.smooth[at], here, side);
+        if poly != self.polys[at] {
+            self.polys[at] = poly;
+            self.changed[at] = self.pass;
         }
     }
 
@@ -220,12 +254,9 @@ impl Walker<'_, '_> {
     }
 
     fn turn(&mut self, at: usize, difference: &Poly, here: Fraction) {
-        if let Some(place) = next_change(difference, here, self.next) {
-            if place < self.next {
-                self.next = place;
-                self.turning.clear();
-            }
-            self.turning.push(at);
+        let end = self.turns[at].unwrap_or(self.end);
+        if let Some(place) = next_change(difference, here, end) {
+            self.turns[at] = Some(place);
         }
     }
 

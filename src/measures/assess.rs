@@ -3,14 +3,14 @@
 use super::couple::couple;
 use super::line::{Asked, Worked, work_out};
 use super::points::{Sums, Totals, point};
-use super::settled::{Now, once_settled};
+use super::settled::{Now, once_settled, open};
 use super::split::{Quarters, rise};
 use super::types::{
     AmountUse, Assessment, EarnerResult, FactUse, ItemInfo, JobTerms, OfferMeasures, Unclaimed,
     WorkingLine,
 };
 use crate::case::{ADULT, Household, Instance, JOB, Known, Schema};
-use crate::engine::{JobChoice, Machine, Setting, Special, Used, fact_text, working};
+use crate::engine::{JobChoice, Machine, Setting, Special, Standing, fact_text, working};
 use crate::num::{Hours, Money};
 use crate::program::{Amount, Moment, Settling, Shape};
 use std::collections::BTreeMap;
@@ -28,6 +28,15 @@ pub trait Programs {
     fn settling(&self) -> &[Settling];
 }
 
+/// Whether an assessment says which facts and amounts it rests on. Statements need that, tables do not.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Evidence {
+    /// Facts and amounts are listed.
+    Gathered,
+    /// Both lists stay empty.
+    LeftOut,
+}
+
 /// What is asked of every household of a list.
 #[derive(Clone, Debug)]
 pub struct Request {
@@ -37,6 +46,8 @@ pub struct Request {
     pub grid_step: Hours,
     /// How many hours more the named step of today's line goes.
     pub more: Hours,
+    /// Whether the facts and amounts that the results rest on are gathered.
+    pub evidence: Evidence,
 }
 
 impl Default for Request {
@@ -45,6 +56,7 @@ impl Default for Request {
             grid_to: Hours::whole(48),
             grid_step: Hours::whole(1),
             more: Hours::whole(4),
+            evidence: Evidence::Gathered,
         }
     }
 }
@@ -75,7 +87,11 @@ pub fn assess(
     let mut items = Vec::new();
     let mut table = None;
     let mut unclaimed = Vec::new();
-    let mut gathered = Gathered::default();
+    // What settles is looked for among the facts that a result rests on.
+    let mut gathered = Gathered::new(match open(household, programs).is_empty() {
+        true => request.evidence,
+        false => Evidence::Gathered,
+    });
     for adult in 0..household.instances[ADULT].len() {
         let Some(setting) = Setting::new(household, adult, JobChoice::Today) else {
             continue;
@@ -83,21 +99,21 @@ pub fn assess(
         let machine = programs.machine(&setting.shape)?;
         let special = machine.special(&setting.facts(machine.program()));
         let today = setting.own_hours();
-        let (holds, said) = holds_and_notes(household, &machine, &setting, &special);
-        add_new(&mut reasons, holds);
-        add_new(&mut notes, said);
+        let standing = standing_of(household, &machine, &setting, &special);
+        add_new(&mut reasons, standing.holds);
+        add_new(&mut notes, standing.notes);
         if !reasons.is_empty() {
             continue;
         }
         if items.is_empty() {
             items = item_infos(&special);
             table = couple(household, &machine);
-            unclaimed = special
-                .unclaimed(today)
+            unclaimed = standing
+                .unclaimed
                 .into_iter()
                 .map(|(item, due)| Unclaimed { item, due })
                 .collect();
-            gathered.add(&special, &special.used(&[Hours(0), today]));
+            gathered.add(&special, &[Hours(0), today]);
         }
         if let Some(result) = earner(
             household,
@@ -136,14 +152,13 @@ pub fn assess(
 }
 
 /// Why the pack does not cover an earner's job of today and offers, and the notes that hold at them.
-pub(super) fn holds_and_notes(
+pub(super) fn standing_of(
     household: &Household,
     machine: &Machine,
     setting: &Setting<'_>,
     special: &Special<'_>,
-) -> (Vec<String>, Vec<String>) {
-    let today = setting.own_hours();
-    let (mut holds, mut notes) = (special.holds(today), special.notes(today));
+) -> Standing {
+    let mut standing = special.standing(setting.own_hours());
     let adult = setting.shape.earner as usize;
     // An offer has facts of its own, which the rules may not cover either.
     for (offer, _) in offers_of(household, adult) {
@@ -151,10 +166,11 @@ pub(super) fn holds_and_notes(
             continue;
         };
         let special = machine.special(&other.facts(machine.program()));
-        add_new(&mut holds, special.holds(other.own_hours()));
-        add_new(&mut notes, special.notes(other.own_hours()));
+        let there = special.standing(other.own_hours());
+        add_new(&mut standing.holds, there.holds);
+        add_new(&mut standing.notes, there.notes);
     }
-    (holds, notes)
+    standing
 }
 
 /// The offers of an adult, with their positions in the household.
@@ -233,7 +249,6 @@ pub(super) fn earner(
         .filter(|job| job.owner == adult)
         .count()
         > 1;
-    let mut values = Vec::new();
     let zero_items = if further {
         machine
             .special(
@@ -242,9 +257,10 @@ pub(super) fn earner(
                     .without_further_jobs()
                     .facts(machine.program()),
             )
-            .at(Hours(0), &mut values)
+            .points()
+            .at(Hours(0))
     } else {
-        special.at(Hours(0), &mut values)
+        special.points().at(Hours(0))
     };
     let at_zero: Totals = sums.totals(&zero_items);
     let not_in_work = point(&sums, Hours(0), zero_items, &at_zero, None);
@@ -366,13 +382,21 @@ fn offer_words(record: &Instance, number: usize) -> String {
 }
 
 /// Facts and amounts of all programs of a household.
-#[derive(Default)]
 pub(super) struct Gathered {
+    evidence: Evidence,
     facts: std::collections::BTreeSet<(u32, u32, u32)>,
     amounts: BTreeMap<String, AmountUse>,
 }
 
 impl Gathered {
+    pub(super) fn new(evidence: Evidence) -> Gathered {
+        Gathered {
+            evidence,
+            facts: std::collections::BTreeSet::new(),
+            amounts: BTreeMap::new(),
+        }
+    }
+
     /// Whether a result rests on this fact of this record.
     pub(super) fn rests_on(&self, kind: usize, instance: usize, fact: usize) -> bool {
         self.facts
@@ -387,7 +411,12 @@ impl Gathered {
         }
     }
 
-    fn add(&mut self, special: &Special<'_>, used: &Used) {
+    /// Adds what the points of a line at these hours rest on.
+    fn add(&mut self, special: &Special<'_>, hours: &[Hours]) {
+        if self.evidence == Evidence::LeftOut {
+            return;
+        }
+        let used = special.used(hours);
         self.facts.extend(used.facts.iter().copied());
         for (at, part) in &used.amounts {
             let amount = special.amount(*at);
@@ -415,10 +444,13 @@ impl Gathered {
         ]);
         hours.sort_unstable();
         hours.dedup();
-        self.add(special, &special.used(&hours));
+        self.add(special, &hours);
     }
 
     fn finish(self, household: &Household, schema: &Schema) -> (Vec<FactUse>, Vec<AmountUse>) {
+        if self.evidence == Evidence::LeftOut {
+            return (Vec::new(), Vec::new());
+        }
         let mut places = self.facts;
         // Hours of the main jobs vary, so no program reads them as facts; the statement rests on them all the same.
         for (at, job) in household.instances[JOB].iter().enumerate() {

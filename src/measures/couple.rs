@@ -33,7 +33,6 @@ pub(super) fn couple(household: &Household, machine: &Machine) -> Option<CoupleT
     let (rows, columns) = (hours(&first), hours(&second));
     let mut net = vec![Vec::with_capacity(columns.len()); rows.len()];
     let mut after_costs = net.clone();
-    let mut values = Vec::new();
     for column in &columns {
         let special = machine.special(
             &first
@@ -42,8 +41,9 @@ pub(super) fn couple(household: &Household, machine: &Machine) -> Option<CoupleT
                 .facts(machine.program()),
         );
         let sums = Sums::new(&special, 0);
+        let mut points = special.points();
         for (row, hours) in rows.iter().enumerate() {
-            let totals = sums.totals(&special.at(*hours, &mut values));
+            let totals = sums.totals(&points.at(*hours));
             net[row].push(totals.net);
             after_costs[row].push(totals.after_costs);
         }

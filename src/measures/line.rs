@@ -32,16 +32,16 @@ pub(super) fn work_out(special: &Special<'_>, setting: &Setting<'_>, asked: Aske
         .iter()
         .map(|piece| Stretch::new(&sums, piece))
         .collect();
-    let mut values = Vec::new();
+    let mut points = special.points();
     let mut at = 0;
     let mut grid = Vec::with_capacity(asked.grid.len());
     let mut has_costs = false;
-    for hours in asked.grid {
+    let many = points.many(asked.grid);
+    for (hours, items) in asked.grid.iter().zip(many) {
         let here = hours.as_fraction();
         while at + 1 < stretches.len() && stretches[at + 1].from <= here {
             at += 1;
         }
-        let items = special.at(*hours, &mut values);
         has_costs |= sums.has(ItemKind::Cost, &items);
         let stretch = stretches.get(at).filter(|s| here < s.to);
         grid.push(point(&sums, *hours, items, asked.at_zero, stretch));
@@ -65,7 +65,7 @@ pub(super) fn work_out(special: &Special<'_>, setting: &Setting<'_>, asked: Aske
     });
     let line = BudgetLine {
         first_minute: first.map_or(Money::ZERO, |s| minor(s.net.at(s.from))),
-        turns: turns(special, &sums, &walk, &stretches),
+        turns: turns(&mut points, &sums, &walk, &stretches),
         segments: segments(&sums, &walk, &stretches),
         traps: traps(&stretches, leading, zero),
         no_gain: no_gain(&stretches, leading),

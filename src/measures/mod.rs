@@ -13,5 +13,5 @@ mod traps;
 mod turns;
 mod types;
 
-pub use assess::{Programs, Request, Verdict, WorkedPoint, assess, working_at};
+pub use assess::{Evidence, Programs, Request, Verdict, WorkedPoint, assess, working_at};
 pub use types::*;

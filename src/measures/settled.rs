@@ -1,7 +1,7 @@
 //! A household once the facts about past periods have settled, where anything differs then. In: the household, its results of now, and
 //! programs. Out: [`Settled`], or nothing. Makes no program and works nothing out where no fact of the household settles to something else.
 
-use super::assess::{Gathered, Programs, Request, earner, holds_and_notes, offers_of};
+use super::assess::{Evidence, Gathered, Programs, Request, earner, offers_of, standing_of};
 use super::types::{EarnerResult, Settled};
 use crate::case::{Household, Instance, JOB};
 use crate::engine::{JobChoice, Machine, Setting, working};
@@ -25,12 +25,7 @@ pub(super) fn once_settled(
     programs: &mut dyn Programs,
     gathered: &mut Gathered,
 ) -> Result<Option<Settled>, String> {
-    let open: Vec<Settling> = programs
-        .settling()
-        .iter()
-        .filter(|settling| records(now.household, settling).any(|record| differs(settling, record)))
-        .cloned()
-        .collect();
+    let open = open(now.household, programs);
     if open.is_empty() {
         return Ok(None);
     }
@@ -40,7 +35,7 @@ pub(super) fn once_settled(
         causes: vec![],
         held: vec![],
         earners: vec![],
-        gathered: Gathered::default(),
+        gathered: Gathered::new(Evidence::Gathered),
     };
     for result in now.earners {
         later.earner(result, programs, gathered)?;
@@ -65,6 +60,16 @@ pub(super) fn once_settled(
         held: later.held,
         earners: later.earners,
     }))
+}
+
+/// The facts of the pack that may settle to something else for this household.
+pub(super) fn open(household: &Household, programs: &dyn Programs) -> Vec<Settling> {
+    programs
+        .settling()
+        .iter()
+        .filter(|settling| records(household, settling).any(|record| differs(settling, record)))
+        .cloned()
+        .collect()
 }
 
 /// The records that may hold a fact, offers among them.
@@ -122,8 +127,8 @@ impl Later<'_> {
         let setting = today.at_moment(Moment::Settled);
         let machine = programs.machine(&setting.shape)?;
         let special = machine.special(&setting.facts(machine.program()));
-        let (holds, _) = holds_and_notes(household, &machine, &setting, &special);
-        for reason in holds {
+        let standing = standing_of(household, &machine, &setting, &special);
+        for reason in standing.holds {
             if !self.held.contains(&reason) {
                 self.held.push(reason);
             }

@@ -3,32 +3,45 @@
 use super::line::Worked;
 use super::points::{Stretch, Sums};
 use super::types::{RiseSplit, TargetHours};
-use crate::engine::Special;
+use crate::engine::{Points, Special};
 use crate::num::{Fraction, Hours, Money};
+
+/// How many quarter hours are worked out together.
+const BLOCK: usize = 16;
 
 /// What is left after costs of working (net income where there are none) at quarter hours of a line, worked out when it is asked for. Payable hours are quarter hours (design section 2).
 pub(super) struct Quarters<'a, 'm> {
-    special: &'a Special<'m>,
+    points: Points<'a, 'm>,
     sums: &'a Sums,
     /// How many quarters the line has.
     last: i64,
-    values: Vec<i128>,
+    /// What was worked out so far, by quarter.
+    known: Vec<Option<Money>>,
 }
 
 impl<'a, 'm> Quarters<'a, 'm> {
     pub(super) fn new(special: &'a Special<'m>, sums: &'a Sums, up_to: Hours) -> Self {
         Quarters {
-            special,
+            points: special.points(),
             sums,
             last: up_to.0 / 25,
-            values: Vec::new(),
+            known: vec![None; usize::try_from(up_to.0 / 25 + 1).unwrap_or(0)],
         }
     }
 
     fn left(&mut self, quarter: i64) -> Money {
-        self.sums
-            .totals(&self.special.at(Hours(quarter * 25), &mut self.values))
-            .after_costs
+        let at = usize::try_from(quarter).expect("quarters count from zero");
+        if let Some(left) = self.known[at] {
+            return left;
+        }
+        // Neighbours are asked for next, and many points at once cost little more than one.
+        let from = at / BLOCK * BLOCK;
+        let block = from..(from + BLOCK).min(self.known.len());
+        let hours: Vec<Hours> = block.clone().map(|at| Hours(at as i64 * 25)).collect();
+        for (at, items) in block.zip(self.points.many(&hours)) {
+            self.known[at] = Some(self.sums.totals(&items).after_costs);
+        }
+        self.known[at].expect("the block was worked out")
     }
 
     /// The fewest quarter hours from which a sum stays reached to the end of the line; for what is left today they are the holding hours.

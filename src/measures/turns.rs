@@ -2,19 +2,19 @@
 
 use super::points::{Stretch, Sums};
 use super::types::{Cause, Effect, ItemKind, Turn, TurnKind};
-use crate::engine::{Bend, Special, Walk};
+use crate::engine::{Bend, Points, Walk};
 use crate::num::{Fraction, Hours, Money};
 
 /// All turning points of a walk.
 pub(super) fn turns(
-    special: &Special<'_>,
+    points: &mut Points<'_, '_>,
     sums: &Sums,
     walk: &Walk,
     stretches: &[Stretch],
 ) -> Vec<Turn> {
     walk.bends
         .iter()
-        .filter_map(|bend| turn(special, sums, walk, stretches, bend))
+        .filter_map(|bend| turn(points, sums, walk, stretches, bend))
         .collect()
 }
 
@@ -29,7 +29,7 @@ pub(super) fn hours_up(at: Fraction) -> Hours {
 }
 
 fn turn(
-    special: &Special<'_>,
+    points: &mut Points<'_, '_>,
     sums: &Sums,
     walk: &Walk,
     stretches: &[Stretch],
@@ -57,7 +57,10 @@ fn turn(
         }
         let before_value = match left {
             Some((_, piece)) => piece.items[item].at(at),
-            None => bend.values[item],
+            None => bend
+                .before
+                .as_ref()
+                .map_or(after.at(at), |values| values[item]),
         };
         let jump = after.at(at) - before_value;
         if kind == ItemKind::Passport {
@@ -125,7 +128,7 @@ fn turn(
     } else {
         return None;
     };
-    let program = special.program();
+    let program = points.program();
     let mut causes: Vec<Cause> = bend
         .causes
         .iter()
@@ -137,7 +140,7 @@ fn turn(
     causes.sort();
     causes.dedup();
     let left_stretch = left.map(|(s, _)| s);
-    let print = printed(special, sums, bend, left_stretch, right, kind);
+    let print = printed(points, sums, bend, left_stretch, right, kind);
     Some(Turn {
         kind,
         at,
@@ -173,7 +176,7 @@ const WINDOW: i128 = 400;
 /// What is printed of a turning point, from exact evaluations. A jump is printed at the first payable whole-penny pay from which the
 /// new branch stays: from there on exact values are nearer to the right curve than to the left one.
 fn printed(
-    special: &Special<'_>,
+    points: &mut Points<'_, '_>,
     sums: &Sums,
     bend: &Bend,
     left: Option<&Stretch>,
@@ -201,7 +204,11 @@ fn printed(
     {
         return smooth();
     }
-    let exact = |pence: i128| -> Option<(Fraction, (Money, Money))> {
+    let before_at_zero = left.is_none().then(|| {
+        let t = sums.totals(&points.exactly_at(at));
+        (t.net, t.after_costs)
+    });
+    let mut exact = |pence: i128| -> Option<(Fraction, (Money, Money))> {
         let pay = Fraction::new(pence, 100);
         let line = left.filter(|s| s.pay.at(at) > pay && !s.pay.slope(at).is_zero());
         let hours = match line {
@@ -211,7 +218,7 @@ fn printed(
         if hours.is_negative() {
             return None;
         }
-        let t = sums.totals(&special.exactly_at(hours));
+        let t = sums.totals(&points.exactly_at(hours));
         Some((hours, (t.net, t.after_costs)))
     };
     let place = (right.pay.at(at) * Fraction::whole(100)).ceil();
@@ -226,12 +233,8 @@ fn printed(
             None => smooth(),
         };
     }
-    let before_at_zero = left.is_none().then(|| {
-        let t = sums.totals(&special.exactly_at(at));
-        (t.net, t.after_costs)
-    });
     let measured = |t: (Money, Money)| if kind == TurnKind::CostStep { t.1 } else { t.0 };
-    let is_new = |pence: i128| -> bool {
+    let mut is_new = |pence: i128| -> bool {
         let Some((hours, found)) = exact(pence) else {
             return false;
         };

@@ -12,7 +12,7 @@ mod kinds;
 mod listing;
 mod step;
 
-pub use build::{Builder, TooLarge};
+pub use build::{Builder, MOST_HOURS, TooLarge};
 pub use kinds::{ItemKind, Moment, Settling, Shape};
 pub use step::{
     Amount, Entered, FactRef, Guard, Input, Item, Line, Manner, Note, Op, Program, Reg, Scales,

@@ -155,7 +155,7 @@ fn the_good_lists_together_touch_every_rule() {
                         .expect("a program");
                     let machine = Machine::new(program);
                     let special = machine.special(&setting.facts(machine.program()));
-                    if !special.holds(setting.own_hours()).is_empty() {
+                    if !special.standing(setting.own_hours()).holds.is_empty() {
                         held.push(home.reference.clone());
                     }
                     for hours in [

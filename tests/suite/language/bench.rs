@@ -168,12 +168,12 @@ fn difference(expect: &str, pack: &Pack, schema: &Schema, household: &Household)
     });
     match words[0] {
         "note" => {
-            return (special.notes(hours).join(", ") != wanted)
-                .then(|| format!("notes: {:?}", special.notes(hours)));
+            return (special.standing(hours).notes.join(", ") != wanted)
+                .then(|| format!("notes: {:?}", special.standing(hours).notes));
         }
         "held" => {
-            return (special.holds(hours).join(", ") != wanted)
-                .then(|| format!("holds: {:?}", special.holds(hours)));
+            return (special.standing(hours).holds.join(", ") != wanted)
+                .then(|| format!("holds: {:?}", special.standing(hours).holds));
         }
         _ => {}
     }

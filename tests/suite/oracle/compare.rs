@@ -195,12 +195,20 @@ impl Both<'_> {
         let mut hours = vec![0, own.0, 25, 16_800];
         hours.extend((0..asked.law_points).map(|_| luck.between(0, 240) * 25));
         hours.extend((0..asked.law_points / 3).map(|_| luck.between(0, 16_800)));
-        let mut values = Vec::new();
         for hundredths in hours {
             let at = q(i128::from(hundredths), 100);
-            let found = self.special.at(Hours(hundredths), &mut values);
+            let mut points = self.special.points();
+            let found = points.at(Hours(hundredths));
+            let many = points.many(&[Hours(0), Hours(hundredths), Hours(16_800)]);
+            if many[1] != found {
+                return Err(format!(
+                    "many points at once differ from one: {:?} and {found:?}",
+                    many[1]
+                ));
+            }
             let exactly = self
                 .special
+                .points()
                 .exactly_at(Fraction::new(i128::from(hundredths), 100));
             self.same_money(&found, &at, "on the grid")?;
             if found != exactly {
@@ -217,12 +225,12 @@ impl Both<'_> {
                 (
                     "holds",
                     self.oracle.holds(&at),
-                    self.special.holds(Hours(hundredths)),
+                    self.special.standing(Hours(hundredths)).holds,
                 ),
                 (
                     "notes",
                     self.oracle.notes(&at),
-                    self.special.notes(Hours(hundredths)),
+                    self.special.standing(Hours(hundredths)).notes,
                 ),
             ] {
                 if mine != sorted(theirs.clone()) {
@@ -236,7 +244,11 @@ impl Both<'_> {
         for _ in 0..asked.fractions {
             let below = [3, 7, 64, 1000, 5200, 99_991, 1_000_003][luck.below(7)];
             let at = q(i128::from(luck.between(0, 100 * below)), i128::from(below));
-            self.same_money(&self.special.exactly_at(fraction(&at)), &at, "exactly")?;
+            self.same_money(
+                &self.special.points().exactly_at(fraction(&at)),
+                &at,
+                "exactly",
+            )?;
             tally.fraction_points += 1;
         }
         Ok(())
@@ -361,7 +373,8 @@ impl Both<'_> {
         let step = walk.bends.len().div_ceil(asked.most_pieces).max(1);
         for bend in walk.bends.iter().skip(luck.below(step)).step_by(step) {
             let at = of(bend.at);
-            for (item, (mine, theirs)) in self.smooth(&at).iter().zip(&bend.values).enumerate() {
+            let values = self.special.smooth_at(bend.at);
+            for (item, (mine, theirs)) in self.smooth(&at).iter().zip(&values).enumerate() {
                 let theirs = of(*theirs);
                 // A value that does not fit is given to a thousand million millionth.
                 let fits = mine.numer().to_i128().is_some() && mine.denom().to_i128().is_some();
@@ -429,11 +442,10 @@ impl Both<'_> {
             .to_integer()
             .to_i64()
             .expect("hours are small");
-        let mut values = Vec::new();
         for _ in 0..asked.bounded {
             let quarter = luck.between(0, quarters);
             let at = q(i128::from(quarter), 4);
-            let law = self.special.at(Hours(quarter * 25), &mut values);
+            let law = self.special.points().at(Hours(quarter * 25));
             let registers = bounds(self.program(), &self.facts, &at);
             let piece = walk
                 .pieces
