@@ -359,7 +359,7 @@ fn each_office_stands_once_and_only_where_it_is_needed() {
 
 #[test]
 fn amounts_that_nobody_checked_are_marked() {
-    let mut marked = 0;
+    let (mut marked, mut unmarked) = (0, 0);
     for letter in LETTERS.iter() {
         let unconfirmed = letter
             .assessment
@@ -386,9 +386,15 @@ fn amounts_that_nobody_checked_are_marked() {
                 letter.name
             );
             marked += 1;
+        } else {
+            unmarked += 1;
         }
     }
-    assert!(marked >= 10, "{marked} letters");
+    // Few amounts are left that nobody has read in their source.
+    assert!(
+        marked >= 2 && unmarked >= 10,
+        "{marked} and {unmarked} letters"
+    );
 }
 
 #[test]
