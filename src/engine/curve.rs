@@ -14,7 +14,8 @@ pub struct Curve {
 }
 
 impl Curve {
-    /// The value at these hours. Where it does not fit into 128 bits it is given to a thousand million millionth.
+    /// The value at these hours. Where it does not fit into 128 bits it is given to a thousand million millionth, or as
+    /// finely as its size allows.
     pub fn at(&self, h: Fraction) -> Fraction {
         if self.c[1] == 0 && self.c[2] == 0 {
             return Fraction::new(self.c[0], self.scale);
@@ -27,12 +28,18 @@ impl Curve {
         let numerator = c0 * &q * &q + c1 * &p * &q + c2 * &p * &p;
         let denominator = BigInt::from(self.scale) * &q * &q;
         small_fraction(&numerator, &denominator).unwrap_or_else(|| {
-            let fine = BigInt::from(1_000_000_000_000_000i64);
-            let scaled = numerator * fine / denominator;
-            Fraction::new(
-                i128::try_from(scaled).expect("a bounded value fits"),
-                1_000_000_000_000_000,
-            )
+            // As fine as leaves room to reckon with it; large values are the unscaled ones of the walk.
+            let mut fine = 1_000_000_000_000_000i128;
+            loop {
+                let scaled = &numerator * BigInt::from(fine) / &denominator;
+                match i128::try_from(scaled) {
+                    Ok(scaled) if fine == 1 || scaled.unsigned_abs() >> 100 == 0 => {
+                        return Fraction::new(scaled, fine);
+                    }
+                    Ok(_) | Err(_) if fine > 1 => fine /= 1000,
+                    Ok(_) | Err(_) => unreachable!("a bounded value fits"),
+                }
+            }
         })
     }
 
@@ -88,7 +95,20 @@ impl Curve {
 
     /// The slope at these hours.
     pub fn slope(&self, h: Fraction) -> Fraction {
-        Fraction::new(self.c[1], self.scale) + Fraction::new(2 * self.c[2], self.scale) * h
+        Curve {
+            c: [self.c[1], 2 * self.c[2], 0],
+            scale: self.scale,
+        }
+        .at(h)
+    }
+
+    /// The intercept at zero hours of the tangent at these hours: V = Y(h) − Y′(h) h = c0 − c2 h².
+    pub fn intercept(&self, h: Fraction) -> Fraction {
+        Curve {
+            c: [self.c[0], 0, -self.c[2]],
+            scale: self.scale,
+        }
+        .at(h)
     }
 
     /// Whether two curves are the same function.
@@ -224,4 +244,26 @@ fn small_fraction(numerator: &BigInt, denominator: &BigInt) -> Option<Fraction> 
     let n = i128::try_from(numerator / &common).ok()?;
     let d = i128::try_from(denominator / &common).ok()?;
     Some(Fraction::new(n, d))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn values_too_large_for_exact_fractions_are_near() {
+        let unit = 10i128.pow(12);
+        let curve = Curve {
+            c: [3 * unit, 2 * unit, unit],
+            scale: 1,
+        };
+        // (1 + h)² + 2 at a place with a large denominator, in units of a million million.
+        let h = Fraction::whole(47) + Fraction::new(1, 1 << 61);
+        let nearly = curve.at(h);
+        assert_eq!(nearly.floor(), 2306 * unit);
+        assert!(nearly - Fraction::whole(2306 * unit) < Fraction::new(1, 1000));
+        assert_eq!(curve.slope(Fraction::whole(2)), Fraction::whole(6 * unit));
+        // The tangent at 2 hours: 11 − 6 × 2.
+        assert_eq!(curve.intercept(Fraction::whole(2)), Fraction::whole(-unit));
+    }
 }

@@ -104,18 +104,9 @@ fn segments(sums: &Sums, walk: &Walk, stretches: &[Stretch]) -> Vec<Segment> {
                     .enumerate()
                     .map(|(item, c)| if c.c[1] == 0 && c.c[2] == 0 { Fraction::ZERO } else { share(c.slope(s.from)) } * Fraction::whole(i128::from(sums.sign(item))))
                     .collect(),
-                // V = Y(h) − ω h at the start of the segment (methods section 8).
-                virtual_income: s.net.at(Fraction::ZERO) + virtual_shift(s),
+                // V = Y(h) − ω h at the start of the segment (methods section 8); of the second degree, that of the tangent there.
+                virtual_income: s.net.intercept(s.from),
             }
         })
         .collect()
-}
-
-/// For a segment of the second degree the intercept is that of the tangent at its start: V = Y(h) − Y′(h) h = c0 − c2 h².
-fn virtual_shift(s: &Stretch) -> Fraction {
-    if s.net.c[2] == 0 {
-        Fraction::ZERO
-    } else {
-        -(Fraction::new(s.net.c[2], s.net.scale) * s.from * s.from)
-    }
 }

@@ -46,9 +46,8 @@ pub(super) fn once_settled(
         return Ok(None);
     }
     gathered.merge(later.gathered);
-    let named = |settling: &&Settling| {
-        later.causes.is_empty() || later.causes.iter().any(|name| *name == settling.name)
-    };
+    let named =
+        |settling: &&Settling| later.causes.is_empty() || later.causes.contains(&settling.name);
     let mut facts: Vec<String> = vec![];
     for settling in later.open.iter().filter(named) {
         if !facts.contains(&settling.name) {

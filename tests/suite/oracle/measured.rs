@@ -5,7 +5,7 @@ use super::book::Book;
 use super::homes::{Village, marks, shown};
 use super::invent::{DAYS, files, invent};
 use super::luck::Luck;
-use super::text::day;
+use super::text::{day, q};
 use hourworth::case::Household;
 use hourworth::engine::Machine;
 use hourworth::load::{check_pack, schema_of};
@@ -110,9 +110,12 @@ fn wrong_traps(line: &BudgetLine) -> Option<String> {
             (s.net_from, s.net_to)
         }
     };
+    // In big fractions, since the ends may be irrational places with large denominators.
+    let big = |value: Fraction| q(value.numerator(), value.denominator());
     let bent = |s: &Segment| {
-        let middle = (s.net_to - s.net_from) / (s.to - s.from) * s.from;
-        s.net_from - middle != s.virtual_income
+        let (from, to) = (big(s.from), big(s.to));
+        let slope = (big(s.net_to) - big(s.net_from)) / (to - &from);
+        big(s.net_from) - slope * from != big(s.virtual_income)
     };
     if line.segments.iter().any(bent) {
         return None;
