@@ -7,6 +7,7 @@ mod suite {
     mod documents;
     mod imports;
     mod language;
+    mod local;
     mod oracle;
     mod published;
     mod statement;

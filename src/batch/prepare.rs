@@ -2,16 +2,16 @@
 //! the templates. In: where they are. Out: [`Prepared`], or every fault that stands in the way.
 
 use super::RunFolder;
-use crate::case::{ReadOptions, Schema};
+use crate::case::{FactType, Household, ReadOptions, Schema};
 use crate::diag::Diagnostic;
 use crate::load::{
     CaseList, Error, Files, OfficeFile, PackFiles, Rows, Sorting, Survey, Terms, check_pack,
-    read_office, read_pack, read_templates, schema_of, terms_of,
+    lay_local, read_office, read_pack, read_templates, schema_of, terms_of,
 };
-use crate::rules::Pack;
+use crate::rules::{Local, Pack};
 use crate::source::Sources;
 use crate::statement::TemplateSet;
-use std::path::Path;
+use std::path::{Path, PathBuf};
 
 /// Where a command's inputs are.
 #[derive(Clone, Copy, Debug, Default)]
@@ -22,6 +22,8 @@ pub struct Places<'a> {
     pub templates: Option<&'a Path>,
     /// An office file.
     pub office: Option<&'a Path>,
+    /// Local files beside those that the list names.
+    pub local: &'a [PathBuf],
 }
 
 /// Inputs that were read and checked.
@@ -51,10 +53,16 @@ pub struct Prepared {
 /// Where something cannot be read, and every fault of the list's settings, the pack or the terms.
 pub fn prepare(list: &Path, places: &Places<'_>) -> Result<Prepared, Error> {
     let list = CaseList::open(list)?;
-    let pack_files = match places.rules {
+    let mut pack_files = match places.rules {
         Some(name) => read_pack(name, None)?,
         None => read_pack(&list.settings.pack, list.folder())?,
     };
+    lay_local(
+        &mut pack_files,
+        &list.settings.local,
+        list.folder(),
+        places.local,
+    )?;
     let pack = checked(&pack_files)?;
     let schema = schema_of(&pack);
     let terms = terms_of(&list.settings, &pack)
@@ -150,6 +158,26 @@ fn check_office(office: &OfficeFile, schema: &Schema) -> Result<(), Error> {
 }
 
 impl Prepared {
+    /// The local files whose word a household has as one of its facts.
+    pub fn locals_of(&self, household: &Household) -> impl Iterator<Item = &Local> {
+        let has = |local: &Local| {
+            let mut kinds = self.schema.kinds.iter().zip(&household.instances);
+            kinds.any(|(kind, instances)| {
+                kind.facts.iter().enumerate().any(|(at, fact)| {
+                    let FactType::Choice(words) = &fact.ty else {
+                        return false;
+                    };
+                    let word = words.iter().position(|word| *word == local.word);
+                    local.facts.contains(&fact.name)
+                        && word.is_some_and(|word| {
+                            instances.iter().any(|one| one.values[at] == word as i64)
+                        })
+                })
+            })
+        };
+        self.pack.locals().iter().filter(move |local| has(local))
+    }
+
     /// Reads the whole list once. A list that is out of order is sorted: into the run's folder where there is one, else in
     /// memory.
     ///

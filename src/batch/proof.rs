@@ -107,5 +107,6 @@ fn settings(case: &Case) -> Option<ListSettings> {
         delimiter: None,
         changed: vec![],
         grid: crate::case::GridSettings::default(),
+        local: vec![],
     })
 }

@@ -13,6 +13,8 @@ pub struct Inputs {
     pub pack_title: String,
     /// Files of the rule pack.
     pub pack: Vec<(String, String)>,
+    /// Local files that were laid over it.
+    pub local: Vec<(String, String)>,
     /// Files of the templates.
     pub templates: Vec<(String, String)>,
     /// The office file, where there is one.
@@ -36,6 +38,7 @@ impl Inputs {
         let groups = [
             &self.list,
             &self.pack,
+            &self.local,
             &self.templates,
             &self.office,
             &self.options,
@@ -100,6 +103,7 @@ struct Written<'a> {
     list: Pairs<'a>,
     rules_title: &'a str,
     rules: Pairs<'a>,
+    local: Pairs<'a>,
     templates: Pairs<'a>,
     office: Pairs<'a>,
 }
@@ -133,6 +137,7 @@ impl Record<'_> {
             list: Pairs(&self.inputs.list),
             rules_title: &self.inputs.pack_title,
             rules: Pairs(&self.inputs.pack),
+            local: Pairs(&self.inputs.local),
             templates: Pairs(&self.inputs.templates),
             office: Pairs(&self.inputs.office),
         };

@@ -11,10 +11,10 @@ use crate::diag::nearest;
 use crate::load::{Files, HoldRules, Office, PackFiles, Terms, schema_of};
 use crate::measures::{Assessment, TurnKind, Verdict};
 use crate::num::{Fraction, Hours};
-use crate::rules::{Change, Pack};
+use crate::rules::{Change, Local, Pack};
 use crate::statement::{
-    FactShape, LetterContext, LetterDelivery, StatementError, TemplateSet, Texts, Typesetter,
-    typeset,
+    FactShape, LetterContext, LetterDelivery, LocalRules, StatementError, TemplateSet, Texts,
+    Typesetter, typeset,
 };
 use chrono::NaiveDate;
 use serde::{Deserialize, Serialize};
@@ -258,6 +258,7 @@ pub struct Press {
     templates: TemplateSet,
     texts: BTreeMap<String, Arc<Texts>>,
     labels: BTreeMap<String, BTreeMap<String, String>>,
+    locals: Vec<Local>,
     context: LetterContext,
     run_id: String,
 }
@@ -292,6 +293,7 @@ impl Press {
             period: pack.manifest.period.word().to_owned(),
             office: letterhead(office),
             labels: BTreeMap::new(),
+            locals: vec![],
             facts: fact_shapes(&schema_of(pack)),
             texts: set.texts("en")?,
             delivery: LetterDelivery::default(),
@@ -301,6 +303,7 @@ impl Press {
             templates: set,
             texts: BTreeMap::new(),
             labels: pack.labels.clone(),
+            locals: pack.locals().to_vec(),
             context,
             run_id: orders.run_id.clone(),
         })
@@ -331,6 +334,11 @@ impl Press {
         self.context.number = statement_number(&self.run_id, &household.reference);
         self.context.texts = texts;
         self.context.labels = self.labels.get(language).cloned().unwrap_or_default();
+        self.context.locals = self
+            .locals
+            .iter()
+            .map(|local| local_rules(local, language))
+            .collect();
         self.context.delivery = LetterDelivery {
             address: delivery.address.clone(),
             paper: match delivery.paper.as_str() {
@@ -381,6 +389,20 @@ fn fact_shapes(schema: &Schema) -> BTreeMap<String, FactShape> {
         }
     }
     shapes
+}
+
+/// A local file as a letter in this language names it.
+fn local_rules(local: &Local, language: &str) -> LocalRules {
+    let office = local.offices.get(language).or(local.offices.get("en"));
+    LocalRules {
+        title: local.title.clone(),
+        source: local.source.clone(),
+        facts: local.facts.clone(),
+        word: local.word.clone(),
+        items: local.items.clone(),
+        office: office.cloned().unwrap_or_default(),
+        until: day_of(local.to).unwrap_or_default(),
+    }
 }
 
 /// The office's lines as a letter prints them.

@@ -85,11 +85,13 @@ pub struct ListSettings {
     pub changed: Vec<ChangedAmount>,
     /// The hours to show.
     pub grid: GridSettings,
+    /// Local files that are laid over the pack, as paths from the list's folder.
+    pub local: Vec<String>,
 }
 
 /// The keys of `list.toml`.
-const KEYS: [&str; 7] = [
-    "title", "pack", "date", "dates", "format", "changed", "grid",
+const KEYS: [&str; 8] = [
+    "title", "pack", "date", "dates", "format", "changed", "grid", "local",
 ];
 
 impl ListSettings {
@@ -142,6 +144,7 @@ fn read(file: &str, text: &str, others: OtherKeys) -> Result<ListSettings, Vec<F
     let mut dates = vec![];
     let mut changed = vec![];
     let mut grid = GridSettings::default();
+    let mut local = vec![];
     let (format, delimiter) = read_format(&mut toml, root);
     for entry in entries(root) {
         match entry.key.as_str() {
@@ -161,6 +164,7 @@ fn read(file: &str, text: &str, others: OtherKeys) -> Result<ListSettings, Vec<F
             }
             "changed" => changed = read_changed(&mut toml, &entry),
             "grid" => grid = read_grid(&mut toml, &entry, format),
+            "local" => local = read_files(&mut toml, &entry),
             "format" => {}
             _ if others == OtherKeys::OfHousehold => {}
             other => {
@@ -207,6 +211,7 @@ fn read(file: &str, text: &str, others: OtherKeys) -> Result<ListSettings, Vec<F
             delimiter,
             changed,
             grid,
+            local,
         }),
         _ => {
             toml.faults.sort_by_key(Fault::row);
@@ -368,6 +373,23 @@ fn read_grid(toml: &mut TomlText<'_>, entry: &Entry<'_>, format: Format) -> Grid
         }
     }
     grid
+}
+
+/// Names of local files.
+fn read_files(toml: &mut TomlText<'_>, entry: &Entry<'_>) -> Vec<String> {
+    let expected = "a list of local files, such as `local = [\"harrowmere.toml\"]`";
+    let Some(list) = entry.value.get_ref().as_array() else {
+        toml.wrong_shape(&entry.key, entry.value, expected);
+        return vec![];
+    };
+    let mut all = vec![];
+    for one in list.iter() {
+        match one.get_ref().as_str().map(str::trim) {
+            Some(name) if !name.is_empty() => all.push(name.to_owned()),
+            _ => toml.wrong_shape(&entry.key, one, expected),
+        }
+    }
+    all
 }
 
 /// How a value of this writing is read.

@@ -38,7 +38,7 @@ pub enum Command {
     Show(ShowArgs),
     /// Show every step of the working at one number of hours
     Working(WorkingArgs),
-    /// Check case lists, rule packs, templates and office files, and print every fault
+    /// Check case lists, rule packs, local files, templates and office files, and print every fault
     Vet(VetArgs),
     /// Run the published examples of a rule pack
     Prove(ProveArgs),
@@ -55,6 +55,16 @@ pub struct RulesArgs {
     /// Rule pack to use instead of the one that the list names: a built-in name or a folder
     #[arg(long, value_name = "PACK")]
     pub rules: Option<String>,
+    #[command(flatten)]
+    pub laid: LocalArgs,
+}
+
+/// Local files.
+#[derive(Debug, Args)]
+pub struct LocalArgs {
+    /// Local file to lay over the rule pack: a council's scheme or an allowance table; may be given several times
+    #[arg(long, value_name = "FILE")]
+    pub local: Vec<PathBuf>,
 }
 
 /// `hourworth print`.
@@ -185,9 +195,10 @@ pub struct WorkingArgs {
 #[command(after_help = "\
 Examples:
   hourworth vet cases
-  hourworth vet rules/uk office.toml")]
+  hourworth vet rules/uk office.toml
+  hourworth vet harrowmere.toml --rules rules/uk")]
 pub struct VetArgs {
-    /// Case lists, rule packs (folder or built-in name), template folders, office files
+    /// Case lists, rule packs (folder or built-in name), local files, template folders, office files
     #[arg(required = true, value_name = "PATH")]
     pub paths: Vec<PathBuf>,
     #[command(flatten)]
@@ -203,6 +214,8 @@ Examples:
 pub struct ProveArgs {
     /// Rule pack: a built-in name or a folder
     pub pack: String,
+    #[command(flatten)]
+    pub laid: LocalArgs,
     /// Text for people or JSON for programs, one object a line
     #[arg(long, value_enum, default_value_t)]
     pub format: Format,
@@ -216,6 +229,8 @@ Examples:
 pub struct FormArgs {
     /// Rule pack: a built-in name or a folder
     pub pack: String,
+    #[command(flatten)]
+    pub laid: LocalArgs,
     /// Folder for the files; a file that is there already is never overwritten
     #[arg(long, value_name = "FOLDER")]
     pub to: PathBuf,

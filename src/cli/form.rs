@@ -3,13 +3,14 @@
 use super::args::FormArgs;
 use super::exit::{Exit, Failure};
 use crate::batch::checked;
-use crate::load::{read_pack, schema_of};
+use crate::load::{lay_local, read_pack, schema_of};
 use std::fs::OpenOptions;
 use std::io::Write;
 
 /// Writes the files; one that is there already is left as it is, and nothing is written then.
 pub(super) fn form(args: &FormArgs) -> Result<Exit, Failure> {
-    let files = read_pack(&args.pack, None)?;
+    let mut files = read_pack(&args.pack, None)?;
+    lay_local(&mut files, &[], None, &args.laid.local)?;
     let pack = checked(&files)?;
     let blank = crate::case::form(&schema_of(&pack), &files.name, &pack.manifest.title);
     let there: Vec<String> = blank

@@ -125,6 +125,7 @@ fn held(household: &Household, reasons: &[String]) -> Exit {
 fn find(args: &OneArgs) -> Result<Result<One, Exit>, Failure> {
     let places = Places {
         rules: args.rules.rules.as_deref(),
+        local: &args.rules.laid.local,
         ..Places::default()
     };
     let prepared = prepare(&args.list, &places)?;
@@ -159,13 +160,17 @@ fn find(args: &OneArgs) -> Result<Result<One, Exit>, Failure> {
 
 fn one(prepared: &Prepared, household: Household) -> One {
     let manifest = &prepared.pack.manifest;
+    let mut rules = manifest.title.clone();
+    for local in prepared.locals_of(&household) {
+        rules.push_str(&format!("; {}", local.title));
+    }
     One {
         books: Books::new(prepared.pack.clone(), prepared.terms.clone()),
         household,
         terms: Terms {
             currency: manifest.currency.clone(),
             period: manifest.period.word().to_owned(),
-            rules: manifest.title.clone(),
+            rules,
             date: prepared.list.settings.date.to_string(),
         },
     }

@@ -9,6 +9,7 @@ use crate::batch::{
     pack_folder, prepare, run, setup,
 };
 use crate::case::{Fault, RejectedHousehold};
+use crate::load::LOCAL;
 use chrono::NaiveDate;
 use std::path::Path;
 use std::time::Duration;
@@ -22,6 +23,7 @@ pub(super) fn print(args: &PrintArgs) -> Result<Exit, Failure> {
         rules: args.rules.rules.as_deref(),
         templates: args.templates.as_deref(),
         office: args.office.as_deref(),
+        local: &args.rules.laid.local,
     };
     let prepared = prepare(&args.list, &places)?;
     let existing = if args.replace {
@@ -179,7 +181,14 @@ fn inputs(prepared: &Prepared, args: &PrintArgs) -> Inputs {
             .files
             .hashes()
             .into_iter()
-            .filter(|(name, _)| !name.starts_with("examples/"))
+            .filter(|(name, _)| !name.starts_with("examples/") && !name.starts_with(LOCAL))
+            .collect(),
+        local: prepared
+            .pack_files
+            .files
+            .hashes()
+            .into_iter()
+            .filter_map(|(name, hash)| Some((name.strip_prefix(LOCAL)?.to_owned(), hash)))
             .collect(),
         templates: prepared.templates.hashes(),
         office: prepared

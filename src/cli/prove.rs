@@ -3,7 +3,7 @@
 use super::args::{Format, ProveArgs};
 use super::exit::{Exit, Failure};
 use crate::batch::{Proof, checked, prove as run};
-use crate::load::{Asks, Error, Example, Expect, What, read_examples, read_pack};
+use crate::load::{Asks, Error, Example, Expect, What, lay_local, read_examples, read_pack};
 use crate::rules::Moment;
 use serde_json::json;
 use std::io::Write;
@@ -20,7 +20,8 @@ struct Totals {
 
 /// Runs all examples of a pack.
 pub(super) fn prove(args: &ProveArgs) -> Result<Exit, Failure> {
-    let files = read_pack(&args.pack, None)?;
+    let mut files = read_pack(&args.pack, None)?;
+    lay_local(&mut files, &[], None, &args.laid.local)?;
     let pack = checked(&files)?;
     let examples = read_examples(&files.files).map_err(Error::Findings)?;
     let mut out = std::io::stdout().lock();

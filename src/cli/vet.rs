@@ -1,11 +1,12 @@
-//! `hourworth vet`: every fault of case lists, rule packs, templates and office files.
+//! `hourworth vet`: every fault of case lists, rule packs, local files, templates and office files.
 
 use super::args::VetArgs;
 use super::exit::{Exit, Failure};
 use crate::batch::{Places, checked, prepare};
 use crate::load::{
-    Error, LIST_FILE, PACK_FILE, built_in_packs, read_office, read_pack, read_templates,
+    Error, LIST_FILE, PACK_FILE, built_in_packs, lay_local, read_office, read_pack, read_templates,
 };
+use crate::rules::Pack;
 use crate::statement::{TemplateSet, Typesetter};
 use std::io::Write;
 use std::path::Path;
@@ -16,6 +17,7 @@ enum Thing {
     List,
     Templates,
     Office,
+    Local,
 }
 
 /// Checks each path; faults go to standard output, one after another.
@@ -24,7 +26,8 @@ pub(super) fn vet(args: &VetArgs) -> Result<Exit, Failure> {
     let mut exit = Exit::Done;
     for path in &args.paths {
         let (words, found) = match thing(path)? {
-            Thing::Pack => ("rule pack", pack(path)),
+            Thing::Pack => ("rule pack", pack(path, args)),
+            Thing::Local => ("local file", local(path, args)),
             Thing::List => ("case list", list(path, args)),
             Thing::Templates => ("templates", templates(path)),
             Thing::Office => ("office file", read_office(path).map(|_| Report::sound(""))),
@@ -104,6 +107,9 @@ fn thing(path: &Path) -> Result<Thing, Failure> {
     if path.is_file() && name.ends_with(".toml") {
         // A household names its pack; an office file has none.
         let text = crate::load::read_text(path)?.text;
+        if is_local(&text) {
+            return Ok(Thing::Local);
+        }
         let household = text.lines().any(|line| {
             let line = line.trim_start();
             line.starts_with("pack") || line.starts_with("[household]")
@@ -124,17 +130,70 @@ fn thing(path: &Path) -> Result<Thing, Failure> {
     )))
 }
 
-fn pack(path: &Path) -> Result<Report, Error> {
-    let pack = checked(&read_pack(&path.to_string_lossy(), None)?)?;
+/// Whether a TOML text is a local file: it names a choice of a pack and a word, before anything else stands in brackets.
+fn is_local(text: &str) -> bool {
+    let top = || {
+        text.lines()
+            .map(str::trim_start)
+            .take_while(|line| !line.starts_with('['))
+    };
+    let has = |key: &str| {
+        top().any(|line| {
+            line.strip_prefix(key)
+                .is_some_and(|rest| rest.trim_start().starts_with('='))
+        })
+    };
+    has("choice") || has("word")
+}
+
+fn pack(path: &Path, args: &VetArgs) -> Result<Report, Error> {
+    let mut files = read_pack(&path.to_string_lossy(), None)?;
+    lay_local(&mut files, &[], None, &args.rules.laid.local)?;
+    let pack = checked(&files)?;
     Ok(Report {
         warnings: crate::batch::findings(&pack.sources, &pack.warnings),
-        ..Report::sound("")
+        ..Report::sound(&laid(&pack))
     })
+}
+
+/// The local files that were laid over a pack, to be counted.
+fn laid(pack: &Pack) -> String {
+    match pack.locals() {
+        [] => String::new(),
+        [one] => format!(", with `{}`", one.title),
+        several => format!(", with {} local files", several.len()),
+    }
+}
+
+/// Checks a local file against the pack that `--rules` or else the file itself names.
+fn local(path: &Path, args: &VetArgs) -> Result<Report, Error> {
+    let text = crate::load::read_text(path)?.text;
+    let named = text.lines().map(str::trim_start).find_map(|line| {
+        let value = line.strip_prefix("pack")?.trim_start().strip_prefix('=')?;
+        value.trim().strip_prefix('"')?.split('"').next()
+    });
+    let pack = args.rules.rules.as_deref().or(named).unwrap_or("uk");
+    let mut files = read_pack(pack, path.parent())?;
+    let mut all = args.rules.laid.local.clone();
+    all.push(path.to_owned());
+    lay_local(&mut files, &[], None, &all)?;
+    let pack = checked(&files)?;
+    let own = pack.locals().last();
+    let counted = own.map_or_else(String::new, |own| {
+        format!(
+            ", adds `{}` to {}, laid over `{}`",
+            own.word,
+            own.facts.join(", "),
+            pack.manifest.title
+        )
+    });
+    Ok(Report::sound(&counted))
 }
 
 fn list(path: &Path, args: &VetArgs) -> Result<Report, Error> {
     let places = Places {
         rules: args.rules.rules.as_deref(),
+        local: &args.rules.laid.local,
         ..Places::default()
     };
     let prepared = prepare(path, &places)?;

@@ -423,14 +423,17 @@ impl Machine {
     /// A value of a table; a key outside takes the nearest end.
     pub(super) fn looked_up(&self, table: Id<Table>, keys: impl Iterator<Item = i128>) -> Fraction {
         let table = &self.program.tables[table];
-        let index = keys
-            .zip(&table.keys)
-            .fold(0usize, |index, (key, (low, n))| {
-                let place = (key - i128::from(*low)).clamp(0, *n as i128 - 1);
-                index * n + usize::try_from(place).expect("a clamped key is a position")
-            });
-        table.values[index]
+        table.values[position(table, keys)]
     }
+}
+
+/// Position of a table's value; a key outside takes the nearest end.
+pub(super) fn position(table: &Table, keys: impl Iterator<Item = i128>) -> usize {
+    keys.zip(&table.keys)
+        .fold(0usize, |index, (key, (low, n))| {
+            let place = (key - i128::from(*low)).clamp(0, *n as i128 - 1);
+            index * n + usize::try_from(place).expect("a clamped key is a position")
+        })
 }
 
 /// Full years from one day to another (days since 1970-01-01), at least zero. Somebody born on 29 February is a year older on 1 March.

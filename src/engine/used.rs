@@ -1,7 +1,7 @@
 //! What a household's results rest on: the facts and amounts that reached its items at given hours.
 //! Branches that were not taken do not count.
 
-use super::machine::{Code, Special};
+use super::machine::{Code, Special, position};
 use crate::index::Id;
 use crate::num::Hours;
 use crate::program::{Amount, FactRef, ItemKind, Op, Reg};
@@ -40,7 +40,36 @@ impl Special<'_> {
         }
         self.facts_among(&widely, &mut used);
         self.amounts_among(&closely, &mut used);
+        for (line, amount) in self.rows_among(&values, &closely) {
+            used.amounts
+                .entry(amount)
+                .or_insert_with(|| self.program().lines[Id::new(line)].part.clone());
+        }
         used
+    }
+
+    /// Rows of tables that reached the items at these values: the line that looked each up, and its amount.
+    pub(super) fn rows_reached(&self, values: &[i128]) -> Vec<(usize, usize)> {
+        let mut reached = vec![false; self.program().steps.len()];
+        self.reach(values, Reach::Widely, &mut reached);
+        self.rows_among(values, &reached)
+    }
+
+    /// Rows of tables among reached steps. Keys do not vary with hours, so the values of any hours pick them.
+    fn rows_among(&self, values: &[i128], reached: &[bool]) -> Vec<(usize, usize)> {
+        let program = self.program();
+        let mut out = vec![];
+        for (reg, step) in program.steps.iter_with_id() {
+            if let Op::Lookup { table, keys } = &step.op
+                && reached[reg.position()]
+                && let Some(line) = step.line
+            {
+                let table = &program.tables[*table];
+                let at = position(table, keys.iter().map(|key| values[key.position()]));
+                out.extend(table.amounts[at].map(|amount| (line.position(), amount.position())));
+            }
+        }
+        out
     }
 
     /// Marks the registers that reached the items at these values.

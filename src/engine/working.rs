@@ -34,18 +34,25 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
     special.fill(hours, &mut values);
     let program = special.program();
     let needed = needed(special);
-    let mut lines: Vec<&Line> = program
+    let rows = special.rows_reached(&values);
+    let mut lines: Vec<(usize, &Line)> = program
         .lines
         .iter_with_id()
         .filter(|(id, _)| needed.contains(&id.position()))
-        .map(|(_, l)| l)
+        .map(|(id, l)| (id.position(), l))
         .collect();
-    lines.sort_by_key(|l| (l.order, l.instance));
+    lines.sort_by_key(|(_, l)| (l.order, l.instance));
     let exact = |reg: Reg| Fraction::new(values[reg.position()], program.steps[reg].scale.exact);
     lines
         .iter()
-        .filter_map(|line| {
+        .filter_map(|(at, line)| {
             let reg = line.reg?;
+            let mut amounts: Vec<usize> = line.amounts.iter().map(|a| a.position()).collect();
+            for (_, row) in rows.iter().filter(|(line, _)| line == at) {
+                if !amounts.contains(row) {
+                    amounts.push(*row);
+                }
+            }
             Some(Worked {
                 part: line.part.clone(),
                 name: if line.as_if {
@@ -63,7 +70,7 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
                     .map(|e| format!("{} = {}", e.name, shown(exact(e.reg), &e.unit, &e.words)))
                     .collect(),
                 law: line.law.clone(),
-                amounts: line.amounts.iter().map(|a| a.position()).collect(),
+                amounts,
             })
         })
         .collect()

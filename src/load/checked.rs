@@ -1,6 +1,7 @@
 //! A pack's files to a checked pack, and the schema of the lists that it takes.
 
 use super::PackFiles;
+use super::local::LOCAL;
 use crate::case::{FactSpec, FactType, KindSpec, Need, Schema};
 use crate::diag::{Diagnostic, nearest};
 use crate::num::Fraction;
@@ -69,8 +70,11 @@ pub fn check_pack(pack: &PackFiles) -> Result<Pack, (Sources, Vec<Diagnostic>)> 
         .files
         .text("amounts.csv")
         .map(|text| sources.add("amounts.csv", text));
-    let (mut tables, mut labels) = (Vec::new(), Vec::new());
+    let (mut tables, mut labels, mut locals) = (Vec::new(), Vec::new(), Vec::new());
     for (name, text) in pack.files.texts() {
+        if let Some(local) = name.strip_prefix(LOCAL) {
+            locals.push(sources.add(local, text));
+        }
         if let Some(table) = name
             .strip_prefix("tables/")
             .and_then(|n| n.strip_suffix(".csv"))
@@ -91,6 +95,7 @@ pub fn check_pack(pack: &PackFiles) -> Result<Pack, (Sources, Vec<Diagnostic>)> 
         amounts,
         tables,
         labels,
+        locals,
     });
     match result {
         Ok(pack) if faults.is_empty() => Ok(pack),

@@ -257,6 +257,8 @@ pub struct Table {
     pub keys: Vec<(i64, usize)>,
     /// Values, the last key fastest.
     pub values: Vec<Fraction>,
+    /// The row that each value comes from, as an amount; none where there is no row.
+    pub amounts: Vec<Option<Id<Amount>>>,
 }
 
 /// A flat program.

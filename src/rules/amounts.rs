@@ -134,7 +134,7 @@ fn records(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> Vec<(Span,
 }
 
 /// A value of a type as a table writes it, or what was expected. A rate stands in percent.
-fn typed(text: &str, ty: Ty, words: &[String]) -> Result<Fraction, String> {
+pub(super) fn typed(text: &str, ty: Ty, words: &[String]) -> Result<Fraction, String> {
     let found = match ty {
         Ty::Money(_) | Ty::Hours | Ty::Number => decimal(text),
         Ty::Rate => decimal(text).map(|value| value / Fraction::whole(100)),

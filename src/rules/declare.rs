@@ -3,9 +3,10 @@
 use super::amounts::AmountDecl;
 use super::ast::{FactStatement, Ident, Part, StatementKind, TypeName};
 use super::bodies::{Body, BodyOf};
+use super::local_text::LocalText;
 use super::manifest::Manifest;
 use super::pack::{
-    ADULT, CHILD, ChoiceDecl, ConversionDecl, HOUSEHOLD, KindDecl, OTHER, Pack, TableDecl,
+    ADULT, CHILD, ChoiceDecl, ConversionDecl, Filled, HOUSEHOLD, KindDecl, OTHER, Pack, TableDecl,
 };
 use super::tree::{BandsDecl, Definition, ScaleDecl};
 use super::types::{Period, Ty};
@@ -35,16 +36,25 @@ pub(super) struct Declarer<'a> {
     pub(super) broken: HashSet<String>,
 }
 
+/// Where the rows of tables come from.
+pub(super) struct Rows {
+    /// `tables/NAME.csv`, by name.
+    pub tables: Vec<(String, FileId, String)>,
+    /// Local files.
+    pub locals: Vec<LocalText>,
+}
+
 /// Builds the pack. Definitions with faults keep an empty body.
 pub(super) fn declare(
     manifest: Manifest,
     parts: Vec<Part>,
     amounts: Vec<AmountDecl>,
     labels: BTreeMap<String, BTreeMap<String, String>>,
-    table_texts: &[(String, FileId, String)],
+    rows: Rows,
     broken: BTreeSet<String>,
     faults: &mut Vec<Diagnostic>,
 ) -> Pack {
+    let Rows { tables, locals } = rows;
     let kind = |name: &str, owner| KindDecl {
         name: name.to_owned(),
         owner,
@@ -76,6 +86,8 @@ pub(super) fn declare(
         definitions: Vec::new(),
         holds: Vec::new(),
         notes: Vec::new(),
+        locals: Vec::new(),
+        open_dates: BTreeSet::new(),
     };
     let broken = parts
         .iter()
@@ -92,14 +104,17 @@ pub(super) fn declare(
     for part in &parts {
         declarer.kinds_and_choices(part);
     }
+    let locals = super::local::add_words(&mut declarer, locals);
     for part in &parts {
-        declarer.facts_and_tables(part, table_texts);
+        declarer.facts_and_tables(part, &tables);
     }
+    super::local::add_rows(&mut declarer, &locals);
     let mut bodies = Vec::new();
     for (at, part) in parts.iter().enumerate() {
         declarer.heads(at, part, &mut bodies);
     }
     declarer.bodies(&parts, bodies);
+    super::local::finish(&mut declarer, locals);
     declarer.pack
 }
 
@@ -169,10 +184,11 @@ impl Declarer<'_> {
                             );
                         }
                     }
-                    let words = words.iter().map(|w| w.text.clone()).collect();
+                    let words: Vec<String> = words.iter().map(|w| w.text.clone()).collect();
                     self.pack.choices.push(ChoiceDecl {
                         name: name.text.clone(),
                         span: name.span,
+                        own: words.len(),
                         words,
                     });
                 }
@@ -326,7 +342,35 @@ impl Declarer<'_> {
                             }
                         }
                     }
-                    match table_texts.iter().find(|(table, ..)| *table == name.text) {
+                    let filled = super::local::filled(&self.pack.manifest, &name.text);
+                    let text = table_texts.iter().find(|(table, ..)| *table == name.text);
+                    match text {
+                        Some((_, file, _)) if filled == Filled::Local => {
+                            let whole = Span {
+                                file: *file,
+                                start: 0,
+                                end: 0,
+                            };
+                            self.faults.push(
+                                Diagnostic::fault(whole, format!("local files alone fill `{}`", name.text))
+                                    .expected("no file of the pack for it, or its name under `adds_to` in `pack.toml`"),
+                            );
+                        }
+                        None if filled == Filled::Local => {
+                            if found.len() == keys.len() {
+                                self.broken.remove(&name.text);
+                                self.pack.tables.push(TableDecl {
+                                    name: name.text.clone(),
+                                    span: name.span,
+                                    file: name.span.file,
+                                    header: 0,
+                                    keys: found,
+                                    gives,
+                                    rows: Vec::new(),
+                                    filled,
+                                });
+                            }
+                        }
                         Some((_, file, text)) if found.len() == keys.len() => {
                             let words = match gives {
                                 Ty::Choice(at) => self.pack.choices[at].words.clone(),
@@ -350,6 +394,7 @@ impl Declarer<'_> {
                                 keys: found,
                                 gives,
                                 rows,
+                                filled,
                             });
                         }
                         Some(_) => {}

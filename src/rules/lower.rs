@@ -2,7 +2,7 @@
 //!
 //! Sums and searches are unrolled; a figure that no item needs is left out. `lower_expr` holds the expressions.
 
-use super::amounts::day_text;
+use super::amounts::{TableRow, day_text};
 use super::pack::{ADULT, Change, HOUSEHOLD, JOB, Pack};
 use super::types::Ty;
 use crate::diag::{Diagnostic, nearest};
@@ -572,10 +572,41 @@ impl Lowering<'_> {
             .into_iter()
             .map(|v| v.unwrap_or(Fraction::ZERO))
             .collect();
+        let unit = super::local::unit(self.pack, decl.gives);
+        let mut entered: HashMap<&[String], Id<Amount>> = HashMap::new();
+        let mut amounts = Vec::new();
+        for row in dense.rows {
+            let Some(TableRow { keys, row }) = row else {
+                amounts.push(None);
+                continue;
+            };
+            // A row may stand at several places: a count beyond its word's own takes the nearest.
+            let id = *entered.entry(keys).or_insert_with(|| {
+                self.builder.amount(Amount {
+                    name: format!("{}[{}]", decl.name, keys.join(", ")),
+                    value: match unit.as_str() {
+                        "word" | "yesno" | "date" => row.shown.clone(),
+                        unit => format!("{} {unit}", row.shown),
+                    },
+                    from: day_text(row.from),
+                    to: if row.to == i64::MAX {
+                        String::new()
+                    } else {
+                        day_text(row.to)
+                    },
+                    source: row.source.clone(),
+                    locator: row.locator.clone(),
+                    confirmed: row.confirmed,
+                    changed_because: String::new(),
+                })
+            });
+            amounts.push(Some(id));
+        }
         let id = self.builder.table(Table {
             name: decl.name.clone(),
             keys: dense.keys,
             values,
+            amounts,
         });
         self.tables.insert((at, dated), id);
         id

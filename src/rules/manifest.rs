@@ -28,6 +28,43 @@ pub struct Manifest {
     pub dates: Vec<(String, String)>,
     /// Where each date is named.
     pub(super) date_spans: Vec<Span>,
+    /// What local files may add.
+    pub(super) open: Vec<Open>,
+}
+
+/// A word of `pack.toml` with its place.
+pub(super) type Word = (String, Span);
+
+/// A choice to which local files may add words, and what they give for such a word.
+#[derive(Clone, Debug)]
+pub(super) struct Open {
+    pub choice: Word,
+    /// Tables that each local file fills.
+    pub fills: Vec<Word>,
+    /// Tables that a local file may fill: left out, they give nothing.
+    pub may_fill: Vec<Word>,
+    /// Tables that a local file fills where it gives a word of a choice, by that word; otherwise it may not.
+    pub fills_where: Vec<(Word, Vec<Word>)>,
+    /// Tables of the pack that each local file adds rows to.
+    pub adds_to: Vec<Word>,
+    /// Items that the place's own office runs.
+    pub office_of: Vec<Word>,
+}
+
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+struct WrittenOpen {
+    choice: Spanned<String>,
+    #[serde(default)]
+    fills: Vec<Spanned<String>>,
+    #[serde(default)]
+    may_fill: Vec<Spanned<String>>,
+    #[serde(default)]
+    fills_where: BTreeMap<Spanned<String>, Vec<Spanned<String>>>,
+    #[serde(default)]
+    adds_to: Vec<Spanned<String>>,
+    #[serde(default)]
+    office_of: Vec<Spanned<String>>,
 }
 
 #[derive(Deserialize)]
@@ -39,6 +76,8 @@ struct Written {
     period: Spanned<String>,
     covers: Covers,
     dates: Spanned<BTreeMap<Spanned<String>, Spanned<String>>>,
+    #[serde(default)]
+    local: Vec<WrittenOpen>,
 }
 
 #[derive(Deserialize)]
@@ -156,7 +195,25 @@ pub(super) fn read(file: FileId, text: &str, faults: &mut Vec<Diagnostic>) -> Op
             );
         }
     }
+    let word = |word: Spanned<String>| {
+        let span = place(word.span());
+        (word.into_inner(), span)
+    };
+    let words = |list: Vec<Spanned<String>>| list.into_iter().map(word).collect();
+    let open = |written: WrittenOpen| Open {
+        choice: word(written.choice),
+        fills: words(written.fills),
+        may_fill: words(written.may_fill),
+        fills_where: written
+            .fills_where
+            .into_iter()
+            .map(|(when, tables)| (word(when), words(tables)))
+            .collect(),
+        adds_to: words(written.adds_to),
+        office_of: words(written.office_of),
+    };
     Some(Manifest {
+        open: written.local.into_iter().map(open).collect(),
         title: written.title.into_inner(),
         area: written.area.into_inner(),
         currency: written.currency.into_inner(),

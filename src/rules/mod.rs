@@ -15,6 +15,9 @@ mod facts;
 mod graph;
 mod labels;
 mod lexer;
+mod local;
+mod local_gaps;
+mod local_text;
 mod lower;
 mod lower_expr;
 mod manifest;
@@ -29,6 +32,7 @@ mod used;
 
 pub use crate::program::Moment;
 pub use amounts::{day, day_text, decimal};
+pub use local::Local;
 pub use manifest::Manifest;
 pub use pack::{Change, FactDecl, FactKind, KindDecl, Pack, PackTexts, check};
 pub use types::Period;

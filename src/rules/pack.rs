@@ -2,6 +2,7 @@
 
 use super::amounts::{AmountDecl, TableRow};
 use super::ast::Part;
+use super::local::Local;
 use super::manifest::Manifest;
 use super::tree::{BandsDecl, Condition, Definition, ScaleDecl, What};
 use super::types::{Period, Ty};
@@ -26,6 +27,8 @@ pub struct PackTexts {
     pub tables: Vec<(String, FileId)>,
     /// `labels.<language>.csv`, by language.
     pub labels: Vec<(String, FileId)>,
+    /// Local files.
+    pub locals: Vec<FileId>,
 }
 
 /// An amount that a list changes for a what-if.
@@ -120,6 +123,8 @@ pub(super) struct ChoiceDecl {
     pub name: String,
     pub span: Span,
     pub words: Vec<String>,
+    /// How many of its words are the pack's own; those of local files follow.
+    pub own: usize,
 }
 
 #[derive(Clone, Debug)]
@@ -143,6 +148,18 @@ pub(super) struct TableDecl {
     pub keys: Vec<Option<usize>>,
     pub gives: Ty,
     pub rows: Vec<TableRow>,
+    pub filled: Filled,
+}
+
+/// Who gives the rows of a table.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Filled {
+    /// The pack alone.
+    Pack,
+    /// The pack, and local files for their own words of the first key.
+    Both,
+    /// Local files alone: for the pack's own words of the first key it gives nothing.
+    Local,
 }
 
 /// A checked pack.
@@ -168,6 +185,9 @@ pub struct Pack {
     pub(super) definitions: Vec<Definition>,
     pub(super) holds: Vec<Condition>,
     pub(super) notes: Vec<Condition>,
+    pub(super) locals: Vec<Local>,
+    /// Dates of the list on which tables are looked up that local files fill.
+    pub(super) open_dates: BTreeSet<usize>,
 }
 
 /// Checks a pack.
@@ -211,10 +231,15 @@ pub fn check(texts: PackTexts) -> Result<Pack, (Sources, Vec<Diagnostic>)> {
             labels.insert(language.clone(), texts);
         }
     }
-    let table_texts: Vec<(String, FileId, String)> = texts
+    let tables: Vec<(String, FileId, String)> = texts
         .tables
         .iter()
         .map(|(name, file)| (name.clone(), *file, sources.get(*file).text.clone()))
+        .collect();
+    let locals = texts
+        .locals
+        .iter()
+        .filter_map(|file| super::local_text::read(*file, sources.get(*file), &mut faults))
         .collect();
     let before = faults.len();
     let pack = super::declare::declare(
@@ -222,7 +247,7 @@ pub fn check(texts: PackTexts) -> Result<Pack, (Sources, Vec<Diagnostic>)> {
         parts,
         amounts,
         labels,
-        &table_texts,
+        super::declare::Rows { tables, locals },
         broken,
         &mut faults,
     );
@@ -274,6 +299,7 @@ impl Pack {
     /// amount, and what the rules refuse with these values (limits of bands that fall, numbers that are too large).
     pub fn accepts(&self, dates: &[i64], changes: &[Change]) -> Result<(), Vec<Diagnostic>> {
         super::lower::accepts(self, dates, changes)?;
+        super::local::accepts(self, dates)?;
         // The pack alone was tried on every date; other values and dates that differ from each other were not.
         if changes.is_empty() && dates.windows(2).all(|pair| pair[0] == pair[1]) {
             return Ok(());
@@ -324,6 +350,11 @@ impl Pack {
     /// Names of the notes.
     pub fn note_names(&self) -> Vec<String> {
         self.notes.iter().map(|note| note.text.clone()).collect()
+    }
+
+    /// The local files that are laid over the pack.
+    pub fn locals(&self) -> &[Local] {
+        &self.locals
     }
 
     /// Titles and laws of the instruments, in the order of the law.

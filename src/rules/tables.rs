@@ -1,8 +1,8 @@
 //! Keyed tables, dense in their keys. In: a declared table with its rows. Out: its keys and values on a day; faults
 //! for unknown keys, overlaps and gaps.
 
-use super::amounts::{Row, day_text, overlaps};
-use super::pack::{Pack, TableDecl};
+use super::amounts::{Row, TableRow, day_text, overlaps};
+use super::pack::{Filled, Pack, TableDecl};
 use crate::diag::{Diagnostic, nearest};
 use crate::num::Fraction;
 use crate::source::Span;
@@ -11,17 +11,21 @@ use std::collections::BTreeMap;
 /// The most keys, all columns taken together.
 const MOST_KEYS: usize = 100_000;
 
-/// A table on one day: least value and number of values of each key, and the values, the last key fastest.
-pub(super) struct Dense {
+/// A table on one day: least value and number of values of each key, and the values with their rows, the last key fastest.
+pub(super) struct Dense<'p> {
     pub keys: Vec<(i64, usize)>,
     pub values: Vec<Option<Fraction>>,
+    pub rows: Vec<Option<&'p TableRow>>,
 }
 
 /// A table on one day; none where it has no rows or too many keys.
-pub(super) fn dense(pack: &Pack, decl: &TableDecl, day: i64) -> Option<Dense> {
-    let rows: Vec<(Vec<i64>, &Row)> = known(pack, decl)
-        .filter(|(_, row)| row.from <= day && day <= row.to)
+pub(super) fn dense<'p>(pack: &'p Pack, decl: &'p TableDecl, day: i64) -> Option<Dense<'p>> {
+    let rows: Vec<(Vec<i64>, &TableRow)> = known(pack, decl)
+        .filter(|(_, row)| row.row.from <= day && day <= row.row.to)
         .collect();
+    if decl.filled != Filled::Pack {
+        return dense_open(pack, decl, &rows);
+    }
     let mut keys = Vec::new();
     for (at, key) in decl.keys.iter().enumerate() {
         let (low, high) = match key {
@@ -40,19 +44,128 @@ pub(super) fn dense(pack: &Pack, decl: &TableDecl, day: i64) -> Option<Dense> {
         .iter()
         .try_fold(1usize, |size, (_, n)| size.checked_mul(*n))
         .filter(|size| *size <= MOST_KEYS)?;
-    let mut values = vec![None; size];
+    let mut found = vec![None; size];
     for (key, row) in rows {
-        let place = key
-            .iter()
-            .zip(&keys)
-            .fold(0, |index, (k, (low, n))| index * n + (k - low) as usize);
-        values[place] = row.value;
+        found[position(&key, &keys)] = Some(row);
     }
-    Some(Dense { keys, values })
+    Some(Dense {
+        keys,
+        values: found
+            .iter()
+            .map(|row| row.and_then(|row| row.row.value))
+            .collect(),
+        rows: found,
+    })
+}
+
+fn position(key: &[i64], keys: &[(i64, usize)]) -> usize {
+    key.iter()
+        .zip(keys)
+        .fold(0, |index, (k, (low, n))| index * n + (k - low) as usize)
+}
+
+/// A table that local files fill. Each word of the first key stands for itself: a count outside its own rows takes the nearest end, a
+/// word without rows on the day gives nothing.
+fn dense_open<'p>(
+    pack: &Pack,
+    decl: &TableDecl,
+    rows: &[(Vec<i64>, &'p TableRow)],
+) -> Option<Dense<'p>> {
+    let mut keys = Vec::new();
+    for (at, key) in decl.keys.iter().enumerate() {
+        let counts = || rows.iter().map(|(k, _)| k[at]);
+        let (low, high) = match key {
+            Some(choice) => (0, pack.choices[*choice].words.len() as i64 - 1),
+            None => (counts().min().unwrap_or(0), counts().max().unwrap_or(0)),
+        };
+        keys.push((low, usize::try_from(high - low + 1).ok()?));
+    }
+    let size = keys
+        .iter()
+        .try_fold(1usize, |size, (_, n)| size.checked_mul(*n))
+        .filter(|size| *size <= MOST_KEYS)?;
+    let words = |key: &[i64]| -> Vec<i64> {
+        key.iter()
+            .zip(&decl.keys)
+            .filter_map(|(k, of)| of.map(|_| *k))
+            .collect()
+    };
+    let mut groups: BTreeMap<Vec<i64>, Vec<(&[i64], &'p TableRow)>> = BTreeMap::new();
+    for (key, row) in rows {
+        groups.entry(words(key)).or_default().push((key, row));
+    }
+    let is_own = |word: i64| is_own(pack, decl, word);
+    let of_pack: Vec<&[i64]> = rows
+        .iter()
+        .map(|(key, _)| key.as_slice())
+        .filter(|key| is_own(key[0]))
+        .collect();
+    let (mut values, mut found) = (vec![None; size], vec![None; size]);
+    for at in 0..size {
+        let key = key_at(at, &keys);
+        let own = is_own(key[0]);
+        match groups.get(&words(&key)) {
+            Some(group) => {
+                let of_word: Vec<&[i64]> = group.iter().map(|(k, _)| *k).collect();
+                // The pack's own words have the same counts, as in any table.
+                let beside = if own { &of_pack } else { &of_word };
+                let clamped: Vec<i64> = (0..key.len())
+                    .map(|place| {
+                        let counts = || beside.iter().map(|k| k[place]);
+                        let (low, high) = (counts().min(), counts().max());
+                        key[place].clamp(low.unwrap_or(0), high.unwrap_or(0))
+                    })
+                    .collect();
+                let row = group.iter().find(|(k, _)| *k == clamped.as_slice());
+                found[at] = row.map(|(_, row)| *row);
+                values[at] = found[at].and_then(|row: &TableRow| row.row.value);
+            }
+            None if own && decl.filled == Filled::Both => {}
+            None => values[at] = Some(Fraction::ZERO),
+        }
+    }
+    Some(Dense {
+        keys,
+        values,
+        rows: found,
+    })
+}
+
+/// Whether a word of the first key is the pack's own.
+fn is_own(pack: &Pack, decl: &TableDecl, word: i64) -> bool {
+    decl.keys
+        .first()
+        .copied()
+        .flatten()
+        .is_some_and(|choice| word < pack.choices[choice].own as i64)
+}
+
+/// The least and the largest count of one key in the pack's own rows.
+pub(super) fn own_ends(pack: &Pack, decl: &TableDecl, at: usize) -> Option<(i64, i64)> {
+    let counts = || {
+        known(pack, decl)
+            .filter(|(key, _)| is_own(pack, decl, key[0]))
+            .map(|(key, _)| key[at])
+    };
+    Some((counts().min()?, counts().max()?))
+}
+
+/// The key at a position of the values.
+fn key_at(at: usize, keys: &[(i64, usize)]) -> Vec<i64> {
+    let mut rest = at;
+    let mut key = Vec::new();
+    for (low, n) in keys.iter().rev() {
+        key.insert(0, low + (rest % n) as i64);
+        rest /= n;
+    }
+    key
 }
 
 /// Rows whose keys are known, with the keys as numbers: the position of a word, or the count itself.
-fn known<'a>(pack: &'a Pack, decl: &'a TableDecl) -> impl Iterator<Item = (Vec<i64>, &'a Row)> {
+fn known<'a>(
+    pack: &'a Pack,
+    decl: &'a TableDecl,
+) -> impl Iterator<Item = (Vec<i64>, &'a TableRow)> {
     decl.rows.iter().filter_map(|row| {
         let number = |(text, key): (&String, &Option<usize>)| match key {
             Some(choice) => pack.choices[*choice]
@@ -68,7 +181,7 @@ fn known<'a>(pack: &'a Pack, decl: &'a TableDecl) -> impl Iterator<Item = (Vec<i
                 .zip(&decl.keys)
                 .map(number)
                 .collect::<Option<_>>()?,
-            &row.row,
+            row,
         ))
     })
 }
@@ -103,13 +216,13 @@ pub(super) fn check(pack: &Pack, decl: &TableDecl, faults: &mut Vec<Diagnostic>)
     }
     let mut by_key: BTreeMap<Vec<i64>, Vec<Row>> = BTreeMap::new();
     for (key, row) in known(pack, decl) {
-        by_key.entry(key).or_default().push(row.clone());
+        by_key.entry(key).or_default().push(row.row.clone());
     }
     for (key, rows) in &mut by_key {
         overlaps(&format!("`{}`", words_of(pack, decl, key)), rows, faults);
     }
     // An unknown key leaves a gap, which would only echo it.
-    if faults.len() == before {
+    if faults.len() == before && decl.filled != Filled::Local {
         gaps(pack, decl, &by_key, faults);
     }
 }
@@ -126,7 +239,7 @@ fn gaps(
         end: decl.header,
     };
     for day in days(pack, decl) {
-        let Some(Dense { keys, values }) = dense(pack, decl, day) else {
+        let Some(Dense { keys, values, .. }) = dense(pack, decl, day) else {
             let empty = !decl
                 .rows
                 .iter()
@@ -150,12 +263,7 @@ fn gaps(
             .filter(|at| values[*at].is_none())
             .collect();
         if let Some(first) = missing.first() {
-            let mut rest = *first;
-            let mut key = Vec::new();
-            for (low, n) in keys.iter().rev() {
-                key.insert(0, low + (rest % n) as i64);
-                rest /= n;
-            }
+            let key = key_at(*first, &keys);
             let others = match missing.len() - 1 {
                 0 => String::new(),
                 1 => ", and for one more key".to_owned(),

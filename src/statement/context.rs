@@ -41,10 +41,31 @@ pub struct LetterContext {
     pub labels: BTreeMap<String, String>,
     /// How the pack's facts are written, by `KIND.NAME`; one that is not named here is printed as it stands.
     pub facts: BTreeMap<String, FactShape>,
+    /// Local files over the pack: each concerns a household with a fact that has its word.
+    pub locals: Vec<LocalRules>,
     /// The fixed words.
     pub texts: Arc<Texts>,
     /// How the letter reaches its reader.
     pub delivery: LetterDelivery,
+}
+
+/// One place's own scheme or table over a pack.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct LocalRules {
+    /// Its title.
+    pub title: String,
+    /// Where it was published.
+    pub source: String,
+    /// Facts that choose it, and their word.
+    pub facts: Vec<String>,
+    /// The word.
+    pub word: String,
+    /// Items that its own office runs.
+    pub items: Vec<String>,
+    /// That office in the letter's language; empty where it is not named.
+    pub office: String,
+    /// The last day on which it holds.
+    pub until: NaiveDate,
 }
 
 /// What the text of a fact holds.

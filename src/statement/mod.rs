@@ -29,7 +29,7 @@ mod world;
 pub use bars::{BarPart, Bars};
 pub use build::{Detail, letter_view};
 pub use chart::{Chart, Dot, Label, Run, Tick};
-pub use context::{FactShape, LetterContext, LetterDelivery, Office, missing_labels};
+pub use context::{FactShape, LetterContext, LetterDelivery, LocalRules, Office, missing_labels};
 pub use error::StatementError;
 pub use money::{Currency, Decimals};
 pub use room::probable_length;

@@ -337,6 +337,7 @@ fn one_household_of_each_kind_balances() {
       },
       "rules_title": "",
       "rules": {},
+      "local": {},
       "templates": {},
       "office": {}
     }

@@ -118,6 +118,7 @@ impl Shelf {
             delimiter: None,
             changed: vec![],
             grid: GridSettings::default(),
+            local: vec![],
         };
         read_single(
             "example",

@@ -12,6 +12,7 @@ use crate::statement::view::{Line, Part, PartKind};
 /// All closing parts in order.
 pub(super) fn parts(words: &Words<'_>) -> Result<Vec<Part>, StatementError> {
     let mut rests_on = counted(words)?;
+    rests_on.extend(local_rules(words)?);
     rests_on.extend(facts(words)?);
     rests_on.extend(unconfirmed(words)?);
     if words.detail == Detail::Full {
@@ -156,6 +157,24 @@ fn counted(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
     Ok(lines)
 }
 
+/// The schemes and tables of the household's own place, each with its source; none that gives a folded item away.
+fn local_rules(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
+    let shown = words.locals().filter(|local| {
+        !local.items.iter().any(|item| words.folded(item))
+            && !words.reveals(&local.title)
+            && !words.reveals(&local.source)
+    });
+    let mut lines = vec![];
+    for local in shown {
+        let values = [("title", local.title.as_str()), ("source", &local.source)];
+        lines.push(Line {
+            lead: words.plain("sum.local_lead")?,
+            text: words.say("sum.local", &values)?,
+        });
+    }
+    Ok(lines)
+}
+
 /// Amounts whose source nobody has checked, counted by instrument.
 fn unconfirmed(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
     let mut folded = 0;
@@ -194,7 +213,13 @@ fn reports(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
             continue;
         }
         seen.push(name);
-        let office = words.label(&format!("office.{name}"));
+        let own = words
+            .locals()
+            .find(|local| !local.office.is_empty() && local.items.iter().any(|item| item == name));
+        let office = match own {
+            Some(local) => Some(local.office.clone()),
+            None => words.label(&format!("office.{name}")),
+        };
         let report = words.label(&format!("report.{name}"));
         let (Some(office), Some(report)) = (office, report) else {
             continue;
@@ -221,7 +246,7 @@ fn reports(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
 
 /// The fixed next steps, then the office's own.
 fn next_steps(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
-    let until = words.day(words.context.rules_until);
+    let until = words.day(words.rules_until());
     let keys = words.context.texts.keys("next.");
     let mut lines = vec![];
     for key in keys.filter(|key| *key != "next.heading") {

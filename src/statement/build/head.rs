@@ -31,7 +31,7 @@ pub(super) fn particulars(words: &Words<'_>) -> Result<Vec<Particular>, Statemen
         ("assessed", words.day(context.assessed)),
         ("area", context.area.clone()),
         ("rules", rules),
-        ("rules_until", words.day(context.rules_until)),
+        ("rules_until", words.day(words.rules_until())),
     ]
     .into_iter()
     .filter(|(key, _)| *key != "area" || !said)

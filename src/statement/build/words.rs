@@ -4,7 +4,7 @@ use super::Detail;
 use super::marks::Marks;
 use crate::measures::{Assessment, EarnerResult, ItemKind, Point, Segment};
 use crate::num::{Fraction, Hours, Money};
-use crate::statement::context::LetterContext;
+use crate::statement::context::{LetterContext, LocalRules};
 use crate::statement::error::StatementError;
 use crate::statement::money::{Currency, day, readable};
 use crate::statement::view::{Line, Part, PartKind};
@@ -116,6 +116,25 @@ impl<'a> Words<'a> {
             hidden: hidden.map(|label| label.to_lowercase()).collect(),
             currency,
         })
+    }
+
+    /// The local files that concern this household.
+    pub fn locals(&self) -> impl Iterator<Item = &'a LocalRules> {
+        let facts = &self.assessment.facts;
+        self.context.locals.iter().filter(|local| {
+            facts
+                .iter()
+                .any(|fact| fact.value == local.word && local.facts.contains(&fact.name))
+        })
+    }
+
+    /// The last day on which all rules of this household hold.
+    pub fn rules_until(&self) -> NaiveDate {
+        self.locals()
+            .map(|local| local.until)
+            .chain([self.context.rules_until])
+            .min()
+            .unwrap_or(self.context.rules_until)
     }
 
     /// A fixed text with its values; `period` and `each` (ten currency units) are always known.

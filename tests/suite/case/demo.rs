@@ -6,7 +6,7 @@ use hourworth::case::{
     read_single, sort_table,
 };
 use hourworth::engine::{JobChoice, Machine, Setting, working};
-use hourworth::load::{check_pack, read_pack, schema_of};
+use hourworth::load::{check_pack, lay_local, read_pack, schema_of};
 use hourworth::num::Hours;
 use hourworth::rules::Pack;
 use std::collections::BTreeSet;
@@ -15,7 +15,13 @@ use std::io::Cursor;
 use std::path::{Path, PathBuf};
 
 fn pack() -> Pack {
-    let files = read_pack("uk", None).expect("the pack is built in");
+    pack_with(&[])
+}
+
+/// The pack with local files of the councils' list laid over it.
+fn pack_with(local: &[String]) -> Pack {
+    let mut files = read_pack("uk", None).expect("the pack is built in");
+    lay_local(&mut files, local, Some(&demo("councils")), &[]).expect("the local files are there");
     check_pack(&files).unwrap_or_else(|(_, faults)| panic!("the pack has {} faults", faults.len()))
 }
 
@@ -27,6 +33,12 @@ fn demo(name: &str) -> PathBuf {
 
 fn text(path: &Path) -> String {
     fs::read_to_string(path).unwrap_or_else(|error| panic!("{}: {error}", path.display()))
+}
+
+/// The settings of a good list.
+fn settings(name: &str) -> ListSettings {
+    let list = text(&demo(name).join("list.toml"));
+    ListSettings::parse("list.toml", &list).expect("it is right")
 }
 
 /// The tables of a folder by name, sorted where the list needs it.
@@ -98,6 +110,12 @@ fn the_good_lists_have_no_fault() {
     t("harrowmere_march", 9);
     t("payroll", 16);
     t("what_if", 3);
+    let councils = settings("councils");
+    assert_eq!(councils.local.len(), 3);
+    let schema = schema_of(&pack_with(&councils.local));
+    let (right, messages) = read(&demo("councils"), &schema);
+    assert_eq!(messages, Vec::<String>::new());
+    assert_eq!(right.len(), 8);
     let one = text(&demo("one_household.toml"));
     let settings = ListSettings::parse_single("one_household.toml", &one).expect("it is right");
     let options = ReadOptions::default();
@@ -134,13 +152,12 @@ fn each_faulty_list_gives_its_messages() {
 
 #[test]
 fn the_good_lists_together_touch_every_rule() {
-    let pack = pack();
-    let schema = schema_of(&pack);
     let (mut all, mut touched) = (BTreeSet::new(), BTreeSet::new());
     let mut held = vec![];
-    for name in ["harrowmere", "harrowmere_march", "payroll"] {
-        let list = text(&demo(name).join("list.toml"));
-        let settings = ListSettings::parse("list.toml", &list).expect("it is right");
+    for name in ["harrowmere", "harrowmere_march", "payroll", "councils"] {
+        let settings = settings(name);
+        let pack = pack_with(&settings.local);
+        let schema = schema_of(&pack);
         let payment = settings.dates[0].1;
         let dates = [settings.date, payment].map(days_since_1970);
         for home in read(&demo(name), &schema).0 {

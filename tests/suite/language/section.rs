@@ -88,7 +88,9 @@ impl Section {
                 } else {
                     text.lines().count() + 1
                 };
-                section.faults.push((file.clone(), at, fault.to_owned()));
+                // Messages name a local file without its folder.
+                let name = file.trim_start_matches("local/").to_owned();
+                section.faults.push((name, at, fault.to_owned()));
             } else if file == RULES && section.header(line, &mut rows) {
             } else {
                 text.push_str(line);

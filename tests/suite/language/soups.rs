@@ -1,8 +1,9 @@
 //! Texts that nobody meant: bytes, soups of words, and the built-in pack with pieces lost or doubled. Whatever comes in,
 //! the check ends soon and panics never; what it refuses it shows.
 
-use hourworth::load::{Files, PackFiles, TextFile, check_pack, read_pack};
+use hourworth::load::{Files, PackFiles, TextFile, check_pack, lay_local, read_pack};
 use proptest::prelude::*;
+use std::path::Path;
 use std::time::{Duration, Instant};
 
 const MANIFEST: &str = "title = \"T\"\narea = \"A\"\ncurrency = \"GBP\"\nperiod = \"month\"\n\
@@ -235,6 +236,16 @@ proptest! {
     }
 
     #[test]
+    fn any_local_file(text in "(word|choice|table|rows|value|[a-z0-9_,.=é\"\\[\\]{}\n -]){0,200}") {
+        let rules = "part \"T\" dated by day\nchoice c = u, v\nfact f of household: c default u ask \"?\"\ntable t by c, count gives rate\nitem j: passport = t[f, 1] above 0 see \"s\"\n";
+        let manifest = format!("{MANIFEST}[[local]]\nchoice = \"c\"\nfills = [\"t\"]\n");
+        let head = "title = \"T\"\npack = \"p\"\nchoice = \"c\"\nword = \"w\"\nfrom = 2026-01-01\nto = 2026-12-31\nsource = \"s\"\nname.en = \"W\"\n";
+        holds(rules, &[("pack.toml", &manifest), ("local/w.toml", &text)]);
+        holds(rules, &[("pack.toml", &manifest), ("local/w.toml", &format!("{head}{text}"))]);
+        holds(rules, &[("pack.toml", &manifest), ("local/w.toml", &format!("{head}[[table]]\nname = \"t\"\nunit = \"percent\"\nrows = [{text}"))]);
+    }
+
+    #[test]
     fn any_table(text in "[a-z0-9_,.\"\n\r -]{0,200}") {
         let head = "name,from,to,value,unit,period,source,locator,status\n";
         let rules = "part \"T\" dated by day\ntable t by count gives rate\nitem j: passport = t[1] above 0 see \"s\"\n";
@@ -265,7 +276,10 @@ fn with(pack: &PackFiles, name: &str, text: String) -> PackFiles {
 
 /// The files of the built-in pack that are read when it is checked.
 fn uk() -> (PackFiles, Vec<(String, String)>) {
-    let pack = read_pack("uk", None).expect("the pack is built in");
+    let mut pack = read_pack("uk", None).expect("the pack is built in");
+    let local = ["harrowmere", "pennickmoor"]
+        .map(|name| Path::new("demo_cases/councils").join(format!("{name}.toml")));
+    lay_local(&mut pack, &[], None, &local).expect("the local files are there");
     let texts = pack
         .files
         .texts()

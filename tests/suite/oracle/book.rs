@@ -178,7 +178,78 @@ impl Book {
                 read_table(table, choice, text);
             }
         }
+        for (name, text) in files.files.texts() {
+            if name.starts_with("local/") {
+                book.lay(text);
+            }
+        }
         book
+    }
+
+    /// Lays a local file over the pack: its word, and its rows with every key written out.
+    fn lay(&mut self, text: &str) {
+        let file: toml::Table = text.parse().expect("the checker read this");
+        let at = |table: &toml::Table, key: &str| plain(&table[key]);
+        let (choice, word) = (at(&file, "choice"), at(&file, "word"));
+        self.choices
+            .get_mut(&choice)
+            .expect("the choice is open")
+            .push(word.clone());
+        for block in file["table"].as_array().expect("tables") {
+            let block = block.as_table().expect("a table");
+            let own = |key: &str| {
+                at(
+                    if block.contains_key(key) {
+                        block
+                    } else {
+                        &file
+                    },
+                    key,
+                )
+            };
+            let (from, to, status) = (own("from"), own("to"), own("status"));
+            let lines: Vec<Vec<toml::Value>> = match block.get("rows") {
+                Some(rows) => rows
+                    .as_array()
+                    .expect("rows")
+                    .iter()
+                    .map(|row| row.as_array().expect("a row").clone())
+                    .collect(),
+                None => vec![vec![block["value"].clone()]],
+            };
+            let table = self.tables.get_mut(&at(block, "name")).expect("it is open");
+            let ty = match self.choices.contains_key(&table.gives) {
+                true => "choice".to_owned(),
+                false => table.gives.clone(),
+            };
+            for line in lines {
+                let (value, cells) = line.split_last().expect("a value");
+                let mut keys = vec![vec![word.clone()]];
+                for (cell, key) in cells.iter().zip(&table.keys[1..]) {
+                    let words: Vec<String> = match (cell, key) {
+                        (toml::Value::Array(words), _) => words.iter().map(plain).collect(),
+                        (toml::Value::String(all), Some(choice)) if all == "all" => {
+                            self.choices[choice].clone()
+                        }
+                        (one, _) => vec![plain(one)],
+                    };
+                    keys = words
+                        .iter()
+                        .flat_map(|word| {
+                            keys.iter().map(|before| {
+                                let mut whole = before.clone();
+                                whole.push(word.clone());
+                                whole
+                            })
+                        })
+                        .collect();
+                }
+                for key in keys {
+                    let line = row(key, &from, &to, &plain(value), &status, &ty);
+                    table.rows.push(line);
+                }
+            }
+        }
     }
 
     /// The kinds that a word stands for.
@@ -518,6 +589,16 @@ fn row(keys: Vec<String>, from: &str, to: &str, value: &str, status: &str, ty: &
             day(to).expect("the checker read this day")
         },
         value,
+    }
+}
+
+/// A value of a local file as text.
+fn plain(value: &toml::Value) -> String {
+    match value {
+        toml::Value::Boolean(true) => "yes".into(),
+        toml::Value::Boolean(false) => "no".into(),
+        toml::Value::String(text) => text.clone(),
+        other => other.to_string(),
     }
 }
 

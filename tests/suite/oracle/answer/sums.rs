@@ -42,6 +42,18 @@ impl Oracle<'_> {
     pub(super) fn looked_up(&self, name: &str, keys: &[Value], part: usize) -> Value {
         let table = &self.book.tables[name];
         let mut rows = self.picked(table.rows.iter(), part);
+        // A table that local files fill gives nothing for a word without rows.
+        let first = keys[0].clone();
+        if table.keys[0].is_some() {
+            let first = first.word();
+            rows.retain(|row| row.keys[0] == first);
+        }
+        if rows.is_empty() {
+            return match self.book.choices.get(&table.gives) {
+                Some(words) => Value::Word(words[0].clone()),
+                None => Value::Number(whole(0)),
+            };
+        }
         for (at, key) in keys.iter().enumerate() {
             let wanted = match key {
                 key if table.keys[at].is_some() => key.clone().word(),

@@ -80,6 +80,7 @@ pub fn context() -> LetterContext {
         ]
         .map(|(name, shape)| (name.to_owned(), shape))
         .into(),
+        locals: vec![],
         texts: TemplateSet::built_in()
             .texts("en")
             .expect("the texts are sound"),
