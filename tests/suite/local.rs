@@ -70,7 +70,7 @@ fn vet_finds_out_what_a_local_file_is() {
     let (status, out, _) = hourworth(&["vet", "demo_cases/councils/harrowmere.toml"]);
     assert_eq!(
         out,
-        "local file `demo_cases/councils/harrowmere.toml`: no fault, adds `harrowmere` to council_tax_scheme, laid over `United Kingdom, core`\n"
+        "local file `demo_cases/councils/harrowmere.toml`: no fault, adds `harrowmere` to council_tax_scheme, laid over `United Kingdom`\n"
     );
     assert_eq!(status, 0);
     let (status, out, _) = hourworth(&[
