@@ -3,7 +3,7 @@
 use super::steps::Step;
 use super::turns::{in_range, is_cost_step, jump, own_traps};
 use super::words::{Measure, Words, hours_text};
-use crate::measures::{BudgetLine, EarnerResult, ItemKind, Segment, Turn, TurnKind};
+use crate::measures::{BudgetLine, EarnerResult, ItemKind, Point, Segment, Turn, TurnKind};
 use crate::num::{Direction, Fraction, Hours, Money, divide_rounded};
 use crate::statement::bars::{self, Bar, Bars, Goes};
 use crate::statement::chart::{self, Band, Chart, Drop, Mark, MarkKind, Plot, Stretch, wrapped};
@@ -121,7 +121,9 @@ fn axis(
     measure: Measure,
     starred: Starred,
 ) -> Result<String, StatementError> {
-    let points = [Words::today(earner), &earner.not_in_work];
+    // Whatever the line rests on, up to its last hours.
+    let line = earner.lines.first().map_or(&[][..], |line| &line.grid);
+    let points: Vec<&Point> = std::iter::once(&earner.not_in_work).chain(line).collect();
     let star = match starred {
         Starred::AsItIs => words.marks.of_points(&points, |_| true),
         Starred::Never => "",
