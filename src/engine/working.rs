@@ -3,7 +3,7 @@
 use super::machine::Special;
 use crate::num::{Fraction, Hours};
 use crate::program::{Line, Reg};
-use std::collections::BTreeSet;
+use std::collections::{BTreeSet, HashMap};
 
 /// One line of a working.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -106,28 +106,30 @@ fn needed(special: &Special<'_>) -> BTreeSet<usize> {
     }
     // A line whose register was folded into a constant or is another line's belongs to nobody's steps; it is needed where a
     // needed line names it.
-    loop {
-        let named: BTreeSet<usize> = program
-            .lines
-            .iter_with_id()
-            .filter(|(id, _)| lines.contains(&id.position()))
-            .flat_map(|(_, line)| line.inputs.iter())
-            .flat_map(|entered| {
-                let plain = entered.name.trim_end_matches(" of partner");
-                program
-                    .lines
-                    .iter_with_id()
-                    .filter(move |(_, l)| l.reg == Some(entered.reg) && l.name == plain)
-                    .map(|(id, _)| id.position())
-            })
-            .collect();
-        let before = lines.len();
-        lines.extend(named);
-        lines.extend(program.items.iter().map(|i| i.line.position()));
-        if lines.len() == before {
-            return lines;
+    lines.extend(program.items.iter().map(|item| item.line.position()));
+    let mut by_name: HashMap<(usize, &str), Vec<usize>> = HashMap::new();
+    for (id, line) in program.lines.iter_with_id() {
+        if let Some(reg) = line.reg {
+            let key = (reg.position(), line.name.as_str());
+            by_name.entry(key).or_default().push(id.position());
         }
     }
+    let mut open: Vec<usize> = lines.iter().copied().collect();
+    while let Some(at) = open.pop() {
+        for entered in &program.lines[crate::index::Id::new(at)].inputs {
+            let plain = entered.name.trim_end_matches(" of partner");
+            for named in by_name
+                .get(&(entered.reg.position(), plain))
+                .into_iter()
+                .flatten()
+            {
+                if lines.insert(*named) {
+                    open.push(*named);
+                }
+            }
+        }
+    }
+    lines
 }
 
 /// A value with its unit: `1,048.00 a month` is written `1048.00 a month`.

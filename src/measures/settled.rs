@@ -172,7 +172,10 @@ impl Later<'_> {
             };
             let setting = setting.at_moment(Moment::Settled);
             let special = machine.special(&setting.facts(machine.program()));
-            let lines = [Hours(0), setting.own_hours()].map(|hours| working(&special, hours));
+            let lines = match self.open.iter().any(|settling| settling.to.is_none()) {
+                true => [Hours(0), setting.own_hours()].map(|hours| working(&special, hours)),
+                false => [vec![], vec![]],
+            };
             for settling in &self.open {
                 if self.causes.contains(&settling.name) {
                     continue;
