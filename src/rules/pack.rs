@@ -1,10 +1,10 @@
 //! A checked pack and the ways to use it.
 
 use super::amounts::{AmountDecl, TableRow};
-use super::ast::Part;
+use super::ast::{BinaryOp, Part};
 use super::local::Local;
 use super::manifest::Manifest;
-use super::tree::{BandsDecl, Condition, Definition, ScaleDecl, What};
+use super::tree::{BandsDecl, Condition, Definition, Node, ScaleDecl, What};
 use super::types::{Period, Ty};
 use crate::diag::{Diagnostic, Severity};
 use crate::num::Fraction;
@@ -313,15 +313,16 @@ impl Pack {
         for (kind, decl) in self.kinds.iter().enumerate() {
             for (fact, f) in decl.facts.iter().enumerate() {
                 let Some(at) = f.settles else { continue };
-                let to = match self.definitions[at].body.as_ref().map(|body| &body.what) {
-                    Some(What::Fixed(value)) => {
-                        let units = *value * Fraction::whole(i128::from(f.kind.units()));
+                let to = self.definitions[at]
+                    .body
+                    .as_ref()
+                    .and_then(fixed)
+                    .and_then(|value| {
+                        let units = value * Fraction::whole(i128::from(f.kind.units()));
                         (units.denominator() == 1)
                             .then(|| i64::try_from(units.numerator()).ok())
                             .flatten()
-                    }
-                    _ => None,
-                };
+                    });
                 out.push(Settling {
                     name: f.name.clone(),
                     kind,
@@ -360,5 +361,18 @@ impl Pack {
     /// Titles and laws of the instruments, in the order of the law.
     pub fn instruments(&self) -> &[(String, String)] {
         &self.parts
+    }
+}
+
+/// The value of an expression that is a fixed number, or a difference of two, which is how a number below nothing is written.
+fn fixed(node: &Node) -> Option<Fraction> {
+    match &node.what {
+        What::Fixed(value) => Some(*value),
+        What::Binary {
+            op: BinaryOp::Subtract,
+            left,
+            right,
+        } => fixed(left)?.checked_add(-fixed(right)?),
+        _ => None,
     }
 }
