@@ -138,7 +138,7 @@ fn languages(
     if let Some(language) = &settings.language {
         let place = language
             .among(&all)
-            .map_err(|fault| Error::Faults(vec![fault]))?;
+            .map_err(|fault| Error::Faults(vec![*fault]))?;
         let first = all.remove(place);
         all.insert(0, first);
     }

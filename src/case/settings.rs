@@ -82,14 +82,15 @@ impl ListLanguage {
     ///
     /// # Errors
     /// The fault where it is none of them.
-    pub fn among(&self, languages: &[String]) -> Result<usize, Fault> {
-        read_word("language", &self.tag, languages).map_err(|problem| Fault {
+    pub fn among(&self, languages: &[String]) -> Result<usize, Box<Fault>> {
+        let fault = |problem| Fault {
             file: self.file.clone(),
             place: self.place.clone(),
             reference: String::new(),
             value: self.tag.clone(),
             problem,
-        })
+        };
+        read_word("language", &self.tag, languages).map_err(|problem| Box::new(fault(problem)))
     }
 }
 
