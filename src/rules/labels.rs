@@ -148,6 +148,17 @@ pub(super) fn gaps(pack: &Pack) -> Vec<(String, Diagnostic)> {
             wanted.extend(own.map(|word| format!("word.{word}")));
         }
     }
+    // The words of local files are theirs: a household that has one without a name in its language is held.
+    let of_local = |key: &String| {
+        pack.locals.iter().any(|local| {
+            let mut keys = local
+                .facts
+                .iter()
+                .map(|fact| format!("word.{fact}.{}", local.word));
+            keys.any(|known| known == *key) || *key == format!("word.{}", local.word)
+        })
+    };
+    wanted.retain(|key| !of_local(key));
     wanted.sort();
     wanted.dedup();
     let mut gaps = vec![];

@@ -460,7 +460,7 @@ pub(super) fn finish(declarer: &mut Declarer<'_>, locals: Vec<Placed>) {
             .map(|fact| fact.name.clone())
             .collect();
         for (language, labels) in &mut pack.labels {
-            // A language that it has no name in has a gap, and is not offered.
+            // A household that asks for a language without a name here is held.
             let Some(name) = text.names.get(language) else {
                 continue;
             };
