@@ -2,13 +2,13 @@
 //! the templates. In: where they are. Out: [`Prepared`], or every fault that stands in the way.
 
 use super::RunFolder;
-use crate::case::{FactType, Household, ReadOptions, Schema};
+use crate::case::{FactType, Household, ListSettings, ReadOptions, Schema};
 use crate::diag::Diagnostic;
 use crate::load::{
     CaseList, Error, Files, OfficeFile, PackFiles, Rows, Sorting, Survey, Terms, check_pack,
     lay_local, read_office, read_pack, read_templates, schema_of, terms_of,
 };
-use crate::rules::{Local, Pack};
+use crate::rules::{ENGLISH, Local, Pack};
 use crate::source::Sources;
 use crate::statement::TemplateSet;
 use std::path::{Path, PathBuf};
@@ -76,7 +76,7 @@ pub fn prepare(list: &Path, places: &Places<'_>) -> Result<Prepared, Error> {
         check_office(office, &schema)?;
     }
     let options = ReadOptions {
-        languages: languages(&templates),
+        languages: languages(&list.settings, &pack, &templates)?,
     };
     Ok(Prepared {
         list,
@@ -115,15 +115,34 @@ pub fn built_in_templates() -> Files {
     Files::of_texts(set.files())
 }
 
-/// The languages of a template set: its files `text/<language>.toml`, English first.
-fn languages(templates: &Files) -> Vec<String> {
-    let mut all: Vec<String> = templates
-        .texts()
-        .filter_map(|(name, _)| name.strip_prefix("text/")?.strip_suffix(".toml"))
+/// The languages that both the templates and the pack have complete words in; that of the list first, else English.
+fn languages(
+    settings: &ListSettings,
+    pack: &Pack,
+    templates: &Files,
+) -> Result<Vec<String>, Error> {
+    let offered = pack.languages();
+    let set = TemplateSet::new(
+        templates
+            .texts()
+            .map(|(name, text)| (name.to_owned(), text.to_owned()))
+            .collect(),
+    );
+    let mut all: Vec<String> = set
+        .complete_languages()
+        .into_iter()
+        .filter(|language| offered.contains(language))
         .map(str::to_owned)
         .collect();
-    all.sort_by_key(|language| (language != "en", language.clone()));
-    all
+    all.sort_by_key(|language| (language != ENGLISH, language.clone()));
+    if let Some(language) = &settings.language {
+        let place = language
+            .among(&all)
+            .map_err(|fault| Error::Faults(vec![*fault]))?;
+        let first = all.remove(place);
+        all.insert(0, first);
+    }
+    Ok(all)
 }
 
 /// Refuses an office file that wants a fact seen which the pack does not have.

@@ -108,5 +108,6 @@ fn settings(case: &Case) -> Option<ListSettings> {
         changed: vec![],
         grid: crate::case::GridSettings::default(),
         local: vec![],
+        language: None,
     })
 }

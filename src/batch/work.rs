@@ -11,7 +11,7 @@ use crate::diag::nearest;
 use crate::load::{Files, HoldRules, Office, PackFiles, Terms, schema_of};
 use crate::measures::{Assessment, TurnKind, Verdict};
 use crate::num::{Fraction, Hours};
-use crate::rules::{Change, Local, Pack};
+use crate::rules::{Change, ENGLISH, Local, Pack};
 use crate::statement::{
     FactShape, LetterContext, LetterDelivery, LocalRules, StatementError, TemplateSet, Texts,
     Typesetter, typeset,
@@ -161,7 +161,11 @@ impl Assessor for Work {
         if let Some(press) = &mut self.press {
             match press.letter(household, &assessment) {
                 Ok(statement) => product.statements.push(statement),
-                Err(error @ (StatementError::Glyph { .. } | StatementError::Room { .. })) => {
+                Err(
+                    error @ (StatementError::Glyph { .. }
+                    | StatementError::Room { .. }
+                    | StatementError::Label { .. }),
+                ) => {
                     return Outcome::Held {
                         reasons: vec![error.to_string()],
                     };
@@ -259,6 +263,7 @@ pub struct Press {
     texts: BTreeMap<String, Arc<Texts>>,
     labels: BTreeMap<String, BTreeMap<String, String>>,
     locals: Vec<Local>,
+    english: Arc<BTreeMap<String, String>>,
     context: LetterContext,
     run_id: String,
 }
@@ -294,8 +299,9 @@ impl Press {
             office: letterhead(office),
             labels: BTreeMap::new(),
             locals: vec![],
+            english: Arc::default(),
             facts: fact_shapes(&schema_of(pack)),
-            texts: set.texts("en")?,
+            texts: set.texts(ENGLISH)?,
             delivery: LetterDelivery::default(),
         };
         Ok(Press {
@@ -304,6 +310,7 @@ impl Press {
             texts: BTreeMap::new(),
             labels: pack.labels.clone(),
             locals: pack.locals().to_vec(),
+            english: Arc::new(pack.labels.get(ENGLISH).cloned().unwrap_or_default()),
             context,
             run_id: orders.run_id.clone(),
         })
@@ -315,7 +322,7 @@ impl Press {
     /// Where the template set has no texts in the household's language.
     pub fn context(&mut self, household: &Household) -> Result<&LetterContext, StatementError> {
         let language = match household.delivery.language.as_str() {
-            "" => "en",
+            "" => ENGLISH,
             language => language,
         };
         let texts = match self.texts.get(language) {
@@ -339,6 +346,10 @@ impl Press {
             .iter()
             .map(|local| local_rules(local, language))
             .collect();
+        self.context.english = match language {
+            ENGLISH => Arc::default(),
+            _ => Arc::clone(&self.english),
+        };
         self.context.delivery = LetterDelivery {
             address: delivery.address.clone(),
             paper: match delivery.paper.as_str() {

@@ -24,7 +24,9 @@ fn list_toml(pack: &str, title: &str) -> String {
          title = \"\"\n\
          pack = {pack}\n\
          # The date of the list; take the sign # away and write the day.\n\
-         # date = 2026-05-04\n\n\
+         # date = 2026-05-04\n\
+         # The language of the households that name none, where it is not English.\n\
+         # language = \"cy\"\n\n\
          [format]\n\
          dates = \"year-month-day\"      # or \"day/month/year\", \"month/day/year\"\n\
          decimals = \"point\"            # or \"comma\"\n\n\

@@ -31,6 +31,6 @@ pub use layout::RESERVED;
 pub use list::{ListReader, Needed, ReadOptions, Reading, Stop, tables_of};
 pub use problem::Problem;
 pub use schema::{ADULT, CHILD, FactSpec, FactType, HOUSEHOLD, JOB, KindSpec, Need, OTHER, Schema};
-pub use settings::{ChangedAmount, Delimiter, GridSettings, ListSettings};
+pub use settings::{ChangedAmount, Delimiter, GridSettings, ListLanguage, ListSettings};
 pub use single::read_single;
 pub use table::{Table, sort_table};

@@ -1,7 +1,7 @@
 //! `list.toml`: what holds for a whole list. In: its text. Out: [`ListSettings`] or every fault of it. Refuses unknown keys and any
 //! guess about days. Imports `num`.
 
-use super::fault::Fault;
+use super::fault::{Fault, Place};
 use super::format::{DateForm, Decimals, Format, near, read_day, read_decimal, read_word};
 use super::problem::Problem;
 use super::record::Written;
@@ -66,6 +66,34 @@ pub struct GridSettings {
     pub step: Option<Hours>,
 }
 
+/// The language of the households that name none, with its place.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct ListLanguage {
+    /// BCP 47 tag, as written.
+    pub tag: String,
+    /// Name of the file.
+    file: String,
+    /// Where in it.
+    place: Place,
+}
+
+impl ListLanguage {
+    /// The position of the language among those that there are.
+    ///
+    /// # Errors
+    /// The fault where it is none of them.
+    pub fn among(&self, languages: &[String]) -> Result<usize, Box<Fault>> {
+        let fault = |problem| Fault {
+            file: self.file.clone(),
+            place: self.place.clone(),
+            reference: String::new(),
+            value: self.tag.clone(),
+            problem,
+        };
+        read_word("language", &self.tag, languages).map_err(|problem| Box::new(fault(problem)))
+    }
+}
+
 /// What holds for a whole list.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct ListSettings {
@@ -87,11 +115,13 @@ pub struct ListSettings {
     pub grid: GridSettings,
     /// Local files that are laid over the pack, as paths from the list's folder.
     pub local: Vec<String>,
+    /// The language of the households that name none, where the list says.
+    pub language: Option<ListLanguage>,
 }
 
 /// The keys of `list.toml`.
-const KEYS: [&str; 8] = [
-    "title", "pack", "date", "dates", "format", "changed", "grid", "local",
+const KEYS: [&str; 9] = [
+    "title", "pack", "date", "dates", "format", "changed", "grid", "local", "language",
 ];
 
 impl ListSettings {
@@ -145,6 +175,7 @@ fn read(file: &str, text: &str, others: OtherKeys) -> Result<ListSettings, Vec<F
     let mut changed = vec![];
     let mut grid = GridSettings::default();
     let mut local = vec![];
+    let mut language = None;
     let (format, delimiter) = read_format(&mut toml, root);
     for entry in entries(root) {
         match entry.key.as_str() {
@@ -165,6 +196,7 @@ fn read(file: &str, text: &str, others: OtherKeys) -> Result<ListSettings, Vec<F
             "changed" => changed = read_changed(&mut toml, &entry),
             "grid" => grid = read_grid(&mut toml, &entry, format),
             "local" => local = read_files(&mut toml, &entry),
+            "language" => language = read_language(&mut toml, &entry),
             "format" => {}
             _ if others == OtherKeys::OfHousehold => {}
             other => {
@@ -212,6 +244,7 @@ fn read(file: &str, text: &str, others: OtherKeys) -> Result<ListSettings, Vec<F
             changed,
             grid,
             local,
+            language,
         }),
         _ => {
             toml.faults.sort_by_key(Fault::row);
@@ -326,6 +359,20 @@ fn read_changed(toml: &mut TomlText<'_>, entry: &Entry<'_>) -> Vec<ChangedAmount
         }
     }
     all
+}
+
+fn read_language(toml: &mut TomlText<'_>, entry: &Entry<'_>) -> Option<ListLanguage> {
+    let tag = read_text(toml, entry)?;
+    let spot = toml.spot(&entry.value.span(), Written::AsToml);
+    Some(ListLanguage {
+        tag,
+        file: toml.file.to_owned(),
+        place: Place::Text {
+            line: spot.line,
+            column: spot.column,
+            key: entry.key.clone(),
+        },
+    })
 }
 
 fn read_grid(toml: &mut TomlText<'_>, entry: &Entry<'_>, format: Format) -> GridSettings {

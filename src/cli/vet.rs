@@ -150,7 +150,9 @@ fn pack(path: &Path, args: &VetArgs) -> Result<Report, Error> {
     let mut files = read_pack(&path.to_string_lossy(), None)?;
     lay_local(&mut files, &[], None, &args.rules.laid.local)?;
     let pack = checked(&files)?;
+    let gaps = pack.gaps.iter();
     Ok(Report {
+        faults: gaps.map(|(_, gap)| gap.line(&pack.sources)).collect(),
         warnings: crate::batch::findings(&pack.sources, &pack.warnings),
         ..Report::sound(&laid(&pack))
     })
@@ -231,14 +233,7 @@ fn templates(path: &Path) -> Result<Report, Error> {
     if let Err(error) = Typesetter::new(&set) {
         faults.push(error.to_string());
     }
-    let languages = files
-        .texts()
-        .filter_map(|(name, _)| name.strip_prefix("text/")?.strip_suffix(".toml"));
-    for language in languages {
-        if let Err(error) = set.texts(language) {
-            faults.push(error.to_string());
-        }
-    }
+    faults.extend(set.language_faults().iter().map(ToString::to_string));
     Ok(Report {
         faults,
         ..Report::sound("")

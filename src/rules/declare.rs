@@ -71,6 +71,7 @@ pub(super) fn declare(
             kind("job", Some(ADULT)),
         ],
         labels,
+        gaps: vec![],
         sources: Sources::new(),
         warnings: Vec::new(),
         parts: parts

@@ -460,7 +460,8 @@ pub(super) fn finish(declarer: &mut Declarer<'_>, locals: Vec<Placed>) {
             .map(|fact| fact.name.clone())
             .collect();
         for (language, labels) in &mut pack.labels {
-            let Some(name) = text.names.get(language).or_else(|| text.names.get("en")) else {
+            // A household that asks for a language without a name here is held.
+            let Some(name) = text.names.get(language) else {
                 continue;
             };
             for fact in &facts {

@@ -32,6 +32,7 @@ mod used;
 
 pub use crate::program::Moment;
 pub use amounts::{day, day_text, decimal};
+pub use labels::ENGLISH;
 pub use local::Local;
 pub use manifest::Manifest;
 pub use pack::{Change, FactDecl, FactKind, KindDecl, Pack, PackTexts, check};

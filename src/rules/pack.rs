@@ -175,6 +175,8 @@ pub struct Pack {
     pub sources: Sources,
     /// Warnings that were found.
     pub warnings: Vec<Diagnostic>,
+    /// Labels that a language other than English lacks, or has too many. The pack can be used, but not in that language.
+    pub gaps: Vec<(String, Diagnostic)>,
     pub(super) parts: Vec<(String, String)>,
     pub(super) choices: Vec<ChoiceDecl>,
     pub(super) conversions: Vec<ConversionDecl>,
@@ -269,6 +271,7 @@ pub fn check(texts: PackTexts) -> Result<Pack, (Sources, Vec<Diagnostic>)> {
         .partition(|f| f.severity == Severity::Fault);
     if faults.is_empty() {
         Ok(Pack {
+            gaps: super::labels::gaps(&pack),
             sources,
             warnings,
             ..pack
@@ -346,6 +349,19 @@ impl Pack {
             }
         }
         out
+    }
+
+    /// Languages whose labels are complete, English first; English alone where the pack has no labels.
+    pub fn languages(&self) -> Vec<&str> {
+        let mut all = vec![super::labels::ENGLISH];
+        let whole = |language: &&str| self.gaps.iter().all(|(known, _)| known != language);
+        let others = self.labels.keys().map(String::as_str);
+        all.extend(
+            others
+                .filter(|language| *language != super::labels::ENGLISH)
+                .filter(whole),
+        );
+        all
     }
 
     /// Names of the notes.

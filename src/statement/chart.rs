@@ -253,13 +253,16 @@ pub(super) fn draw(plot: &Plot<'_>) -> Chart {
         .iter()
         .map(|(_, text)| width(text, Weight::Regular, size))
         .fold(0.0, f64::max);
-    let height = 46.0 + size * 10.6;
+    // Words over the axis that are wider than the drawing take further lines.
+    let axis = wrapped(&plot.axes.0, Weight::Regular, size, plot.width);
+    let more = line * axis.len().saturating_sub(1) as f64;
+    let height = 46.0 + size * 10.6 + more;
     let scale = Scale {
         hours: (0.0, last),
         sums: (bottom_sum, top_sum),
         plot: Rect {
             left: margin + 0.6 * size,
-            top: line + 0.9 * size,
+            top: more + line + 0.9 * size,
             right: plot.width - size,
             bottom: height - 2.0 * line - 0.2 * size,
         },
@@ -298,12 +301,14 @@ pub(super) fn draw(plot: &Plot<'_>) -> Chart {
             text,
         });
     }
-    chart.labels.push(Label {
-        x: 0,
-        y: 0,
-        text: plot.axes.0.clone(),
-        weight: 0,
-    });
+    for (position, text) in axis.into_iter().enumerate() {
+        chart.labels.push(Label {
+            x: 0,
+            y: hundredths(position as f64 * line),
+            text,
+            weight: 0,
+        });
+    }
     let axis_width = width(&plot.axes.1, Weight::Regular, size);
     chart.labels.push(Label {
         x: hundredths(area.right - axis_width),

@@ -29,7 +29,9 @@ pub struct LetterContext {
     /// The pack's labels by key. Read here, all but the first two optional:
     ///
     /// * `item.NAME` an item's name, `fact.NAME` a fact's;
-    /// * `title` the rules, `kind.KIND` a kind of item, `what.NAME` what an item is, in a sentence;
+    /// * `title` the rules, `area` their place, `part.NAME` an instrument (all three and `item`, `fact`, `word` are needed where the
+    ///   letter is not in English);
+    /// * `kind.KIND` a kind of item, `what.NAME` what an item is, in a sentence;
     /// * `turn.NAME.starts` (or `ends`, `more`, `less`), else `turn.NAME`: what happens when the rule of a figure or item
     ///   turns; `more` and `less` are what it adds to net income for each further unit of pay;
     /// * `said.NAME` a fact with its `{value}`; `word.NAME.VALUE`, else `word.VALUE`, a value in words; `none.NAME` what is not
@@ -39,6 +41,9 @@ pub struct LetterContext {
     /// * `office.NAME` who runs an item, `report.NAME` what to tell it by when;
     /// * `left_out.NUMBER`, or `left_out.NAME.NUMBER` where the household has the item: what the sum leaves out.
     pub labels: BTreeMap<String, String>,
+    /// The pack's English labels, where the letter is in another language; by them an item that is folded is found in every
+    /// language. Empty for an English letter.
+    pub english: Arc<BTreeMap<String, String>>,
     /// How the pack's facts are written, by `KIND.NAME`; one that is not named here is printed as it stands.
     pub facts: BTreeMap<String, FactShape>,
     /// Local files over the pack: each concerns a household with a fact that has its word.

@@ -49,6 +49,16 @@ pub enum StatementError {
         /// What was found.
         message: String,
     },
+    /// The pack has no label in the letter's language: the household is held.
+    #[error(
+        "the rules have no label `{key}` in `{language}`, expected a row of `labels.{language}.csv`"
+    )]
+    Label {
+        /// Language of the letter.
+        language: String,
+        /// Key of the label.
+        key: String,
+    },
     /// The letter needs more pages than it may have.
     #[error("the letter has {pages} pages, found more than {limit}")]
     TooLong {

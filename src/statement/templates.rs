@@ -20,6 +20,8 @@ use typst::syntax::{LinkedNode, Side, Source, SyntaxKind};
 
 static BUILT_IN: Dir<'_> = include_dir!("$CARGO_MANIFEST_DIR/templates");
 
+/// The language that the others are measured by.
+const ENGLISH: &str = "en";
 /// Steps that one template may take; a letter takes about a tenth of it.
 const FUEL: u64 = 200_000;
 /// How deep templates may nest; an include counts as ten.
@@ -78,6 +80,56 @@ impl TemplateSet {
                 }
             }
         }
+    }
+
+    /// The languages that there are texts in.
+    pub fn languages(&self) -> impl Iterator<Item = &str> {
+        let files = self.files.keys();
+        files.filter_map(|name| name.strip_prefix("text/")?.strip_suffix(".toml"))
+    }
+
+    /// The languages whose texts are complete: English, and those that differ from it in nothing but their words.
+    pub fn complete_languages(&self) -> Vec<&str> {
+        let Ok(english) = self.texts(ENGLISH) else {
+            return vec![];
+        };
+        let whole = |language: &&str| {
+            let texts = self.texts(language);
+            texts.is_ok_and(|texts| texts.differences(&english).is_empty())
+        };
+        self.languages().filter(whole).collect()
+    }
+
+    /// What is wrong with the texts: every fault of each file, and every key, value and plural form in which a language differs
+    /// from English.
+    pub fn language_faults(&self) -> Vec<StatementError> {
+        let mut faults = vec![];
+        let mut read = |language: &str| {
+            let text = self.files.get(&format!("text/{language}.toml"))?;
+            match Texts::read_all(language, text) {
+                Ok(texts) => Some(texts),
+                Err(found) => {
+                    faults.extend(found);
+                    None
+                }
+            }
+        };
+        let english = read(ENGLISH);
+        let others: Vec<Texts> = self
+            .languages()
+            .filter(|language| *language != ENGLISH)
+            .filter_map(&mut read)
+            .collect();
+        match english {
+            Some(english) => {
+                for texts in &others {
+                    faults.extend(texts.differences(&english));
+                }
+            }
+            None if faults.is_empty() => faults.extend(self.texts(ENGLISH).err()),
+            None => {}
+        }
+        faults
     }
 
     /// The Typst files that are imported as they stand.

@@ -2,6 +2,7 @@
 
 use super::build::Detail;
 use super::context::LetterContext;
+use super::crowded::{crowded, places};
 use super::error::StatementError;
 use super::room::probable_length;
 use super::templates::{Filler, TemplateSet, check_glyphs};
@@ -130,6 +131,37 @@ impl Typesetter {
             .iter()
             .map(|page| frame_text(&page.frame))
             .collect())
+    }
+
+    /// What has no room in a filled template: words outside the margins, and words that cover others. Empty where all is well.
+    ///
+    /// # Errors
+    /// As for [`Typesetter::any`].
+    pub fn crowded<V: serde::Serialize>(
+        &self,
+        template: &str,
+        view: &V,
+        texts: &Arc<Texts>,
+    ) -> Result<Vec<String>, StatementError> {
+        let value = minijinja::Value::from(minijinja::value::Serde(view));
+        check_glyphs(&value)?;
+        let source = self.filler.fill(template, &value, texts)?;
+        Ok(crowded(&self.desk.pages(source)?))
+    }
+
+    /// The pieces of text of a filled template with their left edge in points, page by page.
+    ///
+    /// # Errors
+    /// As for [`Typesetter::any`].
+    pub fn places<V: serde::Serialize>(
+        &self,
+        template: &str,
+        view: &V,
+        texts: &Arc<Texts>,
+    ) -> Result<Vec<(String, f64)>, StatementError> {
+        let value = minijinja::Value::from(minijinja::value::Serde(view));
+        let source = self.filler.fill(template, &value, texts)?;
+        Ok(places(&self.desk.pages(source)?))
     }
 
     /// Fills one template with any view and typesets it.

@@ -119,6 +119,7 @@ impl Shelf {
             changed: vec![],
             grid: GridSettings::default(),
             local: vec![],
+            language: None,
         };
         read_single(
             "example",

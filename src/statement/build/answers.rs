@@ -1,7 +1,7 @@
 //! The first answers: what is kept of each named step, and the hours that a sum needs.
 
 use super::steps::Step;
-use super::words::{Answers, Measure, Words, hours_text};
+use super::words::{Answers, Measure, Told, Words, hours_text};
 use crate::measures::{EarnerResult, ItemKind, Point};
 use crate::num::{Fraction, Hours, Money};
 use crate::statement::error::StatementError;
@@ -99,8 +99,13 @@ fn detail(
     } else {
         measure.rate_at(step.to)
     };
+    let told = if earner.has_job {
+        Told::OfThis
+    } else {
+        Told::FromThere
+    };
     let rate = match rate {
-        Some(rate) => words.rate(kept_of_ten(rate))?,
+        Some(rate) => words.rate(told, kept_of_ten(rate))?,
         None => String::new(),
     };
     let key = match (earner.has_job, step.offer.is_some(), rise.0) {
@@ -246,7 +251,7 @@ pub(super) fn meaning(
                 names.push(name);
             }
         }
-        let list = super::words::enumerated(&names);
+        let list = words.enumerated(&names);
         said.push(words.say("measure.after_costs", &[("list", &list)])?);
     }
     Ok(said.join(" "))

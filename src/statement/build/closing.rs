@@ -3,10 +3,10 @@
 
 use super::Detail;
 use super::facts::facts;
-use super::words::{Words, enumerated, listed};
+use super::words::Words;
 use crate::measures::ItemKind;
 use crate::statement::error::StatementError;
-use crate::statement::money::{capital, readable};
+use crate::statement::money::capital;
 use crate::statement::view::{Line, Part, PartKind};
 
 /// All closing parts in order.
@@ -58,15 +58,17 @@ fn glossary(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
 
 /// What is due and not claimed, and the pack's notes that hold for this household; at most one part.
 pub(super) fn notes(words: &Words<'_>) -> Result<Vec<Part>, StatementError> {
-    let said = words.assessment.notes.iter().filter_map(|note| {
-        let key = format!("note.{note}");
-        match words.context.labels.get(&key) {
-            Some(_) => words.label(&key),
-            None => Some(format!("{}.", capital(&readable(note)))),
-        }
-    });
     let mut lines = unclaimed(words)?;
-    lines.extend(said.map(Line::from));
+    for note in &words.assessment.notes {
+        let key = format!("note.{note}");
+        if words.gives_away(&key) {
+            continue;
+        }
+        lines.push(Line::from(match words.label(&key) {
+            Some(text) => text,
+            None => words.sentence(&words.named(&key, note)?)?,
+        }));
+    }
     if lines.is_empty() {
         return Ok(vec![]);
     }
@@ -139,7 +141,7 @@ fn counted(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
     }
     let mut lines = vec![Line {
         lead: words.plain("sum.in_lead")?,
-        text: words.say("sum.in", &[("list", &enumerated(&names))])?,
+        text: words.say("sum.in", &[("list", &words.enumerated(&names))])?,
     }];
     let mut left_out: Vec<String> = vec![];
     for (key, text) in grouped(words, "left_out") {
@@ -151,7 +153,7 @@ fn counted(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
     if !left_out.is_empty() {
         lines.push(Line {
             lead: words.plain("sum.out_lead")?,
-            text: words.say("sum.out", &[("list", &listed(&left_out))])?,
+            text: words.say("sum.out", &[("list", &words.listed(&left_out)?)])?,
         });
     }
     Ok(lines)
@@ -183,7 +185,7 @@ fn unconfirmed(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
         if words.reveals(name) {
             folded += count;
         } else {
-            groups.push((name.clone(), *count));
+            groups.push((words.instrument(name)?, *count));
         }
     }
     if folded > 0 {
@@ -199,7 +201,7 @@ fn unconfirmed(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
     }
     Ok(vec![Line {
         lead: words.plain("unconfirmed.lead")?,
-        text: words.say("unconfirmed.line", &[("list", &enumerated(&said))])?,
+        text: words.say("unconfirmed.line", &[("list", &words.enumerated(&said))])?,
     }])
 }
 
@@ -235,7 +237,7 @@ fn reports(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
     for (office, said) in offices {
         lines.push(Line {
             lead: words.say("report.lead", &[("office", &office)])?,
-            text: format!("{}.", listed(&said)),
+            text: words.ended(&words.listed(&said)?)?,
         });
     }
     if lines.is_empty() {
@@ -246,7 +248,7 @@ fn reports(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
 
 /// The fixed next steps, then the office's own.
 fn next_steps(words: &Words<'_>) -> Result<Vec<Line>, StatementError> {
-    let until = words.day(words.rules_until());
+    let until = words.day(words.rules_until())?;
     let keys = words.context.texts.keys("next.");
     let mut lines = vec![];
     for key in keys.filter(|key| *key != "next.heading") {

@@ -1,7 +1,7 @@
 //! The facts that a letter rests on: seen, told, assumed, missing; in words, those of one person together.
 
 use super::Detail;
-use super::words::{Words, enumerated, listed};
+use super::words::Words;
 use crate::measures::FactUse;
 use crate::statement::context::FactShape;
 use crate::statement::error::StatementError;
@@ -49,10 +49,9 @@ fn is_shown(words: &Words<'_>, fact: &FactUse) -> bool {
                 earner.adult != only && !earner.name.is_empty() && earner.name == fact.of
             })
         };
-    let reveals = ["fact", "said"].iter().any(|kind| {
-        let label = words.context.labels.get(&format!("{kind}.{}", fact.name));
-        label.is_some_and(|label| words.reveals(label))
-    });
+    let reveals = ["fact", "said"]
+        .iter()
+        .any(|kind| words.gives_away(&format!("{kind}.{}", fact.name)));
     !words.context.delivery.only.is_some_and(others)
         && !reveals
         && !words.reveals(&readable(&fact.name))
@@ -88,7 +87,7 @@ fn push(
     if !groups.is_empty() {
         lines.push(Line {
             lead: words.plain(&format!("facts.{key}_lead"))?,
-            text: words.say("facts.list", &[("list", &listed(&groups))])?,
+            text: words.say("facts.list", &[("list", &words.listed(&groups)?)])?,
         });
     }
     Ok(())
@@ -118,7 +117,7 @@ fn owned(words: &Words<'_>, facts: &[&FactUse]) -> Result<String, StatementError
 
 /// What was said before, and of a further job.
 fn joined(words: &Words<'_>, list: String, said: &[String]) -> Result<String, StatementError> {
-    let more = enumerated(said);
+    let more = words.enumerated(said);
     if list.is_empty() {
         return Ok(more);
     }
@@ -136,9 +135,18 @@ fn push_none(
     let mut names: Vec<String> = vec![];
     for fact in own.into_iter().chain(others) {
         let labels = &words.context.labels;
-        let name = none_of_value(words, fact)
-            .or_else(|| labels.get(&format!("none.{}", fact.name)).cloned())
-            .unwrap_or_else(|| fact_name(words, fact));
+        let keys = [
+            format!("none.{}.{}", fact.name, figure(fact)),
+            format!("none.{}", fact.name),
+        ];
+        let found = keys.iter().find(|key| labels.contains_key(*key));
+        if found.is_some_and(|key| words.gives_away(key)) {
+            continue;
+        }
+        let name = match found {
+            Some(key) => labels[key].clone(),
+            None => fact_name(words, fact)?,
+        };
         if name != UNSAID && !words.reveals(&name) && !names.contains(&name) {
             names.push(name);
         }
@@ -151,7 +159,7 @@ fn push_none(
     if more > 1 {
         names.truncate(most);
     }
-    let list = enumerated(&names);
+    let list = words.enumerated(&names);
     if !names.is_empty() {
         lines.push(Line {
             lead: words.plain("facts.assumed_none_lead")?,
@@ -173,17 +181,15 @@ fn fact_text(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError
     match words.label(&format!("said.{}", fact.name)) {
         Some(pattern) => Ok(pattern.replace("{value}", &value)),
         None => {
-            let name = fact_name(words, fact);
+            let name = fact_name(words, fact)?;
             words.say("facts.fact", &[("name", &name), ("value", &value)])
         }
     }
 }
 
 /// The name of a fact.
-fn fact_name(words: &Words<'_>, fact: &FactUse) -> String {
-    words
-        .label(&format!("fact.{}", fact.name))
-        .unwrap_or_else(|| readable(&fact.name))
+fn fact_name(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError> {
+    words.named(&format!("fact.{}", fact.name), &fact.name)
 }
 
 /// The value without its unit.
@@ -223,17 +229,20 @@ fn value(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError> {
             words.say(&format!("per.{period}"), &[("sum", &sum)])
         }
         FactShape::Hours => words.say("facts.hours", &[("hours", figure(fact))]),
-        FactShape::Date => Ok(NaiveDate::parse_from_str(raw, "%Y-%m-%d")
-            .map_or_else(|_| raw.to_owned(), |day| words.day(day))),
+        FactShape::Date => match NaiveDate::parse_from_str(raw, "%Y-%m-%d") {
+            Ok(day) => words.day(day),
+            Err(_) => Ok(raw.to_owned()),
+        },
         FactShape::YesNo => match raw {
             "yes" => words.plain("facts.yes"),
             "no" => words.plain("facts.no"),
             other => Ok(other.to_owned()),
         },
-        FactShape::Word => Ok(words
-            .label(&format!("word.{raw}"))
-            .unwrap_or_else(|| readable(raw))),
-        FactShape::Plain => Ok(raw.to_owned()),
+        FactShape::Word => words.named(&format!("word.{raw}"), raw),
+        FactShape::Plain => match raw.strip_suffix('%') {
+            Some(figure) => words.say("write.percent", &[("number", figure)]),
+            None => Ok(words.number(raw)),
+        },
     }
 }
 

@@ -474,7 +474,10 @@ pub(super) fn bars(
             let sum = words.currency.exact(*sum);
             said.push(words.say("bars.alt_part", &[("name", name), ("sum", &sum)])?);
         }
-        let values = [("range", label.as_str()), ("parts", &said.join(", "))];
+        let values = [
+            ("range", label.as_str()),
+            ("parts", &words.enumerated(&said)),
+        ];
         alts.push(words.say("bars.alt", &values)?);
         bars.push(Bar { label, parts });
     }

@@ -21,17 +21,22 @@ const OFFICE_LINES: usize = 6;
 /// Number, days, place and rules.
 pub(super) fn particulars(words: &Words<'_>) -> Result<Vec<Particular>, StatementError> {
     let context = words.context;
-    let rules = words
-        .label("title")
-        .unwrap_or_else(|| context.rules_title.clone());
+    let rules = match words.label("title") {
+        Some(title) => title,
+        None => words.own("title", &context.rules_title)?,
+    };
+    let area = match words.label("area") {
+        Some(area) => area,
+        None => words.own("area", &context.area)?,
+    };
     // In large print the place is not said twice.
-    let said = context.delivery.print_size > LARGE && rules.contains(&context.area);
+    let said = context.delivery.print_size > LARGE && rules.contains(&area);
     [
-        ("issued", words.day(context.issued)),
-        ("assessed", words.day(context.assessed)),
-        ("area", context.area.clone()),
+        ("issued", words.day(context.issued)?),
+        ("assessed", words.day(context.assessed)?),
+        ("area", area),
         ("rules", rules),
-        ("rules_until", words.day(words.rules_until())),
+        ("rules_until", words.day(words.rules_until())?),
     ]
     .into_iter()
     .filter(|(key, _)| *key != "area" || !said)
@@ -49,14 +54,14 @@ pub(super) fn whose(
     words: &Words<'_>,
     earners: &[&EarnerResult],
 ) -> Result<String, StatementError> {
-    let names: Vec<&str> = earners
+    let names: Vec<String> = earners
         .iter()
-        .map(|earner| earner.name.as_str())
+        .map(|earner| earner.name.clone())
         .filter(|name| !name.is_empty())
         .collect();
     let whose = match names.as_slice() {
         [] => words.assessment.reference.clone(),
-        names => names.join(", "),
+        names => words.enumerated(names),
     };
     words.say("for", &[("who", &whose)])
 }

@@ -2,7 +2,7 @@
 
 use super::Detail;
 use super::steps::Step;
-use super::words::{Measure, Words, enumerated};
+use super::words::{Measure, Words};
 use crate::measures::{BudgetLine, EarnerResult, ItemKind, Point, Settled};
 use crate::num::Money;
 use crate::statement::error::StatementError;
@@ -94,7 +94,7 @@ fn causes(words: &Words<'_>, settled: &Settled) -> Result<String, StatementError
     if said.is_empty() {
         return Ok(last);
     }
-    let before = enumerated(&said);
+    let before = words.enumerated(&said);
     words.say("later.and", &[("list", &before), ("last", &last)])
 }
 
@@ -161,7 +161,7 @@ fn line(
         let values = [
             ("sum", sum(pair.later)),
             ("now", sum(pair.now)),
-            ("effects", enumerated(&effects)),
+            ("effects", words.enumerated(&effects)),
         ];
         let values: Vec<(&str, &str)> = values.iter().map(|(k, v)| (*k, v.as_str())).collect();
         words.say("later.point", &values)?

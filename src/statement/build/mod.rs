@@ -17,7 +17,7 @@ mod words;
 
 use super::context::LetterContext;
 use super::error::StatementError;
-use super::money::{Decimals, capital, readable};
+use super::money::{Decimals, capital};
 use super::room::first_page_holds_caution;
 use super::view::{LetterView, Section};
 use crate::measures::{Assessment, EarnerResult};
@@ -54,7 +54,7 @@ pub fn letter_view(
     let earners = leading_first(assessment, context);
     let mut words = Words::new(assessment, context, detail, &earners)?;
     let sections = sections(&words, &earners)?;
-    let assessed = words.day(context.assessed);
+    let assessed = words.day(context.assessed)?;
     let mut estimate = vec![
         words.say("estimate.first", &[("assessed", &assessed)])?,
         words.plain("estimate.change")?,
@@ -134,14 +134,12 @@ fn what_if(words: &Words<'_>) -> Result<Vec<String>, StatementError> {
         .filter(|amount| !amount.changed_because.is_empty());
     changed
         .map(|amount| {
-            let name = words
-                .label(&format!("amount.{}", amount.name))
-                .unwrap_or_else(|| readable(&amount.name));
+            let name = words.named(&format!("amount.{}", amount.name), &amount.name)?;
             words.say(
                 "what_if.line",
                 &[
                     ("amount", &capital(&name)),
-                    ("value", &amount_value(words, &amount.value)),
+                    ("value", &amount_value(words, &amount.value)?),
                     ("reason", amount.changed_because.trim_end_matches('.')),
                 ],
             )
@@ -150,18 +148,20 @@ fn what_if(words: &Words<'_>) -> Result<Vec<String>, StatementError> {
 }
 
 /// The value of an amount as a letter writes it: `1048 GBP a month` is `£1,048 a month`, `60 percent` is `60%`.
-fn amount_value(words: &Words<'_>, value: &str) -> String {
+fn amount_value(words: &Words<'_>, value: &str) -> Result<String, StatementError> {
     let mut parts = value.splitn(3, ' ');
     let (figure, unit) = (parts.next().unwrap_or_default(), parts.next());
-    let rest = parts
-        .next()
-        .map(|rest| format!(" {rest}"))
-        .unwrap_or_default();
+    let period = parts.next().and_then(|rest| rest.strip_prefix("a "));
+    let period = period.map(|period| period.strip_prefix("n ").unwrap_or(period));
     let sum = words.currency.typed(figure, Decimals::WhereNeeded);
     match (unit, sum) {
-        (Some("percent"), _) => format!("{figure}%{rest}"),
-        (Some(unit), Some(sum)) if unit == words.context.currency => format!("{sum}{rest}"),
-        (Some("count"), _) => format!("{figure}{rest}"),
-        (Some(_) | None, _) => value.to_owned(),
+        (Some("percent"), _) => words.say("write.percent", &[("number", figure)]),
+        (Some(unit), Some(sum)) if unit == words.context.currency => match period {
+            Some(period) => words.say(&format!("per.{period}"), &[("sum", &sum)]),
+            None => Ok(sum),
+        },
+        (Some("hours"), Some(_)) => words.say("facts.hours", &[("hours", figure)]),
+        (Some("count" | "number"), _) => Ok(words.number(figure)),
+        (Some(_) | None, _) => Ok(value.to_owned()),
     }
 }

@@ -101,7 +101,7 @@ fn employer(
         }
         lines.push(Line {
             lead: words.say("employer.lead", &[("name", &words.item(position)?)])?,
-            text: format!("{}.", said.join("; ")),
+            text: words.ended(&words.listed(&said)?)?,
         });
     }
     if lines.is_empty() {

@@ -121,7 +121,8 @@ pub(super) fn tables(
 /// How many columns of sums fit beside the names.
 fn most_columns(words: &Words<'_>, points: &[&Point]) -> Result<usize, StatementError> {
     let size = f64::from(words.context.delivery.print_size.max(12));
-    let cell = width("£1,234.56", Weight::Bold, size) + 0.8 * size;
+    let sample = words.currency.exact(Money(123_456));
+    let cell = width(&sample, Weight::Bold, size) + 0.8 * size;
     let mut names = 0.0f64;
     for source in ABOVE_NET.iter().chain([&COSTS, &HOUSING]) {
         if points
@@ -160,13 +161,13 @@ fn table(words: &Words<'_>, columns: &[(Column, &Point)]) -> Result<Table, State
         let sums = points.iter().map(|point| point.after_housing);
         total(words, &mut rows, "table.after_housing", sums)?;
     }
-    let names: Vec<&str> = columns
+    let names: Vec<String> = columns
         .iter()
-        .map(|(column, _)| column.name.as_str())
+        .map(|(column, _)| column.name.clone())
         .collect();
     let starred = rows.iter().any(|row| row.name.ends_with(STAR));
     Ok(Table {
-        summary: words.say("table.summary", &[("columns", &names.join("; "))])?,
+        summary: words.say("table.summary", &[("columns", &words.listed(&names)?)])?,
         columns: columns.iter().map(|(column, _)| column.clone()).collect(),
         rows,
         note: if starred {

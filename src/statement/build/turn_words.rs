@@ -2,11 +2,11 @@
 
 use super::steps::Step;
 use super::turns::{LEAST_JUMP, Way, is_cost_step, jump, own_traps, trap_at};
-use super::words::{Measure, Words, enumerated, hours_text, listed};
+use super::words::{Measure, Told, Words, hours_text};
 use crate::measures::{BudgetLine, Cause, ItemKind, NoGain, Segment, Trap, Turn};
 use crate::num::{Fraction, Hours, Money};
 use crate::statement::error::StatementError;
-use crate::statement::money::{capital, hours, kept_of_ten, readable};
+use crate::statement::money::{hours, kept_of_ten, readable};
 use crate::statement::view::TurnText;
 
 /// Effects named at one turning point at most.
@@ -65,23 +65,25 @@ pub(super) fn turn_text(
     };
     let mut said = vec![];
     for turn in near {
-        let causes = causes(words, line, turn)?;
-        said.extend(causes.iter().map(|cause| sentence(cause)));
+        for cause in causes(words, line, turn)? {
+            said.push(words.sentence(&cause)?);
+        }
     }
     match way {
         Way::Falls | Way::Rises => {
-            let (key, sum) = if way == Way::Falls {
-                ("turns.fall", -size)
+            let (key, key_by, sum) = if way == Way::Falls {
+                ("turns.fall", "turns.fall_by", -size)
             } else {
-                ("turns.rise", size)
+                ("turns.rise", "turns.rise_by", size)
             };
             let sum = words.currency.short(sum);
-            let mut text = words.say(key, &[("sum", &sum)])?;
             let effects = effects(words, turn)?;
-            if effects.len() > 1 {
-                text = format!("{}: {}.", text.trim_end_matches('.'), listed(&effects));
-            }
-            said.push(text);
+            said.push(if effects.len() > 1 {
+                let list = words.listed(&effects)?;
+                words.say(key_by, &[("sum", &sum), ("list", &list)])?
+            } else {
+                words.say(key, &[("sum", &sum)])?
+            });
             if let Some(trap) = trap_at(line, turn) {
                 said.push(regained(words, line, trap)?);
             }
@@ -91,7 +93,7 @@ pub(super) fn turn_text(
     }
     for (key, names) in [("turns.help_lost", lost), ("turns.help_won", won)] {
         if !names.is_empty() {
-            said.push(words.say(key, &[("name", &enumerated(&names))])?);
+            said.push(words.say(key, &[("name", &words.enumerated(&names))])?);
         }
     }
     let stars = near.iter().map(|turn| words.marks.of_turn(turn));
@@ -110,11 +112,6 @@ pub(super) fn turn_text(
     Ok(Some((way, text)))
 }
 
-/// A cause as a sentence of its own.
-fn sentence(cause: &str) -> String {
-    format!("{}.", capital(cause.trim_end_matches('.')))
-}
-
 /// The pay at a turn.
 fn pay(words: &Words<'_>, turn: &Turn) -> Result<String, StatementError> {
     words.say("turns.pay", &[("sum", &words.currency.short(turn.pay))])
@@ -128,8 +125,7 @@ fn slope(
     let Some(after) = after else {
         return Ok(String::new());
     };
-    let rate = words.rate(after)?;
-    let mut text = words.say("turns.slope", &[("rate", &rate)])?;
+    let mut text = words.rate(Told::FromHere, after)?;
     if let Some(before) = before {
         let key = match before.0 {
             ..0 => "turns.before_lost",
@@ -203,10 +199,7 @@ fn cause_text(
     let key = format!("turn.{}", cause.line);
     let item = format!("item.{}", cause.line);
     let hides = words.folded(&cause.line)
-        || [&key, &item].iter().any(|key| {
-            let text = words.context.labels.get(*key);
-            text.is_some_and(|text| words.reveals(text))
-        })
+        || [&key, &item].iter().any(|key| words.gives_away(key))
         || words.reveals(&cause.part);
     if hides {
         let name = words.plain("sum.folded")?;
@@ -222,9 +215,10 @@ fn cause_text(
     if let Some(text) = words.label(&key) {
         return Ok(text);
     }
-    let name = words
-        .label(&item)
-        .unwrap_or_else(|| format!("{}, {}", cause.part, readable(&cause.line)));
+    let name = match words.label(&item) {
+        Some(name) => name,
+        None => words.own(&key, &format!("{}, {}", cause.part, readable(&cause.line)))?,
+    };
     words.say("turns.cause_plain", &[("name", &name)])
 }
 
@@ -318,10 +312,11 @@ pub(super) fn steps_of_cost(
 ) -> Result<TurnText, StatementError> {
     let mut causes_said: Vec<String> = vec![];
     let mut places: Vec<String> = vec![];
+    let mut last = String::new();
     let (mut most, mut away) = (Money::ZERO, Some(Fraction::ZERO));
     for turn in turns {
         for cause in causes(words, line, turn)? {
-            let text = sentence(&cause);
+            let text = words.sentence(&cause)?;
             if !causes_said.contains(&text) {
                 causes_said.push(text);
             }
@@ -329,7 +324,8 @@ pub(super) fn steps_of_cost(
         // The last hours before the step: it lies at or just above them.
         let at = (turn.at * Fraction::whole(100)).floor();
         let at = Hours(i64::try_from(at).unwrap_or(turn.hours.0));
-        places.push(hours_text(at));
+        last = hours_text(at);
+        places.push(words.number(&last));
         most = most.max(-jump(turn, measure));
         let trap = trap_at(line, turn).and_then(|trap| trap.to.map(|to| to - trap.from));
         away = match (away, trap) {
@@ -338,12 +334,12 @@ pub(super) fn steps_of_cost(
         };
     }
     let sum = words.currency.short(most);
-    let last = places.pop().unwrap_or_default();
-    let place = if places.is_empty() {
-        words.say("turns.above", &[("hours", &last)])?
-    } else {
-        let list = enumerated(&places);
+    let place = if places.len() > 1 {
+        places.pop();
+        let list = words.enumerated(&places);
         words.say("turns.above_and", &[("list", &list), ("hours", &last)])?
+    } else {
+        words.say("turns.above", &[("hours", &last)])?
     };
     let one = turns.len() == 1;
     let costs = match (away, turns.first()) {

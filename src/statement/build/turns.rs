@@ -200,7 +200,6 @@ pub(super) fn turns(
     let note = match all - candidates.len() {
         _ if words.detail == Detail::Bare || place > 0 => String::new(),
         0 => String::new(),
-        1 => words.plain("turns.more_one")?,
         more => words.say("turns.more", &[("count", &more.to_string())])?,
     };
     Ok(Turns {

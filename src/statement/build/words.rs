@@ -6,7 +6,7 @@ use crate::measures::{Assessment, EarnerResult, ItemKind, Point, Segment};
 use crate::num::{Fraction, Hours, Money};
 use crate::statement::context::{LetterContext, LocalRules};
 use crate::statement::error::StatementError;
-use crate::statement::money::{Currency, day, readable};
+use crate::statement::money::{Currency, capital, day, readable};
 use crate::statement::view::{Line, Part, PartKind};
 use chrono::NaiveDate;
 
@@ -62,6 +62,17 @@ pub(super) enum Answers {
     Asked,
 }
 
+/// Of what a rate is told.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Told {
+    /// Of the rise in pay that was just named; a clause behind a colon.
+    OfThis,
+    /// From a turning point on; a sentence.
+    FromHere,
+    /// From the hours of an offer on; a sentence.
+    FromThere,
+}
+
 /// Everything that the parts of a letter need to speak.
 pub(super) struct Words<'a> {
     /// The results.
@@ -80,8 +91,7 @@ pub(super) struct Words<'a> {
     pub marks: Marks,
     /// Ten currency units, as the letter speaks of them: `£10`.
     each: String,
-    months: Vec<String>,
-    /// The labels of the items that are folded, in lower case.
+    /// The labels of the items that are folded, in lower case, in the letter's language and in English.
     hidden: Vec<String>,
 }
 
@@ -94,13 +104,14 @@ impl<'a> Words<'a> {
         earners: &[&EarnerResult],
     ) -> Result<Words<'a>, StatementError> {
         let texts = &context.texts;
-        let currency = Currency::of(&context.currency);
+        let currency = Currency::of(&context.currency, texts)?;
         let key = format!("period.{}", context.period);
-        let months = (1..=12)
-            .map(|month| texts.say(&format!("month.{month}"), &[]))
-            .collect::<Result<_, _>>()?;
         let folded = context.delivery.fold.iter();
-        let hidden = folded.filter_map(|name| context.labels.get(&format!("item.{name}")));
+        let hidden = folded.flat_map(|name| {
+            let key = format!("item.{name}");
+            let both = [&context.labels, &context.english];
+            both.into_iter().filter_map(move |labels| labels.get(&key))
+        });
         Ok(Words {
             assessment,
             context,
@@ -112,7 +123,6 @@ impl<'a> Words<'a> {
             period: texts.say(&key, &[])?,
             marks: Marks::new(assessment, earners),
             each: currency.short(Money(1000)),
-            months,
             hidden: hidden.map(|label| label.to_lowercase()).collect(),
             currency,
         })
@@ -161,17 +171,22 @@ impl<'a> Words<'a> {
         Ok(Part::new(self.plain(heading)?, kind, lines, size))
     }
 
-    /// What is kept of ten currency units, as a clause: `you keep £3.24 of each extra £10`.
-    pub fn rate(&self, kept: Money) -> Result<String, StatementError> {
+    /// What is kept of ten currency units, as a clause of its own: `you keep £3.24 of each extra £10`; or as a sentence.
+    pub fn rate(&self, told: Told, kept: Money) -> Result<String, StatementError> {
+        let group = match told {
+            Told::OfThis => "rate",
+            Told::FromHere => "rate_here",
+            Told::FromThere => "rate_there",
+        };
         let key = match kept.0 {
-            ..0 => "rate.lost",
-            0 => "rate.nothing",
-            1000 => "rate.all",
-            1..1000 => "rate.kept",
-            _ => "rate.more",
+            ..0 => "lost",
+            0 => "nothing",
+            1000 => "all",
+            1..1000 => "kept",
+            _ => "more",
         };
         let ten = self.currency.short(Money(kept.0.abs()));
-        self.say(key, &[("ten", &ten)])
+        self.say(&format!("{group}.{key}"), &[("ten", &ten)])
     }
 
     /// A label of the pack, if it has one that gives no folded item away.
@@ -179,8 +194,89 @@ impl<'a> Words<'a> {
         self.context
             .labels
             .get(key)
-            .filter(|text| !text.is_empty() && !self.reveals(text))
+            .filter(|text| !text.is_empty() && !self.gives_away(key))
             .cloned()
+    }
+
+    /// A label of the pack for a name of the code. English has the name itself where the pack has none; another language has
+    /// nothing to say it with.
+    ///
+    /// # Errors
+    /// Where the letter is in another language and the pack has no label.
+    pub fn named(&self, key: &str, name: &str) -> Result<String, StatementError> {
+        if let Some(text) = self.label(key) {
+            return Ok(text);
+        }
+        if self.gives_away(key) {
+            return self.plain("sum.folded");
+        }
+        self.own(key, &readable(name))
+    }
+
+    /// Words of the pack's rules, which are English.
+    ///
+    /// # Errors
+    /// Where the letter is in another language: it needs the label with this key.
+    pub fn own(&self, key: &str, words: &str) -> Result<String, StatementError> {
+        let language = self.context.texts.language();
+        if is_english(language) {
+            return Ok(words.to_owned());
+        }
+        Err(StatementError::Label {
+            language: language.to_owned(),
+            key: key.to_owned(),
+        })
+    }
+
+    /// Whether the label with this key names an item that is folded for safety, in the letter's language or in English: a name
+    /// can change its first letter inside a sentence, as in Welsh.
+    pub fn gives_away(&self, key: &str) -> bool {
+        let both = [&self.context.labels, &self.context.english];
+        let mut found = both.into_iter().filter_map(|labels| labels.get(key));
+        found.any(|text| self.reveals(text))
+    }
+
+    /// The instrument with this name, which is a part of the rules.
+    ///
+    /// # Errors
+    /// As for [`Words::own`].
+    pub fn instrument(&self, name: &str) -> Result<String, StatementError> {
+        let key = format!("part.{name}");
+        match self.label(&key) {
+            Some(text) => Ok(text),
+            None => self.own(&key, name),
+        }
+    }
+
+    /// A number that is given as plain text, as the language writes it; a text that is none as it stands.
+    pub fn number(&self, plain: &str) -> String {
+        let speech = self.context.texts.speech();
+        speech.number(plain).unwrap_or_else(|| plain.to_owned())
+    }
+
+    /// Names in one line.
+    pub fn enumerated(&self, parts: &[String]) -> String {
+        self.context.texts.speech().list(parts)
+    }
+
+    /// Parts that may hold commas, in one line.
+    pub fn listed(&self, parts: &[String]) -> Result<String, StatementError> {
+        let mut parts = parts.iter();
+        let mut line = parts.next().cloned().unwrap_or_default();
+        for next in parts {
+            line = self.say("write.parts", &[("first", &line), ("next", next)])?;
+        }
+        Ok(line)
+    }
+
+    /// A text as a sentence of its own: with a large first letter and one full stop.
+    pub fn sentence(&self, text: &str) -> Result<String, StatementError> {
+        self.ended(&capital(text))
+    }
+
+    /// A text with one full stop.
+    pub fn ended(&self, text: &str) -> Result<String, StatementError> {
+        self.say("write.sentence", &[("text", text.trim_end_matches('.'))])
     }
 
     /// Whether a text names an item that is folded for safety.
@@ -193,8 +289,8 @@ impl<'a> Words<'a> {
     }
 
     /// A day in words.
-    pub fn day(&self, date: NaiveDate) -> String {
-        day(date, &self.months)
+    pub fn day(&self, date: NaiveDate) -> Result<String, StatementError> {
+        day(date, &self.context.texts)
     }
 
     /// Whether an item is folded for safety.
@@ -212,9 +308,7 @@ impl<'a> Words<'a> {
         if self.folded(name) {
             return self.plain("sum.folded");
         }
-        Ok(self
-            .label(&format!("item.{name}"))
-            .unwrap_or_else(|| readable(name)))
+        self.named(&format!("item.{name}"), name)
     }
 
     /// The pack's word for a kind of item, else the fixed one.
@@ -274,17 +368,12 @@ impl<'a> Words<'a> {
     }
 }
 
-/// Hours as text.
+/// Hours as plain text, for the numbers of the fixed texts.
 pub(super) fn hours_text(hours: Hours) -> String {
     hours.plain()
 }
 
-/// Parts that may hold commas, in one line.
-pub(super) fn listed(parts: &[String]) -> String {
-    parts.join("; ")
-}
-
-/// Names in one line.
-pub(super) fn enumerated(parts: &[String]) -> String {
-    parts.join(", ")
+/// Whether a language is English.
+fn is_english(language: &str) -> bool {
+    language == "en" || language.starts_with("en-")
 }

@@ -73,6 +73,7 @@ pub fn context() -> LetterContext {
             .iter()
             .map(|(key, text)| ((*key).to_owned(), (*text).to_owned()))
             .collect::<BTreeMap<_, _>>(),
+        english: std::sync::Arc::default(),
         facts: [
             ("household.birth", FactShape::Date),
             ("household.tenure", FactShape::Word),
