@@ -3,6 +3,7 @@
 use super::build::Detail;
 use super::context::LetterContext;
 use super::error::StatementError;
+use super::kind::Kind;
 use super::room::probable_length;
 use super::templates::{Filler, TemplateSet, check_glyphs};
 use super::texts::Texts;
@@ -13,7 +14,7 @@ use std::sync::Arc;
 use typst::layout::{Frame, FrameItem};
 
 /// The template of the client letter.
-const CLIENT: &str = "client/letter.typ";
+const CLIENT: &str = Kind::Client.template();
 /// Letters after which the typesetter's memory is swept.
 const SWEEP_EVERY: u64 = 8;
 /// Sweeps that an unused result survives.
@@ -73,6 +74,20 @@ impl Typesetter {
             });
         }
         Ok(made)
+    }
+
+    /// Typesets a view of any kind with that kind's template; `identity` is the statement's number, with the variant where there are several.
+    ///
+    /// # Errors
+    /// As for [`Typesetter::any`].
+    pub fn statement<V: serde::Serialize>(
+        &mut self,
+        kind: Kind,
+        view: &V,
+        texts: &Arc<Texts>,
+        (identity, issued): (&str, NaiveDate),
+    ) -> Result<Typeset, StatementError> {
+        self.any(kind.template(), view, texts, identity, issued)
     }
 
     /// The Typst source of a client letter, for those who write templates.

@@ -5,6 +5,8 @@
 mod chart;
 #[path = "statement/invented.rs"]
 mod invented;
+#[path = "statement/kinds.rs"]
+mod kinds;
 #[path = "statement/letter.rs"]
 mod letter;
 #[path = "statement/real.rs"]

@@ -180,7 +180,7 @@ fn fact_text(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError
 }
 
 /// The name of a fact.
-fn fact_name(words: &Words<'_>, fact: &FactUse) -> String {
+pub(super) fn fact_name(words: &Words<'_>, fact: &FactUse) -> String {
     words
         .label(&format!("fact.{}", fact.name))
         .unwrap_or_else(|| readable(&fact.name))
@@ -198,7 +198,7 @@ fn none_of_value(words: &Words<'_>, fact: &FactUse) -> Option<String> {
 }
 
 /// A value in words.
-fn value(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError> {
+pub(super) fn value(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError> {
     if let Some(word) = words.label(&format!("word.{}.{}", fact.name, figure(fact))) {
         return Ok(word);
     }
