@@ -395,8 +395,7 @@ impl Press {
                             String::new()
                         };
                         let identity = (format!("{}-{variant}", view.number), context.issued);
-                        let made = self.typesetter.statement(
-                            *kind,
+                        let made = self.typesetter.pay_page(
                             &view,
                             &context.texts,
                             (&identity.0, identity.1),

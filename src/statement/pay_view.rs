@@ -12,6 +12,8 @@ pub struct PayView {
     pub paper: String,
     /// Size of print in points.
     pub print_size: u8,
+    /// 1 where lines stand closer, because the page would not hold them otherwise; else 0.
+    pub close: u8,
     /// Title of the document.
     pub title: String,
     /// Statement number, on every page.

@@ -4,6 +4,7 @@ use super::build::Detail;
 use super::context::LetterContext;
 use super::error::StatementError;
 use super::kind::Kind;
+use super::pay_view::PayView;
 use super::room::probable_length;
 use super::templates::{Filler, TemplateSet, check_glyphs};
 use super::texts::Texts;
@@ -88,6 +89,28 @@ impl Typesetter {
         (identity, issued): (&str, NaiveDate),
     ) -> Result<Typeset, StatementError> {
         self.any(kind.template(), view, texts, identity, issued)
+    }
+
+    /// Typesets a payroll page; with closer lines where it would need a second page in ordinary print. `identity` is as for
+    /// [`Typesetter::statement`].
+    ///
+    /// # Errors
+    /// As for [`Typesetter::any`].
+    pub fn pay_page(
+        &mut self,
+        view: &PayView,
+        texts: &Arc<Texts>,
+        identity: (&str, NaiveDate),
+    ) -> Result<Typeset, StatementError> {
+        let made = self.statement(Kind::Payroll, view, texts, identity)?;
+        if made.pages == 1 || view.print_size > ORDINARY_PRINT {
+            return Ok(made);
+        }
+        let closer = PayView {
+            close: 1,
+            ..view.clone()
+        };
+        self.statement(Kind::Payroll, &closer, texts, identity)
     }
 
     /// The Typst source of a client letter, for those who write templates.

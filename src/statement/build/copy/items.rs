@@ -7,6 +7,7 @@ use crate::statement::build::steps::{Step, steps};
 use crate::statement::build::words::{enumerated, hours_text};
 use crate::statement::copy_view::{CopyPart, CopySection, LongRow};
 use crate::statement::error::StatementError;
+use crate::statement::money::readable;
 use crate::statement::view::Line;
 
 /// Width that the names of items get at least, in sizes of print.
@@ -35,14 +36,53 @@ pub(super) fn section(
 ) -> Result<CopySection, StatementError> {
     let steps = asked(steps(&copy.words, earner)?);
     let columns = columns(copy, earner, &steps)?;
+    let mut parts = vec![
+        items(copy, &columns)?,
+        rates(copy, earner, &columns)?,
+        between(copy, earner, &steps)?,
+    ];
+    parts.extend(settled(copy, earner)?);
     Ok(CopySection {
         heading: copy.of_earner("copy.items.heading", earner)?,
-        parts: vec![
-            items(copy, &columns)?,
-            rates(copy, earner, &columns)?,
-            between(copy, earner, &steps)?,
-        ],
+        parts,
     })
+}
+
+/// The same items once facts about past periods have settled, where anything differs then.
+fn settled(copy: &Copy<'_>, earner: &EarnerResult) -> Result<Vec<CopyPart>, StatementError> {
+    let words = &copy.words;
+    let Some(settled) = &words.assessment.settled else {
+        return Ok(vec![]);
+    };
+    let names: Vec<String> = settled
+        .facts
+        .iter()
+        .map(|fact| {
+            let label = words.label(&format!("fact.{fact}"));
+            label.unwrap_or_else(|| readable(fact))
+        })
+        .collect();
+    let mut lead = words.say("copy.settled.lead", &[("list", &enumerated(&names))])?;
+    if !settled.held.is_empty() {
+        lead.push(' ');
+        let reasons = settled.held.join(" ");
+        lead.push_str(&words.say("copy.settled.held", &[("reasons", &reasons)])?);
+    }
+    let later = settled.earners.iter().find(|one| one.adult == earner.adult);
+    let mut part = match later {
+        Some(later) => {
+            let steps = asked(steps(words, later)?);
+            items(copy, &columns(copy, later, &steps)?)?
+        }
+        None => CopyPart {
+            heading: String::new(),
+            lines: vec![],
+            tables: vec![],
+        },
+    };
+    part.heading = words.plain("copy.settled.title")?;
+    part.lines.insert(0, lead.into());
+    Ok(vec![part])
 }
 
 /// The offers, else four hours more.

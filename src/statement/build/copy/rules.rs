@@ -49,6 +49,14 @@ pub(super) fn section(copy: &Copy<'_>) -> Result<CopySection, StatementError> {
         lead: words.plain("copy.rules.version")?,
         text: rules.version.clone(),
     });
+    for local in &context.locals {
+        let until = words.day(local.until);
+        let values = [("source", local.source.as_str()), ("until", &until)];
+        lines.push(Line {
+            lead: words.say("copy.rules.local", &[("title", &local.title)])?,
+            text: words.say("copy.rules.local_source", &values)?,
+        });
+    }
     lines.push(words.plain("copy.rules.record")?.into());
     let formulas: Vec<&str> = copy
         .evidence

@@ -93,6 +93,7 @@ fn view(page: &Page<'_>, employer: EmployerCost) -> Result<PayView, StatementErr
         language: context.texts.language().to_owned(),
         paper: context.delivery.paper.clone(),
         print_size: context.delivery.print_size.max(12),
+        close: 0,
         title: words.plain("payslip.title")?,
         number: context.number.clone(),
         office: context.office.name.clone(),
