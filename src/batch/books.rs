@@ -61,6 +61,18 @@ impl Programs for Shelf {
     }
 }
 
+/// Items that are not taken from pay: those that a label `apart.NAME` in any language names.
+fn apart(pack: &Pack) -> Vec<String> {
+    let labels = pack.labels.values().flat_map(|labels| labels.keys());
+    let mut names: Vec<String> = labels
+        .filter_map(|key| key.strip_prefix("apart."))
+        .map(str::to_owned)
+        .collect();
+    names.sort();
+    names.dedup();
+    names
+}
+
 impl Books {
     /// Opens a pack at these terms.
     pub fn new(pack: Pack, terms: Terms) -> Books {
@@ -70,6 +82,7 @@ impl Books {
             request: Request {
                 grid_to: terms.grid_to.unwrap_or(ordinary.grid_to),
                 grid_step: terms.grid_step.unwrap_or(ordinary.grid_step),
+                apart: apart(&pack),
                 ..ordinary
             },
             shelf: Shelf {

@@ -46,6 +46,7 @@ pub(crate) fn assessment() -> Assessment {
             reference: String::new(),
             wage: 122_100,
             hours: Hours::whole(2),
+            facts: vec![],
         },
         grid: vec![
             point(0, 0, 0, 50_000),
@@ -119,6 +120,7 @@ pub(crate) fn assessment() -> Assessment {
             reference: "=shift".into(),
             wage: 122_125,
             hours: Hours::whole(3),
+            facts: vec![],
         },
         own: 3,
         step_to: 3,

@@ -9,6 +9,7 @@ mod aside;
 mod books;
 mod child;
 mod error;
+mod evidence;
 #[cfg(test)]
 pub(crate) mod fixture;
 mod folder;
@@ -29,6 +30,7 @@ pub use aside::Aside;
 pub use books::Books;
 pub use child::WorkerCommand;
 pub use error::Error;
+pub use evidence::{pack_hash, rules_record, workings};
 pub use folder::{Existing, RunFolder};
 pub use ledger::Ledger;
 pub use outcome::{
@@ -41,5 +43,5 @@ pub use record::{Inputs, Record};
 pub use run::{Progress, RunPlan, Summary, run};
 pub(crate) use tables::wage;
 pub use tables::{GridRows, Table, results, results_header, turning_points, turning_points_header};
-pub use work::{Orders, Press, Statements, Work, item_columns, setup, work};
+pub use work::{Orders, Press, Work, item_columns, setup, work};
 pub use worker::serve;

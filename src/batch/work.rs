@@ -1,6 +1,7 @@
 //! What a worker does in earnest: rebuilds pack, templates and office from its setup, then assesses and typesets one
 //! household after another. In: bytes and households. Out: [`Outcome`]s. Reads no file and no clock.
 
+use super::evidence::{rules_record, workings};
 use super::prepare::checked;
 use super::{
     Assessor, Books, GridRows, Outcome, Prepared, Product, StatementFile, results,
@@ -13,22 +14,14 @@ use crate::measures::{Assessment, TurnKind, Verdict};
 use crate::num::{Fraction, Hours};
 use crate::rules::{Change, ENGLISH, Local, Pack};
 use crate::statement::{
-    FactShape, LetterContext, LetterDelivery, LocalRules, StatementError, TemplateSet, Texts,
-    Typesetter, typeset,
+    EmployerCost, Evidence, FactShape, Kind, LetterContext, LetterDelivery, LocalRules,
+    RulesRecord, StatementError, TemplateSet, Texts, Typeset, Typesetter, copy_view, pay_views,
+    typeset,
 };
 use chrono::NaiveDate;
 use serde::{Deserialize, Serialize};
 use std::collections::BTreeMap;
 use std::sync::Arc;
-
-/// Whether statements are typeset.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
-pub enum Statements {
-    /// One a household.
-    Made,
-    /// None: tables only.
-    LeftOut,
-}
 
 /// What a run asks of each household.
 #[derive(Clone, Debug, PartialEq, Eq, Serialize, Deserialize)]
@@ -39,8 +32,10 @@ pub struct Orders {
     pub issued: NaiveDate,
     /// Which points become rows.
     pub rows: GridRows,
-    /// Whether statements are typeset.
-    pub statements: Statements,
+    /// Which kinds of statement are typeset; empty for tables only.
+    pub kinds: Vec<Kind>,
+    /// Whether payroll pages show what the employer pays on top.
+    pub employer: EmployerCost,
 }
 
 /// What crosses to a worker.
@@ -84,6 +79,7 @@ pub struct Work {
     items: Vec<String>,
     hold: HoldRules,
     press: Option<Press>,
+    rules: RulesRecord,
 }
 
 /// Builds a worker's assessor.
@@ -92,11 +88,11 @@ pub struct Work {
 /// What is wrong with the setup.
 pub fn work(payload: &[u8]) -> Result<Work, String> {
     let setup: Setup = postcard::from_bytes(payload).map_err(|error| error.to_string())?;
-    let pack = checked(&PackFiles {
+    let files = PackFiles {
         name: setup.pack_name,
         files: setup.pack,
-    })
-    .map_err(|error| error.to_string())?;
+    };
+    let pack = checked(&files).map_err(|error| error.to_string())?;
     let terms = Terms {
         dates: setup.dates,
         changes: setup
@@ -112,22 +108,24 @@ pub fn work(payload: &[u8]) -> Result<Work, String> {
         grid_step: setup.grid.1,
     };
     let office = setup.office.unwrap_or_default();
-    let press = match setup.orders.statements {
-        Statements::LeftOut => None,
-        Statements::Made => Some(
-            Press::new(&setup.templates, &office, &pack, &terms, &setup.orders)
-                .map_err(|error| error.to_string())?,
-        ),
+    let press = if setup.orders.kinds.is_empty() {
+        None
+    } else {
+        let press = Press::new(&setup.templates, &office, &pack, &terms, &setup.orders);
+        Some(press.map_err(|error| error.to_string())?)
     };
+    let rules = rules_record(&files.name, &files.files, &pack, &terms);
     Ok(Work {
         items: item_columns(&pack),
-        books: match setup.orders.statements {
-            Statements::Made => Books::new(pack, terms),
-            Statements::LeftOut => Books::new(pack, terms).for_tables(),
+        books: if setup.orders.kinds.is_empty() {
+            Books::new(pack, terms).for_tables()
+        } else {
+            Books::new(pack, terms)
         },
         orders: setup.orders,
         hold: office.hold,
         press,
+        rules,
     })
 }
 
@@ -159,8 +157,19 @@ impl Assessor for Work {
         }
         let mut product = tables(&assessment, &self.items, self.orders.rows);
         if let Some(press) = &mut self.press {
-            match press.letter(household, &assessment) {
-                Ok(statement) => product.statements.push(statement),
+            // Workings are gathered only for kinds that print them.
+            let mut evidence = Evidence {
+                points: vec![],
+                rules: self.rules.clone(),
+            };
+            if self.orders.kinds.iter().any(|kind| *kind != Kind::Client) {
+                match workings(&mut self.books, household, &assessment) {
+                    Ok(points) => evidence.points = points,
+                    Err(cause) => return Outcome::Failed { cause },
+                }
+            }
+            match press.statements(household, &assessment, &evidence) {
+                Ok(statements) => product.statements = statements,
                 Err(
                     error @ (StatementError::Glyph { .. }
                     | StatementError::Room { .. }
@@ -264,8 +273,12 @@ pub struct Press {
     labels: BTreeMap<String, BTreeMap<String, String>>,
     locals: Vec<Local>,
     english: Arc<BTreeMap<String, String>>,
+    /// The fixed words of the office's own records.
+    office_texts: Arc<Texts>,
     context: LetterContext,
     run_id: String,
+    kinds: Vec<Kind>,
+    employer: EmployerCost,
 }
 
 impl Press {
@@ -311,8 +324,11 @@ impl Press {
             labels: pack.labels.clone(),
             locals: pack.locals().to_vec(),
             english: Arc::new(pack.labels.get(ENGLISH).cloned().unwrap_or_default()),
+            office_texts: Arc::clone(&context.texts),
             context,
             run_id: orders.run_id.clone(),
+            kinds: orders.kinds.clone(),
+            employer: orders.employer,
         })
     }
 
@@ -363,23 +379,83 @@ impl Press {
         Ok(&self.context)
     }
 
-    /// Sets a household's letter.
+    /// The context of the last household for the office's own record: in English and in ordinary print, whatever the household's
+    /// language and size of print are.
+    pub fn office_context(&self) -> LetterContext {
+        let locals = self.locals.iter();
+        LetterContext {
+            texts: Arc::clone(&self.office_texts),
+            labels: BTreeMap::clone(&self.english),
+            locals: locals.map(|local| local_rules(local, ENGLISH)).collect(),
+            english: Arc::default(),
+            delivery: LetterDelivery {
+                print_size: LetterDelivery::default().print_size,
+                ..self.context.delivery.clone()
+            },
+            ..self.context.clone()
+        }
+    }
+
+    /// Sets all statements of a household that the run asks for.
     ///
     /// # Errors
-    /// As for [`typeset`].
-    pub fn letter(
+    /// As for [`typeset`], [`copy_view`] and [`pay_views`].
+    pub fn statements(
         &mut self,
         household: &Household,
         assessment: &Assessment,
-    ) -> Result<StatementFile, StatementError> {
+        evidence: &Evidence,
+    ) -> Result<Vec<StatementFile>, StatementError> {
         self.context(household)?;
-        let made = typeset(&mut self.typesetter, assessment, &self.context)?;
-        Ok(StatementFile {
-            kind: "client".to_owned(),
-            variant: String::new(),
-            pages: u32::try_from(made.pages).ok(),
-            pdf: made.bytes,
-        })
+        let context = &self.context;
+        let mut files = vec![];
+        for kind in &self.kinds {
+            match kind {
+                Kind::Client => {
+                    let made = typeset(&mut self.typesetter, assessment, context)?;
+                    files.push(file(*kind, String::new(), made));
+                }
+                Kind::Payroll => {
+                    let views = pay_views(assessment, context, evidence, self.employer)?;
+                    let several = views.len() > 1;
+                    for (adult, view) in views {
+                        // One employee's page is nobody else's: each is a file of its own.
+                        let variant = if several {
+                            household.instances[ADULT][adult].reference.clone()
+                        } else {
+                            String::new()
+                        };
+                        let identity = (format!("{}-{variant}", view.number), context.issued);
+                        let made = self.typesetter.pay_page(
+                            &view,
+                            &context.texts,
+                            (&identity.0, identity.1),
+                        )?;
+                        files.push(file(*kind, variant, made));
+                    }
+                }
+                Kind::Caseworker => {
+                    let context = self.office_context();
+                    let view = copy_view(assessment, &context, evidence)?;
+                    let identity = (view.number.as_str(), context.issued);
+                    let made = self
+                        .typesetter
+                        .statement(*kind, &view, &context.texts, identity)?;
+                    files.push(file(*kind, String::new(), made));
+                }
+            }
+        }
+        Ok(files)
+    }
+}
+
+/// A finished statement as a file.
+fn file(kind: Kind, variant: String, made: Typeset) -> StatementFile {
+    StatementFile {
+        kind: kind.word().to_owned(),
+        variant,
+        pages: u32::try_from(made.pages).ok(),
+        pdf: made.bytes,
     }
 }
 

@@ -1,5 +1,6 @@
 //! The commands and their options, with their help. In: arguments. Out: a request that clap has checked.
 
+use crate::statement::Kind;
 use chrono::NaiveDate;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use std::path::PathBuf;
@@ -74,9 +75,10 @@ Examples:
   hourworth print cases --to run-april
   hourworth print cases --to run-april --zip run-april.zip --workers 4
   hourworth print cases --to run-april --replace --allow-rejects
+  hourworth print cases --to run-april --kind client,caseworker
 
 The folder gets:
-  statements/          one PDF per household, named by its reference
+  statements/          one PDF per household and kind, named by its reference
   results.csv          what each household has at its hours and offers
   turning_points.csv   where the next hour changes what is kept
   held.csv             households that were not printed on purpose, with the reasons
@@ -110,6 +112,13 @@ pub struct PrintArgs {
     /// Write every hour of the grid to results.csv
     #[arg(long)]
     pub grid: bool,
+    /// Kinds of statement, with commas between: client (the letter to the household), payroll (a page an employee),
+    /// caseworker (the file copy with every working)
+    #[arg(long, value_name = "KINDS", value_delimiter = ',', default_value = "client", value_parser = kind)]
+    pub kind: Vec<Kind>,
+    /// Payroll pages also show what the employer pays on top, where the rules hold it
+    #[arg(long)]
+    pub employer_cost: bool,
     /// Write tables only, no statements
     #[arg(long)]
     pub no_statements: bool,
@@ -234,6 +243,13 @@ pub struct FormArgs {
     /// Folder for the files; a file that is there already is never overwritten
     #[arg(long, value_name = "FOLDER")]
     pub to: PathBuf,
+}
+
+/// A kind of statement.
+fn kind(word: &str) -> Result<Kind, String> {
+    let words: Vec<&str> = Kind::ALL.iter().map(|kind| kind.word()).collect();
+    Kind::from_word(word)
+        .ok_or_else(|| format!("found `{word}`, expected one of {}", words.join(", ")))
 }
 
 /// Hours a week with up to two decimals.

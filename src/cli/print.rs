@@ -5,11 +5,12 @@ use super::exit::{Exit, Failure};
 use super::progress::Told;
 use crate::batch::{
     Entry, Existing, FaultRow, GridRows, Inputs, Orders, Places, PoolPlan, Prepared, Record,
-    Reject, RunFolder, RunPlan, Statements, StopFlag, Summary, WorkerCommand, item_columns,
-    pack_folder, prepare, run, setup,
+    Reject, RunFolder, RunPlan, StopFlag, Summary, WorkerCommand, item_columns, pack_folder,
+    pack_hash, prepare, run, setup,
 };
 use crate::case::{Fault, RejectedHousehold};
 use crate::load::LOCAL;
+use crate::statement::{EmployerCost, Kind};
 use chrono::NaiveDate;
 use std::path::Path;
 use std::time::Duration;
@@ -53,10 +54,11 @@ pub(super) fn print(args: &PrintArgs) -> Result<Exit, Failure> {
         } else {
             GridRows::Named
         },
-        statements: if args.no_statements {
-            Statements::LeftOut
+        kinds: kinds(args),
+        employer: if args.employer_cost {
+            EmployerCost::Shown
         } else {
-            Statements::Made
+            EmployerCost::LeftOut
         },
     };
     let plan = RunPlan {
@@ -92,6 +94,20 @@ pub(super) fn print(args: &PrintArgs) -> Result<Exit, Failure> {
     } else {
         Exit::Done
     })
+}
+
+/// The kinds that are asked for, each once, the client's first.
+fn kinds(args: &PrintArgs) -> Vec<Kind> {
+    if args.no_statements {
+        return vec![];
+    }
+    let kinds = Kind::ALL.into_iter();
+    kinds.filter(|kind| args.kind.contains(kind)).collect()
+}
+
+fn kind_words(kinds: &[Kind]) -> String {
+    let words: Vec<&str> = kinds.iter().map(|kind| kind.word()).collect();
+    words.join(",")
 }
 
 /// Refuses a ZIP file that could not be written or would take another file's place, before the run rather than after it.
@@ -158,6 +174,12 @@ fn inputs(prepared: &Prepared, args: &PrintArgs) -> Inputs {
         ),
         ("grid".to_owned(), yes_no(args.grid)),
         ("statements".to_owned(), yes_no(!args.no_statements)),
+        ("kinds".to_owned(), kind_words(&kinds(args))),
+        ("employer_cost".to_owned(), yes_no(args.employer_cost)),
+        (
+            "pack_sha256".to_owned(),
+            pack_hash(&prepared.pack_files.files.hashes()),
+        ),
         ("deadline_seconds".to_owned(), args.deadline.to_string()),
         ("memory_mb".to_owned(), args.memory.to_string()),
     ];

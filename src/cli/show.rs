@@ -440,6 +440,7 @@ mod tests {
                 income: Money(410),
                 fragile: true,
             }),
+            pay: None,
         }];
         earner.target = Some(TargetHours {
             sum: Money(51_400),

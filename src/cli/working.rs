@@ -98,6 +98,7 @@ mod tests {
             inputs: vec!["pay = 20.00".into(), "allowance = 8.00".into()],
             law: law.into(),
             amounts: vec![],
+            counts: true,
         };
         let lines = [
             line("Invented Tax", "taxed", "adult 1", ""),

@@ -178,6 +178,13 @@ impl Special<'_> {
         }
     }
 
+    /// The registers that could have changed an item at these values: those of branches that were not taken are not among them.
+    pub(super) fn deciding(&self, values: &[i128]) -> Vec<bool> {
+        let mut reached = vec![false; self.program().steps.len()];
+        self.reach(values, Reach::Widely, &mut reached);
+        reached
+    }
+
     fn facts_among(&self, reached: &[bool], used: &mut Used) {
         let program = self.program();
         for (reg, step) in program.steps.iter_with_id() {

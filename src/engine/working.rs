@@ -26,6 +26,8 @@ pub struct Worked {
     pub law: String,
     /// Positions of the amounts that went in, among the program's.
     pub amounts: Vec<usize>,
+    /// Whether the figure could have changed an item here: not so where it stands in a branch that was not taken.
+    pub counts: bool,
 }
 
 /// All lines that the items need, at these hours.
@@ -35,6 +37,13 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
     let program = special.program();
     let needed = needed(special);
     let rows = special.rows_reached(&values);
+    let deciding = special.deciding(&values);
+    let counting: BTreeSet<usize> = program
+        .steps
+        .iter_with_id()
+        .filter(|(reg, _)| deciding[reg.position()])
+        .filter_map(|(_, step)| step.line.map(crate::index::Id::position))
+        .collect();
     let mut lines: Vec<(usize, &Line)> = program
         .lines
         .iter_with_id()
@@ -71,6 +80,7 @@ pub fn working(special: &Special<'_>, hours: Hours) -> Vec<Worked> {
                     .collect(),
                 law: line.law.clone(),
                 amounts,
+                counts: counting.contains(at) || deciding[reg.position()],
             })
         })
         .collect()

@@ -4,12 +4,12 @@ use super::couple::couple;
 use super::line::{Asked, Worked, work_out};
 use super::points::{Sums, Totals, point};
 use super::settled::{Now, once_settled, open};
-use super::split::{Quarters, rise};
+use super::split::{Quarters, pay_split, rise};
 use super::types::{
     AmountUse, Assessment, EarnerResult, FactUse, ItemInfo, JobTerms, OfferMeasures, Unclaimed,
     WorkingLine,
 };
-use crate::case::{ADULT, Household, Instance, JOB, Known, Schema};
+use crate::case::{ADULT, FactSpec, Household, Instance, JOB, JobRole, Known, Schema};
 use crate::engine::{JobChoice, Machine, Setting, Special, Standing, fact_text, working};
 use crate::num::{Hours, Money};
 use crate::program::{Amount, Moment, Settling, Shape};
@@ -48,6 +48,8 @@ pub struct Request {
     pub more: Hours,
     /// Whether the facts and amounts that the results rest on are gathered.
     pub evidence: Evidence,
+    /// Names of items that are part of take-home pay and still not taken from pay, such as a tax that is paid with a return.
+    pub apart: Vec<String>,
 }
 
 impl Default for Request {
@@ -57,6 +59,7 @@ impl Default for Request {
             grid_step: Hours::whole(1),
             more: Hours::whole(4),
             evidence: Evidence::Gathered,
+            apart: vec![],
         }
     }
 }
@@ -136,7 +139,11 @@ pub fn assess(
         wanted,
         earners: &earners,
     };
-    let settled = once_settled(&now, programs, &mut gathered)?;
+    let mut settled = once_settled(&now, programs, &mut gathered)?;
+    add_facts(&mut earners, household, schema);
+    if let Some(settled) = &mut settled {
+        add_facts(&mut settled.earners, household, schema);
+    }
     let (facts, amounts) = gathered.finish(household, schema);
     Ok(Verdict::Assessed(Box::new(Assessment {
         reference: household.reference.clone(),
@@ -242,7 +249,7 @@ pub(super) fn earner(
     if !has_job && offers.is_empty() {
         return None;
     }
-    let sums = Sums::new(special, setting.shape.earner);
+    let sums = Sums::new(special, setting.shape.earner).without(special, &request.apart);
     // Y(0): all jobs of the earner ended.
     let further = household.instances[JOB]
         .iter()
@@ -282,6 +289,7 @@ pub(super) fn earner(
             reference: String::new(),
             wage: setting.wage(),
             hours: today,
+            facts: vec![],
         };
         let step_to = Hours((today.0 + request.more.0).min(16_800));
         lines.push(work_out(
@@ -293,6 +301,7 @@ pub(super) fn earner(
                 step_to,
                 up_to,
                 at_zero: &at_zero,
+                apart: &request.apart,
             },
         ));
         gathered.add_line(special, lines.last());
@@ -312,6 +321,7 @@ pub(super) fn earner(
             reference: record.reference.clone(),
             wage: other.wage(),
             hours: own,
+            facts: vec![],
         };
         let worked = work_out(
             &special,
@@ -322,6 +332,7 @@ pub(super) fn earner(
                 step_to: own,
                 up_to,
                 at_zero: &at_zero,
+                apart: &request.apart,
             },
         );
         gathered.add_line(&special, Some(&worked));
@@ -340,10 +351,15 @@ pub(super) fn earner(
         } else {
             None
         };
+        let pay = match lines.first() {
+            Some(old) if has_job => pay_split((old, &worked), today, &sums, &mut quarters),
+            Some(_) | None => None,
+        };
         measures.push(OfferMeasures {
             line: lines.len(),
             holding: quarters.stays(kept),
             rise: split,
+            pay,
         });
         lines.push(worked);
     }
@@ -356,6 +372,42 @@ pub(super) fn earner(
         offers: measures,
         target: target_hours,
     })
+}
+
+/// Gives each line the facts of its job.
+fn add_facts(earners: &mut [EarnerResult], household: &Household, schema: &Schema) {
+    let Some(kind) = schema.kinds.get(JOB) else {
+        return;
+    };
+    for earner in earners {
+        let offers = offers_of(household, earner.adult).map(|(_, offer)| offer);
+        let jobs = household.instances[JOB].iter().zip(&household.job_roles);
+        let today = jobs
+            .filter(|(job, role)| job.owner == earner.adult && **role == JobRole::Today)
+            .map(|(job, _)| job)
+            .take(usize::from(earner.has_job));
+        for (line, record) in earner.lines.iter_mut().zip(today.chain(offers)) {
+            let facts = kind.facts.iter().enumerate();
+            line.terms.facts = facts
+                .map(|(place, spec)| fact_use(&kind.name, "", spec, record, place))
+                .collect();
+        }
+    }
+}
+
+/// One fact of a record.
+fn fact_use(kind: &str, of: &str, spec: &FactSpec, record: &Instance, place: usize) -> FactUse {
+    FactUse {
+        kind: kind.to_owned(),
+        of: of.to_owned(),
+        name: spec.name.clone(),
+        value: fact_text(&spec.ty, record.values[place]),
+        known: match record.known[place] {
+            Known::Seen => 's',
+            Known::Told => 't',
+            Known::Assumed => 'a',
+        },
+    }
 }
 
 fn amount_use(amount: &Amount, part: &str) -> AmountUse {
@@ -480,21 +532,12 @@ impl Gathered {
                         r.label.as_str()
                     }
                 });
-                Some(FactUse {
-                    kind: schema.kinds[kind].name.clone(),
-                    of: if kind == crate::case::HOUSEHOLD {
-                        String::new()
-                    } else {
-                        of.to_owned()
-                    },
-                    name: spec.name.clone(),
-                    value: fact_text(&spec.ty, record.values[fact]),
-                    known: match record.known[fact] {
-                        Known::Seen => 's',
-                        Known::Told => 't',
-                        Known::Assumed => 'a',
-                    },
-                })
+                let of = if kind == crate::case::HOUSEHOLD {
+                    ""
+                } else {
+                    of
+                };
+                Some(fact_use(&schema.kinds[kind].name, of, spec, record, fact))
             })
             .collect();
         (facts, self.amounts.into_values().collect())
@@ -553,6 +596,7 @@ pub fn working_at(
                 inputs: line.inputs,
                 law: line.law,
                 amounts,
+                counts: line.counts,
             }
         })
         .collect())

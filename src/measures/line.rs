@@ -22,10 +22,12 @@ pub(super) struct Asked<'a> {
     pub up_to: Hours,
     /// Y(0): not in work.
     pub at_zero: &'a Totals,
+    /// Names of items that are not taken from pay.
+    pub apart: &'a [String],
 }
 
 pub(super) fn work_out(special: &Special<'_>, setting: &Setting<'_>, asked: Asked<'_>) -> Worked {
-    let sums = Sums::new(special, setting.shape.earner);
+    let sums = Sums::new(special, setting.shape.earner).without(special, asked.apart);
     let walk = special.walk(asked.up_to.as_fraction());
     let stretches: Vec<Stretch> = walk
         .pieces

@@ -14,4 +14,5 @@ mod turns;
 mod types;
 
 pub use assess::{Evidence, Programs, Request, Verdict, WorkedPoint, assess, working_at};
+pub use points::participation_rate;
 pub use types::*;

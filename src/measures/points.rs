@@ -8,6 +8,8 @@ use crate::num::{Fraction, Hours, Money};
 #[derive(Clone, Debug)]
 pub(super) struct Sums {
     kinds: Vec<(ItemKind, Option<u32>)>,
+    /// By item: whether it is part of take-home pay and still not taken from pay.
+    apart: Vec<bool>,
     earner: u32,
 }
 
@@ -30,8 +32,44 @@ impl Sums {
                 .iter()
                 .map(|i| (i.kind, i.adult))
                 .collect(),
+            apart: vec![],
             earner,
         }
+    }
+
+    /// The same, where items of these names are not taken from pay.
+    pub(super) fn without(mut self, special: &Special<'_>, names: &[String]) -> Sums {
+        let program = special.program();
+        let items = program.items.iter();
+        self.apart = items
+            .map(|item| names.contains(&program.lines[item.line].name))
+            .collect();
+        self
+    }
+
+    /// How an item enters the pay that reaches the person.
+    fn in_pay(&self, item: usize) -> i64 {
+        let (kind, adult) = self.kinds[item];
+        let apart = self.apart.get(item).copied().unwrap_or(false);
+        if kind.in_take_home() && self.mine(adult) && !apart {
+            kind.sign_in_net()
+        } else {
+            0
+        }
+    }
+
+    /// The pay that reaches the person.
+    pub(super) fn reaches(&self, items: &[Money]) -> Money {
+        let items = items.iter().enumerate();
+        items
+            .map(|(item, sum)| Money(self.in_pay(item) * sum.0))
+            .sum()
+    }
+
+    /// The same as a curve.
+    pub(super) fn reaches_curve(&self, items: &[Curve]) -> Curve {
+        let weights = (0..self.kinds.len()).map(|item| i128::from(self.in_pay(item)));
+        Curve::total(weights.zip(items).filter(|(weight, _)| *weight != 0))
     }
 
     fn mine(&self, adult: Option<u32>) -> bool {
@@ -144,6 +182,8 @@ pub(super) struct Stretch {
     pub net: Curve,
     pub after_costs: Curve,
     pub pension: Curve,
+    /// The pay that reaches the person.
+    pub reaches: Curve,
 }
 
 impl Stretch {
@@ -155,6 +195,7 @@ impl Stretch {
             net: sums.net_curve(&piece.items),
             after_costs: sums.after_costs_curve(&piece.items),
             pension: sums.pension_curve(&piece.items),
+            reaches: sums.reaches_curve(&piece.items),
         }
     }
 
@@ -166,7 +207,7 @@ impl Stretch {
 }
 
 /// Participation tax rate, 1 − [Y(h) − Y(0)] / E(h) (OECD, effective tax rate on entering employment); none without pay.
-pub(super) fn participation_rate(net: Money, net_at_zero: Money, pay: Money) -> Option<Fraction> {
+pub fn participation_rate(net: Money, net_at_zero: Money, pay: Money) -> Option<Fraction> {
     (pay.0 > 0).then(|| {
         Fraction::ONE - Fraction::new(i128::from((net - net_at_zero).0), i128::from(pay.0))
     })

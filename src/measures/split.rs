@@ -2,7 +2,7 @@
 
 use super::line::Worked;
 use super::points::{Stretch, Sums};
-use super::types::{RiseSplit, TargetHours};
+use super::types::{PaySplit, RiseSplit, TargetHours};
 use crate::engine::{Points, Special};
 use crate::num::{Fraction, Hours, Money};
 
@@ -16,7 +16,16 @@ pub(super) struct Quarters<'a, 'm> {
     /// How many quarters the line has.
     last: i64,
     /// What was worked out so far, by quarter.
-    known: Vec<Option<Money>>,
+    known: Vec<Option<Left>>,
+}
+
+/// What is left at a quarter hour.
+#[derive(Clone, Copy)]
+struct Left {
+    /// Net income after costs of working.
+    after_costs: Money,
+    /// The pay that reaches the person.
+    pay: Money,
 }
 
 impl<'a, 'm> Quarters<'a, 'm> {
@@ -29,7 +38,7 @@ impl<'a, 'm> Quarters<'a, 'm> {
         }
     }
 
-    fn left(&mut self, quarter: i64) -> Money {
+    fn left(&mut self, quarter: i64) -> Left {
         let at = usize::try_from(quarter).expect("quarters count from zero");
         if let Some(left) = self.known[at] {
             return left;
@@ -39,16 +48,28 @@ impl<'a, 'm> Quarters<'a, 'm> {
         let block = from..(from + BLOCK).min(self.known.len());
         let hours: Vec<Hours> = block.clone().map(|at| Hours(at as i64 * 25)).collect();
         for (at, items) in block.zip(self.points.many(&hours)) {
-            self.known[at] = Some(self.sums.totals(&items).after_costs);
+            self.known[at] = Some(Left {
+                after_costs: self.sums.totals(&items).after_costs,
+                pay: self.sums.reaches(&items),
+            });
         }
         self.known[at].expect("the block was worked out")
+    }
+
+    /// The fewest quarter hours from which at least this pay reaches the person, to the end of the line.
+    pub(super) fn pay_stays(&mut self, pay: Money) -> Option<Hours> {
+        let below = (0..=self.last)
+            .rev()
+            .find(|quarter| self.left(*quarter).pay < pay)
+            .map_or(0, |at| at + 1);
+        (below <= self.last).then_some(Hours(below * 25))
     }
 
     /// The fewest quarter hours from which a sum stays reached to the end of the line; for what is left today they are the holding hours.
     pub(super) fn stays(&mut self, sum: Money) -> Option<Hours> {
         let below = (0..=self.last)
             .rev()
-            .find(|quarter| self.left(*quarter) < sum)
+            .find(|quarter| self.left(*quarter).after_costs < sum)
             .map_or(0, |at| at + 1);
         (below <= self.last).then_some(Hours(below * 25))
     }
@@ -56,7 +77,7 @@ impl<'a, 'm> Quarters<'a, 'm> {
     /// Target hours for a sum.
     pub(super) fn target(&mut self, sum: Money) -> TargetHours {
         let first = (0..=self.last)
-            .find(|quarter| self.left(*quarter) >= sum)
+            .find(|quarter| self.left(*quarter).after_costs >= sum)
             .map(|at| Hours(at * 25));
         TargetHours {
             sum,
@@ -86,16 +107,44 @@ pub(super) fn rise(old: &Worked, new: &Worked, today: Hours) -> Option<RiseSplit
             .find(|p| p.hours == today)
             .map(|p| p.net)
     };
-    let near = Fraction::new(1, 100);
-    let fragile = old
-        .line
-        .turns
-        .iter()
-        .chain(&new.line.turns)
-        .any(|t| t.at - at <= near && at - t.at <= near);
     Some(RiseSplit {
         price: after.net.slope(at) - before.net.slope(at),
         income: net(new)? - net(old)?,
-        fragile,
+        fragile: fragile(old, new, at),
+    })
+}
+
+/// Whether hours sit on a turning point of either line.
+fn fragile(old: &Worked, new: &Worked, at: Fraction) -> bool {
+    let near = Fraction::new(1, 100);
+    let mut turns = old.line.turns.iter().chain(&new.line.turns);
+    turns.any(|turn| turn.at - at <= near && at - turn.at <= near)
+}
+
+/// The rise split of the pay that reaches the person: hourly return on both terms and the income part at today's hours, and the hours that
+/// hold today's pay. `quarters` are those of the new line.
+pub(super) fn pay_split(
+    (old, new): (&Worked, &Worked),
+    today: Hours,
+    sums: &Sums,
+    quarters: &mut Quarters<'_, '_>,
+) -> Option<PaySplit> {
+    let at = today.as_fraction();
+    let (before, after) = (
+        stretch_at(&old.stretches, at)?,
+        stretch_at(&new.stretches, at)?,
+    );
+    let reaches = |worked: &Worked| {
+        let mut grid = worked.line.grid.iter();
+        let point = grid.find(|point| point.hours == today)?;
+        Some(sums.reaches(&point.items))
+    };
+    let now = reaches(old)?;
+    Some(PaySplit {
+        hour_before: before.reaches.slope(at),
+        hour_after: after.reaches.slope(at),
+        income: reaches(new)? - now,
+        fragile: fragile(old, new, at),
+        holding: quarters.pay_stays(now),
     })
 }

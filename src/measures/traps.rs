@@ -136,6 +136,7 @@ mod tests {
                     net,
                     after_costs: net,
                     pension: still,
+                    reaches: still,
                 }
             })
             .collect()

@@ -59,6 +59,8 @@ pub struct JobTerms {
     pub wage: i64,
     /// Hours of today's job or of the offer.
     pub hours: Hours,
+    /// All facts of this job, with how they are known.
+    pub facts: Vec<FactUse>,
 }
 
 /// What happens at a turning point.
@@ -216,6 +218,23 @@ pub struct RiseSplit {
     pub fragile: bool,
 }
 
+/// What another wage does to the pay that reaches the person: take-home pay without what is not taken from pay
+/// ([`Request::apart`](super::Request::apart)). No benefits, no behaviour.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct PaySplit {
+    /// What one more weekly hour adds at today's hours on today's terms, to the right, roundings smoothed, in currency units of
+    /// the statement period.
+    pub hour_before: Fraction,
+    /// The same on the offer's terms; the difference is the price part.
+    pub hour_after: Fraction,
+    /// Income part: pay that reaches the person at today's hours, new less old, exact to the minor unit.
+    pub income: Money,
+    /// Whether today's hours sit on a turning point of either line, where the split is fragile.
+    pub fragile: bool,
+    /// The fewest quarter hours on the offer's terms from which as much reaches the person as today; none where it never does.
+    pub holding: Option<Hours>,
+}
+
 /// What an offer means against today.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct OfferMeasures {
@@ -226,6 +245,8 @@ pub struct OfferMeasures {
     pub holding: Option<Hours>,
     /// The rise split at today's hours; none for an earner without a job today.
     pub rise: Option<RiseSplit>,
+    /// The same for the pay that reaches the person; none for an earner without a job today.
+    pub pay: Option<PaySplit>,
 }
 
 /// The hours that a sum needs.
@@ -315,6 +336,8 @@ pub struct WorkingLine {
     pub law: String,
     /// The amounts of the law that went in.
     pub amounts: Vec<AmountUse>,
+    /// Whether the figure could have changed an item here: not so where it stands in a branch of a rule that was not taken.
+    pub counts: bool,
 }
 
 /// Net income for each pair of the partners' hours, everything else fixed.

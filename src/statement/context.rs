@@ -39,7 +39,10 @@ pub struct LetterContext {
     ///   worth a word;
     /// * `amount.NAME` an amount of the law, `note.NAME` a note;
     /// * `office.NAME` who runs an item, `report.NAME` what to tell it by when;
-    /// * `left_out.NUMBER`, or `left_out.NAME.NUMBER` where the household has the item: what the sum leaves out.
+    /// * `left_out.NUMBER`, or `left_out.NAME.NUMBER` where the household has the item: what the sum leaves out;
+    /// * for payroll pages `payslip.NAME` a fact of the job or a figure, `payslip_told.NAME` a fact only where it was told,
+    ///   `payslip_unsaid.NAME` what stands in place of a value that nobody told, `payslip_said.NUMBER` a sentence, `apart.NAME`
+    ///   and `named.NAME` an item that is not taken from pay.
     pub labels: BTreeMap<String, String>,
     /// The pack's English labels, where the letter is in another language; by them an item that is folded is found in every
     /// language. Empty for an English letter.

@@ -4,7 +4,7 @@
 //! In a text, `{name}` is where a value goes; `{#name}` where a number goes, written as the language writes it; `{name|unit}`
 //! where a number goes with the words of `unit.…`. A text that depends on a number is a table with one text for each plural form that
 //! CLDR gives the language (`one`, `other` …), or with `any` alone where the language says the same for all numbers; `by`
-//! names the number where there are several.
+//! names the number where there are several. Tables that start with `copy` are the office's own and in English only.
 
 use super::error::StatementError;
 use super::fonts::first_unset;
@@ -49,6 +49,8 @@ impl Text {
 const UNIT_NUMBER: &str = "n";
 /// The start of the keys of units.
 const UNIT: &str = "unit.";
+/// The start of the keys of the file copy. It is the office's own record, so its words are there in English alone.
+const OFFICE: &str = "copy.";
 /// What a file says about its language, and what holds where it does not.
 const ABOUT: [(&str, &str); 3] = [
     ("language.direction", "ltr"),
@@ -237,7 +239,7 @@ impl Texts {
     }
 
     /// What this language lacks or has too much, measured by another: keys, names of values, plural forms. Units are each
-    /// language's own.
+    /// language's own; the words of the file copy, `copy.…`, belong to English alone.
     pub fn differences(&self, from: &Texts) -> Vec<StatementError> {
         let mut faults = vec![];
         let mut fault = |message: String| {
@@ -246,7 +248,14 @@ impl Texts {
                 message,
             });
         };
-        let shared = |key: &&String| !key.starts_with(UNIT);
+        let shared = |key: &&String| !key.starts_with(UNIT) && !key.starts_with(OFFICE);
+        let own = self.language != from.language;
+        let office = |key: &&String| own && key.starts_with(OFFICE);
+        for key in self.entries.keys().filter(office) {
+            fault(format!(
+                "`{key}` is a text of the file copy, which is in English only"
+            ));
+        }
         for key in from.entries.keys().filter(shared) {
             if !self.entries.contains_key(key) {
                 let words = from.language();

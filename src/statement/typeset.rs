@@ -4,6 +4,8 @@ use super::build::Detail;
 use super::context::LetterContext;
 use super::crowded::{crowded, places};
 use super::error::StatementError;
+use super::kind::Kind;
+use super::pay_view::PayView;
 use super::room::probable_length;
 use super::templates::{Filler, TemplateSet, check_glyphs};
 use super::texts::Texts;
@@ -14,7 +16,7 @@ use std::sync::Arc;
 use typst::layout::{Frame, FrameItem};
 
 /// The template of the client letter.
-const CLIENT: &str = "client/letter.typ";
+const CLIENT: &str = Kind::Client.template();
 /// Letters after which the typesetter's memory is swept.
 const SWEEP_EVERY: u64 = 8;
 /// Sweeps that an unused result survives.
@@ -74,6 +76,42 @@ impl Typesetter {
             });
         }
         Ok(made)
+    }
+
+    /// Typesets a view of any kind with that kind's template; `identity` is the statement's number, with the variant where there are several.
+    ///
+    /// # Errors
+    /// As for [`Typesetter::any`].
+    pub fn statement<V: serde::Serialize>(
+        &mut self,
+        kind: Kind,
+        view: &V,
+        texts: &Arc<Texts>,
+        (identity, issued): (&str, NaiveDate),
+    ) -> Result<Typeset, StatementError> {
+        self.any(kind.template(), view, texts, identity, issued)
+    }
+
+    /// Typesets a payroll page; with closer lines where it would need a second page in ordinary print. `identity` is as for
+    /// [`Typesetter::statement`].
+    ///
+    /// # Errors
+    /// As for [`Typesetter::any`].
+    pub fn pay_page(
+        &mut self,
+        view: &PayView,
+        texts: &Arc<Texts>,
+        identity: (&str, NaiveDate),
+    ) -> Result<Typeset, StatementError> {
+        let made = self.statement(Kind::Payroll, view, texts, identity)?;
+        if made.pages == 1 || view.print_size > ORDINARY_PRINT {
+            return Ok(made);
+        }
+        let closer = PayView {
+            close: 1,
+            ..view.clone()
+        };
+        self.statement(Kind::Payroll, &closer, texts, identity)
     }
 
     /// The Typst source of a client letter, for those who write templates.

@@ -5,6 +5,8 @@
 mod chart;
 #[path = "statement/invented.rs"]
 mod invented;
+#[path = "statement/kinds.rs"]
+mod kinds;
 #[path = "statement/languages.rs"]
 mod languages;
 #[path = "statement/letter.rs"]

@@ -188,7 +188,7 @@ fn fact_text(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError
 }
 
 /// The name of a fact.
-fn fact_name(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError> {
+pub(super) fn fact_name(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError> {
     words.named(&format!("fact.{}", fact.name), &fact.name)
 }
 
@@ -204,7 +204,7 @@ fn none_of_value(words: &Words<'_>, fact: &FactUse) -> Option<String> {
 }
 
 /// A value in words.
-fn value(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError> {
+pub(super) fn value(words: &Words<'_>, fact: &FactUse) -> Result<String, StatementError> {
     if let Some(word) = words.label(&format!("word.{}.{}", fact.name, figure(fact))) {
         return Ok(word);
     }

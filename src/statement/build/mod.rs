@@ -3,11 +3,13 @@
 
 mod answers;
 mod closing;
+mod copy;
 mod facts;
 mod figure;
 mod head;
 mod later;
 mod marks;
+mod pay;
 mod section;
 mod steps;
 mod table;
@@ -23,7 +25,9 @@ use super::view::{LetterView, Section};
 use crate::measures::{Assessment, EarnerResult};
 use words::{Answers, Words};
 
+pub use copy::copy_view;
 pub(super) use figure::text_width;
+pub use pay::{EmployerCost, pay_views};
 
 /// How much a letter says; each says less than the one before.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]

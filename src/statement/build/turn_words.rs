@@ -190,7 +190,7 @@ fn causes(
 }
 
 /// One cause: the label for the way in which its instrument's items turn, else the label for any way.
-fn cause_text(
+pub(super) fn cause_text(
     words: &Words<'_>,
     line: &BudgetLine,
     turn: &Turn,

@@ -25,6 +25,7 @@ fn home(benefit: Pieces, hours: i64, wage: i128) -> Assessment {
         reference: String::new(),
         wage: 115_385,
         hours: Hours::whole(hours),
+        facts: vec![],
     };
     let line = budget_line(&items(), terms, 0, Hours::whole(hours + 4), 48);
     let zero = line.grid[0].clone();

@@ -605,6 +605,7 @@ pub fn earner(
             reference: String::new(),
             wage,
             hours: Hours(hours),
+            facts: vec![],
         };
         lines.push(budget_line(
             &items(home, wage, adult),
@@ -621,6 +622,7 @@ pub fn earner(
             reference: format!("o{position}"),
             wage: *wage,
             hours: Hours(*hours),
+            facts: vec![],
         };
         let line = budget_line(&items(home, *wage, adult), terms, adult, Hours(*hours), 48);
         let today = job.map(|_| lines[0].grid[lines[0].own].net);
@@ -634,6 +636,7 @@ pub fn earner(
             line: lines.len(),
             holding,
             rise: None,
+            pay: None,
         });
         lines.push(line);
     }

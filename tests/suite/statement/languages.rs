@@ -1,17 +1,19 @@
 //! Letters in four languages, and in a made-up one that shows every fixed word and runs from right to left.
 
+#[path = "languages/kinds.rs"]
+mod kinds;
 #[path = "languages/made_up.rs"]
 mod made_up;
 #[path = "languages/offered.rs"]
 mod offered;
 
-use hourworth::batch::{Books, GridRows, Orders, Places, Prepared, Press, Statements, prepare};
+use hourworth::batch::{Books, GridRows, Orders, Places, Prepared, Press, prepare};
 use hourworth::case::Household;
 use hourworth::load::Rows;
 use hourworth::measures::Verdict;
 use hourworth::statement::{
-    LetterContext, LetterView, PAGE_LIMIT, StatementError, TemplateSet, Texts, Typesetter,
-    typeset_with_view,
+    EmployerCost, Kind, LetterContext, LetterView, PAGE_LIMIT, StatementError, TemplateSet, Texts,
+    Typesetter, typeset_with_view,
 };
 use std::path::{Path, PathBuf};
 use std::sync::{Arc, LazyLock};
@@ -51,7 +53,8 @@ fn press(prepared: &Prepared) -> Press {
         run_id: "20260506-TESTRUN1".into(),
         issued: chrono::NaiveDate::from_ymd_opt(2026, 5, 6).expect("a day"),
         rows: GridRows::Named,
-        statements: Statements::Made,
+        kinds: vec![Kind::Client],
+        employer: EmployerCost::LeftOut,
     };
     let office = hourworth::load::Office::default();
     let (templates, pack) = (&prepared.templates, &prepared.pack);
@@ -166,6 +169,11 @@ fn what_a_language_lacks_is_told_with_its_key() {
         &[
             "texts `cy`: `facts.some` has one text, expected one for each of zero, one, two, few, many, other, or `any`",
         ],
+    );
+    t(
+        "[payslip]",
+        "[copy]\ntitle = \"Copi ffeil\"\n\n[payslip]",
+        &["texts `cy`: `copy.title` is a text of the file copy, which is in English only"],
     );
     t(
         "more.two = ",
@@ -350,37 +358,41 @@ fn the_document_says_its_language() {
     }
 }
 
+/// Fixed words and labels of other languages in pages of one language.
+fn foreign(prepared: &Prepared, language: &str, pages: &[String]) -> Vec<String> {
+    let said = dense(&pages.concat());
+    let own = texts(language);
+    let mut found = vec![];
+    for other in LANGUAGES.iter().filter(|other| **other != language) {
+        let words = texts(other);
+        for key in words.keys("") {
+            let (Ok(text), Ok(same)) = (words.say(key, &[]), own.say(key, &[])) else {
+                continue;
+            };
+            let text = dense(&text);
+            let alike = dense(&same).contains(&text) || text.chars().count() < 8;
+            if !(alike || key.starts_with("month.") || !said.contains(&text)) {
+                found.push(format!("`{text}` ({key} in {other})"));
+            }
+        }
+        for (key, text) in &prepared.pack.labels[*other] {
+            let text = dense(&text.replace("{value}", ""));
+            let same = prepared.pack.labels[language].get(key);
+            let alike = same.is_some_and(|same| dense(same).contains(&text));
+            if !(alike || text.chars().count() < 8 || !said.contains(&text)) {
+                found.push(format!("`{text}` ({key} in {other})"));
+            }
+        }
+    }
+    found
+}
+
 #[test]
 fn no_letter_holds_words_of_another_language() {
     let prepared = prepare(&folder("list"), &Places::default()).expect("the list can be read");
     for letter in LETTERS.iter() {
-        let said = dense(&letter.pages.concat());
-        let own = texts(&letter.language);
-        for other in LANGUAGES.iter().filter(|other| **other != letter.language) {
-            let words = texts(other);
-            for key in words.keys("") {
-                let (Ok(text), Ok(same)) = (words.say(key, &[]), own.say(key, &[])) else {
-                    continue;
-                };
-                let text = dense(&text);
-                let alike = dense(&same).contains(&text) || text.chars().count() < 8;
-                assert!(
-                    alike || key.starts_with("month.") || !said.contains(&text),
-                    "{}: `{text}` ({key} in {other})",
-                    letter.reference
-                );
-            }
-            for (key, text) in &prepared.pack.labels[*other] {
-                let text = dense(&text.replace("{value}", ""));
-                let same = prepared.pack.labels[&letter.language].get(key);
-                let alike = same.is_some_and(|same| dense(same).contains(&text));
-                assert!(
-                    alike || text.chars().count() < 8 || !said.contains(&text),
-                    "{}: `{text}` ({key} in {other})",
-                    letter.reference
-                );
-            }
-        }
+        let found = foreign(&prepared, &letter.language, &letter.pages);
+        assert!(found.is_empty(), "{}: {found:#?}", letter.reference);
     }
 }
 

@@ -1,12 +1,12 @@
 //! The letters of the demo lists, from real assessments: their length, their cautions, their words.
 
-use hourworth::batch::{Books, GridRows, Orders, Places, Prepared, Press, Statements, prepare};
+use hourworth::batch::{Books, GridRows, Orders, Places, Prepared, Press, prepare};
 use hourworth::case::Household;
 use hourworth::load::Rows;
 use hourworth::measures::{Assessment, Point, Verdict};
 use hourworth::statement::{
-    LetterContext, LetterView, PAGE_LIMIT, TemplateSet, Typesetter, missing_labels,
-    probable_length, typeset_with_view,
+    EmployerCost, Kind, LetterContext, LetterView, PAGE_LIMIT, TemplateSet, Typesetter,
+    missing_labels, probable_length, typeset_with_view,
 };
 use std::path::Path;
 use std::sync::LazyLock;
@@ -67,12 +67,13 @@ fn letters(list: &str, typesetter: &mut Typesetter) -> Vec<Letter> {
     out
 }
 
-fn press(prepared: &Prepared) -> Press {
+pub fn press(prepared: &Prepared) -> Press {
     let orders = Orders {
         run_id: "20260506-TESTRUN1".into(),
         issued: chrono::NaiveDate::from_ymd_opt(2026, 5, 6).expect("a day"),
         rows: GridRows::Named,
-        statements: Statements::Made,
+        kinds: vec![Kind::Client],
+        employer: EmployerCost::LeftOut,
     };
     let office = hourworth::load::Office::default();
     Press::new(
@@ -85,7 +86,7 @@ fn press(prepared: &Prepared) -> Press {
     .expect("the templates are sound")
 }
 
-fn households(prepared: &Prepared) -> Vec<Household> {
+pub fn households(prepared: &Prepared) -> Vec<Household> {
     let (_, readings) = prepared
         .list
         .read(&prepared.schema, &prepared.options, &Rows::AsWritten)

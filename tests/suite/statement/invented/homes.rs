@@ -166,6 +166,7 @@ pub fn minimal() -> Assessment {
         reference: String::new(),
         wage: 115_385,
         hours: Hours(800),
+        facts: vec![],
     };
     let line = budget_line(&pay(), terms, 0, Hours(1200), 48);
     let earner = EarnerResult {

@@ -5,7 +5,7 @@ use super::*;
 use crate::suite::statement::invented;
 use hourworth::measures::{AmountUse, Assessment, FactUse, Unclaimed};
 use hourworth::num::Money;
-use hourworth::statement::{Detail, FactShape, letter_view};
+use hourworth::statement::{Detail, Evidence, FactShape, letter_view, pay_views};
 use std::collections::BTreeMap;
 
 const PLAIN: &str = "abcdefghijklmnopqrstuvwxyzABCDEFGHIJKLMNOPQRSTUVWXYZ";
@@ -59,6 +59,8 @@ fn made_up_texts() -> String {
         .find(|(name, _)| *name == "text/en.toml")
         .expect("the file");
     let mut table: toml::Table = text.parse().expect("it is TOML");
+    // The file copy is in English only.
+    table.remove("copy").expect("the tables of the file copy");
     change(&mut table);
     table.to_string()
 }
@@ -209,24 +211,64 @@ fn no_plain_letter_and_no_point_is_left() {
                     .chain(section.tables.iter().map(|table| table.summary.clone()))
             });
             for text in pages.iter().cloned().chain(alts) {
-                // The letters of offers are the same in every language.
-                let plain = text
-                    .split(|sign: char| !sign.is_alphabetic())
-                    .filter(|word| word.chars().any(|sign| sign.is_ascii_alphabetic()))
-                    .find(|word| !["A", "B"].contains(word));
-                assert_eq!(plain, None, "{name}: {text}");
-                let signs: Vec<char> = text.chars().collect();
-                for (at, part) in signs.windows(3).enumerate() {
-                    let point =
-                        part[1] == '.' && part[0].is_ascii_digit() && part[2].is_ascii_digit();
-                    // In groups of three it parts thousands.
-                    let digits = signs[at + 2..]
-                        .iter()
-                        .take_while(|sign| sign.is_ascii_digit());
-                    assert!(!point || digits.count() == 3, "{name}: {text}");
-                }
+                in_other_signs(name, &text);
             }
         }
+    }
+}
+
+/// Checks that a text has no plain letter and no decimal point.
+#[track_caller]
+fn in_other_signs(name: &str, text: &str) {
+    // The letters of offers are the same in every language.
+    let plain = text
+        .split(|sign: char| !sign.is_alphabetic())
+        .filter(|word| word.chars().any(|sign| sign.is_ascii_alphabetic()))
+        .find(|word| !["A", "B"].contains(word));
+    assert_eq!(plain, None, "{name}: {text}");
+    let signs: Vec<char> = text.chars().collect();
+    for (at, part) in signs.windows(3).enumerate() {
+        let point = part[1] == '.' && part[0].is_ascii_digit() && part[2].is_ascii_digit();
+        // In groups of three it parts thousands.
+        let digits = signs[at + 2..]
+            .iter()
+            .take_while(|sign| sign.is_ascii_digit());
+        assert!(!point || digits.count() == 3, "{name}: {text}");
+    }
+}
+
+/// The same of payroll pages, which are mirrored as letters are.
+#[test]
+fn payroll_pages_have_no_plain_letter_and_room() {
+    let typesetter = Typesetter::new(&TemplateSet::built_in()).expect("sound templates");
+    let template = Kind::Payroll.template();
+    let (mut pages, mut texts_seen) = (0, String::new());
+    for (name, mut assessment) in assessments() {
+        assessment.reference = made_up(&assessment.reference);
+        for size in [12, 16, 20] {
+            let context = context(size);
+            let evidence = Evidence::default();
+            let views = pay_views(&assessment, &context, &evidence, EmployerCost::Shown);
+            for (_, view) in views.expect(name) {
+                let value = serde_json::to_value(&view).expect("plain values");
+                let value = minijinja::Value::from(minijinja::value::Serde(value));
+                let words = typesetter.words_of(template, &value, &context.texts);
+                let summaries = view.tables.iter().map(|table| table.summary.clone());
+                for text in words.expect(name).into_iter().chain(summaries) {
+                    in_other_signs(name, &text);
+                    texts_seen.push_str(&text);
+                }
+                let crowded = typesetter.crowded(template, &view, &context.texts);
+                let crowded = crowded.expect(name);
+                assert!(crowded.is_empty(), "{name} at {size} points: {crowded:#?}");
+                pages += 1;
+            }
+        }
+    }
+    assert!(pages >= 15, "{pages} pages");
+    for said in ["Basic pay", "Take-home pay", "Pay and contract"] {
+        let said = dense(&made_up(said));
+        assert!(dense(&texts_seen).contains(&said), "not said: {said}");
     }
 }
 
