@@ -193,6 +193,27 @@ fn wrong_hours(household: &Household, earner: &EarnerResult, wanted: Money) -> O
     } else {
         earner.not_in_work.after_costs
     };
+    let own = line.grid[line.own].hours;
+    let split = earner.offers.iter().find_map(|offer| {
+        let pay = offer.pay.as_ref()?;
+        let new = &earner.lines[offer.line];
+        // Nothing of take-home pay is paid apart from pay in these packs.
+        let taken_home = |line: &BudgetLine| {
+            let mut grid = line.grid.iter();
+            grid.find(|p| p.hours == own).map(|p| p.take_home)
+        };
+        let now = taken_home(line)?;
+        let quarters: Vec<&Point> = (new.grid.iter()).filter(|p| p.hours.0 % 25 == 0).collect();
+        let holding = (0..quarters.len())
+            .find(|from| quarters[*from..].iter().all(|p| p.take_home >= now))
+            .map(|from| quarters[from].hours);
+        let income = taken_home(new)? - now;
+        ((pay.income, pay.holding) != (income, holding))
+            .then(|| format!("{pay:?}, expected {income:?} and {holding:?}"))
+    });
+    if split.is_some() {
+        return split;
+    }
     earner.offers.iter().find_map(|offer| {
         let expected = stays(&earner.lines[offer.line], today);
         (offer.holding != expected).then(|| {

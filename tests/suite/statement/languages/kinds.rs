@@ -3,10 +3,12 @@
 use super::*;
 use hourworth::batch::{rules_record, workings};
 use hourworth::measures::Assessment;
+use hourworth::num::{Fraction, Hours, Money};
 use hourworth::statement::{CopyView, Evidence, PayView, copy_view, pay_views};
 
 struct Printed {
     reference: String,
+    assessment: Assessment,
     context: LetterContext,
     pages: Vec<PayView>,
     copy: CopyView,
@@ -43,6 +45,7 @@ static PRINTED: LazyLock<Vec<Printed>> = LazyLock::new(|| {
                 .map(|(_, page)| page)
                 .collect(),
             english: copied(&press, &assessment, &evidence),
+            assessment: *assessment,
             context,
             copy,
         });
@@ -102,6 +105,26 @@ fn payroll_pages_are_in_the_language_of_the_household() {
     // Told, and not told.
     says("L-04", "alle vier Wochen");
     says("L-08", "nicht genannt");
+}
+
+/// By hand from the pack's rules and amounts: a month is 52/12 weeks; 20% tax on pay above 900 a month.
+#[test]
+fn a_rise_is_split_in_the_pay_that_reaches_the_person() {
+    let one = PRINTED.iter().find(|one| one.reference == "L-02");
+    let offers = &one.expect("a household").assessment.earners[0].offers;
+    let split = offers[0].pay.as_ref().expect("a job today and an offer");
+    let weeks = Fraction::new(52, 12);
+    let wage = |hundredths: i128| Fraction::new(hundredths, 100);
+    // 16 hours at 12.71 are 881.23, below the allowance: all of an hour's pay reaches the person.
+    assert_eq!(split.hour_before, wage(1271) * weeks);
+    // 16 hours at 13.45 are 932.53, above it: four fifths do.
+    assert_eq!(split.hour_after, wage(1345) * weeks * Fraction::new(4, 5));
+    // 932.53 less 20% of 32.53 is 926.02 (the tax is 6.51); 926.02 less 881.23 is 44.79.
+    assert_eq!(split.income, Money(44_79));
+    // 15 hours at 13.45 are 874.25, too little; 15.25 are 888.82.
+    assert_eq!(split.holding, Some(Hours(15_25)));
+    // The tax starts at 16.34 hours on today's terms and at 15.44 on the offer's.
+    assert!(!split.fragile);
 }
 
 #[test]
