@@ -111,11 +111,11 @@ fn the_good_lists_have_no_fault() {
     t("payroll", 16);
     t("what_if", 3);
     let councils = settings("councils");
-    assert_eq!(councils.local.len(), 3);
+    assert_eq!(councils.local.len(), 4);
     let schema = schema_of(&pack_with(&councils.local));
     let (right, messages) = read(&demo("councils"), &schema);
     assert_eq!(messages, Vec::<String>::new());
-    assert_eq!(right.len(), 8);
+    assert_eq!(right.len(), 9);
     let one = text(&demo("one_household.toml"));
     let settings = ListSettings::parse_single("one_household.toml", &one).expect("it is right");
     let options = ReadOptions::default();

@@ -107,7 +107,7 @@ fn ask(
 fn households_of_the_united_kingdom() {
     let mut files = read_pack("uk", None).expect("the pack is built in");
     // The invented councils and their area are words like the others.
-    let councils: Vec<PathBuf> = ["harrowmere", "sallowby_vale", "pennickmoor"]
+    let councils: Vec<PathBuf> = ["harrowmere", "sallowby_vale", "brackenholme", "pennickmoor"]
         .map(|name| Path::new("demo_cases/councils").join(format!("{name}.toml")))
         .into();
     lay_local(&mut files, &[], None, &councils).expect("the demo's local files");
