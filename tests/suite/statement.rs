@@ -3,12 +3,18 @@
 
 #[path = "statement/chart.rs"]
 mod chart;
+#[path = "statement/colours.rs"]
+mod colours;
 #[path = "statement/invented.rs"]
 mod invented;
 #[path = "statement/languages.rs"]
 mod languages;
 #[path = "statement/letter.rs"]
 mod letter;
+#[path = "statement/nasty.rs"]
+mod nasty;
+#[path = "statement/readable.rs"]
+mod readable;
 #[path = "statement/real.rs"]
 mod real;
 #[path = "statement/templates.rs"]
