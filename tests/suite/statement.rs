@@ -3,6 +3,8 @@
 
 #[path = "statement/chart.rs"]
 mod chart;
+#[path = "statement/colours.rs"]
+mod colours;
 #[path = "statement/invented.rs"]
 mod invented;
 #[path = "statement/kinds.rs"]
@@ -11,6 +13,10 @@ mod kinds;
 mod languages;
 #[path = "statement/letter.rs"]
 mod letter;
+#[path = "statement/nasty.rs"]
+mod nasty;
+#[path = "statement/readable.rs"]
+mod readable;
 #[path = "statement/real.rs"]
 mod real;
 #[path = "statement/templates.rs"]

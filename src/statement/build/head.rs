@@ -1,8 +1,9 @@
 //! The head of the letter: whose it is, its particulars, the office; and whether all of it has room.
 
 use super::words::Words;
-use crate::measures::EarnerResult;
+use crate::measures::{Assessment, EarnerResult};
 use crate::statement::chart::wrapped;
+use crate::statement::context::LetterContext;
 use crate::statement::error::StatementError;
 use crate::statement::fonts::{Weight, width};
 use crate::statement::view::Particular;
@@ -94,6 +95,76 @@ pub(super) fn check_address(address: &[String]) -> Result<(), StatementError> {
         });
     }
     Ok(())
+}
+
+/// Widest word of a name, an offer or a line of the office, in points: 82 mm, the narrowest column that one of them may stand in.
+const WORD: f64 = 82.0 * 72.0 / 25.4;
+/// Widest word of the office's own next steps, in points: 150 mm, the whole width less the numbers in large print.
+const STEP_WORD: f64 = 150.0 * 72.0 / 25.4;
+
+/// Checks that each word that somebody typed fits on a line: a word that does not would cover its neighbours or leave the sheet.
+///
+/// # Errors
+/// Where one does not: its field and the word.
+pub(super) fn check_words(
+    assessment: &Assessment,
+    context: &LetterContext,
+) -> Result<(), StatementError> {
+    let size = f64::from(context.delivery.print_size.max(12));
+    let fits = |field: &str, text: &str, wide: f64| {
+        let pieces = unbroken(text);
+        let mut words = pieces.iter();
+        match words.find(|word| width(word.as_str(), Weight::Bold, size) > wide) {
+            None => Ok(()),
+            Some(word) => Err(StatementError::Room {
+                field: field.to_owned(),
+                found: format!("more than {:.0} mm for `{word}`", wide * 25.4 / 72.0),
+                expected: "words that fit on a line".to_owned(),
+            }),
+        }
+    };
+    for earner in &assessment.earners {
+        fits("name", &earner.name, WORD)?;
+        for line in &earner.lines {
+            fits("offer", &line.terms.offer, WORD)?;
+        }
+    }
+    for fact in &assessment.facts {
+        fits("name", &fact.of, WORD)?;
+    }
+    let office = &context.office;
+    fits("office.name", &office.name, WORD)?;
+    for line in &office.lines {
+        fits("office.lines", line, WORD)?;
+    }
+    for step in &office.next_steps {
+        fits("office.next_steps", step, STEP_WORD)?;
+    }
+    Ok(())
+}
+
+/// What stays on one line: a line may end at a space, and after a hyphen, a dash or a slash; but not after an opening sign or before a
+/// closing one, whatever spaces stand there.
+fn unbroken(text: &str) -> Vec<String> {
+    const OPENING: [char; 7] = ['(', '[', '{', '"', '\'', '“', '‘'];
+    const CLOSING: [char; 14] = [
+        ')', ']', '}', '!', '?', ':', ';', ',', '.', '/', '"', '\'', '”', '’',
+    ];
+    let mut out: Vec<String> = vec![];
+    for word in text.split_whitespace() {
+        let mut start = true;
+        for piece in word.split_inclusive(['-', '–', '—', '/']) {
+            match out.last_mut() {
+                Some(last) if start && (last.ends_with(OPENING) || piece.starts_with(CLOSING)) => {
+                    last.push(' ');
+                    last.push_str(piece);
+                }
+                Some(_) | None => out.push(piece.to_owned()),
+            }
+            start = false;
+        }
+    }
+    out
 }
 
 /// The office's lines: those that stand above the address, and those that stand beside it.

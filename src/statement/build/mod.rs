@@ -48,13 +48,14 @@ pub enum Detail {
 /// Builds the view of a client letter.
 ///
 /// # Errors
-/// Where a text is missing from the language file, or the address has no room.
+/// Where a text is missing from the language file, or the address or a word that somebody typed has no room.
 pub fn letter_view(
     assessment: &Assessment,
     context: &LetterContext,
     detail: Detail,
 ) -> Result<LetterView, StatementError> {
     head::check_address(&context.delivery.address)?;
+    head::check_words(assessment, context)?;
     let earners = leading_first(assessment, context);
     let mut words = Words::new(assessment, context, detail, &earners)?;
     let sections = sections(&words, &earners)?;
