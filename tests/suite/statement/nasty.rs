@@ -8,12 +8,13 @@ mod run;
 
 pub use list::NASTY;
 
-use hourworth::batch::{Books, GridRows, Orders, Places, Prepared, Press, Statements, prepare};
+use hourworth::batch::{Books, GridRows, Orders, Places, Prepared, Press, prepare};
 use hourworth::case::Household;
 use hourworth::load::{Office, Rows};
 use hourworth::measures::Verdict;
 use hourworth::statement::{
-    Detail, StatementError, TemplateSet, Typesetter, letter_view, typeset_with_view,
+    Detail, EmployerCost, Kind, StatementError, TemplateSet, Typesetter, letter_view,
+    typeset_with_view,
 };
 use std::path::Path;
 
@@ -141,7 +142,8 @@ impl Bench {
             run_id: "20260506-NASTY001".into(),
             issued: chrono::NaiveDate::from_ymd_opt(2026, 5, 6).expect("a day"),
             rows: GridRows::Named,
-            statements: Statements::Made,
+            kinds: vec![Kind::Client],
+            employer: EmployerCost::LeftOut,
         };
         let Prepared {
             templates,
