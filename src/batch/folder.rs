@@ -44,7 +44,7 @@ pub struct RunFolder {
 }
 
 impl RunFolder {
-    /// Takes the folder: makes it where it is missing and locks it. An earlier run in it stays until [`RunFolder::begin`].
+    /// Takes the folder: makes it where it is missing and locks it. An earlier run in it stays until `begin` is called.
     ///
     /// # Errors
     /// Where the folder holds something else, holds a run that nobody asked to replace, is in use, or cannot be written.
