@@ -157,12 +157,10 @@ impl Assessor for Work {
         }
         let mut product = tables(&assessment, &self.items, self.orders.rows);
         if let Some(press) = &mut self.press {
-            // Workings are gathered only for kinds that print them.
-            let mut evidence = Evidence {
-                points: vec![],
-                rules: self.rules.clone(),
-            };
+            // Workings and the record of the rules are for kinds that print them.
+            let mut evidence = Evidence::default();
             if self.orders.kinds.iter().any(|kind| *kind != Kind::Client) {
+                evidence.rules = self.rules.clone();
                 match workings(&mut self.books, household, &assessment) {
                     Ok(points) => evidence.points = points,
                     Err(cause) => return Outcome::Failed { cause },
@@ -276,6 +274,8 @@ pub struct Press {
     /// The fixed words of the office's own records.
     office_texts: Arc<Texts>,
     context: LetterContext,
+    /// The language that the context has its labels in; empty before the first household.
+    spoken: String,
     run_id: String,
     kinds: Vec<Kind>,
     employer: EmployerCost,
@@ -326,6 +326,7 @@ impl Press {
             english: Arc::new(pack.labels.get(ENGLISH).cloned().unwrap_or_default()),
             office_texts: Arc::clone(&context.texts),
             context,
+            spoken: String::new(),
             run_id: orders.run_id.clone(),
             kinds: orders.kinds.clone(),
             employer: orders.employer,
@@ -356,16 +357,20 @@ impl Press {
         let ordinary = LetterDelivery::default();
         self.context.number = statement_number(&self.run_id, &household.reference);
         self.context.texts = texts;
-        self.context.labels = self.labels.get(language).cloned().unwrap_or_default();
-        self.context.locals = self
-            .locals
-            .iter()
-            .map(|local| local_rules(local, language))
-            .collect();
-        self.context.english = match language {
-            ENGLISH => Arc::default(),
-            _ => Arc::clone(&self.english),
-        };
+        // A pack's words are many, and most households of a list have the language of the one before.
+        if self.spoken != language {
+            language.clone_into(&mut self.spoken);
+            self.context.labels = self.labels.get(language).cloned().unwrap_or_default();
+            self.context.locals = self
+                .locals
+                .iter()
+                .map(|local| local_rules(local, language))
+                .collect();
+            self.context.english = match language {
+                ENGLISH => Arc::default(),
+                _ => Arc::clone(&self.english),
+            };
+        }
         self.context.delivery = LetterDelivery {
             address: delivery.address.clone(),
             paper: match delivery.paper.as_str() {

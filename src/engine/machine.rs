@@ -474,6 +474,11 @@ impl<'m> Points<'_, 'm> {
         self.special.program()
     }
 
+    /// Walks from zero hours to `up_to`.
+    pub fn walk(&self, up_to: Fraction) -> super::walk::Walk {
+        self.special.walk(up_to)
+    }
+
     /// Amounts of all items at these hours, in minor units (a passport is 1 or 0), exact with the law's roundings.
     pub fn at(&mut self, hours: Hours) -> Vec<Money> {
         let special = self.special;

@@ -33,7 +33,7 @@ pub trait Programs {
 pub enum Evidence {
     /// Facts and amounts are listed.
     Gathered,
-    /// Both lists stay empty.
+    /// Both lists stay empty, and so do the facts of each line's job.
     LeftOut,
 }
 
@@ -91,7 +91,8 @@ pub fn assess(
     let mut table = None;
     let mut unclaimed = Vec::new();
     // What settles is looked for among the facts that a result rests on.
-    let mut gathered = Gathered::new(match open(household, programs).is_empty() {
+    let open = open(household, programs);
+    let mut gathered = Gathered::new(match open.is_empty() {
         true => request.evidence,
         false => Evidence::Gathered,
     });
@@ -139,10 +140,12 @@ pub fn assess(
         wanted,
         earners: &earners,
     };
-    let mut settled = once_settled(&now, programs, &mut gathered)?;
-    add_facts(&mut earners, household, schema);
-    if let Some(settled) = &mut settled {
-        add_facts(&mut settled.earners, household, schema);
+    let mut settled = once_settled(&now, open, programs, &mut gathered)?;
+    if request.evidence == Evidence::Gathered {
+        add_facts(&mut earners, household, schema);
+        if let Some(settled) = &mut settled {
+            add_facts(&mut settled.earners, household, schema);
+        }
     }
     let (facts, amounts) = gathered.finish(household, schema);
     Ok(Verdict::Assessed(Box::new(Assessment {
@@ -256,6 +259,7 @@ pub(super) fn earner(
         .filter(|job| job.owner == adult)
         .count()
         > 1;
+    let mut points = special.points();
     let zero_items = if further {
         machine
             .special(
@@ -267,7 +271,7 @@ pub(super) fn earner(
             .points()
             .at(Hours(0))
     } else {
-        special.points().at(Hours(0))
+        points.at(Hours(0))
     };
     let at_zero: Totals = sums.totals(&zero_items);
     let not_in_work = point(&sums, Hours(0), zero_items, &at_zero, None);
@@ -293,19 +297,18 @@ pub(super) fn earner(
         };
         let step_to = Hours((today.0 + request.more.0).min(16_800));
         lines.push(work_out(
-            special,
-            setting,
+            &mut points,
+            &sums,
             Asked {
                 terms,
                 grid: &hours,
                 step_to,
                 up_to,
                 at_zero: &at_zero,
-                apart: &request.apart,
             },
         ));
         gathered.add_line(special, lines.last());
-        target_hours = wanted.map(|sum| Quarters::new(special, &sums, up_to).target(sum));
+        target_hours = wanted.map(|sum| Quarters::new(&mut points, &sums, up_to).target(sum));
     }
     let mut measures = Vec::new();
     for offer in offers {
@@ -323,20 +326,20 @@ pub(super) fn earner(
             hours: own,
             facts: vec![],
         };
+        let mut points = special.points();
         let worked = work_out(
-            &special,
-            &other,
+            &mut points,
+            &sums,
             Asked {
                 terms,
                 grid: &hours,
                 step_to: own,
                 up_to,
                 at_zero: &at_zero,
-                apart: &request.apart,
             },
         );
         gathered.add_line(&special, Some(&worked));
-        let mut quarters = Quarters::new(&special, &sums, up_to);
+        let mut quarters = Quarters::new(&mut points, &sums, up_to);
         if target_hours.is_none() {
             target_hours = wanted.map(|sum| quarters.target(sum));
         }

@@ -4,7 +4,7 @@ use super::points::{Stretch, Sums, Totals, point};
 use super::traps::{no_gain, traps};
 use super::turns::{minor, turns};
 use super::types::{BudgetLine, ItemKind, JobTerms, Segment};
-use crate::engine::{Setting, Special, Walk};
+use crate::engine::{Points, Walk};
 use crate::num::{Fraction, Hours, Money};
 
 /// A line with what the measures between lines need.
@@ -22,19 +22,15 @@ pub(super) struct Asked<'a> {
     pub up_to: Hours,
     /// Y(0): not in work.
     pub at_zero: &'a Totals,
-    /// Names of items that are not taken from pay.
-    pub apart: &'a [String],
 }
 
-pub(super) fn work_out(special: &Special<'_>, setting: &Setting<'_>, asked: Asked<'_>) -> Worked {
-    let sums = Sums::new(special, setting.shape.earner).without(special, asked.apart);
-    let walk = special.walk(asked.up_to.as_fraction());
+pub(super) fn work_out(points: &mut Points<'_, '_>, sums: &Sums, asked: Asked<'_>) -> Worked {
+    let walk = points.walk(asked.up_to.as_fraction());
     let stretches: Vec<Stretch> = walk
         .pieces
         .iter()
-        .map(|piece| Stretch::new(&sums, piece))
+        .map(|piece| Stretch::new(sums, piece))
         .collect();
-    let mut points = special.points();
     let mut at = 0;
     let mut grid = Vec::with_capacity(asked.grid.len());
     let mut has_costs = false;
@@ -46,7 +42,7 @@ pub(super) fn work_out(special: &Special<'_>, setting: &Setting<'_>, asked: Aske
         }
         has_costs |= sums.has(ItemKind::Cost, &items);
         let stretch = stretches.get(at).filter(|s| here < s.to);
-        grid.push(point(&sums, *hours, items, asked.at_zero, stretch));
+        grid.push(point(sums, *hours, items, asked.at_zero, stretch));
     }
     let place = |hours: Hours| {
         asked
@@ -67,8 +63,8 @@ pub(super) fn work_out(special: &Special<'_>, setting: &Setting<'_>, asked: Aske
     });
     let line = BudgetLine {
         first_minute: first.map_or(Money::ZERO, |s| minor(s.net.at(s.from))),
-        turns: turns(&mut points, &sums, &walk, &stretches),
-        segments: segments(&sums, &walk, &stretches),
+        turns: turns(points, sums, &walk, &stretches),
+        segments: segments(sums, &walk, &stretches),
         traps: traps(&stretches, leading, zero),
         no_gain: no_gain(&stretches, leading),
         terms: asked.terms,

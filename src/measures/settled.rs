@@ -16,16 +16,16 @@ pub(super) struct Now<'a> {
     pub earners: &'a [EarnerResult],
 }
 
-/// The results once settled; none where all are those of now. What they rest on is added to what was gathered.
+/// The results once settled, where `open` holds the facts that may settle to something else; none where all are those of now. What they rest on is added to what was gathered.
 ///
 /// # Errors
 /// Where the pack cannot make a program for the household's shape.
 pub(super) fn once_settled(
     now: &Now<'_>,
+    open: Vec<Settling>,
     programs: &mut dyn Programs,
     gathered: &mut Gathered,
 ) -> Result<Option<Settled>, String> {
-    let open = open(now.household, programs);
     if open.is_empty() {
         return Ok(None);
     }

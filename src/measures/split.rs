@@ -3,15 +3,15 @@
 use super::line::Worked;
 use super::points::{Stretch, Sums};
 use super::types::{PaySplit, RiseSplit, TargetHours};
-use crate::engine::{Points, Special};
+use crate::engine::Points;
 use crate::num::{Fraction, Hours, Money};
 
 /// How many quarter hours are worked out together.
 const BLOCK: usize = 16;
 
 /// What is left after costs of working (net income where there are none) at quarter hours of a line, worked out when it is asked for. Payable hours are quarter hours (design section 2).
-pub(super) struct Quarters<'a, 'm> {
-    points: Points<'a, 'm>,
+pub(super) struct Quarters<'a, 's, 'm> {
+    points: &'a mut Points<'s, 'm>,
     sums: &'a Sums,
     /// How many quarters the line has.
     last: i64,
@@ -28,10 +28,10 @@ struct Left {
     pay: Money,
 }
 
-impl<'a, 'm> Quarters<'a, 'm> {
-    pub(super) fn new(special: &'a Special<'m>, sums: &'a Sums, up_to: Hours) -> Self {
+impl<'a, 's, 'm> Quarters<'a, 's, 'm> {
+    pub(super) fn new(points: &'a mut Points<'s, 'm>, sums: &'a Sums, up_to: Hours) -> Self {
         Quarters {
-            points: special.points(),
+            points,
             sums,
             last: up_to.0 / 25,
             known: vec![None; usize::try_from(up_to.0 / 25 + 1).unwrap_or(0)],
@@ -127,7 +127,7 @@ pub(super) fn pay_split(
     (old, new): (&Worked, &Worked),
     today: Hours,
     sums: &Sums,
-    quarters: &mut Quarters<'_, '_>,
+    quarters: &mut Quarters<'_, '_, '_>,
 ) -> Option<PaySplit> {
     let at = today.as_fraction();
     let (before, after) = (
